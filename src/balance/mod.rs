@@ -1,0 +1,1 @@
+//! What must hold: mass, charge and proton balances in exact arithmetic, and how each was derived.

@@ -1,0 +1,3 @@
+//! What matter is: elements, formulas, quantities and units, water, activity.
+
+pub mod activity;

@@ -1,0 +1,85 @@
+//! The equations of one equilibrium, as numbers only: what goes into the solver.
+//!
+//! Component `j` has the unknown `x_j = ln {component j}`; species `i` then has
+//! `ln {i} = ln_k_i + Σ_j coefficient_ij · x_j`. Each component brings one row,
+//! `Σ_i coefficient_ij · c_i = total_j + Σ_k supply_kj · n_k`, with `n_k` the unknown
+//! amounts of the fixed phases. The row of the proton holds the charge balance:
+//! its total is `−Σ z_j total_j` over the other components.
+
+use num_rational::Rational64;
+
+use crate::chemistry::activity::ActivityModel;
+
+/// An exact row over the components: (index, coefficient), by rising index, no zeros.
+pub type Row = Vec<(usize, Rational64)>;
+
+#[derive(Clone, Debug, PartialEq)]
+pub struct System {
+    /// Dissolved species, free components among them (coefficient one on themselves).
+    pub species: Vec<Species>,
+    /// Total of each component, mol per litre or kilogram. Zero means that every
+    /// species which needs this component is absent. For the proton and the electron
+    /// it may have either sign.
+    pub totals: Vec<f64>,
+    pub fixed: Vec<Fixed>,
+    pub activity: ActivityModel,
+    pub ionic_strength: IonicStrength,
+}
+
+#[derive(Clone, Debug, PartialEq)]
+pub struct Species {
+    pub row: Row,
+    /// Natural logarithm of the formation constant from the components, activity of
+    /// water one.
+    pub ln_k: f64,
+    pub charge: i32,
+    /// Ion size for the extended Debye–Hückel model, in ångström.
+    pub ion_size: f64,
+}
+
+/// A held value: it fixes `Σ row · x` and brings an unknown amount of itself.
+#[derive(Clone, Debug, PartialEq)]
+pub struct Fixed {
+    pub row: Row,
+    /// The value of `Σ row · x`, ln constant of the phase already taken off.
+    pub ln_value: f64,
+    /// Where a concentration and not an activity is held: the species' charge and ion
+    /// size, so that ln γ is taken off too.
+    pub concentration_of: Option<(i32, f64)>,
+    /// What one mole of it brings to each component's row. Equal to `row` but for a
+    /// charged species, whose charge the proton's row must not gain.
+    pub supply: Row,
+}
+
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub enum IonicStrength {
+    Computed,
+    /// mol per litre or kilogram.
+    Given(f64),
+}
+
+/// The solved state.
+#[derive(Clone, Debug, PartialEq)]
+pub struct Answer {
+    /// ln activity of each component; minus infinity where it is absent.
+    pub ln_components: Vec<f64>,
+    /// Of each species, mol per litre or kilogram.
+    pub concentrations: Vec<f64>,
+    pub ln_gammas: Vec<f64>,
+    pub ionic_strength: f64,
+    /// Of each fixed phase: what it brought (positive) or took away.
+    pub amounts: Vec<f64>,
+    /// Worst row residual over the sum of the row's absolute terms.
+    pub residual: f64,
+    pub iterations: u32,
+}
+
+#[derive(Clone, Debug, PartialEq)]
+pub enum Failure {
+    /// No state meets this component's row: proven, not merely not found.
+    Infeasible { component: usize },
+    /// Two rows or held values that depend on one another.
+    Dependent { components: Vec<usize>, fixed: Vec<usize> },
+    NotConverged { residual: f64, iterations: u32 },
+    Cancelled,
+}

@@ -1,0 +1,3 @@
+//! The `lyate` program.
+
+fn main() {}

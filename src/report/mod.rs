@@ -1,0 +1,1 @@
+//! How it is told: terminal text, JSON, SARIF, JUnit.

@@ -1,0 +1,1 @@
+//! What is wrong with a problem: a catalogue, and one file per rule.
