@@ -37,7 +37,9 @@ impl ActivityModel {
                 let d = 1.0 + self.b * ion_size * root;
                 (root / d, d.powi(-2))
             }
-            ActivityKind::Davies => (root / (1.0 + root) - 0.3 * i, (1.0 + root).powi(-2) - 0.6 * root),
+            ActivityKind::Davies => {
+                (root / (1.0 + root) - 0.3 * i, (1.0 + root).powi(-2) - 0.6 * root)
+            }
         };
         (scale * f, scale * df / (2.0 * root))
     }

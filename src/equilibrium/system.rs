@@ -77,9 +77,17 @@ pub struct Answer {
 #[derive(Clone, Debug, PartialEq)]
 pub enum Failure {
     /// No state meets this component's row: proven, not merely not found.
-    Infeasible { component: usize },
+    Infeasible {
+        component: usize,
+    },
     /// Two rows or held values that depend on one another.
-    Dependent { components: Vec<usize>, fixed: Vec<usize> },
-    NotConverged { residual: f64, iterations: u32 },
+    Dependent {
+        components: Vec<usize>,
+        fixed: Vec<usize>,
+    },
+    NotConverged {
+        residual: f64,
+        iterations: u32,
+    },
     Cancelled,
 }

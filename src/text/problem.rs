@@ -12,19 +12,33 @@ pub struct SyntaxProblem {
 #[derive(Clone, Debug, PartialEq)]
 pub enum SyntaxProblemKind {
     /// The first word is no statement.
-    UnknownStatement { word: String, nearest: Option<&'static str> },
+    UnknownStatement {
+        word: String,
+        nearest: Option<&'static str>,
+    },
     /// Something else was expected here. `found` is empty at the end of a statement.
-    Unexpected { found: String, expected: Vec<String> },
+    Unexpected {
+        found: String,
+        expected: Vec<String>,
+    },
     /// Text that starts like a number and is none, or is not finite.
-    BrokenNumber { text: String },
+    BrokenNumber {
+        text: String,
+    },
     UnclosedString,
     UnknownCharacter(char),
     /// `NH3+H+`: a sum needs spaces round its plus. `fixed` is the text to write.
-    NoSpaceRoundPlus { fixed: String },
+    NoSpaceRoundPlus {
+        fixed: String,
+    },
     /// A clause that may stand once stands twice.
-    RepeatedClause { clause: &'static str },
+    RepeatedClause {
+        clause: &'static str,
+    },
     /// Indented where no statement or case is open, or to no statement's depth.
     StrayIndent,
     /// Parentheses nest deeper than `limit`.
-    NestingTooDeep { limit: usize },
+    NestingTooDeep {
+        limit: usize,
+    },
 }

@@ -57,23 +57,66 @@ pub type Name = Spanned<String>;
 
 #[derive(Clone, Debug, PartialEq)]
 pub enum Statement {
-    Problem { title: Name },
+    Problem {
+        title: Name,
+    },
     Use(Use),
-    Temperature { value: Quantity },
-    Activity { model: Name },
-    IonicStrength { value: Quantity },
-    Group { symbol: Name, formula: Option<Name> },
-    Component { items: Vec<ComponentItem> },
+    Temperature {
+        value: Quantity,
+    },
+    Activity {
+        model: Name,
+    },
+    IonicStrength {
+        value: Quantity,
+    },
+    Group {
+        symbol: Name,
+        formula: Option<Name>,
+    },
+    Component {
+        items: Vec<ComponentItem>,
+    },
     Reaction(Box<Reaction>),
-    Total { component: Name, value: Quantity },
-    Add { reagent: Name, amount: Quantity, giving: Option<Vec<Member>> },
-    Hold { subject: Spanned<Subject>, value: Quantity, by: Option<Spanned<By>> },
-    Precipitate { solid: Name },
-    Saturate { solid: Name },
-    Balance { kind: Spanned<BalanceKind>, left: Vec<Term>, right: Vec<Term>, equals: Span },
-    Expect { subject: Spanned<Subject>, relation: Relation, source: Option<Name> },
-    Curve { over: Spanned<Over>, from: Quantity, to: Quantity },
-    Case { title: Name },
+    Total {
+        component: Name,
+        value: Quantity,
+    },
+    Add {
+        reagent: Name,
+        amount: Quantity,
+        giving: Option<Vec<Member>>,
+    },
+    Hold {
+        subject: Spanned<Subject>,
+        value: Quantity,
+        by: Option<Spanned<By>>,
+    },
+    Precipitate {
+        solid: Name,
+    },
+    Saturate {
+        solid: Name,
+    },
+    Balance {
+        kind: Spanned<BalanceKind>,
+        left: Vec<Term>,
+        right: Vec<Term>,
+        equals: Span,
+    },
+    Expect {
+        subject: Spanned<Subject>,
+        relation: Relation,
+        source: Option<Name>,
+    },
+    Curve {
+        over: Spanned<Over>,
+        from: Quantity,
+        to: Quantity,
+    },
+    Case {
+        title: Name,
+    },
     Without(Spanned<Without>),
     /// A statement that could not be read; its problems say why.
     Broken,
