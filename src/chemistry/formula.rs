@@ -13,9 +13,11 @@ mod charge;
 mod group;
 mod parse;
 mod problem;
+mod spelling;
 mod tail;
 
 pub use group::{GroupProblem, Groups};
+pub use spelling::canonical;
 pub use problem::{FormulaProblem, FormulaProblemKind};
 
 /// What reactions conserve: an element, or a declared group, which counts as itself.

@@ -105,6 +105,15 @@ impl Groups {
         self.groups.insert(at, Group { symbol: symbol.into(), elements });
     }
 
+    /// Adds the groups of another file; those of the same symbol are replaced.
+    pub fn extend(&mut self, other: &Groups) {
+        for group in &other.groups {
+            self.groups.retain(|own| own.symbol != group.symbol);
+            let at = self.groups.partition_point(|own| own.symbol.len() >= group.symbol.len());
+            self.groups.insert(at, group.clone());
+        }
+    }
+
     pub fn contains(&self, symbol: &str) -> bool {
         self.groups.iter().any(|group| *group.symbol == *symbol)
     }
