@@ -41,4 +41,8 @@ pub enum SyntaxProblemKind {
     NestingTooDeep {
         limit: usize,
     },
+    /// An expression holds more than `limit` operators.
+    ExpressionTooLong {
+        limit: usize,
+    },
 }

@@ -229,6 +229,8 @@ pub struct Number {
     pub value: f64,
     /// Half a unit of the last written digit, as an absolute amount.
     pub half_digit: f64,
+    /// The digits as written, without the sign.
+    pub text: String,
     pub span: Span,
 }
 

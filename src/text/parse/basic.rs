@@ -1,0 +1,95 @@
+//! What every statement is built from: words, signs, formulas, strings.
+
+use chumsky::prelude::*;
+use chumsky::primitive::select_ref;
+
+use super::failure::{Expect, Failure};
+use crate::text::span::{Span, Spanned};
+use crate::text::token::Token;
+use crate::text::tree::Name;
+
+/// A token that a parser looks at, with its text.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub(super) struct Lexeme<'s> {
+    pub token: Token,
+    pub start: u32,
+    pub end: u32,
+    pub text: &'s str,
+}
+
+impl Lexeme<'_> {
+    pub fn span(&self) -> Span {
+        Span { start: self.start, end: self.end }
+    }
+
+    /// No space between.
+    pub fn touches(&self, next: &Lexeme<'_>) -> bool {
+        self.end == next.start
+    }
+
+    pub fn name(&self) -> Name {
+        Spanned::new(self.text.to_owned(), self.span())
+    }
+}
+
+pub(super) type Tokens<'s> = &'s [Lexeme<'s>];
+pub(super) type Extra = extra::Err<Failure>;
+
+/// A parser over the tokens of one statement.
+pub(super) trait Rule<'s, O>: Parser<'s, Tokens<'s>, O, Extra> + Clone {}
+impl<'s, O, P: Parser<'s, Tokens<'s>, O, Extra> + Clone> Rule<'s, O> for P {}
+
+/// The bytes that a run of tokens covers.
+pub(super) fn span_of(lexemes: &[Lexeme<'_>]) -> Span {
+    match (lexemes.first(), lexemes.last()) {
+        (Some(first), Some(last)) => first.span().to(last.span()),
+        _ => Span::default(),
+    }
+}
+
+pub(super) fn sign<'s>(token: Token, expect: Expect) -> impl Rule<'s, &'s Lexeme<'s>> + Copy {
+    select_ref(move |lexeme: &'s Lexeme<'s>, _: &mut _| (lexeme.token == token).then_some(lexeme))
+        .labelled(expect)
+}
+
+pub(super) fn word<'s>(text: &'static str, expect: Expect) -> impl Rule<'s, &'s Lexeme<'s>> + Copy {
+    select_ref(move |lexeme: &'s Lexeme<'s>, _: &mut _| {
+        (lexeme.token == Token::Word && lexeme.text == text).then_some(lexeme)
+    })
+    .labelled(expect)
+}
+
+/// Any word, or a name where one is written with a capital: the rules judge it.
+pub(super) fn any_word<'s>(expect: Expect) -> impl Rule<'s, Name> + Copy {
+    select_ref(move |lexeme: &'s Lexeme<'s>, _: &mut _| {
+        matches!(lexeme.token, Token::Word | Token::Name).then(|| lexeme.name())
+    })
+    .labelled(expect)
+}
+
+/// A formula, the electron among them.
+pub(super) fn name<'s>(expect: Expect) -> impl Rule<'s, Name> + Copy {
+    select_ref(move |lexeme: &'s Lexeme<'s>, _: &mut _| {
+        matches!(lexeme.token, Token::Name | Token::Electron).then(|| lexeme.name())
+    })
+    .labelled(expect)
+}
+
+/// The text between quotes; the range is that of the quotes too.
+pub(super) fn string<'s>() -> impl Rule<'s, Name> + Copy {
+    select_ref(move |lexeme: &'s Lexeme<'s>, _: &mut _| {
+        const QUOTES: [char; 4] = ['"', '“', '”', '„'];
+        let text = match lexeme.token {
+            Token::String => lexeme.text.trim_matches(QUOTES),
+            Token::UnclosedString => lexeme.text.trim_start_matches(QUOTES).trim_end(),
+            _ => return None,
+        };
+        Some(Spanned::new(text.to_owned(), lexeme.span()))
+    })
+    .labelled(Expect::Text)
+}
+
+/// A comma, or the end: looked at, not taken.
+pub(super) fn clause_end<'s>() -> impl Rule<'s, ()> + Copy {
+    sign(Token::Comma, Expect::Comma).ignored().or(end()).rewind()
+}

@@ -1,0 +1,175 @@
+//! Where a parser stopped and what it could have gone on with. It holds no text, so
+//! that an alternative which fails costs nothing; the words come at the end.
+
+use chumsky::DefaultExpected;
+use chumsky::error::{Error, LabelError};
+use chumsky::span::SimpleSpan;
+use chumsky::util::MaybeRef;
+
+use super::basic::{Lexeme, Tokens};
+use crate::text::number::shortened;
+use crate::text::problem::{SyntaxProblem, SyntaxProblemKind};
+use crate::text::span::Span;
+
+macro_rules! expectations {
+    ($($name:ident $words:literal,)*) => {
+        /// What may stand at a place, for the reader of a message.
+        #[derive(Clone, Copy, Debug, PartialEq, Eq)]
+        #[repr(u8)]
+        pub(super) enum Expect {
+            /// Possible, but not worth naming.
+            Nothing,
+            $($name,)*
+        }
+
+        const WORDS: &[(Expect, &str)] = &[$((Expect::$name, $words),)*];
+    };
+}
+
+expectations! {
+    Number "a number",
+    WholeNumber "a whole number",
+    Quantity "a number with its unit",
+    Unit "a unit such as mmol/L",
+    Percent "`%`",
+    Formula "a formula such as NH4+",
+    Symbol "a symbol such as Cit",
+    Basis "an element, a group or CaCO3",
+    Species "a species in square brackets, such as [NH4+]",
+    Text "text in double quotes",
+    Model "an activity model such as davies",
+    Set "the name of a set such as aqueous, or a path in double quotes",
+    Subject "a quantity such as pH, [NH4+] or CO2(g)",
+    Removed "what to take away, such as `hold pH`",
+    Kind "`charge`, `protons` or a component",
+    Term "a term such as [NH4+], total NH3, added NaOH or 2 mmol/L",
+    Over "pH, temperature, a reagent, or `total` and a component",
+    Found "a reagent, or `total` and a component",
+    Clause "a clause such as pKa = 9.25",
+    Equals "`=`",
+    Relation "`=`, `<`, `<=`, `>`, `>=` or `between`",
+    Arrow "`<=>`",
+    Plus "` + `",
+    RightBracket "`]`",
+    RightBrace "`}`",
+    Operand "a number, T, log(, ln( or an opening parenthesis",
+    Operator "`+`, `-`, `*`, `/` or `^`",
+    LeftParen "`(`",
+    RightParen "`)`",
+    Beta "`K`, `K(T)` or `beta`",
+    Strength "`strength`",
+    Capacity "`capacity`",
+    Index "`index`",
+    Imbalance "`imbalance`",
+    With "`with`",
+    OverWord "`over`",
+    From "`from`",
+    To "`to`",
+    And "`and`",
+    Giving "`giving`",
+    Source "`source`",
+    Comma "a comma",
+    End "the end of the statement",
+}
+
+impl Expect {
+    fn bit(self) -> u64 {
+        match self {
+            Expect::Nothing => 0,
+            expect => 1 << (expect as u8),
+        }
+    }
+
+    pub fn words(self) -> &'static str {
+        WORDS.iter().find(|(expect, _)| *expect == self).map_or("", |(_, words)| words)
+    }
+}
+
+/// A set of expectations at one token; or a problem that is already put in words.
+#[derive(Clone, Debug)]
+pub(super) struct Failure {
+    at: usize,
+    expected: u64,
+    problem: Option<Box<SyntaxProblem>>,
+}
+
+impl Failure {
+    pub fn at(at: usize, expect: Expect) -> Failure {
+        Failure { at, expected: expect.bit(), problem: None }
+    }
+
+    pub fn problem(span: Span, kind: SyntaxProblemKind) -> Failure {
+        Failure { at: 0, expected: 0, problem: Some(Box::new(SyntaxProblem { span, kind })) }
+    }
+
+    pub fn unexpected(lexeme: &Lexeme<'_>, expect: Expect) -> Failure {
+        let kind = SyntaxProblemKind::Unexpected {
+            found: shortened(lexeme.text),
+            expected: vec![expect.words().to_owned()],
+        };
+        Failure::problem(lexeme.span(), kind)
+    }
+
+    /// The problem in words. `lexemes` are those that the parser ran over.
+    pub fn into_problem(self, lexemes: &[Lexeme<'_>], start: Span) -> SyntaxProblem {
+        if let Some(problem) = self.problem {
+            return *problem;
+        }
+        let (span, found) = match lexemes.get(self.at) {
+            Some(lexeme) => (lexeme.span(), shortened(lexeme.text)),
+            None => {
+                let end = lexemes.last().map_or(start, Lexeme::span).end;
+                (Span { start: end, end }, String::new())
+            }
+        };
+        let expected = WORDS
+            .iter()
+            .filter(|(expect, _)| self.expected & expect.bit() != 0)
+            .filter(|(expect, _)| !(found.is_empty() && *expect == Expect::End))
+            .map(|(_, words)| (*words).to_owned())
+            .collect();
+        SyntaxProblem { span, kind: SyntaxProblemKind::Unexpected { found, expected } }
+    }
+}
+
+impl<'s> Error<'s, Tokens<'s>> for Failure {
+    fn merge(mut self, other: Self) -> Self {
+        self.expected |= other.expected;
+        self.problem = self.problem.or(other.problem);
+        self
+    }
+}
+
+impl<'s> LabelError<'s, Tokens<'s>, DefaultExpected<'s, Lexeme<'s>>> for Failure {
+    fn expected_found<E: IntoIterator<Item = DefaultExpected<'s, Lexeme<'s>>>>(
+        expected: E,
+        _: Option<MaybeRef<'s, Lexeme<'s>>>,
+        span: SimpleSpan<usize>,
+    ) -> Self {
+        let mut failure = Failure::at(span.start, Expect::Nothing);
+        for expected in expected {
+            if matches!(expected, DefaultExpected::EndOfInput) {
+                failure.expected |= Expect::End.bit();
+            }
+        }
+        failure
+    }
+}
+
+impl<'s> LabelError<'s, Tokens<'s>, Expect> for Failure {
+    fn expected_found<E: IntoIterator<Item = Expect>>(
+        expected: E,
+        _: Option<MaybeRef<'s, Lexeme<'s>>>,
+        span: SimpleSpan<usize>,
+    ) -> Self {
+        let mut failure = Failure::at(span.start, Expect::Nothing);
+        for expect in expected {
+            failure.expected |= expect.bit();
+        }
+        failure
+    }
+
+    fn label_with(&mut self, label: Expect) {
+        self.expected = label.bit();
+    }
+}

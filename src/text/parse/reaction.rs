@@ -1,0 +1,193 @@
+//! `reaction A <=> B + C, …`: the equation and its clauses. A broken clause costs that
+//! clause.
+
+use chumsky::prelude::*;
+use chumsky::primitive::select_ref;
+
+use super::basic::{Lexeme, Rule, clause_end, sign, span_of, string, word};
+use super::expression;
+use super::failure::{Expect, Failure};
+use super::quantity::quantity;
+use super::sum::members;
+use crate::text::problem::SyntaxProblemKind;
+use crate::text::span::{Span, Spanned};
+use crate::text::token::Token;
+use crate::text::tree::{
+    Constant, ConstantKind, ConstantValue, Expression, Name, Quantity, Reaction, Statement,
+};
+
+#[derive(Clone)]
+enum Clause {
+    Constant(Spanned<ConstantKind>, ConstantValue),
+    Enthalpy(Quantity),
+    HeatCapacity(Quantity),
+    At(Quantity),
+    Valid(Quantity, Quantity),
+    Source(Name),
+    /// Could not be read; its problem is told.
+    Broken,
+}
+
+pub(super) fn reaction<'s>() -> impl Rule<'s, Statement> {
+    let equation = members().then_ignore(arrow()).then(members());
+    let clause = clause()
+        .then_ignore(clause_end())
+        .map_with(|clause, extra| (clause, span_of(extra.slice())))
+        .recover_with(via_parser(
+            select_ref(|lexeme: &'s Lexeme<'s>, _: &mut _| {
+                (lexeme.token != Token::Comma).then_some(())
+            })
+            .repeated()
+            .map(|()| (Clause::Broken, Span::default())),
+        ));
+    equation
+        .map_with(|(left, right), extra| {
+            let equation = span_of(extra.slice());
+            Reaction {
+                left,
+                right,
+                equation,
+                constants: Vec::new(),
+                enthalpy: None,
+                heat_capacity: None,
+                at: None,
+                valid: None,
+                source: None,
+            }
+        })
+        .then(sign(Token::Comma, Expect::Comma).ignore_then(clause).repeated().collect::<Vec<_>>())
+        .validate(|(mut reaction, clauses), _, emitter| {
+            for (clause, span) in clauses {
+                if let Err(clause) = take(&mut reaction, clause, span) {
+                    let kind = SyntaxProblemKind::RepeatedClause { clause };
+                    emitter.emit(Failure::problem(span, kind));
+                }
+            }
+            Statement::Reaction(Box::new(reaction))
+        })
+}
+
+/// `<=>`; another arrow is read as that and said to be wrong.
+fn arrow<'s>() -> impl Rule<'s, ()> {
+    let wrong = sign(Token::WrongArrow, Expect::Nothing).or(sign(Token::Equals, Expect::Nothing));
+    choice((
+        sign(Token::Arrow, Expect::Arrow).ignored(),
+        wrong.validate(|wrong, _, emitter| {
+            emitter.emit(Failure::unexpected(wrong, Expect::Arrow));
+        }),
+    ))
+}
+
+/// Puts a clause in its place; the name of a clause that is there already.
+fn take(reaction: &mut Reaction, clause: Clause, span: Span) -> Result<(), &'static str> {
+    fn put<T>(place: &mut Option<T>, value: T, clause: &'static str) -> Result<(), &'static str> {
+        if place.is_some() {
+            return Err(clause);
+        }
+        *place = Some(value);
+        Ok(())
+    }
+    match clause {
+        Clause::Constant(kind, value) => {
+            reaction.constants.push(Constant { kind, value, span });
+            Ok(())
+        }
+        Clause::Enthalpy(value) => put(&mut reaction.enthalpy, value, "enthalpy"),
+        Clause::HeatCapacity(value) => put(&mut reaction.heat_capacity, value, "heat capacity"),
+        Clause::At(value) => put(&mut reaction.at, value, "at"),
+        Clause::Valid(from, to) => put(&mut reaction.valid, (from, to), "valid"),
+        Clause::Source(value) => put(&mut reaction.source, value, "source"),
+        Clause::Broken => Ok(()),
+    }
+}
+
+fn clause<'s>() -> impl Rule<'s, Clause> {
+    let equals = sign(Token::Equals, Expect::Equals);
+    let enthalpy = word("enthalpy", Expect::Clause)
+        .ignore_then(equals)
+        .ignore_then(quantity())
+        .map(Clause::Enthalpy);
+    let heat = word("heat", Expect::Clause)
+        .ignore_then(word("capacity", Expect::Capacity))
+        .ignore_then(equals)
+        .ignore_then(quantity())
+        .map(Clause::HeatCapacity);
+    let at = word("at", Expect::Clause).ignore_then(quantity()).map(Clause::At);
+    let valid = word("valid", Expect::Clause)
+        .ignore_then(quantity())
+        .then_ignore(word("to", Expect::To))
+        .then(quantity())
+        .map(|(from, to)| Clause::Valid(from, to));
+    let source = source().map(Clause::Source);
+    choice((constant(), of_temperature(), enthalpy, source, at, valid, heat))
+        .labelled(Expect::Clause)
+}
+
+/// `source "…"`
+pub(super) fn source<'s>() -> impl Rule<'s, Name> {
+    word("source", Expect::Source).ignore_then(string())
+}
+
+fn constant<'s>() -> impl Rule<'s, Clause> {
+    let single = select_ref(|lexeme: &'s Lexeme<'s>, _: &mut _| {
+        let kind = match (lexeme.token, lexeme.text) {
+            (Token::Word, "pKa") => ConstantKind::PKa,
+            (Token::Word, "pKsp") => ConstantKind::PKsp,
+            (Token::Word, "pK") => ConstantKind::PK,
+            (Token::Name, "K") => ConstantKind::K,
+            _ => return None,
+        };
+        Some(Spanned::new(kind, lexeme.span()))
+    });
+    let logarithm = select_ref(|lexeme: &'s Lexeme<'s>, _: &mut _| {
+        let kind = match (lexeme.token, lexeme.text) {
+            (Token::Name, "K") => ConstantKind::LogK,
+            (Token::Word, "beta") => ConstantKind::LogBeta,
+            _ => return None,
+        };
+        Some(Spanned::new(kind, lexeme.span()))
+    });
+    let log = word("log", Expect::Clause).then(logarithm.labelled(Expect::Beta)).map(
+        |(log, kind): (&Lexeme<'_>, Spanned<ConstantKind>)| {
+            Spanned::new(kind.value, log.span().to(kind.span))
+        },
+    );
+    single
+        .or(log)
+        .then_ignore(sign(Token::Equals, Expect::Equals))
+        .then(quantity())
+        .map(|(kind, value)| Clause::Constant(kind, ConstantValue::Number(value)))
+}
+
+/// `log K(T) = …`
+fn of_temperature<'s>() -> impl Rule<'s, Clause> {
+    let named = |text: &'static str| {
+        select_ref(move |lexeme: &'s Lexeme<'s>, _: &mut _| {
+            (lexeme.token == Token::Name && lexeme.text == text).then_some(())
+        })
+        .labelled(Expect::Nothing)
+    };
+    let kind = word("log", Expect::Clause)
+        .ignore_then(named("K(T)").or(named("K").ignore_then(named("(T)"))))
+        .map_with(|(), extra| Spanned::new(ConstantKind::LogKOfT, span_of(extra.slice())));
+    let body = select_ref(|lexeme: &'s Lexeme<'s>, _: &mut _| {
+        (lexeme.token != Token::Comma).then_some(())
+    })
+    .repeated()
+    .to_slice();
+    kind.then_ignore(sign(Token::Equals, Expect::Equals)).then(body).validate(
+        |(kind, lexemes): (_, &[Lexeme<'_>]), _, emitter| {
+            let start = Span { start: kind.span.end, end: kind.span.end };
+            match expression::read(lexemes, start) {
+                Ok(expression) => {
+                    let value: Spanned<Expression> = Spanned::new(expression, span_of(lexemes));
+                    Clause::Constant(kind, ConstantValue::Expression(value))
+                }
+                Err(failure) => {
+                    emitter.emit(failure);
+                    Clause::Broken
+                }
+            }
+        },
+    )
+}
