@@ -9,7 +9,8 @@ use num_rational::Rational64;
 use num_traits::{One, ToPrimitive};
 
 use super::system::{Fixed, IonicStrength, Row, Species, System};
-use crate::chemistry::activity::{ActivityModel, ion_size};
+use crate::chemistry::activity::ActivityModel;
+use crate::chemistry::ion_size::ion_size;
 use crate::problem::model::{Held, HeldWhat, Problem};
 use crate::problem::scope::PROTON;
 
@@ -24,7 +25,7 @@ pub fn system(problem: &Problem) -> System {
             row: row.row.clone(),
             ln_k: ln_formation(problem, s),
             charge: row.charge,
-            ion_size: ion_size(&row.name),
+            ion_size: ion_size(&scope.species[s]).angstrom,
         })
         .collect();
     let mut totals: Vec<f64> =
@@ -100,7 +101,7 @@ fn fixed(problem: &Problem, held: &Held) -> Option<Fixed> {
             Fixed {
                 row: row_of(species)?,
                 ln_value: value.ln() - ln_formation(problem, species),
-                concentration_of: Some((formula.charge, ion_size(&formula.name))),
+                concentration_of: Some((formula.charge, ion_size(formula).angstrom)),
                 supply: supply(problem, held.releases?),
             }
         }

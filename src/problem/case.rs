@@ -104,11 +104,11 @@ fn conditions(case: &mut CaseResolver, problem: &mut Problem) {
             }
             Statement::Activity { model } => {
                 problem.activity_at = Some(written.place(model.span));
-                match ActivityKind::parse(&model.value) {
+                match ActivityKind::from_name(&model.value) {
                     Some(kind) => problem.activity = kind,
                     None => {
                         let word = model.value.clone();
-                        let nearest = nearest(&word, &ActivityKind::NAMES);
+                        let nearest = ActivityKind::nearest(&word).map(ActivityKind::name);
                         let kind = DefectKind::UnknownModel { word, nearest };
                         case.resolver.report(written.place(model.span), kind);
                     }
@@ -227,16 +227,6 @@ impl CaseResolver<'_> {
             },
         )
     }
-}
-
-/// The word of a list that is spelt most like this one.
-fn nearest(word: &str, known: &[&'static str]) -> Option<&'static str> {
-    known
-        .iter()
-        .map(|known| (strsim::jaro_winkler(word, known), *known))
-        .filter(|(likeness, _)| *likeness > 0.75)
-        .max_by(|a, b| a.0.total_cmp(&b.0))
-        .map(|(_, known)| known)
 }
 
 /// Whether a statement that states conditions, matter or amounts is broken: then a number

@@ -108,8 +108,6 @@ pub enum DefectKind {
     /// `without` takes away something that is not there.
     NothingToRemove,
     CaseRepeated { title: String, other: Place },
-    /// `temperature`, `component`, … inside a case where it has no meaning.
-    NotInCase { statement: &'static str },
     UnknownModel { word: String, nearest: Option<&'static str> },
     NotYetSupported { what: &'static str },
 

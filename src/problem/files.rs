@@ -5,7 +5,7 @@ use std::path::{Path, PathBuf};
 use std::sync::Arc;
 
 /// Where texts come from: the disk, or an editor's open documents before it.
-pub trait Files {
+pub trait Files: Sync {
     fn read(&self, path: &Path) -> Result<Arc<str>, ReadProblem>;
 }
 

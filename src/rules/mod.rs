@@ -7,7 +7,29 @@ pub mod finding;
 pub mod outcome;
 pub mod words;
 
+mod answers;
+mod balances;
+mod closure;
+mod components;
+mod files;
+mod formulas;
+mod quantities;
 mod reactions;
+mod reagents;
+mod statements;
+mod syntax;
 
 /// The families of rules, in the order of `lyate explain`.
-pub static FAMILIES: &[catalogue::Family] = &[reactions::FAMILY];
+pub static FAMILIES: &[catalogue::Family] = &[
+    syntax::FAMILY,
+    quantities::FAMILY,
+    formulas::FAMILY,
+    reactions::FAMILY,
+    components::FAMILY,
+    reagents::FAMILY,
+    closure::FAMILY,
+    balances::FAMILY,
+    answers::FAMILY,
+    files::FAMILY,
+    statements::FAMILY,
+];

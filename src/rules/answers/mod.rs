@@ -1,0 +1,7 @@
+//! Rules on what the answer must meet.
+
+use super::catalogue::family;
+
+family! {
+    "Answers":
+}

@@ -1,0 +1,7 @@
+//! Rules on components and totals.
+
+use super::catalogue::family;
+
+family! {
+    "Components":
+}

@@ -1,0 +1,7 @@
+//! Rules on the files that a file uses.
+
+use super::catalogue::family;
+
+family! {
+    "Files":
+}

@@ -1,0 +1,7 @@
+//! Rules on formulas.
+
+use super::catalogue::family;
+
+family! {
+    "Formulas":
+}

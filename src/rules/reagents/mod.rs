@@ -1,0 +1,7 @@
+//! Rules on what is put in.
+
+use super::catalogue::family;
+
+family! {
+    "Reagents":
+}

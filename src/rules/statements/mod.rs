@@ -1,0 +1,7 @@
+//! Rules on statements as a whole.
+
+use super::catalogue::family;
+
+family! {
+    "Statements":
+}

@@ -1,0 +1,7 @@
+//! Rules on how a statement is written.
+
+use super::catalogue::family;
+
+family! {
+    "Writing":
+}
