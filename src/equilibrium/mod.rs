@@ -1,4 +1,18 @@
 //! What nature does: the equilibrium that the constants and totals imply, and which
 //! terms of the balances it rests on. Numbers in, numbers out.
 
+mod basis;
+mod coordinates;
+mod direction;
+mod exact;
+mod fixed;
+mod frame;
+mod ionic;
+mod newton;
+mod point;
+mod search;
+mod skew;
+pub mod solve;
+mod start;
+mod sum;
 pub mod system;
