@@ -17,8 +17,8 @@ mod spelling;
 mod tail;
 
 pub use group::{GroupProblem, Groups};
-pub use spelling::canonical;
 pub use problem::{FormulaProblem, FormulaProblemKind};
+pub use spelling::canonical;
 
 /// What reactions conserve: an element, or a declared group, which counts as itself.
 #[derive(Clone, Debug, PartialEq, Eq, PartialOrd, Ord, Hash)]

@@ -9,7 +9,7 @@ use num_rational::Rational64;
 use num_traits::{One, ToPrimitive};
 
 use super::system::{Fixed, IonicStrength, Row, Species, System};
-use crate::chemistry::activity::ActivityModel;
+use crate::chemistry::activity::{ActivityKind, ActivityModel};
 use crate::chemistry::ion_size::ion_size;
 use crate::problem::model::{Held, HeldWhat, Problem};
 use crate::problem::scope::PROTON;
@@ -25,7 +25,11 @@ pub fn system(problem: &Problem) -> System {
             row: row.row.clone(),
             ln_k: ln_formation(problem, s),
             charge: row.charge,
-            ion_size: ion_size(&scope.species[s]).angstrom,
+            // The table is only asked where the model takes sizes.
+            ion_size: match problem.activity {
+                ActivityKind::ExtendedDebyeHuckel => ion_size(&scope.species[s]).angstrom,
+                _ => 0.0,
+            },
         })
         .collect();
     let mut totals: Vec<f64> =

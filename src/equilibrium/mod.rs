@@ -1,6 +1,20 @@
 //! What nature does: the equilibrium that the constants and totals imply, and which
 //! terms of the balances it rests on. Numbers in, numbers out.
 
+mod basis;
 pub mod build;
+mod coordinates;
+mod direction;
+mod exact;
+mod fixed;
+mod frame;
+mod ionic;
+mod newton;
+mod point;
 pub mod quantities;
+mod search;
+mod skew;
+pub mod solve;
+mod start;
+mod sum;
 pub mod system;

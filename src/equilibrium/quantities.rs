@@ -5,7 +5,6 @@ use std::f64::consts::LN_10;
 use num_traits::ToPrimitive;
 
 use super::build::ln_formation;
-use super::sensitivity;
 use super::system::{Answer, System};
 use crate::problem::model::{Problem, Sought};
 use crate::problem::reaction::STANDARD;
@@ -95,11 +94,6 @@ impl Solved {
             .sum()
     }
 
-    /// mol per litre or kilogram of strong base for one unit of pH.
-    pub fn buffer_capacity(&self) -> Option<f64> {
-        sensitivity::buffer_capacity(&self.system, &self.answer)
-    }
-
     /// The value in base units; none where the quantity has none here.
     pub fn value(&self, problem: &Problem, sought: Sought) -> Option<f64> {
         let value = match sought {
@@ -124,7 +118,7 @@ impl Solved {
             }
             Sought::Alkalinity => self.alkalinity(problem),
             Sought::IonicStrength => self.answer.ionic_strength,
-            Sought::BufferCapacity => self.buffer_capacity()?,
+            Sought::BufferCapacity => return None,
             Sought::ChargeImbalance { equivalents: false } => self.imbalance_percent(),
             Sought::ChargeImbalance { equivalents: true } => {
                 let (cations, anions) = self.charges();
@@ -147,8 +141,11 @@ fn zero_levels(problem: &Problem) -> Vec<f64> {
         if n != num_rational::Rational64::from_integer(1) {
             continue;
         }
-        let protons =
-            row.row.iter().find(|&&(j, _)| j == PROTON).map_or(0.0, |p| p.1.to_f64().unwrap_or(0.0));
+        let protons = row
+            .row
+            .iter()
+            .find(|&&(j, _)| j == PROTON)
+            .map_or(0.0, |p| p.1.to_f64().unwrap_or(0.0));
         let ln_k: f64 = scope.belonging.made[s].as_ref().map_or(0.0, |made| {
             made.combination
                 .iter()

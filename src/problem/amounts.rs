@@ -106,8 +106,7 @@ fn add(
                 None
             }
             Split::Foreign(element) => {
-                let kind =
-                    DefectKind::ReagentHoldsForeign { name: formula.name.clone(), element };
+                let kind = DefectKind::ReagentHoldsForeign { name: formula.name.clone(), element };
                 case.resolver.report(at, kind);
                 None
             }

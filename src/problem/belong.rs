@@ -298,7 +298,8 @@ mod tests {
     #[test]
     fn species_that_only_two_reactions_together_make_are_found() {
         // 3 + 4 = 2 and 3 − 4 = 0: neither alone has one unknown.
-        let knot = vec![equation(&[(3, 1), (4, 1), (2, -1)]), equation(&[(3, 1), (4, -1), (0, -1)])];
+        let knot =
+            vec![equation(&[(3, 1), (4, 1), (2, -1)]), equation(&[(3, 1), (4, -1), (0, -1)])];
         let found = belonging(6, &[0, 2], Some(1), &knot);
         let half = Rational64::new(1, 2);
         assert_eq!(found.made[3].as_ref().unwrap().row, vec![(0, half), (1, half)]);

@@ -145,9 +145,12 @@ fn constants(case: &mut CaseResolver, problem: &mut Problem) {
         case.resolver.report(
             at,
             match issue {
-                TemperatureIssue::NoEnthalpy { given } => {
-                    DefectKind::ConstantAtOtherTemperature { reaction: equation, given, wanted, own }
-                }
+                TemperatureIssue::NoEnthalpy { given } => DefectKind::ConstantAtOtherTemperature {
+                    reaction: equation,
+                    given,
+                    wanted,
+                    own,
+                },
                 TemperatureIssue::OutsideValid { low, high } => {
                     DefectKind::OutsideValidRange { reaction: equation, low, high, wanted, own }
                 }

@@ -21,9 +21,8 @@ pub fn read(case: &mut CaseResolver) -> Vec<Expectation> {
             _ => None,
         };
         let expected = takes(sought);
-        let mut value = |quantity: &Quantity| {
-            read_as(case, written, quantity, expected, formula.as_deref())
-        };
+        let mut value =
+            |quantity: &Quantity| read_as(case, written, quantity, expected, formula.as_deref());
         let limit = match relation {
             Relation::Equal(quantity) => value(quantity).map(|read| {
                 let tolerance = read
@@ -45,11 +44,12 @@ pub fn read(case: &mut CaseResolver) -> Vec<Expectation> {
             }
             Relation::Between(low, high) => {
                 // `between 6 and 9 mg/L`: one unit may serve both.
-                let shared = Quantity { unit: high.unit.clone(), basis: high.basis.clone(), ..low.clone() };
+                let shared =
+                    Quantity { unit: high.unit.clone(), basis: high.basis.clone(), ..low.clone() };
                 let low = if low.unit.is_none() { &shared } else { low };
-                value(low).zip(value(high)).map(|(low, high)| {
-                    (Limit::Between { low: low.value, high: high.value }, high)
-                })
+                value(low)
+                    .zip(value(high))
+                    .map(|(low, high)| (Limit::Between { low: low.value, high: high.value }, high))
             }
         };
         let Some((limit, read)) = limit else { continue };

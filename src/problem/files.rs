@@ -38,9 +38,7 @@ impl Files for Disk {
         let bytes = std::fs::read(path).map_err(|error| missing(&error))?;
         match String::from_utf8(bytes) {
             Ok(text) => Ok(text.into()),
-            Err(error) => {
-                Err(ReadProblem::NotText { at_byte: error.utf8_error().valid_up_to() })
-            }
+            Err(error) => Err(ReadProblem::NotText { at_byte: error.utf8_error().valid_up_to() }),
         }
     }
 }

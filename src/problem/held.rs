@@ -28,8 +28,7 @@ pub fn read(case: &mut CaseResolver, problem: &mut Problem) {
             HeldWhat::Activity { species, .. } | HeldWhat::Concentration { species, .. } => {
                 match released(case, problem, species) {
                     Ok(component) => {
-                        problem.amounts[component].source =
-                            AmountSource::Held(problem.held.len());
+                        problem.amounts[component].source = AmountSource::Held(problem.held.len());
                         Some(component)
                     }
                     Err(given) => {
@@ -150,12 +149,7 @@ fn phase(case: &mut CaseResolver, written: &Written, name: &Name, gas: bool) -> 
     None
 }
 
-fn positive(
-    case: &mut CaseResolver,
-    written: &Written,
-    value: &Quantity,
-    read: f64,
-) -> Option<()> {
+fn positive(case: &mut CaseResolver, written: &Written, value: &Quantity, read: f64) -> Option<()> {
     if read > 0.0 {
         return Some(());
     }

@@ -196,12 +196,17 @@ pub enum Sought {
     /// A component of the scope.
     Total(usize),
     /// A species' share of its component.
-    Fraction { species: usize, component: usize },
+    Fraction {
+        species: usize,
+        component: usize,
+    },
     Alkalinity,
     IonicStrength,
     BufferCapacity,
     /// In percent, or in equivalents.
-    ChargeImbalance { equivalents: bool },
+    ChargeImbalance {
+        equivalents: bool,
+    },
 }
 
 impl Problem {

@@ -127,8 +127,7 @@ impl Resolver {
 
     /// J/mol.
     pub fn molar_energy(&mut self, written: &Written, quantity: &Quantity) -> Option<f64> {
-        let read =
-            self.converted(written, quantity, Expected::MolarEnergy, to_joules_per_mole)?;
+        let read = self.converted(written, quantity, Expected::MolarEnergy, to_joules_per_mole)?;
         Some(read.value)
     }
 
@@ -339,14 +338,12 @@ fn without_formula(unit: Unit, basis: Option<&Basis>) -> Result<(f64, Scale), Co
             | Dimension::EquivalentsPerLitre,
             None,
         ) => Ok((unit.factor, scale)),
-        (
-            Dimension::MassPerLitre | Dimension::MassPerKilogram,
-            Some(Basis::CalciumCarbonate),
-        ) => Ok((unit.factor * 2.0 / CALCIUM_CARBONATE, scale)),
-        (found, None) => Err(ConversionProblem::WrongDimension {
-            found,
-            expected: Dimension::AmountPerLitre,
-        }),
+        (Dimension::MassPerLitre | Dimension::MassPerKilogram, Some(Basis::CalciumCarbonate)) => {
+            Ok((unit.factor * 2.0 / CALCIUM_CARBONATE, scale))
+        }
+        (found, None) => {
+            Err(ConversionProblem::WrongDimension { found, expected: Dimension::AmountPerLitre })
+        }
         (_, Some(_)) => Err(ConversionProblem::BasisWithUnit { unit: unit.name }),
     }
 }

@@ -54,7 +54,10 @@ pub struct Constant {
 #[derive(Clone, Debug)]
 pub enum LogK {
     /// At one temperature, in kelvin.
-    At { log_k: f64, kelvin: f64 },
+    At {
+        log_k: f64,
+        kelvin: f64,
+    },
     OfT(Expression),
     /// The ion product of water, IAPWS R11-07(2019).
     Water,
@@ -65,7 +68,10 @@ pub enum LogK {
 pub enum Origin {
     /// In the file itself; the whole statement.
     Own(Place),
-    Set { name: &'static str, edition: u32 },
+    Set {
+        name: &'static str,
+        edition: u32,
+    },
     File(PathBuf),
 }
 
@@ -94,8 +100,13 @@ impl Origin {
 #[derive(Clone, Copy, Debug, PartialEq)]
 pub enum TemperatureIssue {
     /// It is for this temperature, and no enthalpy leads from there.
-    NoEnthalpy { given: f64 },
-    OutsideValid { low: f64, high: f64 },
+    NoEnthalpy {
+        given: f64,
+    },
+    OutsideValid {
+        low: f64,
+        high: f64,
+    },
     /// The expression has no finite value there.
     NoValue,
 }

@@ -58,7 +58,8 @@ impl Resolver {
             match problem {
                 GroupProblem::Formula(problem) => {
                     let span = inside(name, &problem.range);
-                    let kind = DefectKind::Formula { text: name.value.clone(), problem: problem.kind };
+                    let kind =
+                        DefectKind::Formula { text: name.value.clone(), problem: problem.kind };
                     self.report(written.place(span), kind);
                 }
                 GroupProblem::InvalidSymbol => {

@@ -123,8 +123,7 @@ impl Scope {
     pub fn missing_for(&self, species: usize) -> Vec<String> {
         let mut best: Option<Vec<String>> = None;
         for reaction in &self.reactions {
-            if !reaction.participants.iter().any(|p| p.formula.name == self.species[species].name)
-            {
+            if !reaction.participants.iter().any(|p| p.formula.name == self.species[species].name) {
                 continue;
             }
             let missing: Vec<_> = reaction
@@ -229,7 +228,8 @@ impl Builder {
                 let at = written.place(item.name.span);
                 let name = formula.name.clone();
                 if self.components.iter().any(|c| c.formula.name == name) || formula.is_water() {
-                    let kind = DefectKind::NotIndependent { name, from: Vec::new(), reaction: None };
+                    let kind =
+                        DefectKind::NotIndependent { name, from: Vec::new(), reaction: None };
                     self.resolver.report(at, kind);
                     continue;
                 }

@@ -84,13 +84,13 @@ fn solve(formula: &Formula, scope: &Scope, species: &[usize]) -> Solution {
         .keys()
         .chain(species.iter().flat_map(|&s| scope.species[s].atoms.keys()))
         .collect();
-    let count = |formula: &Formula, atom: &Atom| formula.atoms.get(atom).copied().unwrap_or_default();
+    let count =
+        |formula: &Formula, atom: &Atom| formula.atoms.get(atom).copied().unwrap_or_default();
     let charge = |formula: &Formula| Rational64::from_integer(i64::from(formula.charge));
     let mut rows: Vec<Vec<Rational64>> = atoms
         .iter()
         .map(|atom| {
-            let mut row: Vec<_> =
-                species.iter().map(|&s| count(&scope.species[s], atom)).collect();
+            let mut row: Vec<_> = species.iter().map(|&s| count(&scope.species[s], atom)).collect();
             row.push(count(formula, atom));
             row
         })

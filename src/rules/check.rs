@@ -5,8 +5,8 @@ use std::collections::{HashMap, HashSet};
 use std::hash::{DefaultHasher, Hash, Hasher};
 use std::path::{Path, PathBuf};
 use std::sync::Arc;
-use std::sync::atomic::{AtomicBool, Ordering};
 use std::sync::Mutex;
+use std::sync::atomic::{AtomicBool, Ordering};
 
 use super::finding::{Finding, LocatedFinding, Severity};
 use super::outcome::Outcome;
@@ -103,12 +103,22 @@ pub fn check(
         }
         if index == 0 {
             let merging = merging.clone();
-            return Outcome::new(&statements, merging, scope.clone(), false, near(0), around.cancel);
+            return Outcome::new(
+                &statements,
+                merging,
+                scope.clone(),
+                false,
+                near(0),
+                around.cancel,
+            );
         }
         let section = &document.sections[index];
         let (statements, merging) = in_force(base, Some(section));
         let own_scope = statements.iter().any(|w| w.part == Part::Case && defines(w))
-            || section.statements.iter().any(|p| matches!(p.parsed.statement, Statement::Without(_)));
+            || section
+                .statements
+                .iter()
+                .any(|p| matches!(p.parsed.statement, Statement::Without(_)));
         let scope = if own_scope {
             let uses = read_uses(&statements, &reader);
             Arc::new(Scope::new(&statements, uses))

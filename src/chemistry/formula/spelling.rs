@@ -55,8 +55,19 @@ mod tests {
     #[test]
     fn the_spelling_is_the_one_of_the_formula() {
         for text in [
-            "NH4+", "SO₄²⁻", "CaSO4.2H2O", "Ca^2+", "HCO₃⁻", "NH3(aq)", "CaCO3(s, calcite)",
-            "CaCO3(s,calcite)", "Na^1+", "H2CO3*", "CO2(g)", "Fe(CN)6^3-", "Al³⁺",
+            "NH4+",
+            "SO₄²⁻",
+            "CaSO4.2H2O",
+            "Ca^2+",
+            "HCO₃⁻",
+            "NH3(aq)",
+            "CaCO3(s, calcite)",
+            "CaCO3(s,calcite)",
+            "Na^1+",
+            "H2CO3*",
+            "CO2(g)",
+            "Fe(CN)6^3-",
+            "Al³⁺",
         ] {
             let formula = Formula::parse(text, &Groups::default()).unwrap();
             assert_eq!(canonical(text), formula.name, "{text}");

@@ -1,0 +1,68 @@
+//! The state at one value of the unknowns: concentrations, and how far each balance is
+//! from closing.
+
+use super::coordinates::Coordinates;
+
+/// Beyond these ln c is taken as this: no sum or product of such numbers overflows or
+/// vanishes, and a search that starts far off finds its way back.
+const LN_RANGE: (f64, f64) = (-690.0, 300.0);
+
+#[derive(Clone, Debug, Default)]
+pub(super) struct Point {
+    pub u: Vec<f64>,
+    /// `constant + α·u` of each present species: its ln activity but for the share of
+    /// phases held by concentration.
+    pub ln_activities: Vec<f64>,
+    pub concentrations: Vec<f64>,
+    /// The positive terms of each row, a negative total among them.
+    pub positive: Vec<f64>,
+    /// The negative ones, a positive total among them.
+    pub negative: Vec<f64>,
+}
+
+impl Point {
+    /// Everything else from `u`. `shifts` are what activity coefficients add to each
+    /// ln c; none where all are ideal.
+    pub fn evaluate(&mut self, at: &Coordinates, shifts: &[f64]) {
+        let n = at.species.len();
+        self.ln_activities.resize(n, 0.0);
+        self.concentrations.resize(n, 0.0);
+        self.positive.clear();
+        self.positive.extend(at.totals.iter().map(|t| (-t).max(0.0)));
+        self.negative.clear();
+        self.negative.extend(at.totals.iter().map(|t| t.max(0.0)));
+        for i in 0..n {
+            let row = at.row(i);
+            let mut ln_activity = at.constants[i];
+            for &(j, value) in row {
+                ln_activity += value * self.u[j as usize];
+            }
+            let shift = shifts.get(i).copied().unwrap_or(0.0);
+            let c = (ln_activity + shift).clamp(LN_RANGE.0, LN_RANGE.1).exp();
+            self.ln_activities[i] = ln_activity;
+            self.concentrations[i] = c;
+            for &(j, value) in row {
+                if value > 0.0 {
+                    self.positive[j as usize] += value * c;
+                } else {
+                    self.negative[j as usize] -= value * c;
+                }
+            }
+        }
+    }
+
+    /// The worst row: what is left over the sum of its terms.
+    pub fn residual(&self) -> f64 {
+        let rows = self.positive.iter().zip(&self.negative);
+        let open = rows.map(|(p, n)| (p - n).abs() / (p + n));
+        // A row that is not a number counts as wholly open.
+        open.map(|r| if r.is_nan() { 1.0 } else { r }).fold(0.0, f64::max)
+    }
+
+    /// `Σ_j (positive − negative)_j · direction_j`: the slope of the convex function
+    /// whose minimum is the answer.
+    pub fn slope(&self, direction: &[f64]) -> f64 {
+        let rows = self.positive.iter().zip(&self.negative);
+        rows.zip(direction).map(|((p, n), d)| (p - n) * d).sum()
+    }
+}

@@ -1,0 +1,65 @@
+//! The answer to a system: which steps, in which order.
+
+use std::sync::atomic::AtomicBool;
+
+use super::frame::Frame;
+use super::ionic;
+use super::newton::CLOSED;
+use super::search::Search;
+use super::skew::solve_skew;
+use super::start::{first_guess, sweep, warm_guess};
+use super::system::{Answer, Failure, IonicStrength, System};
+use crate::chemistry::activity::ActivityKind;
+
+/// Finds the state in which every row of the system closes.
+///
+/// `start` is an answer to a system of the same components that is thought to be near;
+/// with it the search begins there. `cancel` is looked at in every iteration. Amounts
+/// are in mol per litre or kilogram, whichever the system's totals are in.
+///
+/// # Errors
+/// [`Failure::Infeasible`] and [`Failure::Dependent`] are proven. With ideal activities
+/// every other system has one answer, and it is found; [`Failure::NotConverged`] is for
+/// activity models far out of their range, and for numbers that are not finite.
+pub fn solve(
+    system: &System,
+    start: Option<&Answer>,
+    cancel: &AtomicBool,
+) -> Result<Answer, Failure> {
+    let frame = Frame::new(system)?;
+    if frame.askew {
+        return solve_skew(system, start, cancel);
+    }
+    let mut search = match start {
+        Some(answer) => {
+            let mut search = Search::new(frame, |j| warm_guess(system, answer, j))?;
+            if needs_activity(system) {
+                search.set_ionic_strength(answer.ionic_strength);
+                search.evaluate();
+            }
+            search
+        }
+        None => {
+            let mut search = Search::new(frame, |j| first_guess(system, j))?;
+            sweep(&mut search);
+            search
+        }
+    };
+    search.rebase()?;
+    match system.ionic_strength {
+        _ if !needs_activity(system) => search.converge(CLOSED, cancel)?,
+        IonicStrength::Given(ionic_strength) => {
+            search.set_ionic_strength(ionic_strength);
+            search.evaluate();
+            search.converge(CLOSED, cancel)?;
+        }
+        IonicStrength::Computed => ionic::converge(&mut search, start.is_some(), cancel)?,
+    }
+    search.polish();
+    Ok(search.answer())
+}
+
+/// Whether any activity coefficient can differ from one.
+pub(super) fn needs_activity(system: &System) -> bool {
+    system.activity.kind != ActivityKind::Ideal
+}
