@@ -204,7 +204,7 @@ pub fn close(case: &mut CaseResolver, problem: &mut Problem) {
     for (j, amount) in problem.amounts.iter().enumerate().skip(1) {
         if let (Some(total), Some(at), AmountSource::Reagents) =
             (amount.total, amount.at, amount.source)
-            && total.is_negative()
+            && total < 0.0
             && !case.scope.components[j].formula.is_electron()
             && !may_be_negative(case, j)
         {
