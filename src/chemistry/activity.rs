@@ -1,5 +1,7 @@
 //! Activity models: the activity coefficient of an ion from the ionic strength.
 
+use super::water;
+
 /// A model with the Debye–Hückel constants of its temperature built in.
 #[derive(Clone, Copy, Debug, PartialEq)]
 pub struct ActivityModel {
@@ -9,19 +11,79 @@ pub struct ActivityModel {
     pub b: f64,
 }
 
-#[derive(Clone, Copy, Debug, PartialEq, Eq, Hash)]
+#[derive(Clone, Copy, Debug, Default, PartialEq, Eq, Hash)]
 pub enum ActivityKind {
     Ideal,
     DebyeHuckel,
     ExtendedDebyeHuckel,
     Guntelberg,
+    #[default]
     Davies,
 }
 
+impl ActivityKind {
+    pub const ALL: [ActivityKind; 5] = [
+        ActivityKind::Ideal,
+        ActivityKind::DebyeHuckel,
+        ActivityKind::ExtendedDebyeHuckel,
+        ActivityKind::Guntelberg,
+        ActivityKind::Davies,
+    ];
+
+    /// As it is written in a problem file.
+    pub fn name(self) -> &'static str {
+        match self {
+            ActivityKind::Ideal => "ideal",
+            ActivityKind::DebyeHuckel => "debye-huckel",
+            ActivityKind::ExtendedDebyeHuckel => "extended-debye-huckel",
+            ActivityKind::Guntelberg => "guntelberg",
+            ActivityKind::Davies => "davies",
+        }
+    }
+
+    pub fn from_name(name: &str) -> Option<ActivityKind> {
+        ActivityKind::ALL.into_iter().find(|kind| kind.name() == name)
+    }
+
+    /// The name that was most likely meant, where it is near enough to tell.
+    pub fn nearest(name: &str) -> Option<ActivityKind> {
+        if name.len() > 64 {
+            return None;
+        }
+        let plain = |text: &str| text.to_lowercase().replace(['ü', ' ', '-', '_'], "");
+        let wanted = plain(name);
+        ActivityKind::ALL
+            .into_iter()
+            .map(|kind| (strsim::damerau_levenshtein(&plain(kind.name()), &wanted), kind))
+            .filter(|(far, kind)| far * 3 < kind.name().len())
+            .min_by_key(|(far, _)| *far)
+            .map(|(_, kind)| kind)
+    }
+
+    /// The ionic strength, mol/kg, up to which the model is commonly used; none for the
+    /// ideal one, which has no such limit of its own.
+    pub fn range_limit(self) -> Option<f64> {
+        match self {
+            ActivityKind::Ideal => None,
+            ActivityKind::DebyeHuckel => Some(0.005),
+            ActivityKind::ExtendedDebyeHuckel | ActivityKind::Guntelberg => Some(0.1),
+            ActivityKind::Davies => Some(0.5),
+        }
+    }
+}
+
 impl ActivityModel {
+    /// The model at a temperature, with A and B of [`water`].
+    pub fn new(kind: ActivityKind, kelvin: f64) -> ActivityModel {
+        ActivityModel { kind, a: water::debye_huckel_a(kelvin), b: water::debye_huckel_b(kelvin) }
+    }
+
     /// ln γ of an ion and its derivative by the ionic strength.
+    ///
+    /// `ion_size` in ångström counts for the extended model alone. Neutral species have
+    /// γ = 1. Ionic strength in mol/kg, or mol/L where the file is per litre.
     pub fn ln_gamma(&self, charge: i32, ion_size: f64, ionic_strength: f64) -> (f64, f64) {
-        let z2 = f64::from(charge * charge);
+        let z2 = f64::from(charge).powi(2);
         if z2 == 0.0 || self.kind == ActivityKind::Ideal {
             return (0.0, 0.0);
         }

@@ -1,4 +1,23 @@
 //! What was meant: names, imports and units resolved, stoichiometry as an exact
 //! matrix, and where each thing was written.
 
+mod amounts;
+pub mod belong;
+pub mod case;
+mod constant;
+pub mod defect;
+pub mod effective;
+mod expect;
+pub mod files;
+mod held;
+pub mod import;
+pub mod model;
+pub mod quantity;
+pub mod reaction;
+pub mod resolve;
+pub mod scope;
+pub mod sets;
+pub mod sparse;
+mod split;
 pub mod stoichiometry;
+mod written;

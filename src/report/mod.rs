@@ -1,1 +1,3 @@
-//! How it is told: terminal text, JSON, SARIF, JUnit.
+//! How it is told: terminal text, JSON, SARIF, JUnit, and an editor's inline words.
+
+pub mod inline;

@@ -1,0 +1,167 @@
+//! Quantities of the solved state, as a file asks for them.
+
+use std::f64::consts::LN_10;
+
+use num_traits::ToPrimitive;
+
+use super::build::ln_formation;
+use super::sensitivity;
+use super::system::{Answer, System};
+use crate::problem::model::{Problem, Sought};
+use crate::problem::reaction::STANDARD;
+use crate::problem::scope::{PROTON, WATER};
+
+/// A problem with its numbers and its answer.
+#[derive(Debug)]
+pub struct Solved {
+    pub system: System,
+    pub answer: Answer,
+}
+
+impl Solved {
+    pub fn ph(&self) -> f64 {
+        -self.answer.ln_components[PROTON] / LN_10
+    }
+
+    /// ln activity of a species of the scope: for a gas, of its pressure in atm; for a
+    /// solid, of its degree of saturation. None where it does not belong.
+    pub fn ln_activity(&self, problem: &Problem, species: usize) -> Option<f64> {
+        let made = problem.scope.belonging.made[species].as_ref()?;
+        if species == WATER {
+            return Some(0.0);
+        }
+        let sum: f64 = made
+            .row
+            .iter()
+            .map(|&(j, n)| n.to_f64().unwrap_or(0.0) * self.answer.ln_components[j])
+            .sum();
+        Some(ln_formation(problem, species) + sum)
+    }
+
+    /// mol per litre or kilogram of a component over all dissolved species.
+    pub fn total(&self, component: usize) -> f64 {
+        self.shares(component).map(|(_, share)| share).sum()
+    }
+
+    /// What each dissolved species holds of a component, by row of the stoichiometry.
+    pub fn shares(&self, component: usize) -> impl Iterator<Item = (usize, f64)> + '_ {
+        self.system.species.iter().enumerate().filter_map(move |(i, species)| {
+            let at = species.row.iter().find(|&&(j, _)| j == component)?;
+            Some((i, at.1.to_f64()? * self.answer.concentrations[i]))
+        })
+    }
+
+    /// Charge of all cations and of all anions, both positive, eq per litre or kilogram.
+    pub fn charges(&self) -> (f64, f64) {
+        let mut sums = (0.0, 0.0);
+        for (species, c) in self.system.species.iter().zip(&self.answer.concentrations) {
+            let charge = f64::from(species.charge) * c;
+            if charge > 0.0 {
+                sums.0 += charge;
+            } else {
+                sums.1 -= charge;
+            }
+        }
+        sums
+    }
+
+    /// Cations less anions over their sum, in percent; zero where there are no ions.
+    pub fn imbalance_percent(&self) -> f64 {
+        let (cations, anions) = self.charges();
+        let sum = cations + anions;
+        if sum > 0.0 { 100.0 * (cations - anions) / sum } else { 0.0 }
+    }
+
+    /// Alkalinity by Dickson (1981), eq per litre or kilogram: proton acceptors formed from
+    /// acids of pKa 4.5 and above (25 °C, zero ionic strength), over proton donors. The
+    /// zero level of each component is the form that dominates at pH 4.5.
+    pub fn alkalinity(&self, problem: &Problem) -> f64 {
+        let levels = zero_levels(problem);
+        self.system
+            .species
+            .iter()
+            .zip(&self.answer.concentrations)
+            .map(|(species, c)| {
+                let deficit: f64 = species
+                    .row
+                    .iter()
+                    .map(|&(j, n)| {
+                        let n = n.to_f64().unwrap_or(0.0);
+                        if j == PROTON { -n } else { n * levels[j] }
+                    })
+                    .sum();
+                deficit * c
+            })
+            .sum()
+    }
+
+    /// mol per litre or kilogram of strong base for one unit of pH.
+    pub fn buffer_capacity(&self) -> Option<f64> {
+        sensitivity::buffer_capacity(&self.system, &self.answer)
+    }
+
+    /// The value in base units; none where the quantity has none here.
+    pub fn value(&self, problem: &Problem, sought: Sought) -> Option<f64> {
+        let value = match sought {
+            Sought::Ph => self.ph(),
+            Sought::Poh => {
+                let hydroxide = problem.scope.find("OH-")?;
+                -self.ln_activity(problem, hydroxide)? / LN_10
+            }
+            Sought::Pe => -self.answer.ln_components[problem.scope.component("e-")?] / LN_10,
+            Sought::Concentration(species) => {
+                self.answer.concentrations[problem.scope.row_of(species)?]
+            }
+            Sought::Activity(species) | Sought::Pressure(species) => {
+                self.ln_activity(problem, species)?.exp()
+            }
+            Sought::SaturationIndex(species) => self.ln_activity(problem, species)? / LN_10,
+            Sought::Total(component) => self.total(component),
+            Sought::Fraction { species, component } => {
+                let row = problem.scope.row_of(species)?;
+                let (_, share) = self.shares(component).find(|&(i, _)| i == row)?;
+                share / self.total(component)
+            }
+            Sought::Alkalinity => self.alkalinity(problem),
+            Sought::IonicStrength => self.answer.ionic_strength,
+            Sought::BufferCapacity => self.buffer_capacity()?,
+            Sought::ChargeImbalance { equivalents: false } => self.imbalance_percent(),
+            Sought::ChargeImbalance { equivalents: true } => {
+                let (cations, anions) = self.charges();
+                cations - anions
+            }
+        };
+        // Minus infinity is the saturation index of a solid whose ions are absent.
+        (!value.is_nan()).then_some(value)
+    }
+}
+
+/// Protons that the zero-level form of each component holds, per one of the component.
+fn zero_levels(problem: &Problem) -> Vec<f64> {
+    let scope = &problem.scope;
+    let mut best = vec![(f64::NEG_INFINITY, 0.0); scope.components.len()];
+    let ln_h = -4.5 * LN_10;
+    for (row, &s) in scope.stoichiometry.species.iter().zip(&scope.dissolved) {
+        let mut others = row.row.iter().filter(|&&(j, _)| j != PROTON);
+        let (Some(&(j, n)), None) = (others.next(), others.next()) else { continue };
+        if n != num_rational::Rational64::from_integer(1) {
+            continue;
+        }
+        let protons =
+            row.row.iter().find(|&&(j, _)| j == PROTON).map_or(0.0, |p| p.1.to_f64().unwrap_or(0.0));
+        let ln_k: f64 = scope.belonging.made[s].as_ref().map_or(0.0, |made| {
+            made.combination
+                .iter()
+                .map(|&(r, by)| {
+                    let log_k = scope.reactions[r].log_k(STANDARD).map_or(0.0, |(k, _)| k);
+                    by.to_f64().unwrap_or(0.0) * log_k * LN_10
+                })
+                .sum()
+        });
+        let height = ln_k + protons * ln_h;
+        if height > best[j].0 {
+            best[j] = (height, protons);
+        }
+    }
+    best.into_iter().map(|(_, protons)| protons).collect()
+}

@@ -1,0 +1,280 @@
+//! Totals and reagents: how much of each component there is.
+
+use num_rational::Rational64;
+use num_traits::{Signed, ToPrimitive};
+
+use super::case::CaseResolver;
+use super::defect::{DefectKind, Expected};
+use super::effective::Written;
+use super::model::{Amount, AmountSource, Problem, Reagent};
+use super::resolve::differences;
+use super::scope::PROTON;
+use super::sparse::{Row, add_scaled};
+use super::split::{Split, split};
+use crate::chemistry::formula::Formula;
+use crate::text::tree::{BalanceKind, Member, Name, Quantity, Statement, Subject, TermKind};
+
+/// Reads `total` and `add`.
+pub fn read(case: &mut CaseResolver, problem: &mut Problem) {
+    problem.amounts = vec![Amount::default(); case.scope.components.len()];
+    for written in case.statements {
+        match written.statement() {
+            Statement::Total { component, value } => {
+                problem.states_amounts = true;
+                total(case, problem, written, component, value);
+            }
+            Statement::Add { reagent, amount, giving } => {
+                problem.states_amounts = true;
+                add(case, problem, written, (reagent, amount, giving.as_deref()));
+            }
+            _ => {}
+        }
+    }
+    for reagent in &problem.reagents {
+        for &(j, n) in reagent.row.iter().filter(|&&(j, _)| j != PROTON) {
+            let brought = n.to_f64().unwrap_or(0.0) * reagent.amount;
+            let amount = &mut problem.amounts[j];
+            match amount.source {
+                AmountSource::Total => {
+                    if let Some(at) = amount.at {
+                        let name = case.scope.components[j].formula.name.clone();
+                        let kind = DefectKind::TotalAndReagent { name, reagent: reagent.at };
+                        case.resolver.report(at, kind);
+                    }
+                }
+                _ => {
+                    amount.source = AmountSource::Reagents;
+                    amount.total = Some(amount.total.unwrap_or(0.0) + brought);
+                    amount.at.get_or_insert(reagent.at);
+                }
+            }
+        }
+    }
+}
+
+fn total(
+    case: &mut CaseResolver,
+    problem: &mut Problem,
+    written: &Written,
+    component: &Name,
+    value: &Quantity,
+) {
+    let Some(j) = case.component(written, component) else { return };
+    let formula = case.scope.components[j].formula.clone();
+    let Some(read) = case.concentration(written, value, Some(&formula), Expected::Concentration)
+    else {
+        return;
+    };
+    let at = written.whole();
+    if read.value < 0.0 && !formula.is_electron() {
+        let kind = DefectKind::NegativeTotal { name: formula.name.clone(), value: read.value };
+        case.resolver.report(written.place(value.span), kind);
+        return;
+    }
+    problem.amounts[j] =
+        Amount { total: Some(read.value), at: Some(at), source: AmountSource::Total };
+}
+
+fn add(
+    case: &mut CaseResolver,
+    problem: &mut Problem,
+    written: &Written,
+    (name, amount, giving): (&Name, &Quantity, Option<&[Member]>),
+) {
+    let Some(formula) = case.resolver.formula(written, name) else { return };
+    let at = written.place(name.span);
+    if formula.charge != 0 {
+        let charge = i64::from(formula.charge);
+        let kind = DefectKind::ReagentNotNeutral { name: formula.name.clone(), charge };
+        case.resolver.report(at, kind);
+        return;
+    }
+    let Some(read) = case.concentration(written, amount, Some(&formula), Expected::Concentration)
+    else {
+        return;
+    };
+    if !case.not_negative(written, amount) {
+        return;
+    }
+    let pieces = match giving {
+        Some(members) => given(case, written, &formula, members),
+        None => match split(&formula, case.scope) {
+            Split::Into(pieces) => Some(pieces),
+            Split::NotUnique => {
+                let kind = DefectKind::ReagentNotUnique { name: formula.name.clone() };
+                case.resolver.report(at, kind);
+                None
+            }
+            Split::Foreign(element) => {
+                let kind =
+                    DefectKind::ReagentHoldsForeign { name: formula.name.clone(), element };
+                case.resolver.report(at, kind);
+                None
+            }
+        },
+    };
+    let Some(pieces) = pieces else { return };
+    let Some(row) = row_over_components(case, &pieces) else { return };
+    if let Some(known) = problem.reagents.iter_mut().find(|r| r.formula.name == formula.name) {
+        known.amount += read.value;
+        return;
+    }
+    let (forms, strong_acid) = forms(case, &pieces);
+    problem.reagents.push(Reagent { formula, at, amount: read.value, row, forms, strong_acid });
+}
+
+/// What `giving` names, once it adds up to the reagent.
+fn given(
+    case: &mut CaseResolver,
+    written: &Written,
+    formula: &std::sync::Arc<Formula>,
+    members: &[Member],
+) -> Option<Vec<(usize, Rational64)>> {
+    let mut both = case.resolver.side(written, members, 1)?;
+    let mut pieces = Vec::with_capacity(both.len());
+    for (member, participant) in members.iter().zip(&both) {
+        pieces.push((case.species(written, &member.name)?, participant.coefficient));
+    }
+    both.push(super::reaction::Participant {
+        formula: formula.clone(),
+        coefficient: Rational64::from_integer(-1),
+        span: Default::default(),
+    });
+    let span = members.first()?.span.to(members.last()?.span);
+    let differences = differences(&both)?;
+    for (what, left, right) in &differences {
+        let kind =
+            DefectKind::GivingNotConserved { what: what.clone(), left: *left, right: *right };
+        case.resolver.report(written.place(span), kind);
+    }
+    differences.is_empty().then_some(pieces)
+}
+
+fn row_over_components(case: &CaseResolver, pieces: &[(usize, Rational64)]) -> Option<Row> {
+    let mut row = Row::new();
+    for &(s, n) in pieces {
+        row = add_scaled(&row, n, &case.scope.belonging.made[s].as_ref()?.row)?;
+    }
+    Some(row)
+}
+
+/// The dissolved species among the pieces; protons and hydroxide count as strong acid and
+/// base, water as nothing.
+fn forms(
+    case: &CaseResolver,
+    pieces: &[(usize, Rational64)],
+) -> (Vec<(usize, Rational64)>, Rational64) {
+    let mut forms = Vec::new();
+    let mut strong_acid = Rational64::from_integer(0);
+    for &(s, n) in pieces {
+        let formula = &case.scope.species[s];
+        if formula.is_proton() {
+            strong_acid += n;
+        } else if formula.is_hydroxide() {
+            strong_acid -= n;
+        } else if let Some(row) = case.scope.row_of(s) {
+            forms.push((row, n));
+        }
+    }
+    (forms, strong_acid)
+}
+
+/// What each component's total now is; reports those that nothing gives.
+pub fn close(case: &mut CaseResolver, problem: &mut Problem) {
+    if !problem.states_amounts {
+        return;
+    }
+    for j in 1..problem.amounts.len() {
+        let component = &case.scope.components[j];
+        if problem.amounts[j].source != AmountSource::Nothing || component.formula.is_electron() {
+            continue;
+        }
+        let Some(at) = component.at else { continue };
+        // A held gas, or another phase of unknown amount, may bring it.
+        if supplied_by_gas(case, problem, j) {
+            continue;
+        }
+        let name = component.formula.name.clone();
+        let kind = if is_spoken_of(case, &name) {
+            DefectKind::TotalMissing { name }
+        } else {
+            DefectKind::ComponentUnused { name }
+        };
+        case.resolver.report(at, kind);
+    }
+    for (j, amount) in problem.amounts.iter().enumerate().skip(1) {
+        if let (Some(total), Some(at), AmountSource::Reagents) =
+            (amount.total, amount.at, amount.source)
+            && total.is_negative()
+            && !case.scope.components[j].formula.is_electron()
+            && !may_be_negative(case, j)
+        {
+            let name = case.scope.components[j].formula.name.clone();
+            case.resolver.report(at, DefectKind::NegativeTotal { name, value: total });
+        }
+    }
+}
+
+/// A component that stands with a minus in some species may have a total below zero.
+fn may_be_negative(case: &CaseResolver, component: usize) -> bool {
+    case.scope
+        .stoichiometry
+        .species
+        .iter()
+        .any(|species| species.row.iter().any(|&(j, n)| j == component && n.is_negative()))
+}
+
+fn supplied_by_gas(case: &CaseResolver, problem: &Problem, component: usize) -> bool {
+    problem.held.iter().any(|held| match held.what {
+        super::model::HeldWhat::Pressure { species, .. } => case.scope.belonging.made[species]
+            .as_ref()
+            .is_some_and(|made| made.row.iter().any(|&(j, _)| j == component)),
+        _ => false,
+    })
+}
+
+/// Whether another statement than `component` and `reaction` names a species that holds it.
+fn is_spoken_of(case: &CaseResolver, component: &str) -> bool {
+    let Some(j) = case.scope.component(component) else { return false };
+    let mut spoken = false;
+    for written in case.statements {
+        let mut look = |name: &Name| {
+            let canonical = crate::chemistry::formula::canonical(&name.value);
+            if let Some(s) = case.scope.find(&canonical)
+                && let Some(made) = &case.scope.belonging.made[s]
+            {
+                spoken |= made.row.iter().any(|&(k, _)| k == j);
+            }
+        };
+        names_in_use(written.statement(), &mut look);
+    }
+    spoken
+}
+
+/// The names in statements that use species rather than define them.
+fn names_in_use(statement: &Statement, look: &mut dyn FnMut(&Name)) {
+    let subject = |subject: &Subject, look: &mut dyn FnMut(&Name)| match subject {
+        Subject::Concentration(name)
+        | Subject::Activity(name)
+        | Subject::Pressure(name)
+        | Subject::Total(name)
+        | Subject::Fraction(name)
+        | Subject::SaturationIndex(name) => look(name),
+        _ => {}
+    };
+    match statement {
+        Statement::Hold { subject: what, .. } => subject(&what.value, look),
+        Statement::Expect { subject: what, .. } => subject(&what.value, look),
+        Statement::Balance { kind, left, right, .. } => {
+            if let BalanceKind::Component(name) = &kind.value {
+                look(name);
+            }
+            for term in left.iter().chain(right) {
+                if let TermKind::Concentration(name) | TermKind::Total(name) = &term.what {
+                    look(name);
+                }
+            }
+        }
+        _ => {}
+    }
+}

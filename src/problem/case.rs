@@ -1,0 +1,272 @@
+//! Resolving a base or a case over its scope: conditions, amounts, held values, written
+//! balances and expectations.
+
+use std::sync::Arc;
+
+use super::amounts;
+use super::defect::{Defect, DefectKind, Expected};
+use super::effective::Written;
+use super::expect;
+use super::held;
+use super::model::Problem;
+use super::reaction::{LogK, Origin, STANDARD, TemperatureIssue};
+use super::resolve::Resolver;
+use super::scope::Scope;
+use super::written;
+use crate::chemistry::activity::ActivityKind;
+use crate::chemistry::formula::Formula;
+use crate::chemistry::quantity::Scale;
+use crate::text::span::Place;
+use crate::text::tree::{Name, Statement};
+
+/// The work in hand for one base or case.
+pub struct CaseResolver<'a> {
+    pub resolver: Resolver,
+    pub scope: &'a Scope,
+    pub statements: &'a [Written<'a>],
+    pub kelvin: f64,
+    /// The file's scale, and where it was first seen.
+    pub scale: Option<(Scale, Place)>,
+    pub mixed: bool,
+}
+
+/// Resolves the statements in force. `merging` are the defects found while merging.
+pub fn resolve(statements: &[Written], merging: Vec<Defect>, scope: Arc<Scope>) -> Problem {
+    let mut case = CaseResolver {
+        resolver: Resolver::new(scope.groups.clone()),
+        scope: &scope,
+        statements,
+        kelvin: STANDARD,
+        scale: None,
+        mixed: false,
+    };
+    case.resolver.defects = merging;
+    let mut problem = Problem {
+        title: None,
+        title_at: None,
+        scope: scope.clone(),
+        kelvin: STANDARD,
+        temperature_at: None,
+        activity: ActivityKind::Davies,
+        activity_at: None,
+        ionic_strength: None,
+        scale: Scale::PerLitre,
+        amounts: Vec::new(),
+        reagents: Vec::new(),
+        held: Vec::new(),
+        balances: Vec::new(),
+        expectations: Vec::new(),
+        log_k: Vec::new(),
+        defects: Vec::new(),
+        states_amounts: false,
+        blocked: false,
+    };
+    conditions(&mut case, &mut problem);
+    constants(&mut case, &mut problem);
+    amounts::read(&mut case, &mut problem);
+    held::read(&mut case, &mut problem);
+    amounts::close(&mut case, &mut problem);
+    problem.balances = written::read(&mut case, &problem);
+    problem.expectations = expect::read(&mut case);
+    for written in statements {
+        let unsupported = match written.statement() {
+            Statement::Precipitate { .. } => "precipitate",
+            Statement::Saturate { .. } => "saturate with",
+            Statement::Curve { .. } => "curve",
+            Statement::Hold { by: Some(_), .. } => "hold … by",
+            _ => continue,
+        };
+        let at = written.whole();
+        case.resolver.report(at, DefectKind::NotYetSupported { what: unsupported });
+    }
+    if let Some((scale, _)) = case.scale {
+        problem.scale = scale;
+    }
+    problem.defects = case.resolver.defects;
+    problem.blocked = is_blocked(statements, &scope, &problem);
+    problem
+}
+
+/// Temperature, activity model and ionic strength.
+fn conditions(case: &mut CaseResolver, problem: &mut Problem) {
+    for written in case.statements {
+        match written.statement() {
+            Statement::Problem { title } => {
+                problem.title = Some(title.value.clone());
+                problem.title_at = Some(written.whole());
+            }
+            Statement::Temperature { value } => {
+                problem.temperature_at = Some(written.place(value.span));
+                if let Some(kelvin) = case.temperature(written, value) {
+                    problem.kelvin = kelvin;
+                    case.kelvin = kelvin;
+                }
+            }
+            Statement::Activity { model } => {
+                problem.activity_at = Some(written.place(model.span));
+                match ActivityKind::parse(&model.value) {
+                    Some(kind) => problem.activity = kind,
+                    None => {
+                        let word = model.value.clone();
+                        let nearest = nearest(&word, &ActivityKind::NAMES);
+                        let kind = DefectKind::UnknownModel { word, nearest };
+                        case.resolver.report(written.place(model.span), kind);
+                    }
+                }
+            }
+            _ => {}
+        }
+    }
+    for written in case.statements {
+        if let Statement::IonicStrength { value } = written.statement() {
+            let read = case.concentration(written, value, None, Expected::Concentration);
+            problem.ionic_strength =
+                read.filter(|_| case.not_negative(written, value)).map(|read| read.value);
+        }
+    }
+}
+
+/// log10 K of the reactions in use at the problem's temperature.
+fn constants(case: &mut CaseResolver, problem: &mut Problem) {
+    let scope = case.scope;
+    problem.log_k = vec![0.0; scope.reactions.len()];
+    for (r, reaction) in scope.reactions_in_use() {
+        let Some((log_k, issue)) = reaction.log_k(problem.kelvin) else { continue };
+        problem.log_k[r] = log_k;
+        let wanted = problem.kelvin;
+        let own = match &reaction.origin {
+            Origin::Own(place) => Some(*place),
+            _ => None,
+        };
+        let Some(issue) = issue else { continue };
+        let Some(at) = own.or(problem.temperature_at) else { continue };
+        let equation = reaction.equation.clone();
+        let own = own.is_some();
+        case.resolver.report(
+            at,
+            match issue {
+                TemperatureIssue::NoEnthalpy { given } => {
+                    DefectKind::ConstantAtOtherTemperature { reaction: equation, given, wanted, own }
+                }
+                TemperatureIssue::OutsideValid { low, high } => {
+                    DefectKind::OutsideValidRange { reaction: equation, low, high, wanted, own }
+                }
+                TemperatureIssue::NoValue => DefectKind::ConstantHasNoValue { wanted },
+            },
+        );
+    }
+    for (r, combination) in &scope.belonging.cycles {
+        let by: f64 = combination
+            .iter()
+            .map(|&(r, n)| num_traits::ToPrimitive::to_f64(&n).unwrap_or(0.0) * problem.log_k[r])
+            .sum();
+        if let Some(at) = scope.reactions[*r].origin.own() {
+            case.resolver.report(at, DefectKind::Follows { by });
+        }
+    }
+    let _ = LogK::Water;
+}
+
+impl CaseResolver<'_> {
+    /// The species of a name that is spoken of; a defect where it does not belong.
+    pub fn species(&mut self, written: &Written, name: &Name) -> Option<usize> {
+        let formula = self.resolver.formula(written, name)?;
+        let known = self.scope.find(&formula.name);
+        if let Some(s) = known.filter(|&s| self.scope.belongs(s)) {
+            return Some(s);
+        }
+        let missing = known.map_or_else(Vec::new, |s| self.scope.missing_for(s));
+        let nearest = self.nearest_species(&formula);
+        let kind = DefectKind::DoesNotBelong { name: formula.name.clone(), missing, nearest };
+        self.resolver.report(written.place(name.span), kind);
+        None
+    }
+
+    /// The component of a name; a defect where it is none.
+    pub fn component(&mut self, written: &Written, name: &Name) -> Option<usize> {
+        let formula = self.resolver.formula(written, name)?;
+        if let Some(j) = self.scope.component(&formula.name) {
+            return Some(j);
+        }
+        let kind = DefectKind::NotAComponent {
+            name: formula.name.clone(),
+            components: self.components_of(&formula),
+        };
+        self.resolver.report(written.place(name.span), kind);
+        None
+    }
+
+    /// The declared components that a species is made of.
+    fn components_of(&self, formula: &Formula) -> Vec<String> {
+        let row = self
+            .scope
+            .find(&formula.name)
+            .and_then(|s| self.scope.belonging.made[s].as_ref())
+            .map(|made| made.row.clone())
+            .unwrap_or_default();
+        row.iter()
+            .filter(|&&(j, _)| j != super::scope::PROTON)
+            .map(|&(j, _)| self.scope.components[j].formula.name.clone())
+            .collect()
+    }
+
+    /// A species that belongs and is made of the same matter, or nearly so spelt.
+    fn nearest_species(&self, formula: &Formula) -> Option<String> {
+        let names = || {
+            (0..self.scope.species.len())
+                .filter(|&s| self.scope.belongs(s))
+                .map(|s| &self.scope.species[s])
+        };
+        names().find(|other| other.same_matter(formula)).map(|other| other.name.clone()).or_else(
+            || {
+                names()
+                    .map(|other| (strsim::osa_distance(&other.name, &formula.name), &other.name))
+                    .filter(|(distance, _)| *distance <= 2)
+                    .min()
+                    .map(|(_, name)| name.clone())
+            },
+        )
+    }
+}
+
+/// The word of a list that is spelt most like this one.
+fn nearest(word: &str, known: &[&'static str]) -> Option<&'static str> {
+    known
+        .iter()
+        .map(|known| (strsim::jaro_winkler(word, known), *known))
+        .filter(|(likeness, _)| *likeness > 0.75)
+        .max_by(|a, b| a.0.total_cmp(&b.0))
+        .map(|(_, known)| known)
+}
+
+/// Whether a statement that states conditions, matter or amounts is broken: then a number
+/// would be an answer to another question.
+fn is_blocked(statements: &[Written], scope: &Scope, problem: &Problem) -> bool {
+    let counts = |at: Place| {
+        statements
+            .iter()
+            .find(|w| w.part == at.section && w.index == at.statement)
+            .is_some_and(|w| !is_about_answers(w))
+    };
+    statements.iter().any(|w| !w.parsed.problems.is_empty() && !is_about_answers(w))
+        || scope
+            .defects
+            .iter()
+            .chain(&problem.defects)
+            .any(|defect| defect.kind.blocks_solving() && counts(defect.at))
+}
+
+fn is_about_answers(written: &Written) -> bool {
+    match written.statement() {
+        Statement::Problem { .. }
+        | Statement::Expect { .. }
+        | Statement::Balance { .. }
+        | Statement::Case { .. }
+        | Statement::Curve { .. } => true,
+        Statement::Broken => {
+            let word = written.parsed.text.split_whitespace().next().unwrap_or_default();
+            matches!(word, "problem" | "expect" | "balance" | "case" | "curve")
+        }
+        _ => false,
+    }
+}

@@ -1,0 +1,176 @@
+//! What can be wrong with the meaning of a problem, typed and with its figures. The
+//! words for it, and what to do about it, are the rules' to find.
+
+use std::path::PathBuf;
+
+use num_rational::Rational64;
+
+use crate::chemistry::formula::FormulaProblemKind;
+use crate::chemistry::quantity::ConversionProblem;
+use crate::chemistry::unit::{Dimension, UnitProblem};
+use crate::text::span::Place;
+
+#[derive(Clone, Debug, PartialEq)]
+pub struct Defect {
+    pub at: Place,
+    pub kind: DefectKind,
+}
+
+#[derive(Clone, Debug, PartialEq)]
+pub enum DefectKind {
+    // Quantities.
+    /// A unit that is none.
+    UnknownUnit { text: String, problem: UnitProblem },
+    /// A number that needs a unit and has none; `expected` names suitable ones.
+    MissingUnit { expected: Expected },
+    /// A unit of another dimension than this place takes.
+    WrongDimension { unit: String, found: Dimension, expected: Expected },
+    /// A unit that this formula cannot carry: no molar mass, no such element, no charge.
+    UnitNotApplicable { unit: String, formula: String, problem: ConversionProblem },
+    /// Per litre in one place and per kilogram in another; the first of each.
+    MixedScales { other: Place },
+    /// A temperature below absolute zero, a pressure or an equilibrium constant not above
+    /// zero, an uncertainty below zero, …; `why` says which, as the end of a sentence.
+    ImpossibleValue { why: &'static str },
+
+    // Formulas.
+    Formula { text: String, problem: FormulaProblemKind },
+    /// `Ca2+` where `Ca^2+` was surely meant.
+    AmbiguousCharge { text: String, suggestion: String },
+    /// Two names for one composition, charge and phase.
+    TwoNames { name: String, other: String, other_at: Option<Place> },
+    GroupRepeated { symbol: String, other: Place },
+    /// A symbol is an upper-case letter and then letters.
+    GroupSymbol { symbol: String },
+    /// The composition holds the group itself, perhaps by way of others.
+    GroupCircular { symbol: String },
+
+    // Reactions.
+    NotConserved { what: Conserved, left: Rational64, right: Rational64 },
+    NoConstant,
+    TwoConstants { other: Place },
+    /// `pKa` on a reaction that gives off no proton, `pKsp` without a solid on the left, …
+    ConstantKindMismatch { kind: &'static str, needs: &'static str },
+    /// The constant is for `given` kelvin, the problem is at `wanted`, and no enthalpy leads
+    /// from one to the other. `own` says whether the reaction is the file's own.
+    ConstantAtOtherTemperature { reaction: String, given: f64, wanted: f64, own: bool },
+    /// The problem's temperature lies outside the reaction's valid range, in kelvin.
+    OutsideValidRange { reaction: String, low: f64, high: f64, wanted: f64, own: bool },
+    NoSource,
+    /// A file's own constant against the one of a used set, as log10 K of this reaction.
+    DiffersFromSet { own: f64, set: f64, origin: String },
+    ReactionRepeated { other: Place },
+    /// The reaction follows from others; its constant disagrees with theirs by `by` in
+    /// log10 K.
+    Follows { by: f64 },
+    /// `log K(T)` gives no finite number at this temperature, in kelvin.
+    ConstantHasNoValue { wanted: f64 },
+    /// A weak acid written as the base reaction; the acid reaction with its constant.
+    BaseReaction { acid: String, constant: Option<String> },
+
+    // Components.
+    /// A component that the reactions make out of the others, or that is listed twice.
+    NotIndependent { name: String, from: Vec<String>, reaction: Option<Place> },
+    /// Neither given an amount nor part of anything spoken of.
+    ComponentUnused { name: String },
+    /// A species that the reactions do not lead to; `missing` would bring it in.
+    DoesNotBelong { name: String, missing: Vec<String>, nearest: Option<String> },
+    TotalMissing { name: String },
+    TotalTwice { name: String, other: Place },
+    TotalAndReagent { name: String, reagent: Place },
+    NegativeTotal { name: String, value: f64 },
+    /// `total X` of a species that is no component; `components` is what it is made of.
+    NotAComponent { name: String, components: Vec<String> },
+    /// A species of the wrong phase for this place.
+    WrongPhase { name: String, needs: &'static str },
+    /// A share of a component is asked of a species that holds none, such as `OH-`.
+    HasNoShare { name: String },
+    /// `added X` of a reagent that is not put in.
+    NotAdded { name: String },
+
+    // Reagents.
+    ReagentNotNeutral { name: String, charge: i64 },
+    ReagentNotUnique { name: String },
+    ReagentHoldsForeign { name: String, element: String },
+    /// What `giving` names does not add up to the reagent.
+    GivingNotConserved { what: Conserved, left: Rational64, right: Rational64 },
+
+    // Closure.
+    /// A held value that leaves nothing free to meet it.
+    NothingFree { subject: String, given: Option<Place> },
+    HeldTwice { subject: String, other: Place },
+    /// A quantity that is an outcome and can only be expected.
+    CannotBeHeld { subject: String },
+
+    // Statements.
+    /// A single-valued statement stands twice in one section.
+    StatementRepeated { other: Place },
+    /// `without` takes away something that is not there.
+    NothingToRemove,
+    CaseRepeated { title: String, other: Place },
+    /// `temperature`, `component`, … inside a case where it has no meaning.
+    NotInCase { statement: &'static str },
+    UnknownModel { word: String, nearest: Option<&'static str> },
+    NotYetSupported { what: &'static str },
+
+    // Files.
+    UnknownSet { name: String, known: Vec<&'static str> },
+    UnknownEdition { name: String, edition: u32, newest: u32 },
+    FileMissing { path: PathBuf, why: String },
+    FileNotText { path: PathBuf, at_byte: usize },
+    ImportCycle { chain: Vec<PathBuf> },
+    ImportOutsideRoot { path: PathBuf, root: PathBuf },
+    /// An imported file that has errors of its own.
+    ImportBroken { path: PathBuf, count: usize },
+}
+
+/// What a reaction must conserve.
+#[derive(Clone, Debug, PartialEq, Eq)]
+pub enum Conserved {
+    Element(String),
+    Group(String),
+    Charge,
+}
+
+/// What kind of value a place takes.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub enum Expected {
+    Concentration,
+    /// Charge equivalents count too, as for alkalinity.
+    Equivalents,
+    Temperature,
+    Pressure,
+    MolarEnergy,
+    MolarEntropy,
+    /// A plain number.
+    Plain,
+    /// A plain number or percent.
+    Share,
+    /// Percent or charge per volume.
+    Imbalance,
+}
+
+impl DefectKind {
+    /// Whether, in a statement that states conditions, matter or amounts, it makes the
+    /// answer one to another question.
+    pub fn blocks_solving(&self) -> bool {
+        match self {
+            Self::NoSource
+            | Self::MixedScales { .. }
+            | Self::AmbiguousCharge { .. }
+            | Self::TwoNames { .. }
+            | Self::ConstantKindMismatch { .. }
+            | Self::ConstantAtOtherTemperature { .. }
+            | Self::OutsideValidRange { .. }
+            | Self::DiffersFromSet { .. }
+            | Self::BaseReaction { .. }
+            | Self::ComponentUnused { .. }
+            | Self::NothingToRemove
+            | Self::CaseRepeated { .. } => false,
+            Self::Follows { by } => by.abs() > 0.02,
+            Self::NotIndependent { from, .. } => !from.is_empty(),
+            Self::NotYetSupported { what } => !matches!(*what, "curve" | "dose"),
+            _ => true,
+        }
+    }
+}

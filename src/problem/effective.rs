@@ -1,0 +1,206 @@
+//! The statements in force: the base as varied by one case.
+
+use std::collections::HashMap;
+
+use super::defect::{Defect, DefectKind};
+use crate::chemistry::formula::canonical;
+use crate::text::span::{Part, Place, Span};
+use crate::text::tree::{BalanceKind, Parsed, Section, Statement, Subject, Without};
+
+/// A statement in force, and where it stands.
+#[derive(Clone, Copy)]
+pub struct Written<'a> {
+    pub part: Part,
+    pub index: u32,
+    pub parsed: &'a Parsed,
+}
+
+impl<'a> Written<'a> {
+    pub fn statement(&self) -> &'a Statement {
+        &self.parsed.statement
+    }
+
+    pub fn place(&self, span: Span) -> Place {
+        Place { section: self.part, statement: self.index, span }
+    }
+
+    /// The statement's words, without the white space and comments after them.
+    pub fn whole(&self) -> Place {
+        let text = self.parsed.text.trim_end();
+        self.place(Span::new(0, first_line_end(text)))
+    }
+}
+
+fn first_line_end(text: &str) -> usize {
+    let line = text.lines().next().unwrap_or_default();
+    let code = line.split('#').next().unwrap_or_default();
+    if code.contains('"') { line.trim_end().len() } else { code.trim_end().len() }
+}
+
+/// What a single-valued statement speaks of: a case's replaces the base's of the same key.
+#[derive(Clone, Debug, PartialEq, Eq, Hash)]
+pub enum Key {
+    Title,
+    Temperature,
+    Activity,
+    IonicStrength,
+    Total(String),
+    Add(String),
+    Hold(String),
+    /// Species of both sides, sorted: the same equilibrium whichever way it is written.
+    Reaction(Vec<String>),
+    Balance(String),
+    Expect(String),
+    Precipitate(String),
+    Saturate(String),
+    Group(String),
+    Curve,
+}
+
+pub fn key(statement: &Statement) -> Option<Key> {
+    Some(match statement {
+        Statement::Problem { .. } => Key::Title,
+        Statement::Temperature { .. } => Key::Temperature,
+        Statement::Activity { .. } => Key::Activity,
+        Statement::IonicStrength { .. } => Key::IonicStrength,
+        Statement::Total { component, .. } => Key::Total(canonical(component)),
+        Statement::Add { reagent, .. } => Key::Add(canonical(reagent)),
+        Statement::Hold { subject, .. } => Key::Hold(subject_key(subject)),
+        Statement::Balance { kind, .. } => Key::Balance(balance_key(kind)),
+        Statement::Expect { subject, .. } => Key::Expect(subject_key(subject)),
+        Statement::Precipitate { solid } => Key::Precipitate(canonical(solid)),
+        Statement::Saturate { solid } => Key::Saturate(canonical(solid)),
+        Statement::Group { symbol, .. } => Key::Group(symbol.value.clone()),
+        Statement::Curve { .. } => Key::Curve,
+        Statement::Reaction(reaction) => {
+            let mut names: Vec<_> =
+                reaction.left.iter().chain(&reaction.right).map(|m| canonical(&m.name)).collect();
+            names.retain(|name| name != "H2O");
+            names.sort();
+            Key::Reaction(names)
+        }
+        Statement::Use(_)
+        | Statement::Component { .. }
+        | Statement::Case { .. }
+        | Statement::Without(_)
+        | Statement::Broken => return None,
+    })
+}
+
+/// The subject in canonical words, such as `[NH3]` or `saturation index CaCO3(s)`.
+pub fn subject_key(subject: &Subject) -> String {
+    match subject {
+        Subject::Ph => "pH".into(),
+        Subject::Poh => "pOH".into(),
+        Subject::Pe => "pe".into(),
+        Subject::Concentration(name) => format!("[{}]", canonical(name)),
+        Subject::Activity(name) => format!("{{{}}}", canonical(name)),
+        Subject::Pressure(name) => canonical(name),
+        Subject::Total(name) => format!("total {}", canonical(name)),
+        Subject::Fraction(name) => format!("fraction {}", canonical(name)),
+        Subject::Alkalinity => "alkalinity".into(),
+        Subject::IonicStrength => "ionic strength".into(),
+        Subject::BufferCapacity => "buffer capacity".into(),
+        Subject::SaturationIndex(name) => format!("saturation index {}", canonical(name)),
+        Subject::Dose(name) => format!("dose {}", canonical(name)),
+        Subject::ChargeImbalance => "charge imbalance".into(),
+    }
+}
+
+pub fn balance_key(kind: &BalanceKind) -> String {
+    match kind {
+        BalanceKind::Charge => "charge".into(),
+        BalanceKind::Protons => "protons".into(),
+        BalanceKind::Component(name) => canonical(name),
+    }
+}
+
+fn removed_key(without: &Without) -> Key {
+    match without {
+        Without::Hold(subject) => Key::Hold(subject_key(subject)),
+        Without::Expect(subject) => Key::Expect(subject_key(subject)),
+        Without::Total(name) => Key::Total(canonical(name)),
+        Without::Add(name) => Key::Add(canonical(name)),
+        Without::Balance(kind) => Key::Balance(balance_key(kind)),
+        Without::Precipitate(name) => Key::Precipitate(canonical(name)),
+        Without::Saturate(name) => Key::Saturate(canonical(name)),
+        Without::IonicStrength => Key::IonicStrength,
+    }
+}
+
+/// Whether several statements of this key may stand in one section and all count.
+fn adds_up(key: &Key) -> bool {
+    matches!(key, Key::Add(_) | Key::Expect(_))
+}
+
+/// Merges the base with a case. Statements of one section that repeat a single-valued
+/// subject are a defect; the later one is left out.
+pub fn in_force<'a>(
+    base: &'a Section,
+    case: Option<&'a Section>,
+) -> (Vec<Written<'a>>, Vec<Defect>) {
+    let mut defects = Vec::new();
+    let mut kept = section(base, Part::Base, &mut defects);
+    let Some(case) = case else {
+        return (kept.into_iter().map(|(_, written)| written).collect(), defects);
+    };
+    let varied = section(case, Part::Case, &mut defects);
+    let mut replaced: HashMap<Key, bool> = HashMap::new();
+    for (key, written) in &varied {
+        if let Some(key) = key {
+            replaced.insert(key.clone(), false);
+        }
+        if let Statement::Without(without) = written.statement() {
+            replaced.insert(removed_key(&without.value), false);
+        }
+    }
+    kept.retain(|(key, _)| match key.as_ref().and_then(|key| replaced.get_mut(key)) {
+        Some(met) => {
+            *met = true;
+            false
+        }
+        None => true,
+    });
+    for (_, written) in &varied {
+        if let Statement::Without(without) = written.statement()
+            && replaced.get(&removed_key(&without.value)) == Some(&false)
+        {
+            let at = written.place(without.span);
+            defects.push(Defect { at, kind: DefectKind::NothingToRemove });
+        }
+    }
+    kept.extend(varied);
+    (kept.into_iter().map(|(_, written)| written).collect(), defects)
+}
+
+fn section<'a>(
+    section: &'a Section,
+    part: Part,
+    defects: &mut Vec<Defect>,
+) -> Vec<(Option<Key>, Written<'a>)> {
+    let mut first: HashMap<Key, Place> = HashMap::new();
+    let mut kept = Vec::with_capacity(section.statements.len());
+    for (index, placed) in section.statements.iter().enumerate() {
+        let written = Written { part, index: index as u32, parsed: &placed.parsed };
+        let key = key(written.statement());
+        if let Some(key) = key.as_ref().filter(|key| !adds_up(key)) {
+            if let Some(other) = first.get(key) {
+                defects.push(Defect { at: written.whole(), kind: repeated(key, *other) });
+                continue;
+            }
+            first.insert(key.clone(), written.whole());
+        }
+        kept.push((key, written));
+    }
+    kept
+}
+
+fn repeated(key: &Key, other: Place) -> DefectKind {
+    match key {
+        Key::Total(name) => DefectKind::TotalTwice { name: name.clone(), other },
+        Key::Hold(subject) => DefectKind::HeldTwice { subject: subject.clone(), other },
+        Key::Reaction(_) => DefectKind::ReactionRepeated { other },
+        Key::Group(symbol) => DefectKind::GroupRepeated { symbol: symbol.clone(), other },
+        _ => DefectKind::StatementRepeated { other },
+    }
+}

@@ -1,0 +1,175 @@
+//! What the answer must meet: each `expect` with its quantity and its limit in base units.
+
+use super::case::CaseResolver;
+use super::defect::{DefectKind, Expected};
+use super::effective::{Written, subject_key};
+use super::model::{Expectation, Limit, ShownUnit, Sought};
+use super::quantity::Read;
+use crate::chemistry::formula::{Formula, Phase};
+use crate::text::tree::{Name, Quantity, Relation, Statement, Subject};
+
+pub fn read(case: &mut CaseResolver) -> Vec<Expectation> {
+    let mut expectations = Vec::new();
+    for written in case.statements {
+        let Statement::Expect { subject, relation, source } = written.statement() else {
+            continue;
+        };
+        let Some(mut sought) = sought(case, written, &subject.value) else { continue };
+        let formula = match sought {
+            Sought::Concentration(species) => Some(case.scope.species[species].clone()),
+            Sought::Total(component) => Some(case.scope.components[component].formula.clone()),
+            _ => None,
+        };
+        let expected = takes(sought);
+        let mut value = |quantity: &Quantity| {
+            read_as(case, written, quantity, expected, formula.as_deref())
+        };
+        let limit = match relation {
+            Relation::Equal(quantity) => value(quantity).map(|read| {
+                let tolerance = read
+                    .uncertainty
+                    .unwrap_or(read.per_unit * quantity.number.half_digit * (1.0 + 1e-9));
+                (Limit::Within { value: read.value, tolerance }, read)
+            }),
+            Relation::Less(q) => {
+                value(q).map(|r| (Limit::Below { value: r.value, or_equal: false }, r))
+            }
+            Relation::LessOrEqual(q) => {
+                value(q).map(|r| (Limit::Below { value: r.value, or_equal: true }, r))
+            }
+            Relation::Greater(q) => {
+                value(q).map(|r| (Limit::Above { value: r.value, or_equal: false }, r))
+            }
+            Relation::GreaterOrEqual(q) => {
+                value(q).map(|r| (Limit::Above { value: r.value, or_equal: true }, r))
+            }
+            Relation::Between(low, high) => {
+                // `between 6 and 9 mg/L`: one unit may serve both.
+                let shared = Quantity { unit: high.unit.clone(), basis: high.basis.clone(), ..low.clone() };
+                let low = if low.unit.is_none() { &shared } else { low };
+                value(low).zip(value(high)).map(|(low, high)| {
+                    (Limit::Between { low: low.value, high: high.value }, high)
+                })
+            }
+        };
+        let Some((limit, read)) = limit else { continue };
+        if let Sought::ChargeImbalance { equivalents } = &mut sought {
+            *equivalents = read.equivalents;
+        }
+        expectations.push(Expectation {
+            at: written.whole(),
+            sought,
+            words: subject_key(&subject.value),
+            limit,
+            unit: read.words.map(|words| ShownUnit { words, factor: read.per_unit }),
+            source: source.as_ref().map(|source| source.value.clone()),
+        });
+    }
+    expectations
+}
+
+fn takes(sought: Sought) -> Expected {
+    match sought {
+        Sought::Ph
+        | Sought::Poh
+        | Sought::Pe
+        | Sought::Activity(_)
+        | Sought::SaturationIndex(_) => Expected::Plain,
+        Sought::Concentration(_)
+        | Sought::Total(_)
+        | Sought::IonicStrength
+        | Sought::BufferCapacity => Expected::Concentration,
+        Sought::Pressure(_) => Expected::Pressure,
+        Sought::Fraction { .. } => Expected::Share,
+        Sought::Alkalinity => Expected::Equivalents,
+        Sought::ChargeImbalance { .. } => Expected::Imbalance,
+    }
+}
+
+fn read_as(
+    case: &mut CaseResolver,
+    written: &Written,
+    quantity: &Quantity,
+    expected: Expected,
+    formula: Option<&Formula>,
+) -> Option<Read> {
+    match expected {
+        Expected::Pressure => case.pressure_read(written, quantity),
+        Expected::Plain | Expected::Share => case.number(written, quantity, expected),
+        Expected::Imbalance => case.imbalance(written, quantity),
+        _ => case.concentration(written, quantity, formula, expected),
+    }
+}
+
+fn sought(case: &mut CaseResolver, written: &Written, subject: &Subject) -> Option<Sought> {
+    let dissolved = |case: &mut CaseResolver, name: &Name| {
+        in_phase(case, written, name, |phase| *phase == Phase::Aqueous, "a dissolved species")
+    };
+    Some(match subject {
+        Subject::Ph => Sought::Ph,
+        Subject::Poh => Sought::Poh,
+        Subject::Pe => {
+            if case.scope.component("e-").is_none() {
+                let kind = DefectKind::DoesNotBelong {
+                    name: "e-".into(),
+                    missing: vec!["e-".into()],
+                    nearest: None,
+                };
+                case.resolver.report(written.whole(), kind);
+                return None;
+            }
+            Sought::Pe
+        }
+        Subject::Concentration(name) => Sought::Concentration(dissolved(case, name)?),
+        Subject::Activity(name) => Sought::Activity(dissolved(case, name)?),
+        Subject::Pressure(name) => {
+            let is_gas = |phase: &Phase| *phase == Phase::Gas;
+            Sought::Pressure(in_phase(case, written, name, is_gas, "a gas")?)
+        }
+        Subject::SaturationIndex(name) => {
+            let is_solid = |phase: &Phase| matches!(phase, Phase::Solid(_));
+            Sought::SaturationIndex(in_phase(case, written, name, is_solid, "a solid")?)
+        }
+        Subject::Total(name) => Sought::Total(case.component(written, name)?),
+        Subject::Fraction(name) => {
+            let species = dissolved(case, name)?;
+            let made = case.scope.belonging.made[species].as_ref()?;
+            let others: Vec<_> =
+                made.row.iter().map(|&(j, _)| j).filter(|&j| j != super::scope::PROTON).collect();
+            match others[..] {
+                [component, ..] => Sought::Fraction { species, component },
+                [] => {
+                    let name = case.scope.species[species].name.clone();
+                    let kind = DefectKind::HasNoShare { name };
+                    case.resolver.report(written.whole(), kind);
+                    return None;
+                }
+            }
+        }
+        Subject::Alkalinity => Sought::Alkalinity,
+        Subject::IonicStrength => Sought::IonicStrength,
+        Subject::BufferCapacity => Sought::BufferCapacity,
+        Subject::ChargeImbalance => Sought::ChargeImbalance { equivalents: false },
+        Subject::Dose(_) => {
+            case.resolver.report(written.whole(), DefectKind::NotYetSupported { what: "dose" });
+            return None;
+        }
+    })
+}
+
+fn in_phase(
+    case: &mut CaseResolver,
+    written: &Written,
+    name: &Name,
+    fits: impl Fn(&Phase) -> bool,
+    needs: &'static str,
+) -> Option<usize> {
+    let species = case.species(written, name)?;
+    if fits(&case.scope.species[species].phase) {
+        return Some(species);
+    }
+    let name_text = case.scope.species[species].name.clone();
+    let kind = DefectKind::WrongPhase { name: name_text, needs };
+    case.resolver.report(written.place(name.span), kind);
+    None
+}

@@ -1,0 +1,165 @@
+//! Held values: what each fixes, and which total it makes unknown.
+
+use num_traits::Zero;
+
+use super::case::CaseResolver;
+use super::defect::{DefectKind, Expected};
+use super::effective::{Written, subject_key};
+use super::model::{AmountSource, Held, HeldWhat, Problem};
+use super::scope::PROTON;
+use super::sparse::coefficient;
+use crate::chemistry::formula::Phase;
+use crate::text::tree::{Name, Quantity, Statement, Subject};
+
+pub fn read(case: &mut CaseResolver, problem: &mut Problem) {
+    for written in case.statements {
+        let Statement::Hold { subject, value, by } = written.statement() else { continue };
+        problem.states_amounts = true;
+        // `by` is a target and no held value; it is reported elsewhere.
+        if by.is_some() {
+            continue;
+        }
+        let Some(what) = what(case, written, &subject.value, value, subject.span) else {
+            continue;
+        };
+        let at = written.place(subject.span);
+        let releases = match what {
+            HeldWhat::Ph(_) | HeldWhat::Pe(_) | HeldWhat::Pressure { .. } => None,
+            HeldWhat::Activity { species, .. } | HeldWhat::Concentration { species, .. } => {
+                match released(case, problem, species) {
+                    Ok(component) => {
+                        problem.amounts[component].source =
+                            AmountSource::Held(problem.held.len());
+                        Some(component)
+                    }
+                    Err(given) => {
+                        let subject = subject_key(&subject.value);
+                        case.resolver.report(at, DefectKind::NothingFree { subject, given });
+                        continue;
+                    }
+                }
+            }
+        };
+        problem.held.push(Held { at, words: subject_key(&subject.value), what, releases });
+    }
+}
+
+/// The component of this species that has no total yet; else where one is given.
+fn released(
+    case: &CaseResolver,
+    problem: &Problem,
+    species: usize,
+) -> Result<usize, Option<crate::text::span::Place>> {
+    let row = case.scope.belonging.made[species].as_ref().map(|made| made.row.clone());
+    let row = row.unwrap_or_default();
+    let others = || row.iter().filter(|&&(j, _)| j != PROTON);
+    others()
+        .find(|&&(j, _)| problem.amounts[j].source == AmountSource::Nothing)
+        .map(|&(j, _)| j)
+        .ok_or_else(|| others().find_map(|&(j, _)| problem.amounts[j].at))
+}
+
+fn what(
+    case: &mut CaseResolver,
+    written: &Written,
+    subject: &Subject,
+    value: &Quantity,
+    span: crate::text::span::Span,
+) -> Option<HeldWhat> {
+    match subject {
+        Subject::Ph => case.plain(written, value).map(HeldWhat::Ph),
+        Subject::Poh => {
+            // With pOH held the pH follows from water's own reaction.
+            let poh = case.plain(written, value)?;
+            let hydroxide = case.scope.find("OH-")?;
+            let made = case.scope.belonging.made[hydroxide].as_ref()?;
+            let log_k: f64 = made
+                .combination
+                .iter()
+                .map(|&(r, n)| {
+                    let log_k =
+                        case.scope.reactions[r].log_k(case.kelvin).map_or(0.0, |(log_k, _)| log_k);
+                    num_traits::ToPrimitive::to_f64(&n).unwrap_or(0.0) * log_k
+                })
+                .sum();
+            (!coefficient(&made.row, PROTON).is_zero()).then_some(HeldWhat::Ph(-log_k - poh))
+        }
+        Subject::Pe => {
+            let pe = case.plain(written, value)?;
+            if case.scope.component("e-").is_none() {
+                let kind = DefectKind::DoesNotBelong {
+                    name: "e-".into(),
+                    missing: vec!["e-".into()],
+                    nearest: None,
+                };
+                case.resolver.report(written.place(span), kind);
+                return None;
+            }
+            Some(HeldWhat::Pe(pe))
+        }
+        Subject::Pressure(name) => {
+            let species = phase(case, written, name, true)?;
+            let atm = case.pressure(written, value)?;
+            positive(case, written, value, atm)?;
+            Some(HeldWhat::Pressure { species, atm })
+        }
+        Subject::Activity(name) => {
+            let species = phase(case, written, name, false)?;
+            let read = case.plain(written, value)?;
+            positive(case, written, value, read)?;
+            if case.scope.species[species].is_proton() {
+                return Some(HeldWhat::Ph(-read.log10()));
+            }
+            Some(HeldWhat::Activity { species, value: read })
+        }
+        Subject::Concentration(name) => {
+            let species = phase(case, written, name, false)?;
+            let formula = case.scope.species[species].clone();
+            let read =
+                case.concentration(written, value, Some(&formula), Expected::Concentration)?;
+            positive(case, written, value, read.value)?;
+            Some(HeldWhat::Concentration { species, value: read.value })
+        }
+        Subject::Total(_)
+        | Subject::Fraction(_)
+        | Subject::Alkalinity
+        | Subject::IonicStrength
+        | Subject::BufferCapacity
+        | Subject::SaturationIndex(_)
+        | Subject::Dose(_)
+        | Subject::ChargeImbalance => {
+            let words = subject_key(subject);
+            case.resolver.report(written.place(span), DefectKind::CannotBeHeld { subject: words });
+            None
+        }
+    }
+}
+
+/// The species of a name, which must be a gas, or must be dissolved.
+fn phase(case: &mut CaseResolver, written: &Written, name: &Name, gas: bool) -> Option<usize> {
+    let species = case.species(written, name)?;
+    let phase = &case.scope.species[species].phase;
+    if (*phase == Phase::Gas) == gas && matches!(phase, Phase::Gas | Phase::Aqueous) {
+        return Some(species);
+    }
+    let kind = DefectKind::WrongPhase {
+        name: case.scope.species[species].name.clone(),
+        needs: if gas { "a gas" } else { "a dissolved species" },
+    };
+    case.resolver.report(written.place(name.span), kind);
+    None
+}
+
+fn positive(
+    case: &mut CaseResolver,
+    written: &Written,
+    value: &Quantity,
+    read: f64,
+) -> Option<()> {
+    if read > 0.0 {
+        return Some(());
+    }
+    let why = "a held pressure, activity or concentration is above zero";
+    case.resolver.report(written.place(value.span), DefectKind::ImpossibleValue { why });
+    None
+}

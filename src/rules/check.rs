@@ -1,0 +1,279 @@
+//! Checking a file: each of its sections taken through the rooms, with everything that an
+//! edit did not touch kept from the time before.
+
+use std::collections::{HashMap, HashSet};
+use std::hash::{DefaultHasher, Hash, Hasher};
+use std::path::{Path, PathBuf};
+use std::sync::Arc;
+use std::sync::atomic::{AtomicBool, Ordering};
+use std::sync::Mutex;
+
+use super::finding::{Finding, LocatedFinding, Severity};
+use super::outcome::Outcome;
+use crate::equilibrium::system::Answer;
+use crate::problem::defect::DefectKind;
+use crate::problem::effective::{Written, in_force};
+use crate::problem::files::Files;
+use crate::problem::import::{Definitions, Imports, Reader};
+use crate::problem::scope::Scope;
+use crate::text::span::{Part, Place};
+use crate::text::tree::{Document, Section, Statement};
+
+/// What a check is given beside the text.
+pub struct Surroundings<'a> {
+    /// The file's own path; none for a text without a file.
+    pub path: Option<&'a Path>,
+    /// Folders that imports may not leave, where an editor or `--root` names them.
+    pub roots: &'a [PathBuf],
+    pub files: &'a dyn Files,
+    pub imports: &'a Imports,
+    pub cancel: &'a AtomicBool,
+}
+
+/// A file that has been checked.
+pub struct Checked {
+    pub document: Document,
+    /// One for each section: the base first.
+    pub outcomes: Vec<Arc<Outcome>>,
+    keys: Vec<u64>,
+    scope: (u64, Arc<Scope>),
+    pub findings: Vec<LocatedFinding>,
+    /// Files that it uses, directly or not.
+    pub files: Vec<PathBuf>,
+}
+
+/// More sections than this to work on are shared among threads.
+const WORTH_THREADS: usize = 8;
+
+/// Checks a document. What the previous check found is kept where nothing that it rests on
+/// has changed. None when cancelled.
+pub fn check(
+    document: Document,
+    around: &Surroundings,
+    previous: Option<&Checked>,
+) -> Option<Checked> {
+    let base = &document.sections[0];
+    let (statements, merging) = in_force(base, None);
+    let reader = Reader {
+        imports: around.imports,
+        files: around.files,
+        path: around.path,
+        roots: around.roots,
+    };
+    let uses = read_uses(&statements, &reader);
+    let scope_key = scope_key(&statements, &uses);
+    let scope = match previous.map(|previous| &previous.scope) {
+        Some((key, scope)) if *key == scope_key => scope.clone(),
+        _ => Arc::new(Scope::new(&statements, uses)),
+    };
+    let base_key = {
+        let mut hasher = DefaultHasher::new();
+        scope_key.hash(&mut hasher);
+        hash_section(base, &mut hasher);
+        hasher.finish()
+    };
+    let keys: Vec<u64> = document
+        .sections
+        .iter()
+        .enumerate()
+        .map(|(index, section)| {
+            if index == 0 {
+                return base_key;
+            }
+            let mut hasher = DefaultHasher::new();
+            base_key.hash(&mut hasher);
+            hash_section(section, &mut hasher);
+            hasher.finish()
+        })
+        .collect();
+    let kept: HashMap<u64, &Arc<Outcome>> = previous.map_or_else(HashMap::new, |previous| {
+        previous.keys.iter().copied().zip(&previous.outcomes).collect()
+    });
+    let mut outcomes: Vec<Option<Arc<Outcome>>> =
+        keys.iter().map(|key| kept.get(key).map(|outcome| (*outcome).clone())).collect();
+    let todo: Vec<usize> = (0..outcomes.len()).filter(|&i| outcomes[i].is_none()).collect();
+    let near = |index: usize| -> Option<&Answer> {
+        let previous = previous?;
+        let outcome = previous.outcomes.get(index).or(previous.outcomes.first())?;
+        Some(&outcome.solved()?.answer)
+    };
+    let work = |index: usize| -> Option<Outcome> {
+        if around.cancel.load(Ordering::Relaxed) {
+            return None;
+        }
+        if index == 0 {
+            let merging = merging.clone();
+            return Outcome::new(&statements, merging, scope.clone(), false, near(0), around.cancel);
+        }
+        let section = &document.sections[index];
+        let (statements, merging) = in_force(base, Some(section));
+        let own_scope = statements.iter().any(|w| w.part == Part::Case && defines(w))
+            || section.statements.iter().any(|p| matches!(p.parsed.statement, Statement::Without(_)));
+        let scope = if own_scope {
+            let uses = read_uses(&statements, &reader);
+            Arc::new(Scope::new(&statements, uses))
+        } else {
+            scope.clone()
+        };
+        Outcome::new(&statements, merging, scope, !own_scope, near(index), around.cancel)
+    };
+    for (index, outcome) in run(&todo, &work) {
+        outcomes[index] = Some(Arc::new(outcome?));
+    }
+    let outcomes: Vec<Arc<Outcome>> = outcomes.into_iter().collect::<Option<_>>()?;
+    let mut files = outcomes[0].problem.scope.files.clone();
+    for outcome in &outcomes[1..] {
+        if !Arc::ptr_eq(&outcome.problem.scope, &outcomes[0].problem.scope) {
+            files.extend(outcome.problem.scope.files.iter().cloned());
+        }
+    }
+    files.sort();
+    files.dedup();
+    let findings = gather(&document, &outcomes);
+    Some(Checked { document, outcomes, keys, scope: (scope_key, scope), findings, files })
+}
+
+type UseResults = Vec<(Place, Result<Arc<Definitions>, DefectKind>)>;
+
+fn read_uses(statements: &[Written], reader: &Reader) -> UseResults {
+    statements
+        .iter()
+        .filter_map(|written| match written.statement() {
+            Statement::Use(what) => Some((written.whole(), reader.read(what))),
+            _ => None,
+        })
+        .collect()
+}
+
+/// Whether a statement brings reactions, groups or components.
+fn defines(written: &Written) -> bool {
+    matches!(
+        written.statement(),
+        Statement::Use(_)
+            | Statement::Group { .. }
+            | Statement::Component { .. }
+            | Statement::Reaction(_)
+    )
+}
+
+fn scope_key(statements: &[Written], uses: &UseResults) -> u64 {
+    let mut hasher = DefaultHasher::new();
+    for written in statements.iter().filter(|written| defines(written)) {
+        (written.index, written.parsed.hash).hash(&mut hasher);
+    }
+    for (_, result) in uses {
+        match result {
+            Ok(definitions) => definitions.number.hash(&mut hasher),
+            Err(kind) => format!("{kind:?}").hash(&mut hasher),
+        }
+    }
+    hasher.finish()
+}
+
+fn hash_section(section: &Section, hasher: &mut DefaultHasher) {
+    for placed in &section.statements {
+        placed.parsed.hash.hash(hasher);
+    }
+}
+
+/// Works on each index, on all cores where there is enough to do.
+fn run<T: Send>(todo: &[usize], work: &(impl Fn(usize) -> T + Sync)) -> Vec<(usize, T)> {
+    let cores = std::thread::available_parallelism().map_or(1, |n| n.get());
+    if todo.len() < WORTH_THREADS || cores < 2 {
+        return todo.iter().map(|&index| (index, work(index))).collect();
+    }
+    let next = Mutex::new(todo.iter().copied());
+    let done = Mutex::new(Vec::with_capacity(todo.len()));
+    std::thread::scope(|scope| {
+        for _ in 0..cores.min(todo.len()) {
+            scope.spawn(|| {
+                loop {
+                    let taken: Vec<usize> = {
+                        let mut next = next.lock().unwrap_or_else(|e| e.into_inner());
+                        next.by_ref().take(WORTH_THREADS).collect()
+                    };
+                    if taken.is_empty() {
+                        return;
+                    }
+                    for index in taken {
+                        let result = work(index);
+                        done.lock().unwrap_or_else(|e| e.into_inner()).push((index, result));
+                    }
+                }
+            });
+        }
+    });
+    done.into_inner().unwrap_or_else(|e| e.into_inner())
+}
+
+/// All findings of the file, located, in the order of the text. What a case repeats of the
+/// base is told once; that the base alone is not closed is told only where cases do not
+/// close it.
+fn gather(document: &Document, outcomes: &[Arc<Outcome>]) -> Vec<LocatedFinding> {
+    let base = &outcomes[0].findings;
+    let mut told: HashSet<(&str, Place, &str)> = HashSet::new();
+    let mut findings = Vec::new();
+    let cases = &outcomes[1..];
+    for finding in base {
+        let closed_by_cases = is_about_closure(finding)
+            && !cases.is_empty()
+            && cases.iter().all(|case| !case.findings.iter().any(|other| same(other, finding)));
+        if !closed_by_cases {
+            told.insert((finding.rule, finding.at, &finding.message));
+            findings.push(locate(finding.clone(), document, 0));
+        }
+    }
+    for (index, outcome) in outcomes.iter().enumerate().skip(1) {
+        let title = document.sections[index].statements.first().and_then(|placed| {
+            match &placed.parsed.statement {
+                Statement::Case { title } => Some(title.value.clone()),
+                _ => None,
+            }
+        });
+        for finding in &outcome.findings {
+            let inherited = finding.at.section == Part::Base
+                && told.contains(&(finding.rule, finding.at, finding.message.as_str()));
+            if !inherited {
+                let mut finding = finding.clone();
+                finding.case = title.clone();
+                findings.push(locate(finding, document, index));
+            }
+        }
+    }
+    findings.sort_by_key(|finding| (finding.at.start, finding.at.end, finding.severity));
+    findings
+}
+
+/// Findings that cases may put right by stating what the base leaves open.
+fn is_about_closure(finding: &Finding<Place>) -> bool {
+    matches!(finding.rule, "total-missing" | "component-unused")
+}
+
+fn same(one: &Finding<Place>, other: &Finding<Place>) -> bool {
+    one.rule == other.rule && one.at == other.at
+}
+
+/// The finding with byte ranges of the file in the place of places.
+fn locate(finding: Finding<Place>, document: &Document, section: usize) -> LocatedFinding {
+    finding.map(|place| locate_place(document, section, place))
+}
+
+/// The byte range of a place, seen from a section.
+pub fn locate_place(document: &Document, section: usize, place: Place) -> std::ops::Range<usize> {
+    let section = match place.section {
+        Part::Base => 0,
+        Part::Case => section,
+    };
+    let start = document.sections[section]
+        .statements
+        .get(place.statement as usize)
+        .map_or(0, |placed| placed.start);
+    start + place.span.start as usize..start + place.span.end as usize
+}
+
+impl Checked {
+    /// How many findings there are of at least this severity.
+    pub fn count(&self, at_least: Severity) -> usize {
+        self.findings.iter().filter(|finding| finding.severity >= at_least).count()
+    }
+}

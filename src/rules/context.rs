@@ -1,0 +1,60 @@
+//! What a rule looks at.
+
+use super::outcome::State;
+use crate::equilibrium::quantities::Solved;
+use crate::problem::defect::Defect;
+use crate::problem::effective::Written;
+use crate::problem::model::Problem;
+use crate::text::problem::SyntaxProblem;
+use crate::text::span::{Part, Place, Span};
+
+pub struct Context<'a> {
+    /// The statements in force, in the order written, the base's first.
+    pub statements: &'a [Written<'a>],
+    pub problem: &'a Problem,
+    pub state: &'a State,
+    /// Whether this is a case that shares the base's scope, looked over already.
+    pub inherited: bool,
+}
+
+impl<'a> Context<'a> {
+    /// What was found while resolving; what a case only inherits is left out.
+    pub fn defects(&self) -> impl Iterator<Item = &'a Defect> {
+        let scope: &[Defect] = if self.inherited { &[] } else { &self.problem.scope.defects };
+        scope.iter().chain(&self.problem.defects)
+    }
+
+    /// What is wrong with the writing of the statements in force.
+    pub fn syntax(&self) -> impl Iterator<Item = (Written<'a>, &'a SyntaxProblem)> {
+        let is_case = self.statements.iter().any(|written| written.part == Part::Case);
+        self.statements
+            .iter()
+            .filter(move |written| !is_case || written.part == Part::Case)
+            .flat_map(|written| written.parsed.problems.iter().map(|problem| (*written, problem)))
+    }
+
+    pub fn solved(&self) -> Option<&'a Solved> {
+        match self.state {
+            State::Solved(solved) => Some(solved),
+            _ => None,
+        }
+    }
+
+    pub fn statement(&self, place: Place) -> Option<&Written<'a>> {
+        self.statements
+            .iter()
+            .find(|written| written.part == place.section && written.index == place.statement)
+    }
+
+    /// The text at a place; empty where it is no text of this file.
+    pub fn text(&self, place: Place) -> &'a str {
+        self.statement(place)
+            .and_then(|written| written.parsed.text.get(place.span.range()))
+            .unwrap_or_default()
+    }
+
+    /// The place just after a place.
+    pub fn after(&self, place: Place) -> Place {
+        Place { span: Span { start: place.span.end, end: place.span.end }, ..place }
+    }
+}

@@ -1,0 +1,76 @@
+//! One base or case taken through the rooms: resolved, solved, and looked over.
+
+use std::sync::Arc;
+use std::sync::atomic::AtomicBool;
+
+use super::catalogue::rules;
+use super::context::Context;
+use super::finding::Finding;
+use crate::equilibrium::build::system;
+use crate::equilibrium::quantities::Solved;
+use crate::equilibrium::solve::solve;
+use crate::equilibrium::system::{Answer, Failure};
+use crate::problem::case::resolve;
+use crate::problem::defect::Defect;
+use crate::problem::effective::Written;
+use crate::problem::model::Problem;
+use crate::problem::scope::Scope;
+use crate::text::span::Place;
+
+#[derive(Debug)]
+pub struct Outcome {
+    pub problem: Problem,
+    pub state: State,
+    pub findings: Vec<Finding<Place>>,
+}
+
+/// What became of the equations.
+#[derive(Debug)]
+pub enum State {
+    Solved(Solved),
+    /// The file states no amounts: definitions alone.
+    NothingStated,
+    /// Something found wrong has to be put right first.
+    NotWellPosed,
+    Failed(Failure),
+}
+
+impl Outcome {
+    pub fn solved(&self) -> Option<&Solved> {
+        match &self.state {
+            State::Solved(solved) => Some(solved),
+            _ => None,
+        }
+    }
+
+    /// Takes the statements in force through all rooms. `near` is an answer to start from;
+    /// `inherited` says that the scope was looked over with the base. None when cancelled.
+    pub fn new(
+        statements: &[Written],
+        merging: Vec<Defect>,
+        scope: Arc<Scope>,
+        inherited: bool,
+        near: Option<&Answer>,
+        cancel: &AtomicBool,
+    ) -> Option<Outcome> {
+        let problem = resolve(statements, merging, scope);
+        let state = if !problem.states_amounts {
+            State::NothingStated
+        } else if problem.blocked {
+            State::NotWellPosed
+        } else {
+            let system = system(&problem);
+            match solve(&system, near, cancel) {
+                Ok(answer) => State::Solved(Solved { system, answer }),
+                Err(Failure::Cancelled) => return None,
+                Err(failure) => State::Failed(failure),
+            }
+        };
+        let mut findings = Vec::new();
+        let context = Context { statements, problem: &problem, state: &state, inherited };
+        for rule in rules() {
+            (rule.find)(&context, &mut findings);
+        }
+        Some(Outcome { problem, state, findings })
+    }
+}

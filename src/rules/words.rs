@@ -1,0 +1,38 @@
+//! Numbers and lists as words in a message.
+
+use num_rational::Rational64;
+use num_traits::Signed;
+
+/// A count with its sign, `+2`, `−1`, `0`.
+pub fn signed(value: Rational64) -> String {
+    match (value.is_positive(), value.is_negative()) {
+        (true, _) => format!("+{value}"),
+        (_, true) => format!("−{}", -value),
+        _ => "0".into(),
+    }
+}
+
+/// `a`, `a and b`, `a, b and c`.
+pub fn list(items: &[String], last: &str) -> String {
+    match items {
+        [] => String::new(),
+        [one] => one.clone(),
+        [most @ .., end] => format!("{} {last} {end}", most.join(", ")),
+    }
+}
+
+/// A measured value with as many digits as help: four significant ones, powers of ten past
+/// six places.
+pub fn figure(value: f64) -> String {
+    if value == 0.0 {
+        return "0".into();
+    }
+    let size = value.abs().log10().floor();
+    if !(-4.0..6.0).contains(&size) {
+        let text = format!("{value:.3e}");
+        return text.replace('-', "−").replace("e−", "e-");
+    }
+    let places = (3.0 - size).clamp(0.0, 8.0) as usize;
+    let text = format!("{value:.places$}");
+    text.replace('-', "−")
+}
