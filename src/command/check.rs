@@ -39,8 +39,18 @@ pub fn run(arguments: &Arguments) -> ExitCode {
                 }
                 for outcome in &checked.outcomes {
                     match outcome.solved() {
-                        Some(s) => println!("{} pH {:.3} I {:.4}", path.display(), s.ph(), s.answer.ionic_strength),
-                        None => println!("{} {:?} {:?}", path.display(), outcome.state, outcome.problem.defects),
+                        Some(s) => println!(
+                            "{} pH {:.3} I {:.4}",
+                            path.display(),
+                            s.ph(),
+                            s.answer.ionic_strength
+                        ),
+                        None => println!(
+                            "{} {:?} {:?}",
+                            path.display(),
+                            outcome.state,
+                            outcome.problem.defects
+                        ),
                     }
                 }
             }

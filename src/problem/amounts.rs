@@ -20,11 +20,9 @@ pub fn read(case: &mut CaseResolver, problem: &mut Problem) {
     for written in case.statements {
         match written.statement() {
             Statement::Total { component, value } => {
-                problem.states_amounts = true;
                 total(case, problem, written, component, value);
             }
             Statement::Add { reagent, amount, giving } => {
-                problem.states_amounts = true;
                 add(case, problem, written, (reagent, amount, giving.as_deref()));
             }
             _ => {}
@@ -180,7 +178,7 @@ fn forms(
 
 /// What each component's total now is; reports those that nothing gives.
 pub fn close(case: &mut CaseResolver, problem: &mut Problem) {
-    if !problem.states_amounts {
+    if !problem.states_problem {
         return;
     }
     for j in 1..problem.amounts.len() {

@@ -33,8 +33,8 @@ pub struct Problem {
     /// log10 K of each reaction of the scope at `kelvin`; zero where it is not in use.
     pub log_k: Vec<f64>,
     pub defects: Vec<Defect>,
-    /// Whether it states amounts at all; a file of definitions alone does not.
-    pub states_amounts: bool,
+    /// Whether there is a problem to solve; a file of definitions alone states none.
+    pub states_problem: bool,
     /// Whether something found wrong keeps it from being solved.
     pub blocked: bool,
 }

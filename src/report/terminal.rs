@@ -31,8 +31,7 @@ pub fn finding(finding: &LocatedFinding, text: &str, path: &str, style: Style) -
     snippet = snippet.annotation(AnnotationKind::Primary.span(window.inside(&finding.at)));
     for (at, words) in &finding.related {
         let label = words.clone();
-        snippet =
-            snippet.annotation(AnnotationKind::Context.span(window.inside(at)).label(label));
+        snippet = snippet.annotation(AnnotationKind::Context.span(window.inside(at)).label(label));
     }
     let mut group = level.primary_title(message).id(finding.rule).element(snippet);
     if let Some(help) = &finding.help {
