@@ -2,13 +2,18 @@
 
 mod balance_common;
 
+use balance_common::made::made as made_system;
 use balance_common::{System, carbonate, r, sump};
+use lyate::balance::Balance;
+use lyate::balance::charge::charge_balance;
+use lyate::balance::mass::mass_balance;
 use lyate::balance::proton::proton_condition;
 use lyate::balance::written::{
     Difference, Made, Side, TermOf, Verdict, WrittenTerm, WrittenWhat, compare,
 };
 use lyate::balance::{BalanceKind, Part};
 use num_rational::Rational64;
+use proptest::prelude::*;
 
 /// Reads a balance: terms between ` + ` or ` - `, an amount as `24(0.5)` for 24 mmol/L
 /// with half a digit of 0.5.
@@ -306,4 +311,79 @@ fn nonsense_is_answered() {
     assert!(matches!(verdict_of(&system, "NH3", &terms), Verdict::Wrong { .. }));
     terms[2].coefficient = r(0);
     let _ = verdict_of(&system, "NH3", &terms);
+}
+
+/// A balance as it would be written, in the order of the species, terms above zero on
+/// the left.
+fn write(balance: &Balance, factor: Rational64) -> Vec<WrittenTerm> {
+    let species = balance.terms.iter().map(|(s, n)| (WrittenWhat::Species(*s), *n));
+    let parts = balance.parts.iter().map(|(p, n)| (WrittenWhat::Constant(*p), -*n));
+    species
+        .chain(parts)
+        .map(|(what, n)| {
+            let n = n * factor;
+            let side = if n > r(0) { Side::Left } else { Side::Right };
+            WrittenTerm { side, coefficient: if n > r(0) { n } else { -n }, what }
+        })
+        .collect()
+}
+
+/// Makes one slip; says what the finding must be, unless the slip leads to another
+/// balance that is right.
+fn slip(terms: &mut Vec<WrittenTerm>, at: usize, how: u8, species: usize) {
+    match how % 5 {
+        0 => drop(terms.remove(at)),
+        1 => terms[at].coefficient += r(1),
+        2 => {
+            terms[at].side = if terms[at].side == Side::Left { Side::Right } else { Side::Left };
+        }
+        3 => terms.push(terms[at].clone()),
+        _ => terms.push(WrittenTerm {
+            side: Side::Left,
+            coefficient: r(1),
+            what: WrittenWhat::Species(species),
+        }),
+    }
+}
+
+proptest! {
+    #![proptest_config(ProptestConfig::with_cases(1500))]
+
+    /// Proton balances at any reference level, and component and charge balances, times
+    /// any factor, are right; after one slip there is one finding at most.
+    #[test]
+    fn right_balances_are_right_and_one_slip_is_one_finding(
+        made in made_system(),
+        chosen in prop::collection::vec(any::<prop::sample::Index>(), 0..4),
+        factor in prop_oneof![Just(r(1)), Just(r(-1)), Just(r(2)), Just(Rational64::new(1, 2))],
+        which in any::<prop::sample::Index>(),
+        at in any::<prop::sample::Index>(),
+        how in any::<u8>(),
+    ) {
+        let system = &made.system;
+        let count = system.stoichiometry.species.len();
+        let chosen: Vec<usize> = chosen.iter().map(|index| index.index(count)).collect();
+        let condition = proton_condition(&system.stoichiometry, &system.recipe, &chosen).unwrap();
+        let mut balances = vec![("protons", condition.balance.clone()), ("charge", charge_balance(&system.stoichiometry))];
+        for (component, name) in system.stoichiometry.components.iter().enumerate().skip(1) {
+            balances.push((name, mass_balance(&system.stoichiometry, component)));
+        }
+        let (of, balance) = which.get(&balances);
+        let of = if which.index(2) == 0 { "protons" } else { of };
+        let balance = if of == "protons" { &condition.balance } else { balance };
+        let mut terms = write(balance, factor);
+        let right = verdict_of(system, of, &terms);
+        let own = proton_condition(&system.stoichiometry, &system.recipe, &[]).unwrap();
+        let same = own.balance == condition.balance;
+        match &right {
+            Verdict::Right(_) => prop_assert!(of != "protons" || same),
+            Verdict::OtherLevel(_) => prop_assert!(of == "protons" && !same),
+            Verdict::Wrong { .. } => prop_assert!(false, "{:?}", right),
+        }
+        let place = at.index(terms.len());
+        slip(&mut terms, place, how, at.index(count));
+        if let Verdict::Wrong { differences, .. } = verdict_of(system, of, &terms) {
+            prop_assert_eq!(differences.len(), 1, "{:?}", differences);
+        }
+    }
 }

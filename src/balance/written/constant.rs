@@ -1,6 +1,6 @@
 //! The constants of a written balance: totals, added reagents and plain amounts.
 
-use num_traits::ToPrimitive;
+use num_traits::{ToPrimitive, Zero};
 
 use super::view::{Fit, correction, placed, signed};
 use super::{Difference, Side, TermOf, WrittenTerm, WrittenWhat};
@@ -33,7 +33,9 @@ impl<'a, E: Exact> Constants<'a, E> {
                     let out = recipe.written_out(&[(part, one.clone())])?;
                     terms.push((index, signed(term)?, out));
                 }
-                WrittenWhat::Amount { value, half_digit } if value != 0.0 => {
+                WrittenWhat::Amount { value, half_digit }
+                    if value != 0.0 && !term.coefficient.is_zero() =>
+                {
                     let factor = term.coefficient.to_f64()?;
                     let factor = if term.side == Side::Left { factor } else { -factor };
                     amounts.push((index, factor, value, half_digit));
