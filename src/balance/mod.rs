@@ -9,7 +9,7 @@ pub mod proton;
 pub mod reagent;
 pub mod recipe;
 pub mod split;
-// pub mod written;
+pub mod written;
 
 use num_rational::Rational64;
 
