@@ -100,6 +100,11 @@ impl Failure {
         Failure { at, expected: expect.bit(), problem: None }
     }
 
+    pub fn or(mut self, expect: Expect) -> Failure {
+        self.expected |= expect.bit();
+        self
+    }
+
     pub fn problem(span: Span, kind: SyntaxProblemKind) -> Failure {
         Failure { at: 0, expected: 0, problem: Some(Box::new(SyntaxProblem { span, kind })) }
     }
@@ -134,6 +139,9 @@ impl Failure {
             return SyntaxProblem { span: number.span().to(lexeme.span()), kind };
         }
         let expected = match self.nearest(lexeme) {
+            None if self.expects(Expect::Term) && lexeme.token == Token::Name => {
+                vec![format!("`[{}]`", shortened(lexeme.text))]
+            }
             Some(word) => vec![format!("`{word}`")],
             None => self.words(false),
         };
