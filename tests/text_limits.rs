@@ -48,9 +48,8 @@ fn a_hundred_thousand_parentheses_give_one_problem() {
 
 #[test]
 fn nesting_to_the_limit_is_read_and_beyond_it_is_not() {
-    let nested = |n: usize| {
-        format!("reaction A <=> B, log K(T) = {}T{}", "(1 + ".repeat(n), ")".repeat(n))
-    };
+    let nested =
+        |n: usize| format!("reaction A <=> B, log K(T) = {}T{}", "(1 + ".repeat(n), ")".repeat(n));
     assert_eq!(kinds(&read(&nested(DEEPEST))), Vec::<&SyntaxProblemKind>::new());
     assert_eq!(
         kinds(&read(&nested(DEEPEST + 1))),

@@ -69,9 +69,29 @@ fn number(signed: bool) -> BoxedStrategy<Number> {
 fn unit() -> BoxedStrategy<Name> {
     prop_oneof![
         prop::sample::select(vec![
-            "mmol/L", "mol/kg", "µmol/L", "M", "mM", "µM", "g/m3", "g/m³", "% w/w", "%", "mL/L",
-            "°C", "degC", "K", "atm", "µatm", "Pa", "kJ/mol", "kJ/(mol·K)", "J/(mol·K)",
-            "mol·L^-1", "meq/L", "ppm",
+            "mmol/L",
+            "mol/kg",
+            "µmol/L",
+            "M",
+            "mM",
+            "µM",
+            "g/m3",
+            "g/m³",
+            "% w/w",
+            "%",
+            "mL/L",
+            "°C",
+            "degC",
+            "K",
+            "atm",
+            "µatm",
+            "Pa",
+            "kJ/mol",
+            "kJ/(mol·K)",
+            "J/(mol·K)",
+            "mol·L^-1",
+            "meq/L",
+            "ppm",
         ])
         .prop_map(str::to_owned),
         "[b-df-z]{1,5}(/[A-Z][a-z]{0,2})?".prop_filter("no reserved word", |unit| {
@@ -103,9 +123,10 @@ fn quantity(signed: bool) -> BoxedStrategy<Quantity> {
 }
 
 fn fraction() -> BoxedStrategy<Option<Spanned<Fraction>>> {
-    prop::option::of((1i64..200, prop_oneof![Just(1i64), 2i64..20]).prop_map(
-        |(numerator, denominator)| spanned(Fraction { numerator, denominator }),
-    ))
+    prop::option::of(
+        (1i64..200, prop_oneof![Just(1i64), 2i64..20])
+            .prop_map(|(numerator, denominator)| spanned(Fraction { numerator, denominator })),
+    )
     .boxed()
 }
 
@@ -196,8 +217,11 @@ fn expression() -> BoxedStrategy<Expression> {
             inner.clone().prop_map(|of| Expression::Negative(Box::new(of))),
             inner.clone().prop_map(|of| Expression::Log(Box::new(of))),
             inner.clone().prop_map(|of| Expression::Ln(Box::new(of))),
-            (inner.clone(), operator, inner)
-                .prop_map(|(a, op, b)| Expression::Binary(Box::new(a), op, Box::new(b))),
+            (inner.clone(), operator, inner).prop_map(|(a, op, b)| Expression::Binary(
+                Box::new(a),
+                op,
+                Box::new(b)
+            )),
         ]
     })
     .boxed()
@@ -391,10 +415,55 @@ fn edited(text: &str, at: prop::sample::Index, length: usize, inserted: &str) ->
 fn snippet() -> BoxedStrategy<String> {
     prop_oneof![
         prop::sample::select(vec![
-            "", "\n", "\r", "\r\n", "\t", "    ", " ", "#", "\"", "(", ")", "[", "]", "{", "}",
-            ",", "+", "-", "^", "*", "±", "=", "<=>", "->", "case", "case \"b\"\n", "add",
-            "log K(T) = ", "1e", "1e999", "%", "% w/w", "as N", "e-", "K", "°C", "⁻", "₄", "𝄞",
-            "\u{FEFF}", "“", "\0", "/", "·", ".", "1.2", "NH3+H+", "source \"x\"", "T^-2",
+            "",
+            "\n",
+            "\r",
+            "\r\n",
+            "\t",
+            "    ",
+            " ",
+            "#",
+            "\"",
+            "(",
+            ")",
+            "[",
+            "]",
+            "{",
+            "}",
+            ",",
+            "+",
+            "-",
+            "^",
+            "*",
+            "±",
+            "=",
+            "<=>",
+            "->",
+            "case",
+            "case \"b\"\n",
+            "add",
+            "log K(T) = ",
+            "1e",
+            "1e999",
+            "%",
+            "% w/w",
+            "as N",
+            "e-",
+            "K",
+            "°C",
+            "⁻",
+            "₄",
+            "𝄞",
+            "\u{FEFF}",
+            "“",
+            "\0",
+            "/",
+            "·",
+            ".",
+            "1.2",
+            "NH3+H+",
+            "source \"x\"",
+            "T^-2",
         ])
         .prop_map(str::to_owned),
         "\\PC{0,6}",

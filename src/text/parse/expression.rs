@@ -87,9 +87,7 @@ impl Reader {
     fn take(&mut self, at: usize, lexeme: &Lexeme<'_>) -> Result<(), Failure> {
         match self.next {
             Next::Operand => self.operand(at, lexeme),
-            Next::Open(function) if lexeme.token == Token::LeftParen => {
-                self.open(function, lexeme)
-            }
+            Next::Open(function) if lexeme.token == Token::LeftParen => self.open(function, lexeme),
             Next::Open(_) => Err(Failure::at(at, Expect::LeftParen)),
             Next::Operator => self.operator(at, lexeme),
         }
