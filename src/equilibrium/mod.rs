@@ -5,6 +5,7 @@ mod basis;
 mod coordinates;
 mod direction;
 mod exact;
+mod feasible;
 mod fixed;
 mod frame;
 mod ionic;
