@@ -6,6 +6,7 @@ pub mod build;
 mod coordinates;
 mod direction;
 mod exact;
+mod feasible;
 mod fixed;
 mod frame;
 mod ionic;

@@ -107,6 +107,22 @@ impl<'a> Search<'a> {
         if !self.frame.choose(&order) {
             return Ok(());
         }
+        self.carry_over()
+    }
+
+    /// Leaves species out for good.
+    pub fn exclude(&mut self, absent: &[usize]) -> Result<(), Failure> {
+        for &i in absent {
+            self.frame.present[i] = false;
+        }
+        let order: Vec<usize> =
+            self.at.species.iter().copied().filter(|&i| self.frame.present[i]).collect();
+        self.frame.choose(&order);
+        self.carry_over()
+    }
+
+    /// Writes the balances over the frame's basis, the point staying the same state.
+    fn carry_over(&mut self) -> Result<(), Failure> {
         let mut known = vec![0.0; self.system().species.len()];
         for (i, &species) in self.at.species.iter().enumerate() {
             known[species] = self.ln_activity(i);
