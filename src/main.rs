@@ -1,3 +1,7 @@
 //! The `lyate` program.
 
-fn main() {}
+use std::process::ExitCode;
+
+fn main() -> ExitCode {
+    lyate::command::run()
+}

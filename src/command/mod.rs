@@ -1,1 +1,29 @@
 //! The command line: one file per command.
+
+use std::process::ExitCode;
+
+use clap::{Parser, Subcommand};
+
+mod check;
+mod library;
+mod terminal;
+
+/// Checks, balances, solves and explains chemical-equilibrium problem files.
+#[derive(Parser)]
+#[command(name = "lyate", version, about, max_term_width = 100)]
+struct Arguments {
+    #[command(subcommand)]
+    command: Command,
+}
+
+#[derive(Subcommand)]
+enum Command {
+    Check(check::Arguments),
+}
+
+/// Runs the command that the arguments name.
+pub fn run() -> ExitCode {
+    match Arguments::parse().command {
+        Command::Check(arguments) => check::run(&arguments),
+    }
+}

@@ -12,7 +12,7 @@ use super::scope::PROTON;
 use super::sparse::{Row, add_scaled};
 use super::split::{Split, split};
 use crate::chemistry::formula::Formula;
-use crate::text::tree::{BalanceKind, Member, Name, Quantity, Statement, Subject, TermKind};
+use crate::text::tree::{Member, Name, Quantity, Statement};
 
 /// Reads `total` and `add`.
 pub fn read(case: &mut CaseResolver, problem: &mut Problem) {
@@ -20,11 +20,9 @@ pub fn read(case: &mut CaseResolver, problem: &mut Problem) {
     for written in case.statements {
         match written.statement() {
             Statement::Total { component, value } => {
-                problem.states_amounts = true;
                 total(case, problem, written, component, value);
             }
             Statement::Add { reagent, amount, giving } => {
-                problem.states_amounts = true;
                 add(case, problem, written, (reagent, amount, giving.as_deref()));
             }
             _ => {}
@@ -180,7 +178,7 @@ fn forms(
 
 /// What each component's total now is; reports those that nothing gives.
 pub fn close(case: &mut CaseResolver, problem: &mut Problem) {
-    if !problem.states_amounts {
+    if !problem.states_problem {
         return;
     }
     for j in 1..problem.amounts.len() {
@@ -204,7 +202,7 @@ pub fn close(case: &mut CaseResolver, problem: &mut Problem) {
     for (j, amount) in problem.amounts.iter().enumerate().skip(1) {
         if let (Some(total), Some(at), AmountSource::Reagents) =
             (amount.total, amount.at, amount.source)
-            && total.is_negative()
+            && total < 0.0
             && !case.scope.components[j].formula.is_electron()
             && !may_be_negative(case, j)
         {
@@ -245,35 +243,12 @@ fn is_spoken_of(case: &CaseResolver, component: &str) -> bool {
                 spoken |= made.row.iter().any(|&(k, _)| k == j);
             }
         };
-        names_in_use(written.statement(), &mut look);
+        if matches!(
+            written.statement(),
+            Statement::Hold { .. } | Statement::Expect { .. } | Statement::Balance { .. }
+        ) {
+            written.statement().each_formula(&mut look);
+        }
     }
     spoken
-}
-
-/// The names in statements that use species rather than define them.
-fn names_in_use(statement: &Statement, look: &mut dyn FnMut(&Name)) {
-    let subject = |subject: &Subject, look: &mut dyn FnMut(&Name)| match subject {
-        Subject::Concentration(name)
-        | Subject::Activity(name)
-        | Subject::Pressure(name)
-        | Subject::Total(name)
-        | Subject::Fraction(name)
-        | Subject::SaturationIndex(name) => look(name),
-        _ => {}
-    };
-    match statement {
-        Statement::Hold { subject: what, .. } => subject(&what.value, look),
-        Statement::Expect { subject: what, .. } => subject(&what.value, look),
-        Statement::Balance { kind, left, right, .. } => {
-            if let BalanceKind::Component(name) = &kind.value {
-                look(name);
-            }
-            for term in left.iter().chain(right) {
-                if let TermKind::Concentration(name) | TermKind::Total(name) = &term.what {
-                    look(name);
-                }
-            }
-        }
-        _ => {}
-    }
 }

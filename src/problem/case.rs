@@ -58,7 +58,7 @@ pub fn resolve(statements: &[Written], merging: Vec<Defect>, scope: Arc<Scope>) 
         expectations: Vec::new(),
         log_k: Vec::new(),
         defects: Vec::new(),
-        states_amounts: false,
+        states_problem: statements.iter().any(|w| states_a_problem(w.statement())),
         blocked: false,
     };
     conditions(&mut case, &mut problem);
@@ -230,6 +230,19 @@ impl CaseResolver<'_> {
             },
         )
     }
+}
+
+/// Whether a statement makes a problem of what would else be definitions alone.
+fn states_a_problem(statement: &Statement) -> bool {
+    matches!(
+        statement,
+        Statement::Component { .. }
+            | Statement::Total { .. }
+            | Statement::Add { .. }
+            | Statement::Hold { .. }
+            | Statement::Expect { .. }
+            | Statement::Balance { .. }
+    )
 }
 
 /// Whether a statement that states conditions, matter or amounts is broken: then a number

@@ -14,7 +14,6 @@ use crate::text::tree::{Name, Quantity, Statement, Subject};
 pub fn read(case: &mut CaseResolver, problem: &mut Problem) {
     for written in case.statements {
         let Statement::Hold { subject, value, by } = written.statement() else { continue };
-        problem.states_amounts = true;
         // `by` is a target and no held value; it is reported elsewhere.
         if by.is_some() {
             continue;

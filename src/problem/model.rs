@@ -33,8 +33,8 @@ pub struct Problem {
     /// log10 K of each reaction of the scope at `kelvin`; zero where it is not in use.
     pub log_k: Vec<f64>,
     pub defects: Vec<Defect>,
-    /// Whether it states amounts at all; a file of definitions alone does not.
-    pub states_amounts: bool,
+    /// Whether there is a problem to solve; a file of definitions alone states none.
+    pub states_problem: bool,
     /// Whether something found wrong keeps it from being solved.
     pub blocked: bool,
 }
@@ -213,5 +213,21 @@ impl Problem {
     /// The name of a row of the stoichiometry.
     pub fn row_name(&self, row: usize) -> &str {
         &self.scope.stoichiometry.species[row].name
+    }
+}
+
+impl Limit {
+    /// Whether a value in base units meets it.
+    pub fn is_met_by(&self, value: f64) -> bool {
+        match *self {
+            Limit::Within { value: wanted, tolerance } => (value - wanted).abs() <= tolerance,
+            Limit::Below { value: limit, or_equal } => {
+                value < limit || (or_equal && value == limit)
+            }
+            Limit::Above { value: limit, or_equal } => {
+                value > limit || (or_equal && value == limit)
+            }
+            Limit::Between { low, high } => low <= value && value <= high,
+        }
     }
 }

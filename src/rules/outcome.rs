@@ -54,7 +54,7 @@ impl Outcome {
         cancel: &AtomicBool,
     ) -> Option<Outcome> {
         let problem = resolve(statements, merging, scope);
-        let state = if !problem.states_amounts {
+        let state = if !problem.states_problem {
             State::NothingStated
         } else if problem.blocked {
             State::NotWellPosed
