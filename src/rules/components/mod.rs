@@ -2,7 +2,7 @@
 
 use super::catalogue::family;
 
-mod listing;
+pub mod listing;
 
 family! {
     "Components":
