@@ -142,6 +142,13 @@ pub fn in_force<'a>(
     let mut defects = Vec::new();
     let mut kept = section(base, Part::Base, &mut defects);
     let Some(case) = case else {
+        // The base has nothing before it to take away from.
+        for (_, written) in &kept {
+            if let Statement::Without(without) = written.statement() {
+                let at = written.place(without.span);
+                defects.push(Defect { at, kind: DefectKind::NothingToRemove });
+            }
+        }
         return (kept.into_iter().map(|(_, written)| written).collect(), defects);
     };
     let varied = section(case, Part::Case, &mut defects);

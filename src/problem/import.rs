@@ -14,6 +14,7 @@ use super::reaction::{Origin, Reaction};
 use super::resolve::Resolver;
 use super::sets;
 use crate::chemistry::formula::Groups;
+use crate::text::problem::SyntaxProblemKind;
 use crate::text::tree::{Document, Statement, Use};
 
 /// What one file or set brings into scope.
@@ -207,12 +208,13 @@ impl Reader<'_> {
         let (statements, defects) = in_force(&document.sections[0], None);
         let number = NUMBER.fetch_add(1, Ordering::Relaxed);
         let mut found = Definitions { number, ..Definitions::default() };
-        let syntax: usize = document
+        let syntax = document
             .sections
             .iter()
             .flat_map(|section| &section.statements)
-            .map(|placed| placed.parsed.problems.len())
-            .sum();
+            .flat_map(|placed| &placed.parsed.problems)
+            .filter(|problem| problem.kind != SyntaxProblemKind::StrayIndent)
+            .count();
         found.errors = defects.len() + syntax;
         for written in &statements {
             if let Statement::Use(what) = written.statement() {
@@ -279,7 +281,6 @@ fn is_error(kind: &DefectKind) -> bool {
             | DefectKind::BaseReaction { .. }
             | DefectKind::TwoNames { .. }
             | DefectKind::AmbiguousCharge { .. }
-            | DefectKind::ConstantKindMismatch { .. }
             | DefectKind::DiffersFromSet { .. }
     )
 }

@@ -17,7 +17,7 @@ use crate::problem::files::Files;
 use crate::problem::import::{Definitions, Imports, Reader};
 use crate::problem::scope::Scope;
 use crate::text::span::{Part, Place};
-use crate::text::tree::{Document, Section, Statement};
+use crate::text::tree::{Document, Section, Statement, Use};
 
 /// What a check is given beside the text.
 pub struct Surroundings<'a> {
@@ -149,7 +149,10 @@ fn read_uses(statements: &[Written], reader: &Reader) -> UseResults {
     statements
         .iter()
         .filter_map(|written| match written.statement() {
-            Statement::Use(what) => Some((written.whole(), reader.read(what))),
+            Statement::Use(what) => {
+                let (Use::Set { name, .. } | Use::File { path: name }) = what;
+                Some((written.place(name.span), reader.read(what)))
+            }
             _ => None,
         })
         .collect()

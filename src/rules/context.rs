@@ -53,6 +53,17 @@ impl<'a> Context<'a> {
             .unwrap_or_default()
     }
 
+    /// The place of a whole name of which a place covers a part.
+    pub fn whole_name(&self, part: Place, name: &str) -> Option<Place> {
+        let text = &self.statement(part)?.parsed.text;
+        let (start, end) = (part.span.start as usize, part.span.end as usize);
+        let from = start.saturating_sub(name.len());
+        let at = (from..=start).find(|&at| {
+            at + name.len() >= end && text.get(at..).is_some_and(|rest| rest.starts_with(name))
+        })?;
+        Some(Place { span: Span::new(at, at + name.len()), ..part })
+    }
+
     /// The place just after a place.
     pub fn after(&self, place: Place) -> Place {
         Place { span: Span { start: place.span.end, end: place.span.end }, ..place }
