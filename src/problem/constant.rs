@@ -146,12 +146,7 @@ impl Resolver {
     }
 
     /// `NH3 + H2O <=> NH4+ + OH-`: right, but by common practice entered as its acid.
-    fn base_reaction(
-        &mut self,
-        written: &Written,
-        tree: &tree::Reaction,
-        both: &[Participant],
-    ) {
+    fn base_reaction(&mut self, written: &Written, tree: &tree::Reaction, both: &[Participant]) {
         let one = num_rational::Rational64::one();
         let is = |p: &Participant, left: bool| p.coefficient == if left { -one } else { one };
         let (left, right): (Vec<_>, Vec<_>) =

@@ -27,16 +27,5 @@ pub fn example(word: &str) -> Option<&'static str> {
 }
 
 /// Words that start a clause of a reaction.
-pub const CLAUSES: [&str; 11] = [
-    "pKa",
-    "pKsp",
-    "pK",
-    "log",
-    "K",
-    "enthalpy",
-    "heat",
-    "at",
-    "valid",
-    "source",
-    "giving",
-];
+pub const CLAUSES: [&str; 11] =
+    ["pKa", "pKsp", "pK", "log", "K", "enthalpy", "heat", "at", "valid", "source", "giving"];

@@ -1,0 +1,38 @@
+//! A value cannot be, whatever the water.
+//!
+//! There is no temperature below absolute zero, no negative amount of a reagent, no
+//! pressure or equilibrium constant of zero. Such a value is a slip: a lost digit, a
+//! sign, degrees that were meant as kelvin, or a log K given as K.
+//!
+//! Before:
+//!
+//! ```lyate
+//! reaction NH4+ <=> NH3 + H+, K = -9.25, source "site table, row 2"
+//! ```
+//!
+//! After:
+//!
+//! ```lyate
+//! reaction NH4+ <=> NH3 + H+, log K = -9.25, source "site table, row 2"
+//! ```
+
+use crate::problem::defect::DefectKind;
+use crate::rules::catalogue::rule;
+use crate::rules::context::Context;
+use crate::rules::finding::Finding;
+use crate::text::span::Place;
+
+rule!("impossible-value", Error, "impossible_value.rs", find);
+
+fn find(context: &Context, found: &mut Vec<Finding<Place>>) {
+    for defect in context.defects() {
+        let DefectKind::ImpossibleValue { why } = defect.kind else { continue };
+        let text = context.text(defect.at);
+        let message = if (1..=24).contains(&text.len()) && !text.contains('\n') {
+            format!("`{text}` cannot be: {why}")
+        } else {
+            format!("this cannot be: {why}")
+        };
+        found.push(RULE.at(defect.at, message));
+    }
+}
