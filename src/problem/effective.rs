@@ -191,11 +191,15 @@ fn section<'a>(
         let written = Written { part, index: index as u32, parsed: &placed.parsed };
         let key = key(written.statement());
         if let Some(key) = key.as_ref().filter(|key| !adds_up(key)) {
+            let at = match written.statement() {
+                Statement::Reaction(reaction) => written.place(reaction.equation),
+                _ => written.whole(),
+            };
             if let Some(other) = first.get(key) {
-                defects.push(Defect { at: written.whole(), kind: repeated(key, *other) });
+                defects.push(Defect { at, kind: repeated(key, *other) });
                 continue;
             }
-            first.insert(key.clone(), written.whole());
+            first.insert(key.clone(), at);
         }
         kept.push((key, written));
     }

@@ -41,7 +41,7 @@ fn words(unit: &str, written: &str, problem: &ConversionProblem) -> (String, Str
     match problem {
         ConversionProblem::NoMolarMass { species } => (
             format!("`{unit}` needs the molar mass of {species}, which is not known"),
-            "give it in mmol/L, or give its group a composition: group Hum = C187H186O89N9".into(),
+            "give it in mmol/L, or give its group a composition: group Lig = C10H12O5".into(),
         ),
         ConversionProblem::Neutral { species } => (
             format!("`{written}` counts charge, and {species} has none"),
