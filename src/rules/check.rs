@@ -10,6 +10,7 @@ use std::sync::atomic::{AtomicBool, Ordering};
 
 use super::finding::{Finding, LocatedFinding, Severity};
 use super::outcome::Outcome;
+use super::statements::case_repeated;
 use crate::equilibrium::system::Answer;
 use crate::problem::defect::DefectKind;
 use crate::problem::effective::{Written, in_force};
@@ -253,6 +254,7 @@ fn gather(document: &Document, outcomes: &[Arc<Outcome>]) -> Vec<LocatedFinding>
             }
         }
     }
+    findings.extend(case_repeated::in_file(document));
     findings.sort_by_key(|finding| (finding.at.start, finding.at.end, finding.severity));
     findings
 }
