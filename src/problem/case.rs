@@ -29,6 +29,8 @@ pub struct CaseResolver<'a> {
     /// The file's scale, and where it was first seen.
     pub scale: Option<(Scale, Place)>,
     pub mixed: bool,
+    /// Whether every statement that says how much there is could be read.
+    pub all_amounts_read: bool,
 }
 
 /// Resolves the statements in force. `merging` are the defects found while merging.
@@ -40,6 +42,7 @@ pub fn resolve(statements: &[Written], merging: Vec<Defect>, scope: Arc<Scope>) 
         kelvin: STANDARD,
         scale: None,
         mixed: false,
+        all_amounts_read: true,
     };
     case.resolver.defects = merging;
     let mut problem = Problem {

@@ -266,10 +266,13 @@ impl Builder {
             // The component declared last is the one too many.
             let Some(&(last, _)) = link.last() else { continue };
             let component = &self.components[last];
-            let from = link[..link.len() - 1]
+            let mut from: Vec<String> = link[..link.len() - 1]
                 .iter()
                 .map(|&(j, _)| self.components[j].formula.name.clone())
                 .collect();
+            if from.is_empty() {
+                from.push(self.species[WATER].name.clone());
+            }
             let name = component.formula.name.clone();
             let reaction = reactions[*r].origin.own();
             if let Some(at) = component.at.or(reaction) {

@@ -3,6 +3,8 @@
 pub mod catalogue;
 pub mod check;
 pub mod context;
+pub mod expectation;
+pub mod figures;
 pub mod finding;
 pub mod outcome;
 pub mod words;

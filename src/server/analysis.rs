@@ -7,7 +7,7 @@ use std::path::{Path, PathBuf};
 use std::sync::Arc;
 use std::sync::atomic::AtomicBool;
 
-use crate::report::inline::{Hint, Hover};
+use crate::report::inline::{Hint, Hover, Symbol};
 use crate::rules::finding::LocatedFinding;
 
 /// Makes views of texts. Called from several threads at once, one call per document.
@@ -56,35 +56,4 @@ pub trait View: Send + Sync + Any {
 
     /// The files that were read, or looked for and not found, directly or through others.
     fn imports(&self) -> &[PathBuf];
-}
-
-/// An entry of the outline.
-#[derive(Clone, Debug, PartialEq)]
-pub struct Symbol {
-    pub name: String,
-    /// A few words after the name, such as an amount.
-    pub detail: Option<String>,
-    pub kind: SymbolKind,
-    /// The whole statement, or the whole case.
-    pub range: Range<usize>,
-    /// The part to jump to; inside `range`.
-    pub selection: Range<usize>,
-    pub children: Vec<Symbol>,
-}
-
-/// What an outline entry stands for; the server picks the editor's icon.
-#[derive(Clone, Copy, Debug, PartialEq, Eq)]
-pub enum SymbolKind {
-    Problem,
-    Import,
-    Setting,
-    Group,
-    Component,
-    Reaction,
-    Amount,
-    Hold,
-    Balance,
-    Expectation,
-    Curve,
-    Case,
 }

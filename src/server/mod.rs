@@ -9,6 +9,7 @@
 pub mod actions;
 pub mod analysis;
 mod backend;
+pub mod checker;
 pub mod convert;
 pub mod diagnostics;
 mod documents;

@@ -4,10 +4,10 @@ use tower_lsp::lsp_types::{
     self as lsp, DocumentSymbol, DocumentSymbolResponse, SymbolInformation,
 };
 
-use super::analysis::{Symbol, SymbolKind};
 use super::convert::Positions;
 use super::documents::Checked;
 use super::settings::Settings;
+use crate::report::inline::{Symbol, SymbolKind};
 
 /// Entries below this depth are left out; a file has two levels.
 const DEEPEST: usize = 8;
