@@ -10,6 +10,12 @@
 //! use "plant.xlsx"
 //! ```
 //!
+//! where the file is a spreadsheet:
+//!
+//! ```lyate plant.xlsx
+//! PK\x03\x04\xFF\xFE
+//! ```
+//!
 //! After:
 //!
 //! ```lyate

@@ -18,7 +18,7 @@
 //! component SO4^2-
 //! ```
 
-use crate::chemistry::formula::{FormulaProblemKind, canonical};
+use crate::chemistry::formula::FormulaProblemKind;
 use crate::problem::defect::DefectKind;
 use crate::rules::catalogue::rule;
 use crate::rules::context::Context;
@@ -46,9 +46,11 @@ fn find(context: &Context, found: &mut Vec<Finding<Place>>) {
                 ));
             }
             DefectKind::AmbiguousCharge { text, suggestion } => {
-                let read = canonical(text);
+                let sign = text.find(['+', '-', '−', '–']).unwrap_or(text.len());
+                let (atoms, charge) = text.split_at(sign);
                 let message = format!(
-                    "`{text}` reads as a count, not a charge, and no balanced reaction has {read}"
+                    "`{text}` is read as {atoms} with the charge {charge}, \
+                     and no balanced reaction has it"
                 );
                 let title = format!("write `{suggestion}`");
                 let finding =

@@ -20,7 +20,8 @@ use crate::problem::defect::DefectKind;
 use crate::rules::catalogue::rule;
 use crate::rules::context::Context;
 use crate::rules::finding::Finding;
-use crate::text::span::Place;
+use crate::text::span::{Place, Spanned};
+use crate::text::tree::{ConstantKind, Statement};
 
 rule!("impossible-value", Error, "impossible_value.rs", find);
 
@@ -33,6 +34,22 @@ fn find(context: &Context, found: &mut Vec<Finding<Place>>) {
         } else {
             format!("this cannot be: {why}")
         };
-        found.push(RULE.at(defect.at, message));
+        let finding = RULE.at(defect.at, message);
+        found.push(match constant(context, defect.at) {
+            Some(kind) if kind.value == ConstantKind::K => {
+                let place = Place { span: kind.span, ..defect.at };
+                finding.with_fix("write `log K`", false, place, "log K")
+            }
+            _ => finding,
+        });
     }
+}
+
+/// The kind of the constant whose value stands at a place.
+fn constant(context: &Context, at: Place) -> Option<Spanned<ConstantKind>> {
+    let Statement::Reaction(reaction) = context.statement(at)?.statement() else { return None };
+    let constant = reaction.constants.iter().find(|constant| {
+        constant.span.start <= at.span.start && at.span.end <= constant.span.end
+    })?;
+    Some(constant.kind.clone())
 }

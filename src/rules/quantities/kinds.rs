@@ -22,7 +22,7 @@ pub fn needed(expected: Expected) -> &'static str {
 pub fn units(expected: Expected) -> &'static [&'static str] {
     match expected {
         Expected::Concentration => &["mmol/L", "mol/L", "mg/L"],
-        Expected::Equivalents => &["meq/L", "mmol/L"],
+        Expected::Equivalents => &["meq/L", "mmol/L", "mg/L as CaCO3"],
         Expected::Temperature => &["°C", "K"],
         Expected::Pressure => &["atm", "µatm", "kPa"],
         Expected::MolarEnergy => &["kJ/mol"],

@@ -32,11 +32,15 @@ fn find(context: &Context, found: &mut Vec<Finding<Place>>) {
     for defect in context.defects() {
         let DefectKind::MissingUnit { expected } = defect.kind else { continue };
         let text = context.text(defect.at);
-        let units = units(expected);
+        let mut units = units(expected).to_vec();
+        if !names_substance(context, defect.at) {
+            // Without a substance a mass has no molar mass.
+            units.retain(|unit| *unit != "mg/L");
+        }
         let mut finding =
             RULE.at(defect.at, format!("{} needs its unit after `{text}`", needed(expected)));
         if !units.is_empty() {
-            finding = finding.with_help(format!("for example {}", names(units, "or")));
+            finding = finding.with_help(format!("for example {}", names(&units, "or")));
         }
         for unit in units {
             let title = format!("write `{text} {unit}`");
@@ -44,4 +48,13 @@ fn find(context: &Context, found: &mut Vec<Finding<Place>>) {
         }
         found.push(finding);
     }
+}
+
+/// Whether the statement says of which substance the quantity is.
+fn names_substance(context: &Context, at: Place) -> bool {
+    let mut named = false;
+    if let Some(written) = context.statement(at) {
+        written.statement().each_formula(&mut |_| named = true);
+    }
+    named
 }

@@ -45,8 +45,13 @@ fn find(context: &Context, found: &mut Vec<Finding<Place>>) {
             }
             UnitProblem::Ambiguous { candidates } => {
                 let fitting = fitting(context, defect.at, candidates);
-                let message = format!("`{text}` does not say of what and per what");
-                let help = format!("write {}, whichever is meant", names(&fitting, "or"));
+                let (message, help) = match fitting[..] {
+                    [one] => (format!("`{text}` is no unit here"), format!("write `{one}`")),
+                    _ => (
+                        format!("`{text}` may mean several things"),
+                        format!("write {}, whichever is meant", names(&fitting, "or")),
+                    ),
+                };
                 offer(RULE.at(defect.at, message).with_help(help), text, &fitting)
             }
         };

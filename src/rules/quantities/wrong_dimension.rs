@@ -19,6 +19,7 @@
 //! ```
 
 use super::kinds::{measured, needed, units};
+use crate::chemistry::unit::Dimension;
 use crate::problem::defect::{DefectKind, Expected};
 use crate::rules::catalogue::rule;
 use crate::rules::context::Context;
@@ -38,6 +39,11 @@ fn find(context: &Context, found: &mut Vec<Finding<Place>>) {
             format!("`{unit}` is {}, and {needed} is needed here", measured(*dimension));
         let mut finding = RULE.at(defect.at, message);
         let units = units(*expected);
+        if (*expected, *dimension) == (Expected::Equivalents, Dimension::MassPerLitre) {
+            let new = format!("{unit} as CaCO3");
+            let title = format!("write `{new}`");
+            finding = finding.with_fix(title, false, defect.at, new);
+        }
         if *expected == Expected::Plain {
             let whole = with_space(context, defect.at);
             finding = finding.with_fix(format!("take `{unit}` out"), false, whole, "");

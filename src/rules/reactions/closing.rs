@@ -12,14 +12,18 @@ use crate::problem::resolve::differences;
 use crate::rules::context::Context;
 use crate::rules::finding::Finding;
 use crate::text::span::{Place, Span};
+use crate::text::tree;
 
 /// Adds to a finding about a reaction the fixes that would close it.
 pub fn offer(mut finding: Finding<Place>, context: &Context) -> Finding<Place> {
     let at = finding.at;
     let Some((_, reaction)) = own::reaction(context, at) else { return finding };
     let Some(differences) = differences(&reaction.participants) else { return finding };
-    if let Some((span, added)) = missing(reaction, &differences) {
-        let title = format!("add `{}`", added.trim_start_matches(" + "));
+    if let Some((span, added)) = missing(reaction, own::tree(context, at), &differences) {
+        let title = match added.strip_prefix(" + ") {
+            Some(added) => format!("add `{added}`"),
+            None => format!("write `{added}`"),
+        };
         finding = finding.with_fix(title, false, Place { span, ..at }, added);
     }
     if let [(Conserved::Charge, left, right)] = differences[..] {
@@ -33,8 +37,13 @@ pub fn offer(mut finding: Finding<Place>, context: &Context) -> Finding<Place> {
 
 type Difference = (Conserved, Rational64, Rational64);
 
-/// What to put where: ` + 2 H2O` at the end of the side that lacks it.
-fn missing(reaction: &Reaction, differences: &[Difference]) -> Option<(Span, String)> {
+/// What to put where: ` + 2 H2O` at the end of the side that lacks it, or `2 H+` in the
+/// place of the `H+` that stands there.
+fn missing(
+    reaction: &Reaction,
+    tree: Option<&tree::Reaction>,
+    differences: &[Difference],
+) -> Option<(Span, String)> {
     ["H2O", "H+", "OH-"].iter().find_map(|name| {
         let formula = Formula::parse(name, &Groups::default()).ok()?;
         let count = times(&formula, differences)?;
@@ -45,14 +54,31 @@ fn missing(reaction: &Reaction, differences: &[Difference]) -> Option<(Span, Str
             .iter()
             .rev()
             .find(|participant| participant.coefficient.is_negative() == on_left)?;
-        let count = count.abs();
-        let added = if count == Rational64::from_integer(1) {
-            format!(" + {name}")
-        } else {
-            format!(" + {count} {name}")
+        let here = reaction.participants.iter().find(|participant| {
+            participant.formula.name == *name && participant.coefficient.is_negative() == on_left
+        });
+        let more = |count: Rational64| match count == Rational64::from_integer(1) {
+            true => (*name).to_owned(),
+            false => format!("{count} {name}"),
         };
-        Some((Span { start: last.span.end, end: last.span.end }, added))
+        Some(match here {
+            // Its coefficient, where one is written, goes with the name.
+            Some(here) => (
+                tree.map_or(here.span, |tree| whole_member(tree, here.span)),
+                more(here.coefficient.abs() + count.abs()),
+            ),
+            None => {
+                let end = last.span.end;
+                (Span { start: end, end }, format!(" + {}", more(count.abs())))
+            }
+        })
     })
+}
+
+/// The member of a reaction with a name at this range: coefficient and name.
+fn whole_member(tree: &tree::Reaction, name: Span) -> Span {
+    let members = || tree.left.iter().chain(&tree.right);
+    members().find(|member| member.name.span == name).map_or(name, |member| member.span)
 }
 
 /// How many of a formula make up the whole difference, left less right.

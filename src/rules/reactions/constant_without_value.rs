@@ -23,7 +23,7 @@ use crate::problem::defect::DefectKind;
 use crate::rules::catalogue::rule;
 use crate::rules::context::Context;
 use crate::rules::finding::Finding;
-use crate::rules::words::{celsius, figure};
+use crate::rules::words::celsius;
 use crate::text::span::Place;
 
 rule!("constant-without-value", Error, "constant_without_value.rs", find);
@@ -35,7 +35,7 @@ fn find(context: &Context, found: &mut Vec<Finding<Place>>) {
         };
         let constant = own::tree(context, defect.at).and_then(|tree| tree.constants.first());
         let at = constant.map_or(defect.at, |constant| Place { span: constant.span, ..defect.at });
-        let at_temperature = format!("at {} (T = {})", celsius(*wanted), figure(*wanted));
+        let at_temperature = format!("at {} (T = {wanted:.2})", celsius(*wanted));
         let message = if *own {
             format!("the constant has no finite value {at_temperature}")
         } else {

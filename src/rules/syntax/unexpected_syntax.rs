@@ -70,7 +70,9 @@ fn with_fixes(
 ) -> Finding<Place> {
     let at = finding.at;
     let code = |words: &str| -> Option<String> {
-        Some(words.strip_prefix('`')?.strip_suffix('`')?.trim().to_owned())
+        let inside = words.strip_prefix('`')?.strip_suffix('`')?.trim();
+        // Several in one expectation are no one thing to write.
+        (!inside.contains('`')).then(|| inside.to_owned())
     };
     // A formula on its own: `[X]`, `{X}` and, after the two, a gas.
     if expected.first().is_some_and(|first| *first == format!("`[{text}]`")) {
