@@ -4,6 +4,7 @@
 mod amounts;
 pub mod belong;
 pub mod case;
+mod charge_reading;
 mod constant;
 pub mod defect;
 pub mod effective;

@@ -43,7 +43,7 @@ expectations! {
     Model "an activity model such as davies",
     Set "the name of a set such as aqueous, or a path in double quotes",
     Subject "a quantity such as pH, [NH4+] or CO2(g)",
-    Removed "what to take away, such as `hold pH`",
+    Removed "something to take away such as `hold pH`",
     Kind "`charge`, `protons` or a component",
     Term "a term such as [NH4+], total NH3, added NaOH or 2 mmol/L",
     Over "pH, temperature, a reagent, or `total` and a component",
