@@ -78,13 +78,14 @@ pub(super) fn name<'s>(expect: Expect) -> impl Rule<'s, Name> + Copy {
 /// The text between quotes; the range is that of the quotes too.
 pub(super) fn string<'s>() -> impl Rule<'s, Name> + Copy {
     select_ref(move |lexeme: &'s Lexeme<'s>, _: &mut _| {
-        const QUOTES: [char; 4] = ['"', '“', '”', '„'];
-        let text = match lexeme.token {
-            Token::String => lexeme.text.trim_matches(QUOTES),
-            Token::UnclosedString => lexeme.text.trim_start_matches(QUOTES).trim_end(),
+        let mut inside = lexeme.text.chars();
+        inside.next();
+        match lexeme.token {
+            Token::String => inside.next_back().is_some(),
+            Token::UnclosedString => true,
             _ => return None,
         };
-        Some(Spanned::new(text.to_owned(), lexeme.span()))
+        Some(Spanned::new(inside.as_str().to_owned(), lexeme.span()))
     })
     .labelled(Expect::Text)
 }

@@ -5,11 +5,11 @@
 use chumsky::prelude::*;
 use chumsky::primitive::select_ref;
 
-use super::basic::{Lexeme, Rule, sign, word};
+use super::basic::{Lexeme, Rule, sign, span_of, word};
 use super::failure::{Expect, Failure};
 use super::quantity::number;
 use crate::text::problem::SyntaxProblemKind;
-use crate::text::span::Span;
+use crate::text::span::{Span, Spanned};
 use crate::text::token::Token;
 use crate::text::tree::{Expression, Operator};
 
@@ -18,14 +18,20 @@ pub const DEEPEST: usize = 64;
 /// How many operators an expression may hold.
 pub const LONGEST: usize = 256;
 
-/// Reads a whole expression. `start` is the place before it.
-pub(super) fn read(lexemes: &[Lexeme<'_>], start: Span) -> Result<Expression, Failure> {
+/// Reads an expression of `length` tokens at the start of `rest`. `before` is the range
+/// of what stands before it.
+pub(super) fn read(
+    rest: &[Lexeme<'_>],
+    length: usize,
+    before: Span,
+) -> Result<Spanned<Expression>, Failure> {
+    let lexemes = rest.get(..length).unwrap_or(rest);
     measure(lexemes)?;
     let (expression, failures) = expression().parse(lexemes).into_output_errors();
     match (expression, failures.into_iter().next()) {
-        (Some(expression), None) => Ok(expression),
+        (Some(expression), None) => Ok(Spanned::new(expression, span_of(lexemes))),
         (_, Some(failure)) => {
-            let problem = failure.into_problem(lexemes, start);
+            let problem = failure.into_problem(rest, before);
             Err(Failure::problem(problem.span, problem.kind))
         }
         (None, None) => Err(Failure::at(0, Expect::Operand)),

@@ -10,6 +10,7 @@ use super::basic::{Lexeme, Tokens};
 use crate::text::number::shortened;
 use crate::text::problem::{SyntaxProblem, SyntaxProblemKind};
 use crate::text::span::Span;
+use crate::text::token::Token;
 
 macro_rules! expectations {
     ($($name:ident $words:literal,)*) => {
@@ -29,7 +30,8 @@ macro_rules! expectations {
 expectations! {
     Number "a number",
     WholeNumber "a whole number",
-    Quantity "a number with its unit",
+    Amount "an amount such as 12 mmol/L",
+    Temperature "a temperature such as 25 °C",
     Unit "a unit such as mmol/L",
     Percent "`%`",
     Formula "a formula such as NH4+",
@@ -115,21 +117,74 @@ impl Failure {
         if let Some(problem) = self.problem {
             return *problem;
         }
-        let (span, found) = match lexemes.get(self.at) {
-            Some(lexeme) => (lexeme.span(), shortened(lexeme.text)),
-            None => {
-                let end = lexemes.last().map_or(start, Lexeme::span).end;
-                (Span { start: end, end }, String::new())
-            }
+        let Some(lexeme) = lexemes.get(self.at) else {
+            let end = lexemes.last().map_or(start, Lexeme::span).end;
+            let kind =
+                SyntaxProblemKind::Unexpected { found: String::new(), expected: self.words(true) };
+            return SyntaxProblem { span: Span { start: end, end }, kind };
         };
-        let expected = WORDS
-            .iter()
-            .filter(|(expect, _)| self.expected & expect.bit() != 0)
-            .filter(|(expect, _)| !(found.is_empty() && *expect == Expect::End))
-            .map(|(_, words)| (*words).to_owned())
-            .collect();
-        SyntaxProblem { span, kind: SyntaxProblemKind::Unexpected { found, expected } }
+        if let Some(number) = self.at.checked_sub(1).and_then(|before| lexemes.get(before))
+            && number.token == Token::Number
+            && lexeme.token == Token::Electron
+            && number.touches(lexeme)
+        {
+            // `1e-`: an exponent without digits, where no electron can stand.
+            let text = format!("{}{}", number.text, lexeme.text);
+            let kind = SyntaxProblemKind::BrokenNumber { text };
+            return SyntaxProblem { span: number.span().to(lexeme.span()), kind };
+        }
+        let expected = match self.nearest(lexeme) {
+            Some(word) => vec![format!("`{word}`")],
+            None => self.words(false),
+        };
+        let kind = SyntaxProblemKind::Unexpected { found: shortened(lexeme.text), expected };
+        SyntaxProblem { span: lexeme.span(), kind }
     }
+
+    fn expects(&self, expect: Expect) -> bool {
+        self.expected & expect.bit() != 0
+    }
+
+    fn words(&self, at_end: bool) -> Vec<String> {
+        WORDS
+            .iter()
+            .filter(|(expect, _)| self.expects(*expect) && !(at_end && *expect == Expect::End))
+            .map(|(_, words)| (*words).to_owned())
+            .collect()
+    }
+
+    /// The word that may stand here and that a misspelt one most likely means.
+    fn nearest(&self, lexeme: &Lexeme<'_>) -> Option<&'static str> {
+        if lexeme.token != Token::Word {
+            return None;
+        }
+        let words: &[&str] = if self.expects(Expect::Clause) {
+            &["pKa", "pKsp", "pK", "log", "enthalpy", "heat", "valid", "source"]
+        } else if self.expects(Expect::Subject) {
+            &["alkalinity", "ionic", "buffer", "saturation", "fraction", "charge", "total", "dose"]
+        } else if self.expects(Expect::Kind) {
+            &["charge", "protons"]
+        } else {
+            return None;
+        };
+        nearest(lexeme.text, words)
+    }
+}
+
+/// The word of a list that a misspelt word is nearest to, where one is near.
+pub(super) fn nearest(word: &str, words: &[&'static str]) -> Option<&'static str> {
+    /// No word of the language is longer, nor would more letters make it nearer.
+    const LONGEST: usize = 24;
+    if word.len() > LONGEST {
+        return None;
+    }
+    let lower = word.to_lowercase();
+    words
+        .iter()
+        .map(|known| (strsim::damerau_levenshtein(&lower, &known.to_lowercase()), *known))
+        .filter(|(distance, known)| *distance <= known.len() / 3)
+        .min_by_key(|(distance, _)| *distance)
+        .map(|(_, known)| known)
 }
 
 impl<'s> Error<'s, Tokens<'s>> for Failure {

@@ -143,7 +143,7 @@ fn parse<'t>(text: &'t str, stray: bool, lexemes: &mut Vec<Lexeme<'t>>) -> Parse
                 problems.append(&mut broken);
             } else {
                 let word = lexemes.first().map_or("", |first| first.text);
-                let nearest = nearest_keyword(word);
+                let nearest = failure::nearest(word, &KEYWORDS);
                 let kind = SyntaxProblemKind::UnknownStatement { word: shortened(word), nearest };
                 problems.push(SyntaxProblem { span: first, kind });
             }
@@ -162,22 +162,6 @@ fn parse<'t>(text: &'t str, stray: bool, lexemes: &mut Vec<Lexeme<'t>>) -> Parse
 fn hides(broken: &[SyntaxProblem], problem: &SyntaxProblem) -> bool {
     matches!(problem.kind, SyntaxProblemKind::Unexpected { .. })
         && broken.iter().any(|broken| broken.span.start == problem.span.start)
-}
-
-/// The statement that a word most likely stands for.
-fn nearest_keyword(word: &str) -> Option<&'static str> {
-    /// No keyword is longer, nor would more letters make it nearer.
-    const LONGEST_WORD: usize = 24;
-    if word.len() > LONGEST_WORD {
-        return None;
-    }
-    let word = word.to_lowercase();
-    KEYWORDS
-        .into_iter()
-        .map(|keyword| (strsim::damerau_levenshtein(&word, keyword), keyword))
-        .filter(|(distance, keyword)| *distance <= keyword.len() / 3)
-        .min_by_key(|(distance, _)| *distance)
-        .map(|(_, keyword)| keyword)
 }
 
 fn hash(text: &str) -> u64 {

@@ -6,7 +6,6 @@ use chumsky::primitive::select_ref;
 use super::basic::{Extra, Lexeme, Rule, Tokens, name, sign, span_of, word};
 use super::failure::{Expect, Failure};
 use crate::text::number;
-use crate::text::problem::SyntaxProblemKind;
 use crate::text::span::Spanned;
 use crate::text::token::Token;
 use crate::text::tree::{Fraction, Name, Number, Quantity, Uncertainty};
@@ -76,8 +75,6 @@ enum Part<'s> {
     Uncertainty(Uncertainty, &'s Lexeme<'s>),
     Unit(Name, &'s Lexeme<'s>),
     Basis(Name, &'s Lexeme<'s>),
-    /// `1e-` touches: an exponent without digits, not an electron.
-    Exponent(&'s Lexeme<'s>),
 }
 
 /// A quantity while it is read, with the first thing that is wrong with it.
@@ -111,11 +108,6 @@ impl Reading {
             Part::Uncertainty(_, at) | Part::Unit(_, at) | Part::Basis(_, at) => {
                 Some(Failure::unexpected(at, Expect::End))
             }
-            Part::Exponent(at) => {
-                let span = quantity.number.span.to(at.span());
-                let text = format!("{}{}", quantity.number.text, at.text);
-                Some(Failure::problem(span, SyntaxProblemKind::BrokenNumber { text }))
-            }
         };
         self.failure = self.failure.or(failure);
         self
@@ -134,7 +126,7 @@ pub(super) fn unsigned_quantity<'s>() -> impl Rule<'s, Quantity> {
 
 fn with_parts<'s>(number: impl Rule<'s, Number>) -> impl Rule<'s, Quantity> {
     let uncertainty = sign(Token::PlusMinus, Expect::Nothing)
-        .then(super::quantity::number())
+        .then(self::number())
         .then(lone_percent().or_not())
         .map(|((at, number), percent)| {
             Part::Uncertainty(Uncertainty { number, percent: percent.is_some() }, at)
@@ -142,23 +134,20 @@ fn with_parts<'s>(number: impl Rule<'s, Number>) -> impl Rule<'s, Quantity> {
     let basis = word("as", Expect::Nothing)
         .then(name(Expect::Basis))
         .map(|(at, basis)| Part::Basis(basis, at));
-    let exponent = sign(Token::Electron, Expect::Nothing).map(Part::Exponent);
-    let part =
-        choice((unit().map(|(unit, at)| Part::Unit(unit, at)), uncertainty, basis, exponent));
+    let unit = |expect| unit(expect).map(|(unit, at)| Part::Unit(unit, at));
     number
         .map(|number| {
             let span = number.span;
             let quantity = Quantity { number, uncertainty: None, unit: None, basis: None, span };
             Reading { quantity, failure: None }
         })
-        .foldl(part.repeated(), Reading::with)
-        .validate(|reading, extra, emitter| {
-            let Reading { mut quantity, failure } = reading;
-            quantity.span = span_of(extra.slice());
-            if let Some(failure) = failure {
-                emitter.emit(failure);
-            }
-            quantity
+        .foldl(uncertainty.or_not(), Reading::with)
+        .foldl(unit(Expect::Unit).or_not(), Reading::with)
+        .foldl(choice((uncertainty, unit(Expect::Nothing), basis)).repeated(), Reading::with)
+        .map_with(|reading, extra| (reading, span_of(extra.slice())))
+        .try_map(|(reading, span), _| match reading.failure {
+            None => Ok(Quantity { span, ..reading.quantity }),
+            Some(failure) => Err(failure),
         })
 }
 
@@ -178,7 +167,7 @@ fn lone_percent<'s>() -> impl Rule<'s, ()> + Copy {
 }
 
 /// A unit as written, whether or not there is one of that name.
-pub(super) fn unit<'s>() -> impl Rule<'s, (Name, &'s Lexeme<'s>)> + Copy {
+fn unit<'s>(expect: Expect) -> impl Rule<'s, (Name, &'s Lexeme<'s>)> + Copy {
     custom::<_, Tokens<'s>, _, Extra>(|input| {
         let start = input.cursor();
         let rest: &'s [Lexeme<'s>] = input.slice_from(&start..);
@@ -203,7 +192,7 @@ pub(super) fn unit<'s>() -> impl Rule<'s, (Name, &'s Lexeme<'s>)> + Copy {
         }
         Ok((Spanned::new(text, span_of(parts)), first))
     })
-    .labelled(Expect::Unit)
+    .labelled(expect)
 }
 
 /// How many tokens make the unit that `rest` starts with.

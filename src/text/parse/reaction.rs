@@ -4,7 +4,7 @@
 use chumsky::prelude::*;
 use chumsky::primitive::select_ref;
 
-use super::basic::{Lexeme, Rule, clause_end, sign, span_of, string, word};
+use super::basic::{Extra, Lexeme, Rule, Tokens, clause_end, sign, span_of, string, word};
 use super::expression;
 use super::failure::{Expect, Failure};
 use super::quantity::quantity;
@@ -13,7 +13,7 @@ use crate::text::problem::SyntaxProblemKind;
 use crate::text::span::{Span, Spanned};
 use crate::text::token::Token;
 use crate::text::tree::{
-    Constant, ConstantKind, ConstantValue, Expression, Name, Quantity, Reaction, Statement,
+    Constant, ConstantKind, ConstantValue, Name, Quantity, Reaction, Statement,
 };
 
 #[derive(Clone)]
@@ -170,19 +170,20 @@ fn of_temperature<'s>() -> impl Rule<'s, Clause> {
     let kind = word("log", Expect::Clause)
         .ignore_then(named("K(T)").or(named("K").ignore_then(named("(T)"))))
         .map_with(|(), extra| Spanned::new(ConstantKind::LogKOfT, span_of(extra.slice())));
-    let body = select_ref(|lexeme: &'s Lexeme<'s>, _: &mut _| {
-        (lexeme.token != Token::Comma).then_some(())
-    })
-    .repeated()
-    .to_slice();
+    // The body with what follows it, so that a problem at its end can say what is there.
+    let body = custom::<_, Tokens<'s>, _, Extra>(|input| {
+        let start = input.cursor();
+        let rest: Tokens<'s> = input.slice_from(&start..);
+        let length = rest.iter().take_while(|lexeme| lexeme.token != Token::Comma).count();
+        for _ in 0..length {
+            input.skip();
+        }
+        Ok((rest, length))
+    });
     kind.then_ignore(sign(Token::Equals, Expect::Equals)).then(body).validate(
-        |(kind, lexemes): (_, &[Lexeme<'_>]), _, emitter| {
-            let start = Span { start: kind.span.end, end: kind.span.end };
-            match expression::read(lexemes, start) {
-                Ok(expression) => {
-                    let value: Spanned<Expression> = Spanned::new(expression, span_of(lexemes));
-                    Clause::Constant(kind, ConstantValue::Expression(value))
-                }
+        |(kind, (rest, length)): (Spanned<ConstantKind>, (Tokens<'s>, usize)), _, emitter| {
+            match expression::read(rest, length, kind.span) {
+                Ok(expression) => Clause::Constant(kind, ConstantValue::Expression(expression)),
                 Err(failure) => {
                     emitter.emit(failure);
                     Clause::Broken

@@ -46,11 +46,13 @@ pub(super) fn read(lexemes: &[Lexeme<'_>], problems: &mut Vec<SyntaxProblem>) ->
     Some(match first.text {
         "problem" => run.parse(string().map(|title| Statement::Problem { title })),
         "use" => run.parse(used().map(Statement::Use)),
-        "temperature" => run.parse(quantity().map(|value| Statement::Temperature { value })),
+        "temperature" => run.parse(
+            quantity().labelled(Expect::Temperature).map(|value| Statement::Temperature { value }),
+        ),
         "activity" => run.parse(any_word(Expect::Model).map(|model| Statement::Activity { model })),
         "ionic" => run.parse(
             word("strength", Expect::Strength)
-                .ignore_then(quantity())
+                .ignore_then(quantity().labelled(Expect::Amount))
                 .map(|value| Statement::IonicStrength { value }),
         ),
         "group" => run.parse(group()),
@@ -59,7 +61,7 @@ pub(super) fn read(lexemes: &[Lexeme<'_>], problems: &mut Vec<SyntaxProblem>) ->
         "total" => run.parse(
             name(Expect::Formula)
                 .then_ignore(sign(Token::Equals, Expect::Equals))
-                .then(quantity())
+                .then(quantity().labelled(Expect::Amount))
                 .map(|(component, value)| Statement::Total { component, value }),
         ),
         "add" => run.parse(add()),
@@ -137,7 +139,7 @@ fn add<'s>() -> impl Rule<'s, Statement> {
         .ignore_then(word("giving", Expect::Giving))
         .ignore_then(members());
     name(Expect::Formula)
-        .then(quantity())
+        .then(quantity().labelled(Expect::Amount))
         .then(giving.or_not())
         .map(|((reagent, amount), giving)| Statement::Add { reagent, amount, giving })
 }

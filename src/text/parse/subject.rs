@@ -40,11 +40,9 @@ fn subject<'s>() -> impl Rule<'s, Spanned<Subject>> {
             .then_ignore(sign(close, expect))
             .map(subject)
     };
-    let pressure = name(Expect::Subject).validate(|name: Name, _, emitter| {
-        if let Some(failure) = not_a_gas(&name) {
-            emitter.emit(failure);
-        }
-        Subject::Pressure(name)
+    let pressure = name(Expect::Subject).try_map(|name: Name, _| match not_a_gas(&name) {
+        None => Ok(Subject::Pressure(name)),
+        Some(failure) => Err(failure),
     });
     choice((
         single,

@@ -25,44 +25,66 @@ pub(super) fn members<'s>() -> impl Rule<'s, Vec<Member>> {
         .validate(|(first, more), _, emitter| {
             let mut members = Vec::with_capacity(1 + more.len());
             for (plus, (coefficient, name, span)) in std::iter::once(first).chain(more) {
-                if let Some(failure) = plus.and_then(|plus| crowded(plus, members.last(), span)) {
+                if let Some(plus) = plus
+                    && let Some(failure) =
+                        crowded(plus, members.last(), coefficient.as_ref(), &name)
+                {
                     emitter.emit(failure);
                 }
-                let parts = split(&name);
-                if parts.len() > 1 {
-                    let fixed = fixed(coefficient.as_ref(), &parts);
-                    emitter.emit(Failure::problem(
-                        span,
-                        SyntaxProblemKind::NoSpaceRoundPlus { fixed },
-                    ));
-                    members.extend(parts.into_iter().enumerate().map(|(i, mut part)| {
-                        if i == 0 && coefficient.is_some() {
-                            part.coefficient = coefficient.clone();
-                            part.span = span.to(part.span);
-                        }
-                        part
-                    }));
-                } else {
+                let mut parts = split(&name);
+                if parts.len() < 2 {
                     members.push(Member { coefficient, name, span });
+                    continue;
                 }
+                if let Some(first) = parts.first_mut() {
+                    first.coefficient = coefficient;
+                    first.span = Span { start: span.start, end: first.name.span.end };
+                }
+                let fixed: Vec<String> = parts
+                    .iter()
+                    .map(|part| joined(part.coefficient.as_ref(), &part.name))
+                    .collect();
+                let kind = SyntaxProblemKind::NoSpaceRoundPlus { fixed: fixed.join(" + ") };
+                emitter.emit(Failure::problem(span, kind));
+                members.append(&mut parts);
             }
             members
         })
 }
 
 /// A plus that stands on its own but touches what it joins.
-fn crowded(plus: &Lexeme<'_>, before: Option<&Member>, after: Span) -> Option<Failure> {
-    let before = before.filter(|before| before.span.end == plus.start);
-    let right = after.start == plus.end;
-    if before.is_none() && !right {
+fn crowded(
+    plus: &Lexeme<'_>,
+    before: Option<&Member>,
+    coefficient: Option<&Spanned<Fraction>>,
+    after: &Name,
+) -> Option<Failure> {
+    let start = coefficient.map_or(after.span, |coefficient| coefficient.span);
+    let left = before.filter(|before| before.span.end == plus.start);
+    let right = plus.end == start.start;
+    if left.is_none() && !right {
         return None;
     }
-    let span = before.map_or(plus.span(), |before| before.name.span.to(plus.span()));
-    let fixed = match before {
-        Some(before) => format!("{} +{}", before.name.value, if right { " " } else { "" }),
-        None => "+ ".to_owned(),
-    };
+    let mut span = plus.span();
+    let mut fixed = String::new();
+    if let Some(left) = left {
+        span = left.name.span.to(span);
+        fixed = format!("{} ", left.name.value);
+    }
+    fixed.push('+');
+    if right {
+        span = span.to(after.span);
+        fixed.push(' ');
+        fixed.push_str(&joined(coefficient, after));
+    }
     Some(Failure::problem(span, SyntaxProblemKind::NoSpaceRoundPlus { fixed }))
+}
+
+fn joined(coefficient: Option<&Spanned<Fraction>>, name: &Name) -> String {
+    match coefficient {
+        Some(coefficient) => format!("{} {}", coefficient.value, name.value),
+        None => name.value.clone(),
+    }
 }
 
 /// The formulas of a run such as `NH3+H+` or `Fe^3++2Cl-`: one where it is no sum.
@@ -109,20 +131,6 @@ fn starts_formula(text: &str) -> bool {
         Some(c) => c.is_uppercase(),
         None => false,
     }
-}
-
-fn fixed(coefficient: Option<&Spanned<Fraction>>, parts: &[Member]) -> String {
-    let mut text = coefficient.map_or(String::new(), |c| format!("{} ", c.value));
-    for (i, part) in parts.iter().enumerate() {
-        if i > 0 {
-            text.push_str(" + ");
-        }
-        if let Some(coefficient) = &part.coefficient {
-            text.push_str(&format!("{} ", coefficient.value));
-        }
-        text.push_str(&part.name.value);
-    }
-    text
 }
 
 /// One side of a balance: `[NH4+] + 2 [SO4^2-] - total NH3`.
