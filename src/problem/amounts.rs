@@ -12,7 +12,7 @@ use super::scope::PROTON;
 use super::sparse::{Row, add_scaled};
 use super::split::{Split, split};
 use crate::chemistry::formula::Formula;
-use crate::text::tree::{BalanceKind, Member, Name, Quantity, Statement, Subject, TermKind};
+use crate::text::tree::{Member, Name, Quantity, Statement};
 
 /// Reads `total` and `add`.
 pub fn read(case: &mut CaseResolver, problem: &mut Problem) {
@@ -243,35 +243,12 @@ fn is_spoken_of(case: &CaseResolver, component: &str) -> bool {
                 spoken |= made.row.iter().any(|&(k, _)| k == j);
             }
         };
-        names_in_use(written.statement(), &mut look);
+        if matches!(
+            written.statement(),
+            Statement::Hold { .. } | Statement::Expect { .. } | Statement::Balance { .. }
+        ) {
+            written.statement().each_formula(&mut look);
+        }
     }
     spoken
-}
-
-/// The names in statements that use species rather than define them.
-fn names_in_use(statement: &Statement, look: &mut dyn FnMut(&Name)) {
-    let subject = |subject: &Subject, look: &mut dyn FnMut(&Name)| match subject {
-        Subject::Concentration(name)
-        | Subject::Activity(name)
-        | Subject::Pressure(name)
-        | Subject::Total(name)
-        | Subject::Fraction(name)
-        | Subject::SaturationIndex(name) => look(name),
-        _ => {}
-    };
-    match statement {
-        Statement::Hold { subject: what, .. } => subject(&what.value, look),
-        Statement::Expect { subject: what, .. } => subject(&what.value, look),
-        Statement::Balance { kind, left, right, .. } => {
-            if let BalanceKind::Component(name) = &kind.value {
-                look(name);
-            }
-            for term in left.iter().chain(right) {
-                if let TermKind::Concentration(name) | TermKind::Total(name) = &term.what {
-                    look(name);
-                }
-            }
-        }
-        _ => {}
-    }
 }

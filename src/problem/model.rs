@@ -215,3 +215,19 @@ impl Problem {
         &self.scope.stoichiometry.species[row].name
     }
 }
+
+impl Limit {
+    /// Whether a value in base units meets it.
+    pub fn is_met_by(&self, value: f64) -> bool {
+        match *self {
+            Limit::Within { value: wanted, tolerance } => (value - wanted).abs() <= tolerance,
+            Limit::Below { value: limit, or_equal } => {
+                value < limit || (or_equal && value == limit)
+            }
+            Limit::Above { value: limit, or_equal } => {
+                value > limit || (or_equal && value == limit)
+            }
+            Limit::Between { low, high } => low <= value && value <= high,
+        }
+    }
+}

@@ -19,3 +19,34 @@ pub struct Hover {
     pub range: Range<usize>,
     pub markdown: String,
 }
+
+/// An entry of the outline.
+#[derive(Clone, Debug, PartialEq)]
+pub struct Symbol {
+    pub name: String,
+    /// A few words after the name, such as an amount.
+    pub detail: Option<String>,
+    pub kind: SymbolKind,
+    /// The whole statement, or the whole case.
+    pub range: Range<usize>,
+    /// The part to jump to; inside `range`.
+    pub selection: Range<usize>,
+    pub children: Vec<Symbol>,
+}
+
+/// What an outline entry stands for; the server picks the editor's icon.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub enum SymbolKind {
+    Problem,
+    Import,
+    Setting,
+    Group,
+    Component,
+    Reaction,
+    Amount,
+    Hold,
+    Balance,
+    Expectation,
+    Curve,
+    Case,
+}

@@ -2,6 +2,7 @@
 
 mod layout;
 pub mod lines;
+pub mod names;
 pub mod number;
 pub mod parse;
 pub mod print;

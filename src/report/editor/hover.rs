@@ -1,0 +1,213 @@
+//! What is known of the thing under the cursor: a species, or a reaction.
+
+use num_traits::ToPrimitive;
+
+use crate::chemistry::formula::{Phase, canonical};
+use crate::equilibrium::quantities::Solved;
+use crate::problem::model::Problem;
+use crate::problem::reaction::{Origin, Reaction};
+use crate::problem::scope::PROTON;
+use crate::report::figures::{
+    celsius, charge, concentration, decimals, log10_of_exp, percent, significant,
+};
+use crate::report::inline::Hover;
+use crate::rules::check::Checked;
+use crate::rules::outcome::Outcome;
+use crate::text::span::{Part, Span};
+use crate::text::tree::{ConstantKind, Name, Placed, Statement};
+
+/// What is known of the thing at an offset of the file, or just before it.
+pub fn hover(checked: &Checked, offset: usize) -> Option<Hover> {
+    let (section, index, placed) = statement_at(checked, offset)?;
+    let outcome = &checked.outcomes[section];
+    let inside = (offset - placed.start) as u32;
+    let mut named: Option<&Name> = None;
+    placed.parsed.statement.each_formula(&mut |name| {
+        // At a border the later name wins: it is the one the cursor stands on.
+        if name.span.start <= inside && inside <= name.span.end {
+            named = Some(name);
+        }
+    });
+    let range = |span: Span| placed.start + span.start as usize..placed.start + span.end as usize;
+    if let Some(name) = named
+        && let Some(markdown) = species(outcome, &canonical(&name.value))
+    {
+        return Some(Hover { range: range(name.span), markdown });
+    }
+    if let Statement::Reaction(tree) = &placed.parsed.statement
+        && tree.equation.start <= inside
+    {
+        let part = if section == 0 { Part::Base } else { Part::Case };
+        let scope = &outcome.problem.scope;
+        let own = scope.reactions.iter().enumerate().find(|(_, reaction)| {
+            reaction
+                .origin
+                .own()
+                .is_some_and(|at| at.section == part && at.statement as usize == index)
+        });
+        if let Some((r, reaction)) = own {
+            let markdown = reaction_words(outcome, r, reaction);
+            return Some(Hover { range: range(tree.equation), markdown });
+        }
+    }
+    None
+}
+
+fn statement_at(checked: &Checked, offset: usize) -> Option<(usize, usize, &Placed)> {
+    let pieces = &checked.document.pieces;
+    let at = pieces.partition_point(|piece| piece.end <= offset).min(pieces.len().checked_sub(1)?);
+    // Just behind the last character of a statement still means that statement.
+    let piece = [at, at.saturating_sub(1)]
+        .into_iter()
+        .map(|at| &pieces[at])
+        .find(|piece| piece.statement.is_some() && piece.start <= offset && offset <= piece.end)?;
+    let (section, index) = piece.statement?;
+    let (section, index) = (section as usize, index as usize);
+    Some((section, index, &checked.document.sections[section].statements[index]))
+}
+
+/// Name, charge, molar mass; amount, share and constants where it is solved.
+fn species(outcome: &Outcome, name: &str) -> Option<String> {
+    let problem = &outcome.problem;
+    let scope = &problem.scope;
+    let reagent = problem.reagents.iter().find(|reagent| reagent.formula.name == name);
+    let formula = match scope.find(name) {
+        Some(s) => scope.species[s].clone(),
+        None => reagent?.formula.clone(),
+    };
+    let mut lines = Vec::new();
+    let mut head = format!("**{name}**");
+    let component = scope.component(name);
+    if let Some(title) = component.and_then(|j| scope.components[j].title.as_ref()) {
+        head += &format!(" · {title}");
+    }
+    if formula.charge != 0 {
+        head += &format!(" · charge {}", charge(formula.charge));
+    }
+    if let Some(mass) = formula.molar_mass() {
+        head += &format!(" · {} g/mol", decimals(mass, 3));
+    }
+    lines.push(head);
+    if let Some(reagent) = reagent {
+        lines.push(format!("put in: {}", concentration(reagent.amount, problem.scale)));
+    }
+    match (scope.find(name), outcome.solved()) {
+        (Some(s), Some(solved)) if scope.belongs(s) => {
+            lines.extend(state(problem, solved, s));
+            if let Some(j) = component.filter(|&j| j != PROTON) {
+                let total = concentration(solved.total(j), problem.scale);
+                lines.push(format!("total over all its forms: {total}"));
+            }
+        }
+        (Some(s), _) if !scope.belongs(s) => {
+            lines.push("not part of this problem: no listed component leads to it".into());
+        }
+        _ => {}
+    }
+    if let Some(s) = scope.find(name)
+        && let Some(made) = &scope.belonging.made[s]
+    {
+        for &(r, _) in made.combination.iter().take(4) {
+            let reaction = &scope.reactions[r];
+            lines.push(format!("`{}`: {}", reaction.equation, constant(problem, r, reaction)));
+            lines.push(whence(reaction));
+        }
+    }
+    Some(lines.join("\n\n"))
+}
+
+/// Concentration, activity and share of a dissolved species; pressure of a gas; saturation
+/// of a solid.
+fn state(problem: &Problem, solved: &Solved, s: usize) -> Vec<String> {
+    let scope = &problem.scope;
+    let Some(ln_activity) = solved.ln_activity(problem, s) else { return Vec::new() };
+    match &scope.species[s].phase {
+        Phase::Gas => {
+            vec![format!("pressure in equilibrium: {} atm", significant(ln_activity.exp(), 3))]
+        }
+        Phase::Solid(_) => {
+            vec![format!("saturation index: {}", decimals(log10_of_exp(ln_activity), 2))]
+        }
+        _ => {
+            let Some(row) = scope.row_of(s) else { return Vec::new() };
+            let mut words = concentration(solved.answer.concentrations[row], problem.scale);
+            words += &format!(
+                ", activity {} (γ {})",
+                significant(ln_activity.exp(), 3),
+                decimals(solved.answer.ln_gammas[row].exp(), 3),
+            );
+            let mut lines = vec![words];
+            let shares = scope.stoichiometry.species[row].row.iter().map(|&(j, _)| j);
+            for j in shares.filter(|&j| j != PROTON) {
+                let total = solved.total(j);
+                if let Some((_, share)) = solved.shares(j).find(|&(i, _)| i == row)
+                    && total > 0.0
+                {
+                    let component = &scope.components[j].formula.name;
+                    lines.push(format!("{} of {component}", percent(share / total)));
+                }
+            }
+            lines
+        }
+    }
+}
+
+/// The constant in the word it was given with, at the problem's temperature.
+fn constant(problem: &Problem, r: usize, reaction: &Reaction) -> String {
+    let log_k = problem.log_k[r];
+    let word = match reaction.constant.as_ref().map(|constant| constant.kind) {
+        Some(ConstantKind::PKa) => format!("pKa {}", decimals(-log_k, 3)),
+        Some(ConstantKind::PKsp) => format!("pKsp {}", decimals(-log_k, 3)),
+        Some(ConstantKind::PK) => format!("pK {}", decimals(-log_k, 3)),
+        Some(ConstantKind::LogBeta) => format!("log β {}", decimals(log_k, 3)),
+        _ => format!("log K {}", decimals(log_k, 3)),
+    };
+    format!("{word} at {}", celsius(problem.kelvin))
+}
+
+/// Where a reaction's constant comes from.
+fn whence(reaction: &Reaction) -> String {
+    let source = reaction.source.as_deref().unwrap_or("no source is given");
+    match &reaction.origin {
+        Origin::Own(_) => format!("source: {source}"),
+        other => format!("source: {source}, by {}", other.words()),
+    }
+}
+
+fn reaction_words(outcome: &Outcome, r: usize, reaction: &Reaction) -> String {
+    let problem = &outcome.problem;
+    let mut lines = vec![format!("`{}`", reaction.equation)];
+    if reaction.constant.is_some() {
+        if problem.scope.belonging.used[r] {
+            let mut words = constant(problem, r, reaction);
+            if let Some(u) = reaction.constant.as_ref().and_then(|constant| constant.uncertainty) {
+                words += &format!(", ± {}", significant(u, 2));
+            }
+            lines.push(words);
+        } else {
+            lines.push("not part of this problem: no listed component leads to it".into());
+        }
+    }
+    if let Some(solved) = outcome.solved().filter(|_| problem.scope.belonging.used[r]) {
+        let shift: f64 = reaction
+            .participants
+            .iter()
+            .filter_map(|participant| {
+                let s = problem.scope.find(&participant.formula.name)?;
+                let row = problem.scope.row_of(s)?;
+                Some(participant.coefficient.to_f64()? * solved.answer.ln_gammas[row])
+            })
+            .sum();
+        let ionic = concentration(solved.answer.ionic_strength, problem.scale);
+        let log_k = problem.log_k[r] - log10_of_exp(shift);
+        lines.push(format!("in concentrations at I {ionic}: log K {}", decimals(log_k, 3)));
+    }
+    if let Some(enthalpy) = reaction.enthalpy {
+        lines.push(format!("enthalpy {} kJ/mol", significant(enthalpy / 1000.0, 4)));
+    }
+    if let Some((low, high)) = reaction.valid {
+        lines.push(format!("valid {} to {}", celsius(low), celsius(high)));
+    }
+    lines.push(whence(reaction));
+    lines.join("\n\n")
+}
