@@ -6,6 +6,7 @@ use clap::{Parser, Subcommand};
 
 mod check;
 mod library;
+mod serve;
 mod terminal;
 
 /// Checks, balances, solves and explains chemical-equilibrium problem files.
@@ -19,11 +20,13 @@ struct Arguments {
 #[derive(Subcommand)]
 enum Command {
     Check(check::Arguments),
+    Serve(serve::Arguments),
 }
 
 /// Runs the command that the arguments name.
 pub fn run() -> ExitCode {
     match Arguments::parse().command {
         Command::Check(arguments) => check::run(&arguments),
+        Command::Serve(arguments) => serve::run(&arguments),
     }
 }

@@ -1,0 +1,118 @@
+//! What was put in: the amounts behind the constants of balances.
+
+use num_rational::Rational64;
+use num_traits::ToPrimitive;
+
+use super::Part;
+use super::exact::Exact;
+
+/// A row over the components: (index, coefficient), by rising index, no zeros.
+pub type Row = Vec<(usize, Rational64)>;
+
+/// The sources of every component. A component takes its amount from `totals`, or else
+/// from the reagents and held phases that bring it.
+#[derive(Clone, Debug, Default, PartialEq)]
+pub struct Recipe {
+    pub reagents: Vec<Reagent>,
+    /// Of each component: its total where one was given, mol per litre or kilogram.
+    pub totals: Vec<Option<f64>>,
+    pub held: Vec<Held>,
+}
+
+#[derive(Clone, Debug, Default, PartialEq)]
+pub struct Reagent {
+    /// What one mole brings of each component, the proton included.
+    pub brings: Row,
+    /// The dissolved species that one mole splits into; empty where it splits into none.
+    pub forms: Vec<(usize, Rational64)>,
+    /// mol per litre or kilogram.
+    pub amount: f64,
+}
+
+/// A gas, a solid or a species whose activity or concentration is held.
+#[derive(Clone, Debug, Default, PartialEq)]
+pub struct Held {
+    /// What one mole of it is over the components.
+    pub brings: Row,
+    pub charge: i32,
+    /// What it brought, once that is known.
+    pub amount: Option<f64>,
+}
+
+impl Recipe {
+    /// The sources of a component's amount: `total = Σ coefficient · part`. Where it has
+    /// none, its total stands for itself.
+    pub fn sources(&self, component: usize) -> Vec<(Part, Rational64)> {
+        if self.totals.get(component).copied().flatten().is_some() {
+            return vec![(Part::Total(component), Rational64::from(1))];
+        }
+        let of = |row: &Row| {
+            let at = row.iter().find(|(column, _)| *column == component);
+            at.map(|(_, coefficient)| *coefficient)
+        };
+        let reagents = self.reagents.iter().enumerate().filter_map(|(index, reagent)| {
+            of(&reagent.brings).map(|coefficient| (Part::Added(index), coefficient))
+        });
+        let held = self.held.iter().enumerate().filter_map(|(index, held)| {
+            of(&held.brings).map(|coefficient| (Part::Held(index), coefficient))
+        });
+        let found: Vec<_> = reagents.chain(held).collect();
+        if found.is_empty() { vec![(Part::Total(component), Rational64::from(1))] } else { found }
+    }
+
+    /// The amount of a part, mol per litre or kilogram; none where it is not known.
+    pub fn value(&self, part: Part) -> Option<f64> {
+        match part {
+            Part::Added(reagent) => self.reagents.get(reagent).map(|reagent| reagent.amount),
+            Part::Held(held) => self.held.get(held)?.amount,
+            Part::Total(component) => match self.totals.get(component).copied().flatten() {
+                Some(total) => Some(total),
+                None => match self.sources(component).as_slice() {
+                    [(Part::Total(_), _)] => None,
+                    sources => self.sum(sources),
+                },
+            },
+        }
+    }
+
+    /// The sum of parts; none where one is not known.
+    pub fn sum(&self, parts: &[(Part, Rational64)]) -> Option<f64> {
+        let mut sum = 0.0;
+        for (part, coefficient) in parts {
+            sum += coefficient.to_f64()? * self.value(*part)?;
+        }
+        Some(sum)
+    }
+
+    /// Whether a component is known to be absent: its total is zero.
+    pub fn is_absent(&self, component: usize) -> bool {
+        let sources = self.sources(component);
+        // Amounts of either sign may cancel, and what is held may be anything.
+        sources.iter().all(|(part, _)| self.value(*part) == Some(0.0))
+    }
+
+    /// Parts written out in what the recipe itself gives: a component's total that
+    /// comes from reagents becomes their sum. None where a coefficient does not fit.
+    pub(crate) fn written_out<E: Exact>(&self, parts: &[(Part, E)]) -> Option<Vec<(Part, E)>> {
+        let mut out: Vec<(Part, E)> = Vec::new();
+        let mut add = |part: Part, more: E| {
+            match out.binary_search_by_key(&part, |(part, _)| *part) {
+                Ok(at) => out[at].1 = out[at].1.plus(&more)?,
+                Err(at) => out.insert(at, (part, more)),
+            }
+            Some(())
+        };
+        for (part, coefficient) in parts {
+            match part {
+                Part::Total(component) => {
+                    for (source, factor) in self.sources(*component) {
+                        add(source, coefficient.times(&E::of(factor)?)?)?;
+                    }
+                }
+                part => add(*part, coefficient.clone())?,
+            }
+        }
+        out.retain(|(_, coefficient)| !coefficient.is_zero());
+        Some(out)
+    }
+}

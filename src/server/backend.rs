@@ -1,0 +1,119 @@
+//! The protocol's requests, each a thin adapter: wait for the analysis of the text that
+//! the request was sent about, then let the feature's file make the answer.
+
+use std::panic::{AssertUnwindSafe, catch_unwind};
+use std::sync::Arc;
+
+use serde_json::to_value;
+use tower_lsp::jsonrpc::{Error, ErrorCode, Result};
+use tower_lsp::lsp_types::*;
+use tower_lsp::{LanguageServer, async_trait};
+
+use super::documents::{Checked, Missing};
+use super::session::Session;
+use super::{actions, diagnostics, hints, hover, order, symbols};
+
+pub struct Backend {
+    session: Arc<Session>,
+}
+
+impl Backend {
+    pub fn new(session: Arc<Session>) -> Self {
+        Self { session }
+    }
+
+    pub fn session(&self) -> &Arc<Session> {
+        &self.session
+    }
+
+    /// An answer about the document as it was when the request came in; none where it
+    /// is not open. Never about another text: where that has changed, the request ends.
+    async fn answer<T>(&self, make: impl FnOnce(&Checked) -> T) -> Result<Option<T>> {
+        let Some(snapshot) = order::snapshot() else { return Ok(None) };
+        let checked = self.session.documents.checked(snapshot).await.map_err(|why| match why {
+            Missing::Superseded => Error::content_modified(),
+            Missing::Failed => Error::internal_error(),
+        })?;
+        // Caught here as well as around the whole request, so that the library forgets
+        // the request's id.
+        catch_unwind(AssertUnwindSafe(|| make(&checked)))
+            .map(Some)
+            .map_err(|_| Error::internal_error())
+    }
+}
+
+#[async_trait]
+impl LanguageServer for Backend {
+    async fn initialize(&self, _: InitializeParams) -> Result<InitializeResult> {
+        Ok(InitializeResult {
+            capabilities: self.session.settings().capabilities(),
+            server_info: Some(ServerInfo {
+                name: env!("CARGO_PKG_NAME").into(),
+                version: Some(env!("CARGO_PKG_VERSION").into()),
+            }),
+        })
+    }
+
+    async fn initialized(&self, _: InitializedParams) {
+        if let Some(watches) = self.session.settings().watches() {
+            // A client that says no has no watches; there is nothing to do about it.
+            let _ = self.session.client.register_capability(vec![watches]).await;
+        }
+    }
+
+    async fn shutdown(&self) -> Result<()> {
+        Ok(())
+    }
+
+    async fn hover(&self, params: HoverParams) -> Result<Option<Hover>> {
+        let position = params.text_document_position_params.position;
+        let Session { analyser, .. } = &*self.session;
+        let settings = self.session.settings();
+        let hover =
+            self.answer(|checked| hover::hover(checked, position, &**analyser, settings)).await?;
+        Ok(hover.flatten())
+    }
+
+    async fn inlay_hint(&self, params: InlayHintParams) -> Result<Option<Vec<InlayHint>>> {
+        self.answer(|checked| hints::hints(checked, params.range, self.session.settings())).await
+    }
+
+    async fn document_symbol(
+        &self,
+        _: DocumentSymbolParams,
+    ) -> Result<Option<DocumentSymbolResponse>> {
+        self.answer(|checked| symbols::symbols(checked, self.session.settings())).await
+    }
+
+    async fn code_action(&self, params: CodeActionParams) -> Result<Option<CodeActionResponse>> {
+        self.answer(|checked| actions::actions(checked, &params, self.session.settings())).await
+    }
+
+    async fn diagnostic(
+        &self,
+        params: DocumentDiagnosticParams,
+    ) -> Result<DocumentDiagnosticReportResult> {
+        if !self.session.settings().pull {
+            return Err(Error::method_not_found());
+        }
+        let known = params.previous_result_id.as_deref();
+        let report = self
+            .answer(|checked| diagnostics::answer(checked.report.as_deref(), known))
+            .await
+            .map_err(|error| match error.code {
+                ErrorCode::ContentModified => server_cancelled(),
+                _ => error,
+            })?;
+        Ok(report.unwrap_or_else(|| diagnostics::answer(None, known)).into())
+    }
+}
+
+/// Invites the client to ask for the diagnostics of the text as it is now.
+fn server_cancelled() -> Error {
+    let data = DiagnosticServerCancellationData { retrigger_request: true };
+    Error {
+        code: ErrorCode::ServerError(-32802),
+        message: "Server cancelled".into(),
+        data: to_value(data).ok(),
+    }
+}
