@@ -68,6 +68,14 @@ impl<'a> Context<'a> {
         Some(Place { span: Span::new(at, at + name.len()), ..part })
     }
 
+    /// Where something stands that is about the problem as a whole: its title, or else the
+    /// first statement in force.
+    pub fn anchor(&self) -> Option<Place> {
+        let title = self.problem.title_at;
+        title.or_else(|| self.statements.first().map(|written| written.whole()))
+>>>>>>> rulesb
+    }
+
     /// The place just after a place.
     pub fn after(&self, place: Place) -> Place {
         Place { span: Span { start: place.span.end, end: place.span.end }, ..place }
