@@ -73,7 +73,6 @@ impl<'a> Context<'a> {
     pub fn anchor(&self) -> Option<Place> {
         let title = self.problem.title_at;
         title.or_else(|| self.statements.first().map(|written| written.whole()))
->>>>>>> rulesb
     }
 
     /// The place just after a place.
