@@ -4,11 +4,13 @@
 mod basis;
 mod coordinates;
 mod direction;
+pub mod dominance;
 mod exact;
 mod feasible;
 mod fixed;
 mod frame;
 mod ionic;
+mod line;
 mod newton;
 mod point;
 mod root;
