@@ -1,5 +1,6 @@
 //! How it is told: terminal text, JSON, SARIF, JUnit, and an editor's inline words.
 
+pub mod balance;
 pub mod check_json;
 pub mod editor;
 pub mod inline;

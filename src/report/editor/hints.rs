@@ -5,10 +5,12 @@ use std::ops::Range;
 
 use crate::equilibrium::quantities::Solved;
 use crate::problem::model::{Expectation, Problem};
+use crate::report::balance;
 use crate::report::expectation::value_words;
 use crate::report::figures::{concentration, decimals, percent, significant};
 use crate::report::inline::Hint;
 use crate::rules::check::Checked;
+use crate::rules::compared::kind;
 use crate::rules::outcome::Outcome;
 use crate::text::span::Part;
 use crate::text::tree::{Placed, Statement};
@@ -94,6 +96,18 @@ fn statement(
             if let Some(expectation) = problem.expectations.iter().find(|e| here(&e.at)) {
                 let offset = placed.start + expectation.at.span.end as usize;
                 hints.extend(expected(problem, solved, expectation, offset));
+            }
+        }
+        Statement::Balance { .. } => {
+            let written = problem.balances.iter().find(|balance| here(&balance.at));
+            if let (Some(written), Some(balances)) = (written, outcome.balances())
+                && let Some(balance) = balances.all.iter().find(|b| b.kind == kind(written.kind))
+            {
+                hints.push(Hint {
+                    offset: placed.start + first_line(&placed.parsed.text),
+                    text: balance::short(problem, balance),
+                    tooltip: Some(balance::long(problem, balance)),
+                });
             }
         }
         _ => {}
