@@ -6,6 +6,7 @@ use clap::{Parser, Subcommand};
 
 mod check;
 mod library;
+mod reply;
 mod serve;
 mod terminal;
 
@@ -26,7 +27,7 @@ enum Command {
 /// Runs the command that the arguments name.
 pub fn run() -> ExitCode {
     match Arguments::parse().command {
-        Command::Check(arguments) => check::run(&arguments),
+        Command::Check(arguments) => reply::give(check::run(&arguments)),
         Command::Serve(arguments) => serve::run(&arguments),
     }
 }

@@ -11,8 +11,7 @@ use crate::equilibrium::quantities::Solved;
 use crate::equilibrium::solve::solve;
 use crate::equilibrium::system::{Answer, Failure};
 use crate::problem::case::resolve;
-use crate::problem::defect::Defect;
-use crate::problem::effective::Written;
+use crate::problem::effective::InForce;
 use crate::problem::model::Problem;
 use crate::problem::scope::Scope;
 use crate::text::span::Place;
@@ -46,14 +45,14 @@ impl Outcome {
     /// Takes the statements in force through all rooms. `near` is an answer to start from;
     /// `inherited` says that the scope was looked over with the base. None when cancelled.
     pub fn new(
-        statements: &[Written],
-        merging: Vec<Defect>,
+        in_force: &InForce,
         scope: Arc<Scope>,
         inherited: bool,
         near: Option<&Answer>,
         cancel: &AtomicBool,
     ) -> Option<Outcome> {
-        let problem = resolve(statements, merging, scope);
+        let InForce { statements, left_out, defects } = in_force;
+        let problem = resolve(statements, defects.clone(), scope);
         let state = if !problem.states_problem {
             State::NothingStated
         } else if problem.blocked {
@@ -67,7 +66,7 @@ impl Outcome {
             }
         };
         let mut findings = Vec::new();
-        let context = Context { statements, problem: &problem, state: &state, inherited };
+        let context = Context { statements, left_out, problem: &problem, state: &state, inherited };
         for rule in rules() {
             (rule.find)(&context, &mut findings);
         }

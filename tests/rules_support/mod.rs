@@ -68,7 +68,7 @@ pub fn check_text(text: &str, files: &[(String, String)]) -> Checked {
         if let Some(parent) = path.parent() {
             std::fs::create_dir_all(parent).expect("a folder for a fixture");
         }
-        std::fs::write(path, content).expect("a file for a fixture");
+        std::fs::write(path, bytes(content)).expect("a file for a fixture");
     }
     let path = folder.path().join("problem.lyate");
     std::fs::write(&path, text).expect("a file for a fixture");
@@ -80,6 +80,18 @@ pub fn check_text(text: &str, files: &[(String, String)]) -> Checked {
         cancel: &AtomicBool::new(false),
     };
     check(Document::parse(text), &around, None).expect("nobody cancels")
+}
+
+/// What a file beside a fixture holds: `\xFF` in its text is that byte.
+fn bytes(content: &str) -> Vec<u8> {
+    let mut parts = content.split("\\x");
+    let mut bytes = parts.next().unwrap_or_default().as_bytes().to_vec();
+    for part in parts {
+        let (code, rest) = part.split_at(2);
+        bytes.push(u8::from_str_radix(code, 16).expect("two digits after \\x"));
+        bytes.extend_from_slice(rest.as_bytes());
+    }
+    bytes
 }
 
 /// Reads the fixtures of a file.
