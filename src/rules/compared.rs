@@ -36,8 +36,7 @@ pub fn compared(problem: &Problem, brought: Option<&[f64]>) -> Vec<Compared> {
         .filter_map(|(index, balance)| {
             let kind = kind(balance.kind);
             let terms = terms(balance);
-            let verdict =
-                compare(kind, &terms, stoichiometry, &recipe, condition.as_ref()).ok()?;
+            let verdict = compare(kind, &terms, stoichiometry, &recipe, condition.as_ref()).ok()?;
             Some(Compared { balance: index, verdict })
         })
         .collect()

@@ -1,5 +1,6 @@
 //! What a rule looks at.
 
+use super::compared::Compared;
 use super::outcome::State;
 use crate::equilibrium::quantities::Solved;
 use crate::problem::defect::Defect;
@@ -15,6 +16,8 @@ pub struct Context<'a> {
     pub left_out: &'a [Written<'a>],
     pub problem: &'a Problem,
     pub state: &'a State,
+    /// The written balances, held against the implied ones.
+    pub compared: &'a [Compared],
     /// Whether this is a case that shares the base's scope, looked over already.
     pub inherited: bool,
 }

@@ -4,6 +4,7 @@ use std::sync::Arc;
 use std::sync::atomic::AtomicBool;
 
 use super::catalogue::rules;
+use super::compared::{Compared, compared};
 use super::context::Context;
 use super::finding::Finding;
 use crate::equilibrium::build::system;
@@ -20,6 +21,7 @@ use crate::text::span::Place;
 pub struct Outcome {
     pub problem: Problem,
     pub state: State,
+    pub compared: Vec<Compared>,
     pub findings: Vec<Finding<Place>>,
 }
 
@@ -65,11 +67,23 @@ impl Outcome {
                 Err(failure) => State::Failed(failure),
             }
         };
+        let brought = match &state {
+            State::Solved(solved) => Some(solved.answer.amounts.as_slice()),
+            _ => None,
+        };
+        let compared = compared(&problem, brought);
         let mut findings = Vec::new();
-        let context = Context { statements, left_out, problem: &problem, state: &state, inherited };
+        let context = Context {
+            statements,
+            left_out,
+            problem: &problem,
+            state: &state,
+            compared: &compared,
+            inherited,
+        };
         for rule in rules() {
             (rule.find)(&context, &mut findings);
         }
-        Some(Outcome { problem, state, findings })
+        Some(Outcome { problem, state, compared, findings })
     }
 }
