@@ -17,13 +17,16 @@ use crate::rules::finding::{LocatedFinding, Severity};
 /// imply, its base and each case are solved, and the answers are held to what the file
 /// expects of them.
 #[derive(clap::Args)]
-#[command(verbatim_doc_comment, after_help = "\
+#[command(
+    verbatim_doc_comment,
+    after_help = "\
 Exit code:
   0  nothing was found at or above --fail-on
   1  something was, or a problem could not be solved
   2  not run: wrong usage, or a path or file that cannot be read
 
-`lyate explain RULE` says more about a finding.")]
+`lyate explain RULE` says more about a finding."
+)]
 pub struct Arguments {
     /// Files and folders; the current folder where none is given
     #[arg(value_name = "PATH")]

@@ -1,12 +1,16 @@
 //! How it is told: terminal text, JSON, SARIF, JUnit, and an editor's inline words.
 
+pub mod answer;
 pub mod check_json;
 pub mod editor;
 pub mod expectation;
 pub mod figures;
 pub mod inline;
 pub mod junit;
+pub mod recipe;
 pub mod sarif;
+pub mod sheet;
+pub mod solution;
 pub mod source;
 pub mod style;
 pub mod summary;
