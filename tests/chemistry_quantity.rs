@@ -166,6 +166,16 @@ fn what_cannot_be_converted() {
             expected: Dimension::AmountPerLitre
         }
     );
+    // Counts beyond all sense are answered too.
+    let (groups, _) = Groups::from_definitions(&[
+        ("Big", Some("(C999999)1000")),
+        ("Bigger", Some("(Big999983)999")),
+    ]);
+    let giant = Formula::parse("(Bigger999979)997N·0.123457NH3", &groups);
+    let basis = Basis::parse("N999983·0.765431N", &groups).unwrap();
+    if let Ok(giant) = giant {
+        let _ = to_amount(1.0, unit("mg/L"), Some(&basis), &giant);
+    }
     // A group of unknown composition may still be counted in moles.
     assert!(amount(1.0, "mmol/L", None, "HHum").is_ok());
     assert!(amount(1.0, "meq/L", None, "Hum-").is_ok());

@@ -2,14 +2,11 @@
 //! was derived.
 
 pub mod charge;
-pub mod elimination;
-mod exact;
 pub mod mass;
 pub mod proton;
-pub mod reagent;
 pub mod recipe;
 pub mod split;
-// pub mod written;
+pub mod written;
 
 use num_rational::Rational64;
 

@@ -1,6 +1,6 @@
 //! Quantities: a number with its unit and basis turned into an amount, and back.
 
-use num_traits::{ToPrimitive, Zero};
+use num_traits::{CheckedDiv, ToPrimitive, Zero};
 
 use super::element::Element;
 use super::formula::{Atom, Formula, Groups};
@@ -244,7 +244,10 @@ fn count_of(counted: &Formula, species: &Formula) -> Result<f64, ConversionProbl
             }
             _ => species.atoms.get(atom).copied().unwrap_or_default(),
         };
-        let count = held / wanted;
+        let Some(count) = held.checked_div(&wanted) else {
+            let (species, basis) = names();
+            return Err(ConversionProblem::BasisProportion { species, basis });
+        };
         if count.is_zero() {
             let (species, basis) = names();
             return Err(ConversionProblem::BasisAbsent { species, basis });

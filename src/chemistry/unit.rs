@@ -1,5 +1,7 @@
 //! Units: which are read, what they measure and how large they are.
 
+use Dimension as D;
+
 /// What a unit measures.
 #[derive(Clone, Copy, Debug, PartialEq, Eq, Hash)]
 pub enum Dimension {
@@ -125,8 +127,6 @@ impl Unit {
 const fn unit(name: &'static str, dimension: Dimension, factor: f64) -> Unit {
     Unit { name, dimension, factor, offset: 0.0 }
 }
-
-use Dimension as D;
 
 /// Standard atmosphere, Pa: exact (10th CGPM, 1954). The bar is 10⁵ Pa exactly.
 const ATMOSPHERE: f64 = 101_325.0;

@@ -3,16 +3,20 @@
 
 mod basis;
 pub mod build;
+pub mod charge;
 mod coordinates;
 mod direction;
 mod exact;
+mod feasible;
 mod fixed;
 mod frame;
 mod ionic;
 mod newton;
 mod point;
 pub mod quantities;
+mod root;
 mod search;
+pub mod sensitivity;
 mod skew;
 pub mod solve;
 mod start;

@@ -5,6 +5,7 @@ use std::f64::consts::LN_10;
 use num_traits::ToPrimitive;
 
 use super::build::ln_formation;
+use super::sensitivity;
 use super::system::{Answer, System};
 use crate::problem::model::{Problem, Sought};
 use crate::problem::reaction::STANDARD;
@@ -94,6 +95,11 @@ impl Solved {
             .sum()
     }
 
+    /// mol per litre or kilogram of strong base for one unit of pH.
+    pub fn buffer_capacity(&self) -> Option<f64> {
+        sensitivity::buffer_capacity(&self.system, &self.answer)
+    }
+
     /// The value in base units; none where the quantity has none here.
     pub fn value(&self, problem: &Problem, sought: Sought) -> Option<f64> {
         let value = match sought {
@@ -118,7 +124,7 @@ impl Solved {
             }
             Sought::Alkalinity => self.alkalinity(problem),
             Sought::IonicStrength => self.answer.ionic_strength,
-            Sought::BufferCapacity => return None,
+            Sought::BufferCapacity => self.buffer_capacity()?,
             Sought::ChargeImbalance { equivalents: false } => self.imbalance_percent(),
             Sought::ChargeImbalance { equivalents: true } => {
                 let (cations, anions) = self.charges();

@@ -12,6 +12,7 @@ use super::scope::PROTON;
 use super::sparse::{Row, add_scaled};
 use super::split::{Split, split};
 use crate::chemistry::formula::Formula;
+use crate::text::parse::KEYWORDS;
 use crate::text::tree::{Member, Name, Quantity, Statement};
 
 /// Reads `total` and `add`.
@@ -20,11 +21,14 @@ pub fn read(case: &mut CaseResolver, problem: &mut Problem) {
     for written in case.statements {
         match written.statement() {
             Statement::Total { component, value } => {
-                total(case, problem, written, component, value);
+                let read = total(case, problem, written, component, value);
+                case.all_amounts_read &= read.is_some();
             }
             Statement::Add { reagent, amount, giving } => {
-                add(case, problem, written, (reagent, amount, giving.as_deref()));
+                let read = add(case, problem, written, (reagent, amount, giving.as_deref()));
+                case.all_amounts_read &= read.is_some();
             }
+            Statement::Broken => case.all_amounts_read &= !may_be_amount(written),
             _ => {}
         }
     }
@@ -50,49 +54,57 @@ pub fn read(case: &mut CaseResolver, problem: &mut Problem) {
     }
 }
 
+/// Whether a broken statement was to say how much of something there is.
+fn may_be_amount(written: &Written) -> bool {
+    let word = written.parsed.text.split_whitespace().next().unwrap_or_default();
+    matches!(word, "total" | "add" | "hold") || !KEYWORDS.contains(&word)
+}
+
+/// None where it could not be read.
 fn total(
     case: &mut CaseResolver,
     problem: &mut Problem,
     written: &Written,
     component: &Name,
     value: &Quantity,
-) {
-    let Some(j) = case.component(written, component) else { return };
+) -> Option<()> {
+    let j = case.component(written, component)?;
     let formula = case.scope.components[j].formula.clone();
-    let Some(read) = case.concentration(written, value, Some(&formula), Expected::Concentration)
-    else {
-        return;
-    };
+    let read = case.concentration(written, value, Some(&formula), Expected::Concentration)?;
     let at = written.whole();
+    if j == PROTON {
+        let kind = DefectKind::NothingFree { subject: "total H+".into(), given: None };
+        case.resolver.report(at, kind);
+        return None;
+    }
     if read.value < 0.0 && !formula.is_electron() {
         let kind = DefectKind::NegativeTotal { name: formula.name.clone(), value: read.value };
         case.resolver.report(written.place(value.span), kind);
-        return;
+        return None;
     }
     problem.amounts[j] =
         Amount { total: Some(read.value), at: Some(at), source: AmountSource::Total };
+    Some(())
 }
 
+/// None where it could not be read.
 fn add(
     case: &mut CaseResolver,
     problem: &mut Problem,
     written: &Written,
     (name, amount, giving): (&Name, &Quantity, Option<&[Member]>),
-) {
-    let Some(formula) = case.resolver.formula(written, name) else { return };
+) -> Option<()> {
+    let formula = case.resolver.formula(written, name)?;
     let at = written.place(name.span);
     if formula.charge != 0 {
         let charge = i64::from(formula.charge);
         let kind = DefectKind::ReagentNotNeutral { name: formula.name.clone(), charge };
         case.resolver.report(at, kind);
-        return;
+        return None;
     }
-    let Some(read) = case.concentration(written, amount, Some(&formula), Expected::Concentration)
-    else {
-        return;
-    };
+    let read = case.concentration(written, amount, Some(&formula), Expected::Concentration)?;
     if !case.not_negative(written, amount) {
-        return;
+        return None;
     }
     let pieces = match giving {
         Some(members) => given(case, written, &formula, members),
@@ -110,14 +122,15 @@ fn add(
             }
         },
     };
-    let Some(pieces) = pieces else { return };
-    let Some(row) = row_over_components(case, &pieces) else { return };
+    let pieces = pieces?;
+    let row = row_over_components(case, &pieces)?;
     if let Some(known) = problem.reagents.iter_mut().find(|r| r.formula.name == formula.name) {
         known.amount += read.value;
-        return;
+        return Some(());
     }
-    let (forms, strong_acid) = forms(case, &pieces);
-    problem.reagents.push(Reagent { formula, at, amount: read.value, row, forms, strong_acid });
+    let giving = giving.is_some().then(|| forms(case, &pieces));
+    problem.reagents.push(Reagent { formula, at, amount: read.value, row, giving });
+    Some(())
 }
 
 /// What `giving` names, once it adds up to the reagent.
@@ -155,25 +168,17 @@ fn row_over_components(case: &CaseResolver, pieces: &[(usize, Rational64)]) -> O
     Some(row)
 }
 
-/// The dissolved species among the pieces; protons and hydroxide count as strong acid and
-/// base, water as nothing.
-fn forms(
-    case: &CaseResolver,
-    pieces: &[(usize, Rational64)],
-) -> (Vec<(usize, Rational64)>, Rational64) {
-    let mut forms = Vec::new();
-    let mut strong_acid = Rational64::from_integer(0);
-    for &(s, n) in pieces {
-        let formula = &case.scope.species[s];
-        if formula.is_proton() {
-            strong_acid += n;
-        } else if formula.is_hydroxide() {
-            strong_acid -= n;
-        } else if let Some(row) = case.scope.row_of(s) {
-            forms.push((row, n));
-        }
-    }
-    (forms, strong_acid)
+/// The dissolved species among what `giving` names; protons, hydroxide and water are no
+/// forms.
+fn forms(case: &CaseResolver, pieces: &[(usize, Rational64)]) -> Vec<(usize, Rational64)> {
+    pieces
+        .iter()
+        .filter(|&&(s, _)| {
+            let formula = &case.scope.species[s];
+            !formula.is_proton() && !formula.is_hydroxide()
+        })
+        .filter_map(|&(s, n)| Some((case.scope.row_of(s)?, n)))
+        .collect()
 }
 
 /// What each component's total now is; reports those that nothing gives.
@@ -181,14 +186,16 @@ pub fn close(case: &mut CaseResolver, problem: &mut Problem) {
     if !problem.states_problem {
         return;
     }
+    let unread = !case.all_amounts_read;
     for j in 1..problem.amounts.len() {
         let component = &case.scope.components[j];
         if problem.amounts[j].source != AmountSource::Nothing || component.formula.is_electron() {
             continue;
         }
         let Some(at) = component.at else { continue };
-        // A held gas, or another phase of unknown amount, may bring it.
-        if supplied_by_gas(case, problem, j) {
+        // A held gas, or another phase of unknown amount, may bring it; so may a statement
+        // that could not be read, and has its own finding.
+        if supplied_by_gas(case, problem, j) || unread {
             continue;
         }
         let name = component.formula.name.clone();

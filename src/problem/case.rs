@@ -4,6 +4,7 @@
 use std::sync::Arc;
 
 use super::amounts;
+use super::charge_reading;
 use super::defect::{Defect, DefectKind, Expected};
 use super::effective::Written;
 use super::expect;
@@ -17,7 +18,7 @@ use crate::chemistry::activity::ActivityKind;
 use crate::chemistry::formula::Formula;
 use crate::chemistry::quantity::Scale;
 use crate::text::span::Place;
-use crate::text::tree::{Name, Statement};
+use crate::text::tree::{Name, Statement, Use};
 
 /// The work in hand for one base or case.
 pub struct CaseResolver<'a> {
@@ -28,6 +29,8 @@ pub struct CaseResolver<'a> {
     /// The file's scale, and where it was first seen.
     pub scale: Option<(Scale, Place)>,
     pub mixed: bool,
+    /// Whether every statement that says how much there is could be read.
+    pub all_amounts_read: bool,
 }
 
 /// Resolves the statements in force. `merging` are the defects found while merging.
@@ -39,6 +42,7 @@ pub fn resolve(statements: &[Written], merging: Vec<Defect>, scope: Arc<Scope>) 
         kelvin: STANDARD,
         scale: None,
         mixed: false,
+        all_amounts_read: true,
     };
     case.resolver.defects = merging;
     let mut problem = Problem {
@@ -68,6 +72,9 @@ pub fn resolve(statements: &[Written], merging: Vec<Defect>, scope: Arc<Scope>) 
     amounts::close(&mut case, &mut problem);
     problem.balances = written::read(&mut case, &problem);
     problem.expectations = expect::read(&mut case);
+    for written in statements.iter().filter(|w| !charge_reading::defines(w.statement())) {
+        charge_reading::look(&mut case.resolver, written, &scope.balanced);
+    }
     for written in statements {
         let unsupported = match written.statement() {
             Statement::Precipitate { .. } => "precipitate",
@@ -139,7 +146,8 @@ fn constants(case: &mut CaseResolver, problem: &mut Problem) {
             _ => None,
         };
         let Some(issue) = issue else { continue };
-        let Some(at) = own.or(problem.temperature_at) else { continue };
+        let at = own.or(problem.temperature_at).or_else(|| first_use(case.statements));
+        let Some(at) = at else { continue };
         let equation = reaction.equation.clone();
         let own = own.is_some();
         case.resolver.report(
@@ -154,7 +162,9 @@ fn constants(case: &mut CaseResolver, problem: &mut Problem) {
                 TemperatureIssue::OutsideValid { low, high } => {
                     DefectKind::OutsideValidRange { reaction: equation, low, high, wanted, own }
                 }
-                TemperatureIssue::NoValue => DefectKind::ConstantHasNoValue { wanted },
+                TemperatureIssue::NoValue => {
+                    DefectKind::ConstantHasNoValue { reaction: equation, wanted, own }
+                }
             },
         );
     }
@@ -163,11 +173,24 @@ fn constants(case: &mut CaseResolver, problem: &mut Problem) {
             .iter()
             .map(|&(r, n)| num_traits::ToPrimitive::to_f64(&n).unwrap_or(0.0) * problem.log_k[r])
             .sum();
-        if let Some(at) = scope.reactions[*r].origin.own() {
+        // Told at the file's own part in it: a set alone agrees with itself.
+        let own = |&(r, _): &(usize, _)| scope.reactions[r].origin.own();
+        let at = scope.reactions[*r].origin.own().or_else(|| combination.iter().find_map(own));
+        if let Some(at) = at {
             case.resolver.report(at, DefectKind::Follows { by });
         }
     }
     let _ = LogK::Water;
+}
+
+/// Where a constant that another file or set brought is told of, without a `temperature`.
+fn first_use(statements: &[Written]) -> Option<Place> {
+    statements.iter().find_map(|written| match written.statement() {
+        Statement::Use(Use::Set { name, .. } | Use::File { path: name }) => {
+            Some(written.place(name.span))
+        }
+        _ => None,
+    })
 }
 
 impl CaseResolver<'_> {

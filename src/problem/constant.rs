@@ -7,7 +7,6 @@ use super::effective::Written;
 use super::reaction::{Constant, LogK, Participant, STANDARD};
 use super::resolve::Resolver;
 use crate::chemistry::formula::Phase;
-use crate::chemistry::water;
 use crate::text::tree::{self, ConstantKind, ConstantValue};
 
 /// What the clauses of a reaction say.
@@ -68,7 +67,7 @@ impl Resolver {
         if tree.source.is_none() && written.parsed.problems.is_empty() {
             self.report(written.place(tree.equation), DefectKind::NoSource);
         }
-        self.base_reaction(written, tree, participants, &terms, kelvin);
+        self.base_reaction(written, tree, participants);
         terms
     }
 
@@ -147,14 +146,7 @@ impl Resolver {
     }
 
     /// `NH3 + H2O <=> NH4+ + OH-`: right, but by common practice entered as its acid.
-    fn base_reaction(
-        &mut self,
-        written: &Written,
-        tree: &tree::Reaction,
-        both: &[Participant],
-        terms: &Terms,
-        kelvin: f64,
-    ) {
+    fn base_reaction(&mut self, written: &Written, tree: &tree::Reaction, both: &[Participant]) {
         let one = num_rational::Rational64::one();
         let is = |p: &Participant, left: bool| p.coefficient == if left { -one } else { one };
         let (left, right): (Vec<_>, Vec<_>) =
@@ -172,12 +164,8 @@ impl Resolver {
         if !fits {
             return;
         }
-        let constant = match terms.constant.as_ref().map(|constant| &constant.value) {
-            Some(LogK::At { log_k, .. }) => Some(format!("{:.2}", water::pkw(kelvin) + log_k)),
-            _ => None,
-        };
         let acid = format!("{} <=> {} + H+", acid.formula.name, base.formula.name);
-        let kind = DefectKind::BaseReaction { acid, constant };
+        let kind = DefectKind::BaseReaction { acid };
         self.report(written.place(tree.equation), kind);
     }
 }

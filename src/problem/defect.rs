@@ -127,12 +127,13 @@ pub enum DefectKind {
     },
     /// `log K(T)` gives no finite number at this temperature, in kelvin.
     ConstantHasNoValue {
+        reaction: String,
         wanted: f64,
+        own: bool,
     },
-    /// A weak acid written as the base reaction; the acid reaction with its constant.
+    /// A weak acid written as the base reaction; `acid` is its acid reaction.
     BaseReaction {
         acid: String,
-        constant: Option<String>,
     },
 
     // Components.
@@ -227,10 +228,6 @@ pub enum DefectKind {
     },
     /// `without` takes away something that is not there.
     NothingToRemove,
-    CaseRepeated {
-        title: String,
-        other: Place,
-    },
     UnknownModel {
         word: String,
         nearest: Option<&'static str>,
@@ -306,14 +303,12 @@ impl DefectKind {
             | Self::MixedScales { .. }
             | Self::AmbiguousCharge { .. }
             | Self::TwoNames { .. }
-            | Self::ConstantKindMismatch { .. }
             | Self::ConstantAtOtherTemperature { .. }
             | Self::OutsideValidRange { .. }
             | Self::DiffersFromSet { .. }
             | Self::BaseReaction { .. }
             | Self::ComponentUnused { .. }
-            | Self::NothingToRemove
-            | Self::CaseRepeated { .. } => false,
+            | Self::NothingToRemove => false,
             Self::Follows { by } => by.abs() > 0.02,
             Self::NotIndependent { from, .. } => !from.is_empty(),
             Self::NotYetSupported { what } => !matches!(*what, "curve" | "dose"),

@@ -133,20 +133,32 @@ fn adds_up(key: &Key) -> bool {
     matches!(key, Key::Add(_) | Key::Expect(_))
 }
 
+/// The statements that count in a base or a case.
+pub struct InForce<'a> {
+    pub statements: Vec<Written<'a>>,
+    /// Statements that repeat a single-valued subject in their section, and do not count.
+    pub left_out: Vec<Written<'a>>,
+    pub defects: Vec<Defect>,
+}
+
 /// Merges the base with a case. Statements of one section that repeat a single-valued
 /// subject are a defect; the later one is left out.
-pub fn in_force<'a>(
-    base: &'a Section,
-    case: Option<&'a Section>,
-) -> (Vec<Written<'a>>, Vec<Defect>) {
-    let mut defects = Vec::new();
-    let mut kept = section(base, Part::Base, &mut defects);
+pub fn in_force<'a>(base: &'a Section, case: Option<&'a Section>) -> InForce<'a> {
+    let mut base = section(base, Part::Base);
     let Some(case) = case else {
-        return (kept.into_iter().map(|(_, written)| written).collect(), defects);
+        let mut found = base.into_force();
+        // The base has nothing before it to take away from.
+        for written in &found.statements {
+            if let Statement::Without(without) = written.statement() {
+                let at = written.place(without.span);
+                found.defects.push(Defect { at, kind: DefectKind::NothingToRemove });
+            }
+        }
+        return found;
     };
-    let varied = section(case, Part::Case, &mut defects);
+    let varied = section(case, Part::Case);
     let mut replaced: HashMap<Key, bool> = HashMap::new();
-    for (key, written) in &varied {
+    for (key, written) in &varied.kept {
         if let Some(key) = key {
             replaced.insert(key.clone(), false);
         }
@@ -154,45 +166,67 @@ pub fn in_force<'a>(
             replaced.insert(removed_key(&without.value), false);
         }
     }
-    kept.retain(|(key, _)| match key.as_ref().and_then(|key| replaced.get_mut(key)) {
+    base.kept.retain(|(key, _)| match key.as_ref().and_then(|key| replaced.get_mut(key)) {
         Some(met) => {
             *met = true;
             false
         }
         None => true,
     });
-    for (_, written) in &varied {
+    base.repeated.retain(|(key, _, _)| !replaced.contains_key(key));
+    let mut found = base.into_force();
+    for (_, written) in &varied.kept {
         if let Statement::Without(without) = written.statement()
             && replaced.get(&removed_key(&without.value)) == Some(&false)
         {
             let at = written.place(without.span);
-            defects.push(Defect { at, kind: DefectKind::NothingToRemove });
+            found.defects.push(Defect { at, kind: DefectKind::NothingToRemove });
         }
     }
-    kept.extend(varied);
-    (kept.into_iter().map(|(_, written)| written).collect(), defects)
+    let varied = varied.into_force();
+    found.statements.extend(varied.statements);
+    found.left_out.extend(varied.left_out);
+    found.defects.extend(varied.defects);
+    found
 }
 
-fn section<'a>(
-    section: &'a Section,
-    part: Part,
-    defects: &mut Vec<Defect>,
-) -> Vec<(Option<Key>, Written<'a>)> {
+/// The statements of one section, by what they speak of.
+struct Sorted<'a> {
+    kept: Vec<(Option<Key>, Written<'a>)>,
+    repeated: Vec<(Key, Written<'a>, Defect)>,
+}
+
+impl<'a> Sorted<'a> {
+    fn into_force(self) -> InForce<'a> {
+        let statements = self.kept.into_iter().map(|(_, written)| written).collect();
+        let (left_out, defects) =
+            self.repeated.into_iter().map(|(_, written, defect)| (written, defect)).unzip();
+        InForce { statements, left_out, defects }
+    }
+}
+
+fn section(section: &Section, part: Part) -> Sorted<'_> {
     let mut first: HashMap<Key, Place> = HashMap::new();
     let mut kept = Vec::with_capacity(section.statements.len());
+    let mut repetitions = Vec::new();
     for (index, placed) in section.statements.iter().enumerate() {
         let written = Written { part, index: index as u32, parsed: &placed.parsed };
         let key = key(written.statement());
         if let Some(key) = key.as_ref().filter(|key| !adds_up(key)) {
+            let at = match written.statement() {
+                Statement::Reaction(reaction) => written.place(reaction.equation),
+                _ => written.whole(),
+            };
             if let Some(other) = first.get(key) {
-                defects.push(Defect { at: written.whole(), kind: repeated(key, *other) });
+                let defect = Defect { at, kind: repeated(key, *other) };
+                repetitions.push((key.clone(), written, defect));
                 continue;
             }
-            first.insert(key.clone(), written.whole());
+            first.insert(key.clone(), at);
         }
         kept.push((key, written));
     }
-    kept
+    Sorted { kept, repeated: repetitions }
 }
 
 fn repeated(key: &Key, other: Place) -> DefectKind {

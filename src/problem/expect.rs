@@ -6,6 +6,7 @@ use super::effective::{Written, subject_key};
 use super::model::{Expectation, Limit, ShownUnit, Sought};
 use super::quantity::Read;
 use crate::chemistry::formula::{Formula, Phase};
+use crate::text::span::Spanned;
 use crate::text::tree::{Name, Quantity, Relation, Statement, Subject};
 
 pub fn read(case: &mut CaseResolver) -> Vec<Expectation> {
@@ -14,7 +15,7 @@ pub fn read(case: &mut CaseResolver) -> Vec<Expectation> {
         let Statement::Expect { subject, relation, source } = written.statement() else {
             continue;
         };
-        let Some(mut sought) = sought(case, written, &subject.value) else { continue };
+        let Some(mut sought) = sought(case, written, subject) else { continue };
         let formula = match sought {
             Sought::Concentration(species) => Some(case.scope.species[species].clone()),
             Sought::Total(component) => Some(case.scope.components[component].formula.clone()),
@@ -101,11 +102,24 @@ fn read_as(
     }
 }
 
-fn sought(case: &mut CaseResolver, written: &Written, subject: &Subject) -> Option<Sought> {
+fn sought(
+    case: &mut CaseResolver,
+    written: &Written,
+    subject: &Spanned<Subject>,
+) -> Option<Sought> {
+    let is_aqueous = |phase: &Phase| *phase == Phase::Aqueous;
     let dissolved = |case: &mut CaseResolver, name: &Name| {
-        in_phase(case, written, name, |phase| *phase == Phase::Aqueous, "a dissolved species")
+        let species = in_phase(case, written, name, is_aqueous, "a dissolved species")?;
+        // Water and the electron have an activity and no concentration.
+        if case.scope.row_of(species).is_none() {
+            let name_text = case.scope.species[species].name.clone();
+            let kind = DefectKind::WrongPhase { name: name_text, needs: "a dissolved species" };
+            case.resolver.report(written.place(name.span), kind);
+            return None;
+        }
+        Some(species)
     };
-    Some(match subject {
+    Some(match &subject.value {
         Subject::Ph => Sought::Ph,
         Subject::Poh => Sought::Poh,
         Subject::Pe => {
@@ -115,13 +129,16 @@ fn sought(case: &mut CaseResolver, written: &Written, subject: &Subject) -> Opti
                     missing: vec!["e-".into()],
                     nearest: None,
                 };
-                case.resolver.report(written.whole(), kind);
+                case.resolver.report(written.place(subject.span), kind);
                 return None;
             }
             Sought::Pe
         }
         Subject::Concentration(name) => Sought::Concentration(dissolved(case, name)?),
-        Subject::Activity(name) => Sought::Activity(dissolved(case, name)?),
+        Subject::Activity(name) => {
+            let needs = "a dissolved species";
+            Sought::Activity(in_phase(case, written, name, is_aqueous, needs)?)
+        }
         Subject::Pressure(name) => {
             let is_gas = |phase: &Phase| *phase == Phase::Gas;
             Sought::Pressure(in_phase(case, written, name, is_gas, "a gas")?)
@@ -139,9 +156,9 @@ fn sought(case: &mut CaseResolver, written: &Written, subject: &Subject) -> Opti
             match others[..] {
                 [component, ..] => Sought::Fraction { species, component },
                 [] => {
-                    let name = case.scope.species[species].name.clone();
-                    let kind = DefectKind::HasNoShare { name };
-                    case.resolver.report(written.whole(), kind);
+                    let species = case.scope.species[species].name.clone();
+                    let kind = DefectKind::HasNoShare { name: species };
+                    case.resolver.report(written.place(name.span), kind);
                     return None;
                 }
             }

@@ -19,9 +19,15 @@ pub fn read(case: &mut CaseResolver, problem: &mut Problem) {
             continue;
         }
         let Some(what) = what(case, written, &subject.value, value, subject.span) else {
+            case.all_amounts_read = false;
             continue;
         };
         let at = written.place(subject.span);
+        if let Some(other) = problem.held.iter().find(|held| fixes_the_same(held.what, what)) {
+            let (subject, other) = (subject_key(&subject.value), other.at);
+            case.resolver.report(at, DefectKind::HeldTwice { subject, other });
+            continue;
+        }
         let releases = match what {
             HeldWhat::Ph(_) | HeldWhat::Pe(_) | HeldWhat::Pressure { .. } => None,
             HeldWhat::Activity { species, .. } | HeldWhat::Concentration { species, .. } => {
@@ -39,6 +45,23 @@ pub fn read(case: &mut CaseResolver, problem: &mut Problem) {
             }
         };
         problem.held.push(Held { at, words: subject_key(&subject.value), what, releases });
+    }
+}
+
+/// Whether two held values speak of one quantity, such as pH and pOH.
+fn fixes_the_same(one: HeldWhat, two: HeldWhat) -> bool {
+    use HeldWhat::{Activity, Concentration, Pe, Ph, Pressure};
+    match (one, two) {
+        (Ph(_), Ph(_)) | (Pe(_), Pe(_)) => true,
+        (
+            Pressure { species: a, .. }
+            | Activity { species: a, .. }
+            | Concentration { species: a, .. },
+            Pressure { species: b, .. }
+            | Activity { species: b, .. }
+            | Concentration { species: b, .. },
+        ) => a == b,
+        _ => false,
     }
 }
 

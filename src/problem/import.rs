@@ -7,13 +7,14 @@ use std::path::{Path, PathBuf};
 use std::sync::atomic::{AtomicU64, Ordering};
 use std::sync::{Arc, Mutex};
 
-use super::defect::DefectKind;
-use super::effective::in_force;
+use super::defect::{Conserved, Defect, DefectKind};
+use super::effective::{InForce, in_force};
 use super::files::{Files, ReadProblem, root_of};
 use super::reaction::{Origin, Reaction};
 use super::resolve::Resolver;
 use super::sets;
 use crate::chemistry::formula::Groups;
+use crate::text::problem::SyntaxProblemKind;
 use crate::text::tree::{Document, Statement, Use};
 
 /// What one file or set brings into scope.
@@ -204,15 +205,16 @@ impl Reader<'_> {
         origin: &Origin,
         mut read: impl FnMut(&Use) -> Result<Arc<Definitions>, DefectKind>,
     ) -> Definitions {
-        let (statements, defects) = in_force(&document.sections[0], None);
+        let InForce { statements, defects, .. } = in_force(&document.sections[0], None);
         let number = NUMBER.fetch_add(1, Ordering::Relaxed);
         let mut found = Definitions { number, ..Definitions::default() };
-        let syntax: usize = document
+        let syntax = document
             .sections
             .iter()
             .flat_map(|section| &section.statements)
-            .map(|placed| placed.parsed.problems.len())
-            .sum();
+            .flat_map(|placed| &placed.parsed.problems)
+            .filter(|problem| problem.kind != SyntaxProblemKind::StrayIndent)
+            .count();
         found.errors = defects.len() + syntax;
         for written in &statements {
             if let Statement::Use(what) = written.statement() {
@@ -226,7 +228,7 @@ impl Reader<'_> {
         resolver.groups.extend(&found.groups);
         resolver.declare_groups(&statements);
         let own = resolver.reactions(&statements, origin);
-        found.errors += resolver.defects.iter().filter(|defect| is_error(&defect.kind)).count();
+        found.errors += errors(&resolver.defects);
         found.groups = resolver.groups;
         override_with(&mut found.reactions, own);
         found
@@ -271,6 +273,21 @@ fn override_with(reactions: &mut Vec<Arc<Reaction>>, own: Vec<Arc<Reaction>>) {
     *reactions = merged;
 }
 
+/// How many findings of an error these defects make: one for all elements of a reaction.
+fn errors(defects: &[Defect]) -> usize {
+    let matter = |defect: &Defect| match &defect.kind {
+        DefectKind::NotConserved { what, .. } => *what != Conserved::Charge,
+        _ => false,
+    };
+    let goes_on = |index: usize| {
+        index > 0 && matter(&defects[index]) && {
+            let before = &defects[index - 1];
+            matter(before) && before.at == defects[index].at
+        }
+    };
+    (0..defects.len()).filter(|&i| is_error(&defects[i].kind) && !goes_on(i)).count()
+}
+
 /// Whether an imported file with this defect is broken, as far as its user is concerned.
 fn is_error(kind: &DefectKind) -> bool {
     !matches!(
@@ -279,7 +296,6 @@ fn is_error(kind: &DefectKind) -> bool {
             | DefectKind::BaseReaction { .. }
             | DefectKind::TwoNames { .. }
             | DefectKind::AmbiguousCharge { .. }
-            | DefectKind::ConstantKindMismatch { .. }
             | DefectKind::DiffersFromSet { .. }
     )
 }

@@ -1,7 +1,7 @@
 //! What is in scope: the reactions, the components, and the species that belong. It
 //! depends only on `use`, `group`, `component` and `reaction`, so cases share it.
 
-use std::collections::{BTreeMap, HashMap};
+use std::collections::{BTreeMap, HashMap, HashSet};
 use std::path::PathBuf;
 use std::sync::Arc;
 
@@ -9,6 +9,7 @@ use num_rational::Rational64;
 use num_traits::Zero;
 
 use super::belong::{Belonging, Equation, belonging};
+use super::charge_reading;
 use super::defect::{Defect, DefectKind};
 use super::effective::Written;
 use super::import::{Definitions, add_new};
@@ -34,6 +35,8 @@ pub struct Scope {
     /// `H+` first, then those declared.
     pub components: Vec<Component>,
     pub belonging: Belonging,
+    /// Names of the species of balanced reactions.
+    pub balanced: HashSet<String>,
     /// The dissolved species that belong, components first; the rows of `stoichiometry`.
     pub dissolved: Vec<usize>,
     pub stoichiometry: Stoichiometry,
@@ -175,6 +178,10 @@ impl Builder {
         let belonging = belonging(self.species.len(), &made_by, Some(WATER), &equations);
         self.report_links(&belonging, &reactions);
         self.report_names(&belonging, &reactions);
+        let balanced = charge_reading::balanced(&reactions);
+        for written in statements.iter().filter(|w| charge_reading::defines(w.statement())) {
+            charge_reading::look(&mut self.resolver, written, &balanced);
+        }
         let mut dissolved = made_by;
         let is_dissolved = |s: usize| self.species[s].phase == Phase::Aqueous && s != WATER;
         dissolved.retain(|&s| !self.species[s].is_electron());
@@ -204,6 +211,7 @@ impl Builder {
             components: std::mem::take(&mut self.components),
             reactions,
             belonging,
+            balanced,
             dissolved,
             stoichiometry,
             files,
@@ -258,10 +266,13 @@ impl Builder {
             // The component declared last is the one too many.
             let Some(&(last, _)) = link.last() else { continue };
             let component = &self.components[last];
-            let from = link[..link.len() - 1]
+            let mut from: Vec<String> = link[..link.len() - 1]
                 .iter()
                 .map(|&(j, _)| self.components[j].formula.name.clone())
                 .collect();
+            if from.is_empty() {
+                from.push(self.species[WATER].name.clone());
+            }
             let name = component.formula.name.clone();
             let reaction = reactions[*r].origin.own();
             if let Some(at) = component.at.or(reaction) {

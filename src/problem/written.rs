@@ -7,7 +7,8 @@ use super::defect::{DefectKind, Expected};
 use super::effective::Written;
 use super::model::{BalanceKindResolved, Problem, WrittenBalance, WrittenTerm, WrittenWhat};
 use super::resolve::small_fraction;
-use crate::text::tree::{BalanceKind, Statement, Term, TermKind};
+use crate::chemistry::formula::canonical;
+use crate::text::tree::{BalanceKind, Statement, Term, TermKind, Without};
 
 pub fn read(case: &mut CaseResolver, problem: &Problem) -> Vec<WrittenBalance> {
     let mut balances = Vec::new();
@@ -42,6 +43,15 @@ pub fn read(case: &mut CaseResolver, problem: &Problem) -> Vec<WrittenBalance> {
         });
     }
     balances
+}
+
+fn is_taken_out(case: &CaseResolver, reagent: &str) -> bool {
+    case.statements.iter().any(|written| match written.statement() {
+        Statement::Without(without) => {
+            matches!(&without.value, Without::Add(name) if canonical(name) == reagent)
+        }
+        _ => false,
+    })
 }
 
 fn term(
@@ -86,6 +96,10 @@ fn term(
             let known = problem.reagents.iter().position(|r| r.formula.name == formula.name);
             match known {
                 Some(reagent) => WrittenWhat::Added(reagent),
+                // Taken out by this case: none of it is added.
+                None if is_taken_out(case, &formula.name) => {
+                    WrittenWhat::Amount { value: 0.0, half_digit: 0.0 }
+                }
                 None => {
                     let kind = DefectKind::NotAdded { name: formula.name.clone() };
                     case.resolver.report(written.place(name.span), kind);

@@ -3,8 +3,6 @@
 pub mod answer;
 pub mod check_json;
 pub mod editor;
-pub mod expectation;
-pub mod figures;
 pub mod inline;
 pub mod junit;
 pub mod recipe;
@@ -16,3 +14,5 @@ pub mod style;
 pub mod summary;
 pub mod table;
 pub mod terminal;
+
+pub use crate::rules::{expectation, figures};

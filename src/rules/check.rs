@@ -10,6 +10,7 @@ use std::sync::atomic::{AtomicBool, Ordering};
 
 use super::finding::{Finding, LocatedFinding, Severity};
 use super::outcome::Outcome;
+use super::statements::case_repeated;
 use crate::equilibrium::system::Answer;
 use crate::problem::defect::DefectKind;
 use crate::problem::effective::{Written, in_force};
@@ -17,7 +18,7 @@ use crate::problem::files::Files;
 use crate::problem::import::{Definitions, Imports, Reader};
 use crate::problem::scope::Scope;
 use crate::text::span::{Part, Place};
-use crate::text::tree::{Document, Section, Statement};
+use crate::text::tree::{Document, Section, Statement, Use};
 
 /// What a check is given beside the text.
 pub struct Surroundings<'a> {
@@ -53,18 +54,19 @@ pub fn check(
     previous: Option<&Checked>,
 ) -> Option<Checked> {
     let base = &document.sections[0];
-    let (statements, merging) = in_force(base, None);
+    let base_in_force = in_force(base, None);
+    let statements = &base_in_force.statements;
     let reader = Reader {
         imports: around.imports,
         files: around.files,
         path: around.path,
         roots: around.roots,
     };
-    let uses = read_uses(&statements, &reader);
-    let scope_key = scope_key(&statements, &uses);
+    let uses = read_uses(statements, &reader);
+    let scope_key = scope_key(statements, &uses);
     let scope = match previous.map(|previous| &previous.scope) {
         Some((key, scope)) if *key == scope_key => scope.clone(),
-        _ => Arc::new(Scope::new(&statements, uses)),
+        _ => Arc::new(Scope::new(statements, uses)),
     };
     let base_key = {
         let mut hasher = DefaultHasher::new();
@@ -102,30 +104,24 @@ pub fn check(
             return None;
         }
         if index == 0 {
-            let merging = merging.clone();
-            return Outcome::new(
-                &statements,
-                merging,
-                scope.clone(),
-                false,
-                near(0),
-                around.cancel,
-            );
+            let scope = scope.clone();
+            return Outcome::new(&base_in_force, scope, false, near(0), around.cancel);
         }
         let section = &document.sections[index];
-        let (statements, merging) = in_force(base, Some(section));
+        let in_force = in_force(base, Some(section));
+        let statements = &in_force.statements;
         let own_scope = statements.iter().any(|w| w.part == Part::Case && defines(w))
             || section
                 .statements
                 .iter()
                 .any(|p| matches!(p.parsed.statement, Statement::Without(_)));
         let scope = if own_scope {
-            let uses = read_uses(&statements, &reader);
-            Arc::new(Scope::new(&statements, uses))
+            let uses = read_uses(statements, &reader);
+            Arc::new(Scope::new(statements, uses))
         } else {
             scope.clone()
         };
-        Outcome::new(&statements, merging, scope, !own_scope, near(index), around.cancel)
+        Outcome::new(&in_force, scope, !own_scope, near(index), around.cancel)
     };
     for (index, outcome) in run(&todo, &work) {
         outcomes[index] = Some(Arc::new(outcome?));
@@ -149,7 +145,10 @@ fn read_uses(statements: &[Written], reader: &Reader) -> UseResults {
     statements
         .iter()
         .filter_map(|written| match written.statement() {
-            Statement::Use(what) => Some((written.whole(), reader.read(what))),
+            Statement::Use(what) => {
+                let (Use::Set { name, .. } | Use::File { path: name }) = what;
+                Some((written.place(name.span), reader.read(what)))
+            }
             _ => None,
         })
         .collect()
@@ -250,6 +249,7 @@ fn gather(document: &Document, outcomes: &[Arc<Outcome>]) -> Vec<LocatedFinding>
             }
         }
     }
+    findings.extend(case_repeated::in_file(document));
     findings.sort_by_key(|finding| (finding.at.start, finding.at.end, finding.severity));
     findings
 }

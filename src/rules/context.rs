@@ -1,5 +1,6 @@
 //! What a rule looks at.
 
+use super::compared::Compared;
 use super::outcome::State;
 use crate::equilibrium::quantities::Solved;
 use crate::problem::defect::Defect;
@@ -11,8 +12,12 @@ use crate::text::span::{Part, Place, Span};
 pub struct Context<'a> {
     /// The statements in force, in the order written, the base's first.
     pub statements: &'a [Written<'a>],
+    /// Statements that repeat another and do not count.
+    pub left_out: &'a [Written<'a>],
     pub problem: &'a Problem,
     pub state: &'a State,
+    /// The written balances, held against the implied ones.
+    pub compared: &'a [Compared],
     /// Whether this is a case that shares the base's scope, looked over already.
     pub inherited: bool,
 }
@@ -24,11 +29,12 @@ impl<'a> Context<'a> {
         scope.iter().chain(&self.problem.defects)
     }
 
-    /// What is wrong with the writing of the statements in force.
+    /// What is wrong with the writing of the statements, those left out too.
     pub fn syntax(&self) -> impl Iterator<Item = (Written<'a>, &'a SyntaxProblem)> {
         let is_case = self.statements.iter().any(|written| written.part == Part::Case);
         self.statements
             .iter()
+            .chain(self.left_out)
             .filter(move |written| !is_case || written.part == Part::Case)
             .flat_map(|written| written.parsed.problems.iter().map(|problem| (*written, problem)))
     }
@@ -43,6 +49,7 @@ impl<'a> Context<'a> {
     pub fn statement(&self, place: Place) -> Option<&Written<'a>> {
         self.statements
             .iter()
+            .chain(self.left_out)
             .find(|written| written.part == place.section && written.index == place.statement)
     }
 
@@ -51,6 +58,24 @@ impl<'a> Context<'a> {
         self.statement(place)
             .and_then(|written| written.parsed.text.get(place.span.range()))
             .unwrap_or_default()
+    }
+
+    /// The place of a whole name of which a place covers a part.
+    pub fn whole_name(&self, part: Place, name: &str) -> Option<Place> {
+        let text = &self.statement(part)?.parsed.text;
+        let (start, end) = (part.span.start as usize, part.span.end as usize);
+        let from = start.saturating_sub(name.len());
+        let at = (from..=start).find(|&at| {
+            at + name.len() >= end && text.get(at..).is_some_and(|rest| rest.starts_with(name))
+        })?;
+        Some(Place { span: Span::new(at, at + name.len()), ..part })
+    }
+
+    /// Where something stands that is about the problem as a whole: its title, or else the
+    /// first statement in force.
+    pub fn anchor(&self) -> Option<Place> {
+        let title = self.problem.title_at;
+        title.or_else(|| self.statements.first().map(|written| written.whole()))
     }
 
     /// The place just after a place.

@@ -54,6 +54,12 @@ impl<L> Finding<L> {
         }
     }
 
+    /// Where this finding is less, or more, bad than its rule's others.
+    pub fn with_severity(mut self, severity: Severity) -> Self {
+        self.severity = severity;
+        self
+    }
+
     pub fn with_help(mut self, help: impl Into<String>) -> Self {
         self.help = Some(help.into());
         self

@@ -2,7 +2,10 @@
 
 pub mod catalogue;
 pub mod check;
+pub mod compared;
 pub mod context;
+pub mod expectation;
+pub mod figures;
 pub mod finding;
 pub mod outcome;
 pub mod words;

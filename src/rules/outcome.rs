@@ -4,6 +4,7 @@ use std::sync::Arc;
 use std::sync::atomic::AtomicBool;
 
 use super::catalogue::rules;
+use super::compared::{Compared, compared};
 use super::context::Context;
 use super::finding::Finding;
 use crate::equilibrium::build::system;
@@ -11,8 +12,7 @@ use crate::equilibrium::quantities::Solved;
 use crate::equilibrium::solve::solve;
 use crate::equilibrium::system::{Answer, Failure};
 use crate::problem::case::resolve;
-use crate::problem::defect::Defect;
-use crate::problem::effective::Written;
+use crate::problem::effective::InForce;
 use crate::problem::model::Problem;
 use crate::problem::scope::Scope;
 use crate::text::span::Place;
@@ -21,6 +21,7 @@ use crate::text::span::Place;
 pub struct Outcome {
     pub problem: Problem,
     pub state: State,
+    pub compared: Vec<Compared>,
     pub findings: Vec<Finding<Place>>,
 }
 
@@ -46,14 +47,14 @@ impl Outcome {
     /// Takes the statements in force through all rooms. `near` is an answer to start from;
     /// `inherited` says that the scope was looked over with the base. None when cancelled.
     pub fn new(
-        statements: &[Written],
-        merging: Vec<Defect>,
+        in_force: &InForce,
         scope: Arc<Scope>,
         inherited: bool,
         near: Option<&Answer>,
         cancel: &AtomicBool,
     ) -> Option<Outcome> {
-        let problem = resolve(statements, merging, scope);
+        let InForce { statements, left_out, defects } = in_force;
+        let problem = resolve(statements, defects.clone(), scope);
         let state = if !problem.states_problem {
             State::NothingStated
         } else if problem.blocked {
@@ -66,11 +67,23 @@ impl Outcome {
                 Err(failure) => State::Failed(failure),
             }
         };
+        let brought = match &state {
+            State::Solved(solved) => Some(solved.answer.amounts.as_slice()),
+            _ => None,
+        };
+        let compared = compared(&problem, brought);
         let mut findings = Vec::new();
-        let context = Context { statements, problem: &problem, state: &state, inherited };
+        let context = Context {
+            statements,
+            left_out,
+            problem: &problem,
+            state: &state,
+            compared: &compared,
+            inherited,
+        };
         for rule in rules() {
             (rule.find)(&context, &mut findings);
         }
-        Some(Outcome { problem, state, findings })
+        Some(Outcome { problem, state, compared, findings })
     }
 }

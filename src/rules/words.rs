@@ -21,6 +21,19 @@ pub fn list(items: &[String], last: &str) -> String {
     }
 }
 
+/// `a`, `b` or `c` from names, each in backquotes.
+pub fn names<S: AsRef<str>>(names: &[S], last: &str) -> String {
+    let quoted: Vec<String> = names.iter().map(|name| format!("`{}`", name.as_ref())).collect();
+    list(&quoted, last)
+}
+
+/// A temperature given in kelvin, in degrees Celsius with no more digits than it has.
+pub fn celsius(kelvin: f64) -> String {
+    let degrees = ((kelvin - 273.15) * 100.0).round() / 100.0;
+    // Adding zero takes the sign from minus zero.
+    format!("{} °C", degrees + 0.0).replace('-', "−")
+}
+
 /// A measured value with as many digits as help: four significant ones, powers of ten past
 /// six places.
 pub fn figure(value: f64) -> String {

@@ -1,6 +1,8 @@
 //! Small systems for the tests of balances, written by hand.
 #![allow(dead_code)]
 
+pub mod made;
+
 use lyate::balance::recipe::{Held, Reagent, Recipe};
 use lyate::balance::split::split_into_species;
 use lyate::balance::{Balance, Part};

@@ -1,7 +1,13 @@
-//! Rules on the files that a file uses.
+//! Rules on sets and other files that a file uses.
 
 use super::catalogue::family;
 
 family! {
     "Files":
+    unknown_set,
+    file_missing,
+    file_not_text,
+    import_cycle,
+    import_outside_root,
+    imported_file_broken,
 }

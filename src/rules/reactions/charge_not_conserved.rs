@@ -17,6 +17,7 @@
 //! reaction HCO3- <=> CO3^2- + H+, pKa = 10.33, source "site table, row 4"
 //! ```
 
+use super::closing;
 use crate::problem::defect::{Conserved, DefectKind};
 use crate::rules::catalogue::rule;
 use crate::rules::context::Context;
@@ -34,7 +35,7 @@ fn find(context: &Context, found: &mut Vec<Finding<Place>>) {
                 signed(*left),
                 signed(*right),
             );
-            found.push(RULE.at(defect.at, message));
+            found.push(closing::offer(RULE.at(defect.at, message), context));
         }
     }
 }

@@ -4,4 +4,9 @@ use super::catalogue::family;
 
 family! {
     "Statements":
+    statement_repeated,
+    nothing_to_remove,
+    case_repeated,
+    unknown_activity_model,
+    not_yet_supported,
 }

@@ -30,6 +30,15 @@ pub fn concentration(value: f64, scale: Scale) -> String {
     format!("{} {unit}/{per}", significant(value * factor, 3))
 }
 
+/// Charge per litre or kilogram, in meq.
+pub fn equivalents(value: f64, scale: Scale) -> String {
+    let per = match scale {
+        Scale::PerLitre => "L",
+        Scale::PerKilogram => "kg",
+    };
+    format!("{} meq/{per}", significant(value * 1e3, 3))
+}
+
 /// A number with so many significant digits; with a power of ten where it is very large or
 /// very small. Minus is the true minus sign.
 pub fn significant(value: f64, digits: usize) -> String {

@@ -1,0 +1,67 @@
+//! A constant is for another temperature, and no enthalpy leads to this one.
+//!
+//! Constants move with temperature: that of ammonium by 0.03 in pKa for each kelvin. A
+//! constant is for 25 °C unless `at` says otherwise. With `enthalpy` it is carried to the
+//! problem's temperature by van 't Hoff's equation; without, it is taken as it stands,
+//! and the answer is that of another temperature.
+//!
+//! Before:
+//!
+//! ```lyate
+//! component NH3
+//! temperature 12 °C
+//! reaction NH4+ <=> NH3 + H+, pKa = 9.25, source "site table, row 2"
+//! ```
+//!
+//! After:
+//!
+//! ```lyate
+//! component NH3
+//! temperature 12 °C
+//! reaction NH4+ <=> NH3 + H+, pKa = 9.25, enthalpy = 52.1 kJ/mol, source "site table, row 2"
+//! ```
+
+use crate::problem::defect::DefectKind;
+use crate::rules::catalogue::rule;
+use crate::rules::context::Context;
+use crate::rules::finding::Finding;
+use crate::rules::words::{celsius, list};
+use crate::text::span::Place;
+
+rule!("constant-for-other-temperature", Warning, "constant_for_other_temperature.rs", find);
+
+fn find(context: &Context, found: &mut Vec<Finding<Place>>) {
+    // Those of used files and sets have no place here: all are told at the temperature.
+    let mut used: Option<(Place, f64, Vec<String>)> = None;
+    for defect in context.defects() {
+        let DefectKind::ConstantAtOtherTemperature { reaction, given, wanted, own } = &defect.kind
+        else {
+            continue;
+        };
+        if !own {
+            let words = format!("`{reaction}` for {}", celsius(*given));
+            used.get_or_insert((defect.at, *wanted, Vec::new())).2.push(words);
+            continue;
+        }
+        let message = format!(
+            "the constant is for {} and the problem is at {}; it is taken as it stands",
+            celsius(*given),
+            celsius(*wanted),
+        );
+        let help = format!(
+            "give `enthalpy = … kJ/mol`, or a constant for {} with `at {}`",
+            celsius(*wanted),
+            celsius(*wanted),
+        );
+        found.push(RULE.at(defect.at, message).with_help(help));
+    }
+    if let Some((at, wanted, reactions)) = used {
+        let message = format!(
+            "at {} these constants are taken as they stand: {}",
+            celsius(wanted),
+            list(&reactions, "and"),
+        );
+        let help = "write them in this file with `enthalpy = … kJ/mol`, or with `at`";
+        found.push(RULE.at(at, message).with_help(help));
+    }
+}

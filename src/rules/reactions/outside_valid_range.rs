@@ -1,0 +1,62 @@
+//! The problem's temperature lies outside the range that a constant is valid in.
+//!
+//! `valid 0 to 50 °C` says over which temperatures a fit was made. Outside it the
+//! expression still gives a number, which may run away from the truth within a few
+//! degrees. Look for a constant that covers the temperature before a dose rests on it.
+//!
+//! Before:
+//!
+//! ```lyate
+//! component NH3
+//! temperature 65 °C
+//! reaction NH4+ <=> NH3 + H+, log K(T) = -0.09018 - 2729.92/T, valid 0 to 50 °C,
+//!     source "site fit of March"
+//! ```
+//!
+//! After:
+//!
+//! ```lyate
+//! component NH3
+//! temperature 45 °C
+//! reaction NH4+ <=> NH3 + H+, log K(T) = -0.09018 - 2729.92/T, valid 0 to 50 °C,
+//!     source "site fit of March"
+//! ```
+
+use crate::problem::defect::DefectKind;
+use crate::rules::catalogue::rule;
+use crate::rules::context::Context;
+use crate::rules::finding::Finding;
+use crate::rules::words::{celsius, list};
+use crate::text::span::Place;
+
+rule!("outside-valid-range", Warning, "outside_valid_range.rs", find);
+
+fn find(context: &Context, found: &mut Vec<Finding<Place>>) {
+    // Those of used files and sets have no place here: all are told at the temperature.
+    let mut used: Option<(Place, f64, Vec<String>)> = None;
+    for defect in context.defects() {
+        let DefectKind::OutsideValidRange { reaction, low, high, wanted, own } = &defect.kind
+        else {
+            continue;
+        };
+        let range = format!("{} to {}", celsius(*low).trim_end_matches(" °C"), celsius(*high));
+        if *own {
+            let message = format!(
+                "the problem is at {} and the constant is valid from {range}",
+                celsius(*wanted)
+            );
+            found.push(RULE.at(defect.at, message));
+        } else {
+            let words = format!("`{reaction}` ({range})");
+            used.get_or_insert((defect.at, *wanted, Vec::new())).2.push(words);
+        }
+    }
+    if let Some((at, wanted, reactions)) = used {
+        let message = format!(
+            "{} is outside the range of these constants: {}",
+            celsius(wanted),
+            list(&reactions, "and"),
+        );
+        found.push(RULE.at(at, message));
+    }
+}
