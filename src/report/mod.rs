@@ -5,7 +5,6 @@ pub mod check_json;
 pub mod editor;
 pub mod inline;
 pub mod junit;
-pub mod recipe;
 pub mod sarif;
 pub mod sheet;
 pub mod solution;

@@ -4,7 +4,6 @@
 use num_rational::Rational64;
 use num_traits::{Signed, ToPrimitive};
 
-use super::recipe::{held_names, recipe};
 use crate::balance::charge::charge_balance;
 use crate::balance::mass::mass_balance;
 use crate::balance::proton::{ProtonCondition, proton_condition};
@@ -85,7 +84,8 @@ pub struct Ledger<'a> {
 
 impl<'a> Ledger<'a> {
     pub fn new(problem: &'a Problem, solved: Option<&'a Solved>) -> Ledger<'a> {
-        Ledger { problem, solved, recipe: recipe(problem, solved) }
+        let brought = solved.map(|solved| solved.answer.amounts.as_slice());
+        Ledger { problem, solved, recipe: Recipe::of(problem, brought) }
     }
 
     pub fn charge(&self) -> Sheet {
@@ -139,7 +139,12 @@ impl<'a> Ledger<'a> {
                 format!("added {}", reagent.map_or("?", |r| r.formula.name.as_str()))
             }
             Quantity::Part(Part::Held(held)) => {
-                format!("exchanged {}", held_names(self.problem).get(held).unwrap_or(&"?"))
+                let held = self.problem.held.get(held);
+                match held.map(|held| (held.releases, held.words.as_str())) {
+                    Some((Some(j), _)) => format!("total {}", self.component(j)),
+                    Some((None, words)) => format!("{words} taken up"),
+                    None => "?".into(),
+                }
             }
         };
         let amount = match what {

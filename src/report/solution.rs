@@ -2,6 +2,7 @@
 //!
 //! A number that could not be had is absent; lists that do not apply are empty.
 
+use num_rational::Rational64;
 use num_traits::ToPrimitive;
 use serde::Serialize;
 
@@ -118,7 +119,7 @@ struct Balance {
 #[derive(Serialize)]
 struct Term {
     term: String,
-    coefficient: f64,
+    coefficient: serde_json::Number,
     /// Coefficient included.
     #[serde(skip_serializing_if = "Option::is_none")]
     value: Option<f64>,
@@ -285,7 +286,7 @@ fn balance(sheet: &Sheet) -> Balance {
     let terms = |side: &[super::sheet::Entry]| {
         let terms = side.iter().map(|entry| Term {
             term: entry.words.clone(),
-            coefficient: entry.coefficient.to_f64().unwrap_or(f64::NAN),
+            coefficient: number(entry.coefficient),
             value: entry.value,
         });
         terms.collect()
@@ -298,4 +299,11 @@ fn balance(sheet: &Sheet) -> Balance {
         error: sheet.error(),
         dominant: entries.filter(|e| e.dominant).map(|e| e.words.clone()).collect(),
     }
+}
+
+/// A whole number where it is one.
+pub fn number(value: Rational64) -> serde_json::Number {
+    let fraction = || serde_json::Number::from_f64(value.to_f64()?);
+    let whole = value.is_integer().then(|| serde_json::Number::from(value.to_integer()));
+    whole.or_else(fraction).unwrap_or_else(|| 0.into())
 }
