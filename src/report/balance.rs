@@ -45,20 +45,15 @@ pub fn side_words(problem: &Problem, side: &[WeighedTerm], dominant_only: bool) 
     if terms.is_empty() { "0".into() } else { terms.join(" + ") }
 }
 
-/// `closes · rests on [NH3] = added NaOH`, in few words for the end of a line.
-pub fn short(problem: &Problem, balance: &Weighed) -> String {
-    let left = side_words(problem, &balance.left, true);
-    let right = side_words(problem, &balance.right, true);
-    let head = if balance.closes() {
-        "closes".to_owned()
-    } else {
-        format!("open by {}", concentration(balance.error(), problem.scale))
-    };
+/// `rests on [NH3] = added NaOH`: the terms that alone give the answer.
+pub fn rests_on(problem: &Problem, balance: &Weighed) -> String {
     let all = |side: &[WeighedTerm]| side.iter().all(|term| term.weight.dominant);
     if all(&balance.left) && all(&balance.right) {
-        return format!("{head} · rests on every term");
+        return "rests on every term".into();
     }
-    format!("{head} · rests on {left} = {right}")
+    let left = side_words(problem, &balance.left, true);
+    let right = side_words(problem, &balance.right, true);
+    format!("rests on {left} = {right}")
 }
 
 /// Each term with its amount, its share of its side, and what leaving it out does to the
