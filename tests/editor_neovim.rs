@@ -2,6 +2,7 @@
 //! What is done and looked for stands in `editors/session.lua`; the plug-in is the one that
 //! users get.
 
+use std::io::Write;
 use std::path::Path;
 use std::process::{Command, Stdio};
 use std::time::{Duration, Instant};
@@ -79,6 +80,9 @@ fn a_file_is_opened_fixed_and_edited_in_neovim() {
     let printed = std::fs::read(&printed).expect("what was printed");
     let printed = String::from_utf8_lossy(&printed);
     println!("{printed}");
+    // Past the test's own capture, so that every run says which editor it ran in.
+    let version = printed.lines().next().unwrap_or_default();
+    let _ = writeln!(std::io::stderr(), "the session ran in {version}");
     assert!(
         status.is_some_and(|status| status.success()) && printed.lines().any(|l| l == "DONE"),
         "the session in Neovim ({neovim}) failed, {}:\n{printed}",

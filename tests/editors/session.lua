@@ -205,7 +205,8 @@ local function session()
   -- What hovering over a species says, in the window that `K` opens.
   local ammonium = row('balance NH3') + 1
   local line = vim.api.nvim_buf_get_lines(0, ammonium, ammonium + 1, true)[1]
-  vim.api.nvim_win_set_cursor(0, { ammonium + 1, line:find('NH4+', 1, true) })
+  local within = line:find('NH4+', 1, true)
+  vim.api.nvim_win_set_cursor(0, { ammonium + 1, within })
   vim.lsp.buf.hover()
   await('hovering over NH4+ tells its molar mass, amount and source', function()
     for _, window in ipairs(vim.api.nvim_list_wins()) do
