@@ -24,7 +24,7 @@ use lyate::text::problem::SyntaxProblemKind;
 use lyate::text::tree::{Document, Statement};
 
 /// Sentences made of each kind of statement.
-const SENTENCES: usize = 150;
+const SENTENCES: usize = 60;
 
 fn project(path: &str) -> PathBuf {
     Path::new(env!("CARGO_MANIFEST_DIR")).join(path)
@@ -85,10 +85,19 @@ fn what_the_grammar_makes_is_read() {
     let grammar = grammar();
     let mut maker = Maker::new(&grammar);
     let mut wrong = Vec::new();
-    for kind in kinds(&grammar) {
+    // Clauses and expressions are too rare inside whole statements to be tried in full.
+    let inside =
+        [("clause", "reaction A <=> B, "), ("expression", "reaction A <=> B, log K(T) = ")];
+    let whole = kinds(&grammar).into_iter().map(|kind| (kind, ""));
+    for (kind, before) in whole.chain(inside) {
         for _ in 0..SENTENCES {
-            let sentence = maker.sentence(kind);
-            assert!(is_sentence(&grammar, kind, &sentence), "made, not recognised: {sentence}");
+            let made = maker.sentence(kind);
+            assert!(is_sentence(&grammar, kind, &made), "made, not recognised: {made}");
+            let sentence = format!("{before}{made}");
+            // The first line under a case is its first statement already.
+            if kind == "case" && sentence.contains('\n') {
+                continue;
+            }
             let document = Document::parse(sentence.as_str());
             // A clause that stands twice is told in words, and not by the grammar.
             let problems = document
@@ -104,10 +113,12 @@ fn what_the_grammar_makes_is_read() {
             }
         }
     }
-    assert!(wrong.is_empty(), "{} wrong, such as\n{}", wrong.len(), wrong[0]);
+    wrong.sort_by_key(String::len);
+    let shown = wrong.iter().take(5).cloned().collect::<Vec<_>>().join("\n\n");
+    assert!(wrong.is_empty(), "{} wrong, such as\n{shown}", wrong.len());
     let unseen: Vec<_> =
         grammar.rules.keys().filter(|name| !maker.seen.contains(name.as_str())).collect();
-    assert_eq!(unseen, ["COMMENT", "file", "section", "statement"], "rules never tried");
+    assert_eq!(unseen, ["COMMENT", "SPACE", "file", "section", "statement"], "rules never tried");
 }
 
 fn problem_files(below: &Path, found: &mut Vec<PathBuf>) {
@@ -137,11 +148,16 @@ fn what_the_projects_files_hold_is_in_the_grammar() {
     for text in texts {
         for placed in Document::parse(text).statements() {
             let parsed = &placed.parsed;
-            let stray = |kind: &SyntaxProblemKind| matches!(kind, SyntaxProblemKind::StrayIndent);
-            match parsed.problems.iter().all(|problem| stray(&problem.kind)) {
-                true => right.insert(parsed.text.to_string()),
-                false => broken.insert(parsed.text.to_string()),
+            // Layout and repeated clauses are not the grammar's.
+            let other = |kind: &SyntaxProblemKind| {
+                use SyntaxProblemKind::{RepeatedClause, StrayIndent};
+                !matches!(kind, RepeatedClause { .. } | StrayIndent)
             };
+            if parsed.problems.is_empty() {
+                right.insert(parsed.text.to_string());
+            } else if parsed.problems.iter().any(|problem| other(&problem.kind)) {
+                broken.insert(parsed.text.to_string());
+            }
         }
     }
     assert!(right.len() > 400 && broken.len() > 50, "{} and {}", right.len(), broken.len());

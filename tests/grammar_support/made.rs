@@ -14,7 +14,7 @@ pub struct Maker<'g> {
 }
 
 /// Deeper than this, the shortest way is taken.
-const DEEP: usize = 12;
+const DEEP: usize = 8;
 /// For the height of a rule before it is known.
 const UNKNOWN: usize = 1000;
 /// What a class of all but some characters is tried with.
@@ -48,19 +48,24 @@ impl<'g> Maker<'g> {
         for word in words {
             let may_touch = ["[", "{"].contains(&last.as_str())
                 || ["]", "}", ","].contains(&word.as_str());
-            text.push_str(match self.below(12) {
-                _ if text.is_empty() => "",
-                0..6 if may_touch => "",
-                6 => "\n    ",
-                7 => "  ",
-                8 => " # why, in \"words\"\n\n\t",
-                9 => "\r\n  # alone\r\n      ",
-                _ => " ",
-            });
+            if !(text.is_empty() || may_touch && self.below(2) == 0) {
+                text.push_str(self.space());
+            }
             text.push_str(&word);
             last = word;
         }
         text
+    }
+
+    /// Only layout can say which spaces may stand inside a statement.
+    fn space(&mut self) -> &'static str {
+        match self.below(12) {
+            0 => "\n    ",
+            1 => "  ",
+            2 => " # why, in \"words\"\n\n\t",
+            3 => "\r\n  # alone\r\n      ",
+            _ => " ",
+        }
     }
 
     fn words(&mut self, expression: &'g Expression, depth: usize, words: &mut Vec<String>) {
@@ -93,6 +98,7 @@ impl<'g> Maker<'g> {
 
     fn characters(&mut self, expression: &'g Expression, depth: usize, text: &mut String) {
         match expression {
+            Expression::Rule(name) if name == "SPACE" => text.push_str(self.space()),
             Expression::Rule(name) => {
                 assert!(is_lexical(name), "{name} inside a rule in capitals");
                 self.seen.insert(name);
@@ -134,10 +140,8 @@ impl<'g> Maker<'g> {
     }
 
     fn times(&mut self, least: usize, most: Option<usize>, depth: usize) -> usize {
-        if depth > DEEP {
-            return least;
-        }
-        (least + self.below(3)).min(most.unwrap_or(usize::MAX))
+        let more = if depth > DEEP { 1 } else { 1 + self.below(3).min(2) };
+        (least + self.below(more)).min(most.unwrap_or(usize::MAX))
     }
 
     /// A whole number below `limit` (xorshift).

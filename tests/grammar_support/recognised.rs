@@ -46,10 +46,14 @@ impl<'g> Recogniser<'g, '_> {
                 let inside = ranges.iter().any(|(from, to)| (*from..=*to).contains(&one));
                 (inside != *negated).then_some(at + one.len_utf8()).into_iter().collect()
             }
-            Expression::Rule(name) => {
-                let at = if !lexical && is_lexical(name) { self.after_space(at) } else { at };
-                self.rule(name, at)
+            // A rule in capitals may begin with the space before it, or after that.
+            Expression::Rule(name) if !lexical && is_lexical(name) => {
+                let after = self.after_space(at);
+                let mut ends = self.rule(name, at);
+                ends.extend(self.rule(name, after));
+                ends
             }
+            Expression::Rule(name) => self.rule(name, at),
             Expression::Sequence(parts) => {
                 let mut reached = Ends::from([at]);
                 for part in parts {
