@@ -51,8 +51,7 @@ impl Outcome {
         near: Option<&Answer>,
         cancel: &AtomicBool,
     ) -> Option<Outcome> {
-        let InForce { statements, left_out, defects } = in_force;
-        let problem = resolve(statements, defects.clone(), scope);
+        let problem = resolve(&in_force.statements, in_force.defects.clone(), scope);
         let state = if !problem.states_problem {
             State::NothingStated
         } else if problem.blocked {
@@ -66,7 +65,7 @@ impl Outcome {
             }
         };
         let mut findings = Vec::new();
-        let context = Context { statements, left_out, problem: &problem, state: &state, inherited };
+        let context = Context::new(in_force, &problem, &state, inherited);
         for rule in rules() {
             (rule.find)(&context, &mut findings);
         }
