@@ -276,10 +276,10 @@ fn states_a_problem(statement: &Statement) -> bool {
 /// would be an answer to another question.
 fn is_blocked(statements: &[Written], scope: &Scope, problem: &Problem) -> bool {
     let counts = |at: Place| {
+        // In the order of the text, the base before the case.
         statements
-            .iter()
-            .find(|w| w.part == at.section && w.index == at.statement)
-            .is_some_and(|w| !is_about_answers(w))
+            .binary_search_by_key(&(at.section, at.statement), |w| (w.part, w.index))
+            .is_ok_and(|found| !is_about_answers(&statements[found]))
     };
     statements.iter().any(|w| !w.parsed.problems.is_empty() && !is_about_answers(w))
         || scope

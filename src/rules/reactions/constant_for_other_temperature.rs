@@ -32,7 +32,8 @@ rule!("constant-for-other-temperature", Warning, "constant_for_other_temperature
 
 fn find(context: &Context, found: &mut Vec<Finding<Place>>) {
     // Those of used files and sets have no place here: all are told at the temperature.
-    let mut used: Option<(Place, f64, Vec<(&str, f64)>)> = None;
+    let mut used: Vec<(&str, f64)> = Vec::new();
+    let mut told_at: Option<(Place, f64)> = None;
     for defect in context.defects() {
         let DefectKind::ConstantAtOtherTemperature { reaction, given, wanted, own } = &defect.kind
         else {
@@ -46,17 +47,18 @@ fn find(context: &Context, found: &mut Vec<Finding<Place>>) {
             );
             found.push(RULE.at(defect.at, message("the constant", *given, *wanted)).with_help(help));
         } else {
-            used.get_or_insert((defect.at, *wanted, Vec::new())).2.push((reaction, *given));
+            told_at.get_or_insert((defect.at, *wanted));
+            used.push((reaction, *given));
         }
     }
-    let Some((at, wanted, reactions)) = used else { return };
-    let message = match reactions[..] {
+    let Some((at, wanted)) = told_at else { return };
+    let message = match used[..] {
         [(reaction, given)] => message(&format!("the constant of `{reaction}`"), given, wanted),
         _ => {
             let words = |&(reaction, given): &(&str, f64)| {
                 format!("`{reaction}` for {}", celsius(given))
             };
-            let all: Vec<String> = reactions.iter().map(words).collect();
+            let all: Vec<String> = used.iter().map(words).collect();
             let all = list(&all, "and");
             format!("at {} these constants are taken as they stand: {all}", celsius(wanted))
         }

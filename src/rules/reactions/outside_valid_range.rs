@@ -33,7 +33,8 @@ rule!("outside-valid-range", Warning, "outside_valid_range.rs", find);
 
 fn find(context: &Context, found: &mut Vec<Finding<Place>>) {
     // Those of used files and sets have no place here: all are told at the temperature.
-    let mut used: Option<(Place, f64, Vec<(&str, String)>)> = None;
+    let mut used: Vec<(&str, String)> = Vec::new();
+    let mut told_at: Option<(Place, f64)> = None;
     for defect in context.defects() {
         let DefectKind::OutsideValidRange { reaction, low, high, wanted, own } = &defect.kind
         else {
@@ -43,15 +44,16 @@ fn find(context: &Context, found: &mut Vec<Finding<Place>>) {
         if *own {
             found.push(RULE.at(defect.at, message("the constant", &range, *wanted)));
         } else {
-            used.get_or_insert((defect.at, *wanted, Vec::new())).2.push((reaction, range));
+            told_at.get_or_insert((defect.at, *wanted));
+            used.push((reaction, range));
         }
     }
-    let Some((at, wanted, reactions)) = used else { return };
-    let message = match &reactions[..] {
+    let Some((at, wanted)) = told_at else { return };
+    let message = match &used[..] {
         [(reaction, range)] => message(&format!("the constant of `{reaction}`"), range, wanted),
         _ => {
             let words = |(reaction, range): &(&str, String)| format!("`{reaction}` ({range})");
-            let all: Vec<String> = reactions.iter().map(words).collect();
+            let all: Vec<String> = used.iter().map(words).collect();
             let all = list(&all, "and");
             format!("{} is outside the range of these constants: {all}", celsius(wanted))
         }
