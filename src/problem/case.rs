@@ -145,7 +145,10 @@ fn constants(case: &mut CaseResolver, problem: &mut Problem) {
             Origin::Own(place) => Some(*place),
             _ => None,
         };
-        let Some(issue) = issue else { continue };
+        // Where water's own constant ends, so do its other properties: that is told as one.
+        let constant = reaction.constant.as_ref().map(|constant| &constant.value);
+        let is_water = matches!(constant, Some(LogK::Water));
+        let Some(issue) = issue.filter(|_| !is_water) else { continue };
         let at = own.or(problem.temperature_at).or_else(|| first_use(case.statements));
         let Some(at) = at else { continue };
         let equation = reaction.equation.clone();
@@ -180,7 +183,6 @@ fn constants(case: &mut CaseResolver, problem: &mut Problem) {
             case.resolver.report(at, DefectKind::Follows { by });
         }
     }
-    let _ = LogK::Water;
 }
 
 /// Where a constant that another file or set brought is told of, without a `temperature`.
