@@ -5,9 +5,11 @@ use std::process::ExitCode;
 use clap::{Parser, Subcommand};
 
 mod check;
+mod chosen;
 mod library;
 mod reply;
 mod serve;
+mod solve;
 mod terminal;
 
 /// Checks, balances, solves and explains chemical-equilibrium problem files.
@@ -21,6 +23,7 @@ struct Arguments {
 #[derive(Subcommand)]
 enum Command {
     Check(check::Arguments),
+    Solve(solve::Arguments),
     Serve(serve::Arguments),
 }
 
@@ -28,6 +31,7 @@ enum Command {
 pub fn run() -> ExitCode {
     match Arguments::parse().command {
         Command::Check(arguments) => reply::give(check::run(&arguments)),
+        Command::Solve(arguments) => reply::give(solve::run(&arguments)),
         Command::Serve(arguments) => serve::run(&arguments),
     }
 }

@@ -59,6 +59,16 @@ pub fn significant(value: f64, digits: usize) -> String {
     minus(&format!("{value:.places$}"))
 }
 
+/// A number with so many significant digits, always with its power of ten, so that a column
+/// of them compares.
+pub fn scientific(value: f64, digits: usize) -> String {
+    let text = format!("{value:.*e}", digits.saturating_sub(1));
+    match text.split_once('e') {
+        Some((number, power)) => format!("{}e{power}", minus(number)),
+        None => minus(&text),
+    }
+}
+
 /// With so many decimals.
 pub fn decimals(value: f64, places: usize) -> String {
     let text = format!("{value:.places$}");
