@@ -1,6 +1,6 @@
 //! Exact elimination, against plain checks of what its results mean.
 
-use lyate::balance::elimination::{
+use lyate::problem::elimination::{
     Solution, SparseRow, dependence, express, independent_rows, null_space, rank, solve,
 };
 use num_bigint::BigInt;

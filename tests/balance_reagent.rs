@@ -1,11 +1,11 @@
 //! Reagents split over components by their formulas, and the space of balances against
 //! counting atoms.
 
-use lyate::balance::elimination::{Solution, SparseRow, express, rank};
 use lyate::balance::mass::mass_balance;
-use lyate::balance::reagent::{SplitProblem, split_over_components};
 use lyate::chemistry::element::Element;
 use lyate::chemistry::formula::{Atom, Formula, Groups};
+use lyate::problem::elimination::{Solution, SparseRow, express, rank};
+use lyate::problem::reagent::{SplitProblem, split_over_components};
 use lyate::problem::stoichiometry::{SpeciesRow, Stoichiometry};
 use num_rational::Rational64;
 use proptest::prelude::*;

@@ -2,11 +2,8 @@
 //! was derived.
 
 pub mod charge;
-pub mod elimination;
-mod exact;
 pub mod mass;
 pub mod proton;
-pub mod reagent;
 pub mod recipe;
 pub mod split;
 pub mod written;

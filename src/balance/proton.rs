@@ -11,10 +11,10 @@ use num_integer::Integer;
 use num_rational::{BigRational, Rational64};
 use num_traits::ToPrimitive;
 
-use super::elimination::{SparseRow, TooLarge, express, independent_rows};
-use super::exact::{Exact, escalate};
 use super::recipe::{Recipe, Row};
 use super::{Balance, BalanceKind, Part};
+use crate::problem::elimination::{SparseRow, TooLarge, express, independent_rows};
+use crate::problem::exact::{Exact, escalate};
 use crate::problem::stoichiometry::Stoichiometry;
 
 mod level;

@@ -4,7 +4,30 @@ use num_rational::Rational64;
 use num_traits::ToPrimitive;
 
 use super::Part;
-use super::exact::Exact;
+use super::split::split_into_species;
+use crate::problem::exact::Exact;
+use crate::problem::model::{self, AmountSource, HeldWhat, Problem};
+use crate::problem::scope::PROTON;
+
+impl Held {
+    fn of(problem: &Problem, held: &model::Held, amount: Option<f64>) -> Held {
+        let scope = &problem.scope;
+        let one = Rational64::from(1);
+        let component = |j: usize| (vec![(j, one)], scope.components[j].formula.charge);
+        let (brings, charge) = match held.what {
+            HeldWhat::Ph(_) => component(PROTON),
+            HeldWhat::Pe(_) => scope.component("e-").map(component).unwrap_or_default(),
+            HeldWhat::Pressure { species, .. } => {
+                let made = scope.belonging.made[species].as_ref();
+                (made.map(|made| made.row.clone()).unwrap_or_default(), 0)
+            }
+            HeldWhat::Activity { .. } | HeldWhat::Concentration { .. } => {
+                held.releases.map(component).unwrap_or_default()
+            }
+        };
+        Held { brings, charge, amount }
+    }
+}
 
 /// A row over the components: (index, coefficient), by rising index, no zeros.
 pub type Row = Vec<(usize, Rational64)>;
@@ -40,6 +63,39 @@ pub struct Held {
 }
 
 impl Recipe {
+    /// What a problem puts in. `brought` is what each held value brought, once solved.
+    pub fn of(problem: &Problem, brought: Option<&[f64]>) -> Recipe {
+        let stoichiometry = &problem.scope.stoichiometry;
+        let reagents = problem.reagents.iter().map(|reagent| Reagent {
+            brings: reagent.row.clone(),
+            forms: reagent.giving.clone().unwrap_or_else(|| {
+                split_into_species(&reagent.row, stoichiometry).unwrap_or_default().forms
+            }),
+            amount: reagent.amount,
+        });
+        let totals = problem.amounts.iter().map(|amount| match amount.source {
+            AmountSource::Total => amount.total,
+            AmountSource::Nothing | AmountSource::Reagents | AmountSource::Held(_) => None,
+        });
+        let mut recipe =
+            Recipe { reagents: reagents.collect(), totals: totals.collect(), held: Vec::new() };
+        if let Some(proton) = recipe.totals.first_mut() {
+            *proton = None;
+        }
+        for (index, held) in problem.held.iter().enumerate() {
+            let amount = brought.and_then(|brought| brought.get(index)).copied();
+            recipe.held.push(Held::of(problem, held, amount));
+        }
+        for (j, amount) in problem.amounts.iter().enumerate().skip(1) {
+            let brings = |held: &Held| held.brings.iter().any(|(column, _)| *column == j);
+            // Listed and never brought in: absent.
+            if amount.source == AmountSource::Nothing && !recipe.held.iter().any(brings) {
+                recipe.totals[j] = Some(0.0);
+            }
+        }
+        recipe
+    }
+
     /// The sources of a component's amount: `total = Σ coefficient · part`. Where it has
     /// none, its total stands for itself.
     pub fn sources(&self, component: usize) -> Vec<(Part, Rational64)> {

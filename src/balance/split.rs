@@ -8,8 +8,8 @@
 use num_rational::Rational64;
 use num_traits::{Signed, Zero};
 
-use super::exact::Exact;
 use super::recipe::Row;
+use crate::problem::exact::Exact;
 use crate::problem::stoichiometry::Stoichiometry;
 
 /// One mole of a reagent as dissolved species.

@@ -2,11 +2,11 @@
 
 use num_rational::{BigRational, Rational64};
 
-pub use super::exact::TooLarge;
-use super::exact::escalate;
 use super::proton::ProtonCondition;
 use super::recipe::Recipe;
 use super::{BalanceKind, Part};
+pub use crate::problem::exact::TooLarge;
+use crate::problem::exact::escalate;
 use crate::problem::stoichiometry::Stoichiometry;
 
 mod constant;

@@ -1,61 +1,123 @@
 //! `lyate check`: checks problem files and solves what can be solved.
 
 use std::path::PathBuf;
-use std::process::ExitCode;
 
 use super::library::{Checker, find};
+use super::reply::{Complaint, Reply};
 use super::terminal::style;
-use crate::report::terminal;
+use crate::report::source::{FileReport, Reading};
+use crate::report::summary::Summary;
+use crate::report::{check_json, junit, sarif, terminal};
+use crate::rules::finding::{LocatedFinding, Severity};
 
-/// Checks every .lyate file below the paths, and solves what can be solved
+/// Check problem files, and solve what can be solved
+///
+/// Looks for .lyate files at and below the paths, leaving out what .gitignore and .ignore
+/// files name. Each file is read, its balances are compared with those that its reactions
+/// imply, its base and each case are solved, and the answers are held to what the file
+/// expects of them.
 #[derive(clap::Args)]
+#[command(
+    verbatim_doc_comment,
+    after_help = "\
+Exit code:
+  0  nothing was found at or above --fail-on
+  1  something was, or a problem could not be solved
+  2  not run: wrong usage, or a path or file that cannot be read
+
+`lyate explain RULE` says more about a finding."
+)]
 pub struct Arguments {
     /// Files and folders; the current folder where none is given
+    #[arg(value_name = "PATH")]
     paths: Vec<PathBuf>,
-    /// The folder that imports may not leave
-    #[arg(long, value_name = "FOLDER")]
+    /// The folder that imports may not leave; else the nearest above
+    /// each file that holds .git or lyate.toml, or the file's own
+    #[arg(long, value_name = "FOLDER", verbatim_doc_comment)]
     root: Option<PathBuf>,
+    /// The mildest finding that makes the exit code 1
+    #[arg(long, value_name = "SEVERITY", value_enum, default_value_t = FailOn::Error)]
+    fail_on: FailOn,
+    /// How to tell what was found
+    #[arg(long, value_name = "FORM", value_enum, default_value_t = Form::Text)]
+    output: Form,
 }
 
-pub fn run(arguments: &Arguments) -> ExitCode {
+#[derive(Clone, Copy, clap::ValueEnum)]
+enum FailOn {
+    Error,
+    Warning,
+    Note,
+}
+
+#[derive(Clone, Copy, PartialEq, Eq, clap::ValueEnum)]
+enum Form {
+    /// For people
+    Text,
+    /// For programs
+    Json,
+    /// For code review, as SARIF 2.1.0
+    Sarif,
+    /// For build servers, as JUnit XML
+    Junit,
+}
+
+pub fn run(arguments: &Arguments) -> Result<Reply, Complaint> {
     let mut paths = arguments.paths.clone();
     if paths.is_empty() {
         paths.push(PathBuf::from("."));
     }
-    let files = match find(&paths) {
-        Ok(files) => files,
-        Err(problem) => {
-            eprintln!("lyate: {problem}");
-            return ExitCode::from(2);
-        }
+    if let Some(root) = arguments.root.as_ref().filter(|root| !root.is_dir()) {
+        return Err(Complaint(format!("--root {}: there is no such folder", root.display())));
+    }
+    let found = find(&paths).map_err(Complaint)?;
+    let files = Checker::new(arguments.root.as_ref()).check_all(&found);
+    let summary = Summary::of(&files);
+    let fail_on = match arguments.fail_on {
+        FailOn::Error => Severity::Error,
+        FailOn::Warning => Severity::Warning,
+        FailOn::Note => Severity::Note,
     };
-    let checker = Checker::new(arguments.root.as_ref());
-    for path in &files {
-        match checker.check(path) {
-            Ok((text, checked)) => {
-                for finding in &checked.findings {
-                    let shown = path.display().to_string();
-                    println!("{}\n", terminal::finding(finding, &text, &shown, style()));
-                }
-                for outcome in &checked.outcomes {
-                    match outcome.solved() {
-                        Some(s) => println!(
-                            "{} pH {:.3} I {:.4}",
-                            path.display(),
-                            s.ph(),
-                            s.answer.ionic_strength
-                        ),
-                        None => println!(
-                            "{} {:?} {:?}",
-                            path.display(),
-                            outcome.state,
-                            outcome.problem.defects
-                        ),
-                    }
-                }
-            }
-            Err(problem) => println!("{}: {problem:?}", path.display()),
+    let unread = files.iter().any(|file| matches!(file.reading, Reading::Missing));
+    let code = if unread {
+        2
+    } else {
+        u8::from(summary.count(fail_on) > 0 || summary.solved < summary.problems)
+    };
+    let written = |text: Result<String, String>| match text {
+        Ok(text) => Ok(text.trim_end().to_owned() + "\n"),
+        Err(problem) => Err(Complaint(format!("the report could not be written: {problem}"))),
+    };
+    let text = match arguments.output {
+        Form::Text if files.is_empty() => String::new(),
+        Form::Text => text(&files, &summary),
+        Form::Json => written(check_json::report(&files).map_err(|e| e.to_string()))?,
+        Form::Sarif => written(sarif::report(&files).map_err(|e| e.to_string()))?,
+        Form::Junit => written(junit::report(&files, fail_on).map_err(|e| e.to_string()))?,
+    };
+    let mut reply = Reply::new(text, code);
+    if files.is_empty() {
+        let places: Vec<String> = paths.iter().map(|path| path.display().to_string()).collect();
+        reply.remark = format!("lyate: there are no .lyate files in {}\n", places.join(", "));
+    }
+    Ok(reply)
+}
+
+/// Errors and warnings in their text, notes on a line each, and a line that sums up.
+fn text(files: &[FileReport], summary: &Summary) -> String {
+    let style = style();
+    let mut text = String::new();
+    for file in files {
+        let (notes, others): (Vec<&LocatedFinding>, Vec<&LocatedFinding>) =
+            file.findings.iter().partition(|finding| finding.severity == Severity::Note);
+        for finding in others {
+            text += &terminal::finding(finding, &file.source, style);
+            text += "\n\n";
+        }
+        if !notes.is_empty() {
+            text += &terminal::notes(&notes, &file.source, style);
+            text.push('\n');
         }
     }
-    ExitCode::SUCCESS
+    text + &summary.words(style) + "\n"
 }

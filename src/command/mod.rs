@@ -5,8 +5,11 @@ use std::process::ExitCode;
 use clap::{Parser, Subcommand};
 
 mod check;
+mod chosen;
 mod library;
+mod reply;
 mod serve;
+mod solve;
 mod terminal;
 
 /// Checks, balances, solves and explains chemical-equilibrium problem files.
@@ -20,13 +23,15 @@ struct Arguments {
 #[derive(Subcommand)]
 enum Command {
     Check(check::Arguments),
+    Solve(solve::Arguments),
     Serve(serve::Arguments),
 }
 
 /// Runs the command that the arguments name.
 pub fn run() -> ExitCode {
     match Arguments::parse().command {
-        Command::Check(arguments) => check::run(&arguments),
+        Command::Check(arguments) => reply::give(check::run(&arguments)),
+        Command::Solve(arguments) => reply::give(solve::run(&arguments)),
         Command::Serve(arguments) => serve::run(&arguments),
     }
 }

@@ -23,6 +23,12 @@ pub(super) fn log_jacobian(at: &Coordinates, point: &Point, out: &mut DMatrix<f6
     }
 }
 
+/// Solves in place; false where the matrix is singular.
+pub(super) fn solve_square(matrix: DMatrix<f64>, side: &mut DVector<f64>) -> bool {
+    // The library cannot solve for no unknowns at all.
+    side.is_empty() || (LU::new(matrix).solve_mut(side) && side.iter().all(|s| s.is_finite()))
+}
+
 /// The step that would close `ln(P/N)` in every row to first order; false where the
 /// equations do not determine one.
 pub(super) fn log_step(at: &Coordinates, point: &Point, step: &mut [f64]) -> bool {
@@ -31,9 +37,9 @@ pub(super) fn log_step(at: &Coordinates, point: &Point, step: &mut [f64]) -> boo
     log_jacobian(at, point, &mut matrix);
     let rows = point.positive.iter().zip(&point.negative);
     let mut side = DVector::from_iterator(size, rows.map(|(p, n)| (n / p).ln()));
-    let solved = LU::new(matrix).solve_mut(&mut side);
+    let solved = solve_square(matrix, &mut side);
     step.copy_from_slice(side.as_slice());
-    solved && step.iter().all(|s| s.is_finite())
+    solved
 }
 
 /// The Newton step of the convex function, its matrix scaled to a unit diagonal; false
@@ -64,7 +70,9 @@ pub(super) fn convex_step(at: &Coordinates, point: &Point, step: &mut [f64]) -> 
     let Some(factor) = Cholesky::new(matrix) else {
         return false;
     };
-    factor.solve_mut(&mut side);
+    if size > 0 {
+        factor.solve_mut(&mut side);
+    }
     for j in 0..size {
         step[j] = side[j] * scales[j];
     }

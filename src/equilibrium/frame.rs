@@ -37,7 +37,7 @@ pub(super) struct Frame<'a> {
 }
 
 /// Cancellation below this many units of rounding of its terms is a total of zero.
-const ROUNDINGS: f64 = 4.0 * f64::EPSILON;
+pub(super) const ROUNDINGS: f64 = 4.0 * f64::EPSILON;
 
 impl<'a> Frame<'a> {
     pub fn new(system: &'a System) -> Result<Self, Failure> {

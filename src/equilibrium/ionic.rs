@@ -4,9 +4,9 @@
 
 use std::sync::atomic::{AtomicBool, Ordering};
 
-use nalgebra::{DMatrix, DVector, LU};
+use nalgebra::{DMatrix, DVector};
 
-use super::direction::log_jacobian;
+use super::direction::{log_jacobian, solve_square};
 use super::newton::CLOSED;
 use super::search::Search;
 use super::system::Failure;
@@ -106,9 +106,8 @@ fn joint_step(search: &Search) -> Option<Vec<f64>> {
     let (at, point) = (&search.at, &search.point);
     let size = at.slots.len();
     let now = search.ionic_strength_now();
-    let mut jacobian = DMatrix::zeros(size, size);
-    log_jacobian(at, point, &mut jacobian);
-    let mut matrix = jacobian.resize(size + 1, size + 1, 0.0);
+    let mut matrix = DMatrix::zeros(size + 1, size + 1);
+    log_jacobian(at, point, &mut matrix);
     for (i, &species) in at.species.iter().enumerate() {
         let c = point.concentrations[i];
         let slope = search.shift_slopes[i];
@@ -128,8 +127,7 @@ fn joint_step(search: &Search) -> Option<Vec<f64>> {
         side[j] = (point.negative[j] / point.positive[j]).ln();
     }
     side[size] = (search.ionic_strength? / now).ln();
-    let solved = LU::new(matrix).solve_mut(&mut side);
-    (solved && side.iter().all(|s| s.is_finite())).then(|| side.as_slice().to_vec())
+    solve_square(matrix, &mut side).then(|| side.as_slice().to_vec())
 }
 
 /// Finds where the ionic strength that comes out passes the one put in, solving the

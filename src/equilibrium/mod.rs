@@ -3,18 +3,25 @@
 
 mod basis;
 pub mod build;
+pub mod charge;
 mod coordinates;
 mod direction;
+pub mod dominance;
 mod exact;
+mod feasible;
 mod fixed;
 mod frame;
 mod ionic;
+mod line;
 mod newton;
 mod point;
 pub mod quantities;
+mod root;
 mod search;
+pub mod sensitivity;
 mod skew;
 pub mod solve;
 mod start;
 mod sum;
 pub mod system;
+pub mod weighed;

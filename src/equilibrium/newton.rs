@@ -7,6 +7,7 @@
 use std::sync::atomic::{AtomicBool, Ordering};
 
 use super::direction::{convex_step, log_step};
+use super::feasible::forced_absent;
 use super::search::Search;
 use super::system::Failure;
 
@@ -18,13 +19,22 @@ const NEARLY_CLOSED: f64 = 1e-10;
 const NEAR: f64 = 1e-2;
 const HYBRID_STEPS: u32 = 100;
 const CONVEX_STEPS: u32 = 2000;
+/// How often a convex step is doubled while it still goes straight down.
+const STRETCHES: u32 = 12;
 
 impl Search<'_> {
     /// Closes every row to `tolerance`, from the present point.
     pub fn converge(&mut self, tolerance: f64, cancel: &AtomicBool) -> Result<(), Failure> {
-        match self.attempt(tolerance, false, cancel) {
-            Err(Failure::NotConverged { .. }) => {}
-            other => return other,
+        loop {
+            match self.attempt(tolerance, false, cancel) {
+                Err(Failure::NotConverged { .. }) => {}
+                other => return other,
+            }
+            let absent = forced_absent(&self.frame, cancel)?;
+            if absent.is_empty() {
+                break;
+            }
+            self.exclude(&absent)?;
         }
         self.attempt(tolerance, true, cancel)
     }
@@ -91,7 +101,25 @@ impl Search<'_> {
     fn convex_move(&mut self) -> bool {
         const BACKTRACKS: u32 = 60;
         self.step.resize(self.point.u.len(), 0.0);
-        convex_step(&self.at, &self.point, &mut self.step) && self.descend(BACKTRACKS)
+        if !convex_step(&self.at, &self.point, &mut self.step) || !self.descend(BACKTRACKS) {
+            return false;
+        }
+        self.stretch();
+        true
+    }
+
+    /// From far above, a convex step goes down by one unit of `u` at a time: goes twice
+    /// as far again for as long as the slope has hardly eased.
+    fn stretch(&mut self) {
+        for _ in 0..STRETCHES {
+            let slope = self.point.slope(&self.step);
+            let here = self.slope_at(1.0);
+            if slope >= 0.0 || here >= 0.0 || here.is_nan() {
+                return;
+            }
+            std::mem::swap(&mut self.point, &mut self.trial);
+            self.step.iter_mut().for_each(|s| *s *= 2.0);
+        }
     }
 
     fn try_step(&mut self, t: f64) {
@@ -109,8 +137,7 @@ impl Search<'_> {
         }
         let mut t = 1.0;
         for _ in 0..=backtracks {
-            self.try_step(t);
-            let here = self.trial.slope(&self.step);
+            let here = self.slope_at(t);
             if here <= -0.5 * slope {
                 std::mem::swap(&mut self.point, &mut self.trial);
                 return true;
@@ -120,5 +147,13 @@ impl Search<'_> {
             t *= if level.is_finite() { level.clamp(0.1, 0.5) } else { 0.1 };
         }
         false
+    }
+
+    /// The slope along the step at `t`, in the scale of the present point.
+    fn slope_at(&mut self, t: f64) -> f64 {
+        self.try_step(t);
+        let slope = self.trial.slope(&self.step);
+        let scale = self.trial.ln_scale - self.point.ln_scale;
+        if scale == 0.0 { slope } else { slope * scale.exp() }
     }
 }

@@ -3,9 +3,11 @@
 
 use super::coordinates::Coordinates;
 
-/// Beyond these ln c is taken as this: no sum or product of such numbers overflows or
-/// vanishes, and a search that starts far off finds its way back.
-const LN_RANGE: (f64, f64) = (-690.0, 300.0);
+/// Above this ln c, all concentrations and totals are divided by the largest
+/// concentration, so that a search that starts far off overflows nowhere.
+const LN_MOST: f64 = 300.0;
+/// Below this ln c is taken as this, so that no row comes to nothing.
+const LN_LEAST: f64 = -690.0;
 
 #[derive(Clone, Debug, Default)]
 pub(super) struct Point {
@@ -18,6 +20,8 @@ pub(super) struct Point {
     pub positive: Vec<f64>,
     /// The negative ones, a positive total among them.
     pub negative: Vec<f64>,
+    /// ln of what all of the amounts above were divided by; nearly always zero.
+    pub ln_scale: f64,
 }
 
 impl Point {
@@ -27,21 +31,27 @@ impl Point {
         let n = at.species.len();
         self.ln_activities.resize(n, 0.0);
         self.concentrations.resize(n, 0.0);
-        self.positive.clear();
-        self.positive.extend(at.totals.iter().map(|t| (-t).max(0.0)));
-        self.negative.clear();
-        self.negative.extend(at.totals.iter().map(|t| t.max(0.0)));
+        let mut most = f64::NEG_INFINITY;
         for i in 0..n {
-            let row = at.row(i);
             let mut ln_activity = at.constants[i];
-            for &(j, value) in row {
+            for &(j, value) in at.row(i) {
                 ln_activity += value * self.u[j as usize];
             }
-            let shift = shifts.get(i).copied().unwrap_or(0.0);
-            let c = (ln_activity + shift).clamp(LN_RANGE.0, LN_RANGE.1).exp();
             self.ln_activities[i] = ln_activity;
+            let ln_c = ln_activity + shifts.get(i).copied().unwrap_or(0.0);
+            self.concentrations[i] = ln_c;
+            most = most.max(ln_c);
+        }
+        self.ln_scale = if most > LN_MOST { most } else { 0.0 };
+        let scale = (-self.ln_scale).exp();
+        self.positive.clear();
+        self.positive.extend(at.totals.iter().map(|t| (-t).max(0.0) * scale));
+        self.negative.clear();
+        self.negative.extend(at.totals.iter().map(|t| t.max(0.0) * scale));
+        for i in 0..n {
+            let c = (self.concentrations[i] - self.ln_scale).max(LN_LEAST).exp();
             self.concentrations[i] = c;
-            for &(j, value) in row {
+            for &(j, value) in at.row(i) {
                 if value > 0.0 {
                     self.positive[j as usize] += value * c;
                 } else {
@@ -60,7 +70,7 @@ impl Point {
     }
 
     /// `Σ_j (positive − negative)_j · direction_j`: the slope of the convex function
-    /// whose minimum is the answer.
+    /// whose minimum is the answer, divided by the scale.
     pub fn slope(&self, direction: &[f64]) -> f64 {
         let rows = self.positive.iter().zip(&self.negative);
         rows.zip(direction).map(|((p, n), d)| (p - n) * d).sum()

@@ -5,6 +5,7 @@ use super::coordinates::Coordinates;
 use super::frame::{Frame, Slot};
 use super::point::Point;
 use super::system::{Answer, Failure, System};
+use crate::chemistry::activity::ActivityKind;
 
 pub(super) struct Search<'a> {
     pub frame: Frame<'a>,
@@ -26,7 +27,7 @@ pub(super) struct Search<'a> {
 }
 
 impl<'a> Search<'a> {
-    /// Starts from ln activities of the components, `None` where nothing is known.
+    /// Starts from guesses of ln activity of the components.
     pub fn new(mut frame: Frame<'a>, guess: impl Fn(usize) -> f64) -> Result<Self, Failure> {
         let at = frame.coordinates()?;
         let u = at.slots.iter().map(|&slot| {
@@ -35,7 +36,13 @@ impl<'a> Search<'a> {
             guess(component) / frame.basis.scale(component)
         });
         let point = Point { u: u.collect(), ..Point::default() };
-        let mut search = Self {
+        let mut search = Self::from_parts(frame, at, point);
+        search.evaluate();
+        Ok(search)
+    }
+
+    fn from_parts(frame: Frame<'a>, at: Coordinates, point: Point) -> Self {
+        Self {
             frame,
             at,
             point,
@@ -46,9 +53,44 @@ impl<'a> Search<'a> {
             shift_slopes: Vec::new(),
             step: Vec::new(),
             iterations: 0,
-        };
+        }
+    }
+
+    /// The state of an answer to this very system: where the counts of species differ,
+    /// nothing is promised of it.
+    pub fn at_answer(system: &'a System, answer: &Answer) -> Result<Self, Failure> {
+        let mut frame = Frame::new(system)?;
+        for (present, c) in frame.present.iter_mut().zip(&answer.concentrations) {
+            *present = *c > 0.0;
+        }
+        let mut order: Vec<usize> =
+            (0..frame.present.len()).filter(|&i| frame.present[i]).collect();
+        order.sort_unstable_by(|a, b| {
+            answer.concentrations[*b].total_cmp(&answer.concentrations[*a])
+        });
+        frame.choose(&order);
+        let at = frame.coordinates()?;
+        let u = at.slots.iter().map(|&slot| {
+            let line = frame.basis.line(slot);
+            let ln_gamma = answer.ln_gammas.get(line).copied().unwrap_or(0.0);
+            answer.concentrations.get(line).map_or(0.0, |c| c.ln()) + ln_gamma
+        });
+        let point = Point { u: u.collect(), ..Point::default() };
+        let mut search = Self::from_parts(frame, at, point);
+        if system.activity.kind != ActivityKind::Ideal {
+            search.set_ionic_strength(answer.ionic_strength);
+        }
         search.evaluate();
         Ok(search)
+    }
+
+    /// The derivative of ln γ by ln I for a phase held by concentration.
+    pub fn held_slope(&self, k: usize) -> f64 {
+        let system = self.system();
+        match (system.fixed[k].concentration_of, self.ionic_strength) {
+            (Some((charge, size)), Some(i)) => system.activity.ln_gamma(charge, size, i).1 * i,
+            _ => 0.0,
+        }
     }
 
     pub fn system(&self) -> &'a System {
@@ -107,6 +149,22 @@ impl<'a> Search<'a> {
         if !self.frame.choose(&order) {
             return Ok(());
         }
+        self.carry_over()
+    }
+
+    /// Leaves species out for good.
+    pub fn exclude(&mut self, absent: &[usize]) -> Result<(), Failure> {
+        for &i in absent {
+            self.frame.present[i] = false;
+        }
+        let order: Vec<usize> =
+            self.at.species.iter().copied().filter(|&i| self.frame.present[i]).collect();
+        self.frame.choose(&order);
+        self.carry_over()
+    }
+
+    /// Writes the balances over the frame's basis, the point staying the same state.
+    fn carry_over(&mut self) -> Result<(), Failure> {
         let mut known = vec![0.0; self.system().species.len()];
         for (i, &species) in self.at.species.iter().enumerate() {
             known[species] = self.ln_activity(i);

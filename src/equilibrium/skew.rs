@@ -10,6 +10,7 @@ use std::sync::atomic::AtomicBool;
 
 use num_rational::Rational64;
 
+use super::root::{Mark, narrow};
 use super::solve::solve;
 use super::system::{Answer, Failure, Fixed, System};
 
@@ -46,7 +47,7 @@ pub(super) fn solve_skew(
         if let (Some(from), Some(to)) = (before, here)
             && (from.1 == 0.0 || from.1.signum() != to.1.signum())
         {
-            let answer = outer.narrow(from, to)?;
+            let answer = outer.settle(from, to)?;
             let taken = answer.amounts.iter().map(|n| n.abs()).sum();
             if best.as_ref().is_none_or(|b| taken < b.0) {
                 best = Some((taken, answer));
@@ -83,27 +84,10 @@ impl Outer<'_> {
         Ok(missing)
     }
 
-    /// Closes in on the change of sign between two pH, by secants that never leave one
-    /// end standing for long.
-    fn narrow(&mut self, from: (f64, f64), to: (f64, f64)) -> Result<Answer, Failure> {
-        let (mut a, mut b) = (from, to);
-        for _ in 0..200 {
-            let secant = (a.0 * b.1 - b.0 * a.1) / (b.1 - a.1);
-            let inside = secant > a.0.min(b.0) && secant < a.0.max(b.0);
-            let ph = if inside { secant } else { 0.5 * (a.0 + b.0) };
-            let missing = self.missing(ph)?;
-            if missing == 0.0 || (b.0 - a.0).abs() <= 4.0 * f64::EPSILON * b.0.abs().max(1.0) {
-                break;
-            }
-            if missing.signum() == b.1.signum() {
-                // The old end keeps less of its weight each time it stays.
-                let keep = 1.0 - missing / b.1;
-                a.1 *= if keep > 0.0 { keep } else { 0.5 };
-            } else {
-                a = b;
-            }
-            b = (ph, missing);
-        }
+    /// The state at the change of sign between two pH.
+    fn settle(&mut self, from: Mark, to: Mark) -> Result<Answer, Failure> {
+        let width = 4.0 * f64::EPSILON * to.0.abs().max(1.0);
+        narrow(|ph| self.missing(ph), from, to, width)?;
         self.last.clone().ok_or(Failure::Cancelled)
     }
 }

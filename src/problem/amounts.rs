@@ -120,6 +120,11 @@ fn add(
                 case.resolver.report(at, kind);
                 None
             }
+            Split::Impossible => {
+                let kind = DefectKind::ReagentNotMade { name: formula.name.clone() };
+                case.resolver.report(at, kind);
+                None
+            }
         },
     };
     let pieces = pieces?;
@@ -128,8 +133,8 @@ fn add(
         known.amount += read.value;
         return Some(());
     }
-    let (forms, strong_acid) = forms(case, &pieces);
-    problem.reagents.push(Reagent { formula, at, amount: read.value, row, forms, strong_acid });
+    let giving = giving.is_some().then(|| forms(case, &pieces));
+    problem.reagents.push(Reagent { formula, at, amount: read.value, row, giving });
     Some(())
 }
 
@@ -168,25 +173,17 @@ fn row_over_components(case: &CaseResolver, pieces: &[(usize, Rational64)]) -> O
     Some(row)
 }
 
-/// The dissolved species among the pieces; protons and hydroxide count as strong acid and
-/// base, water as nothing.
-fn forms(
-    case: &CaseResolver,
-    pieces: &[(usize, Rational64)],
-) -> (Vec<(usize, Rational64)>, Rational64) {
-    let mut forms = Vec::new();
-    let mut strong_acid = Rational64::from_integer(0);
-    for &(s, n) in pieces {
-        let formula = &case.scope.species[s];
-        if formula.is_proton() {
-            strong_acid += n;
-        } else if formula.is_hydroxide() {
-            strong_acid -= n;
-        } else if let Some(row) = case.scope.row_of(s) {
-            forms.push((row, n));
-        }
-    }
-    (forms, strong_acid)
+/// The dissolved species among what `giving` names; protons, hydroxide and water are no
+/// forms.
+fn forms(case: &CaseResolver, pieces: &[(usize, Rational64)]) -> Vec<(usize, Rational64)> {
+    pieces
+        .iter()
+        .filter(|&&(s, _)| {
+            let formula = &case.scope.species[s];
+            !formula.is_proton() && !formula.is_hydroxide()
+        })
+        .filter_map(|&(s, n)| Some((case.scope.row_of(s)?, n)))
+        .collect()
 }
 
 /// What each component's total now is; reports those that nothing gives.

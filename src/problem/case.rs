@@ -151,7 +151,10 @@ fn constants(case: &mut CaseResolver, problem: &mut Problem) {
             Origin::Own(place) => Some(*place),
             _ => None,
         };
-        let Some(issue) = issue else { continue };
+        // Where water's own constant ends, so do its other properties: that is told as one.
+        let constant = reaction.constant.as_ref().map(|constant| &constant.value);
+        let is_water = matches!(constant, Some(LogK::Water));
+        let Some(issue) = issue.filter(|_| !is_water) else { continue };
         let at = own.or(problem.temperature_at).or_else(|| first_use(case.statements));
         let Some(at) = at else { continue };
         let equation = reaction.equation.clone();
@@ -251,7 +254,8 @@ impl CaseResolver<'_> {
             || {
                 names()
                     .map(|other| (strsim::osa_distance(&other.name, &formula.name), &other.name))
-                    .filter(|(distance, _)| *distance <= 2)
+                    // Short names are all near to one another.
+                    .filter(|(distance, name)| *distance <= 2 && distance * 3 < name.len())
                     .min()
                     .map(|(_, name)| name.clone())
             },

@@ -69,10 +69,8 @@ pub struct Reagent {
     pub amount: f64,
     /// What one mole of it is, over the components of the scope, water left out.
     pub row: Row,
-    /// The species it falls into, by stoichiometry row, with protons left over (negative
-    /// where hydroxide is) as strong acid.
-    pub forms: Vec<(usize, Rational64)>,
-    pub strong_acid: Rational64,
+    /// The forms that `giving` names, by stoichiometry row; else it falls into the fewest.
+    pub giving: Option<Vec<(usize, Rational64)>>,
 }
 
 #[derive(Clone, Debug, PartialEq)]

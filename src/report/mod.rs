@@ -1,7 +1,18 @@
 //! How it is told: terminal text, JSON, SARIF, JUnit, and an editor's inline words.
 
+pub mod answer;
+pub mod balance;
+pub mod check_json;
 pub mod editor;
 pub mod inline;
+pub mod junit;
+pub mod sarif;
+pub mod sheet;
+pub mod solution;
+pub mod source;
+pub mod style;
+pub mod summary;
+pub mod table;
 pub mod terminal;
 
 pub use crate::rules::{expectation, figures};

@@ -1,57 +1,120 @@
 //! Findings as text for a terminal: the lines they lie on, with the characters marked.
 
+use std::collections::HashMap;
 use std::ops::Range;
 
 use annotate_snippets::renderer::DecorStyle;
-use annotate_snippets::{AnnotationKind, Group, Level, Patch, Renderer, Snippet};
+use annotate_snippets::{AnnotationKind, Group, Level, Origin, Patch, Renderer, Snippet};
 
-use crate::rules::finding::{LocatedFinding, Severity};
+use super::source::Source;
+pub use super::style::Style;
+use crate::rules::finding::{Fix, LocatedFinding, Severity};
+use crate::text::lines::Encoding;
 
-/// Colours and line art, or plain characters alone.
-#[derive(Clone, Copy, Debug, PartialEq, Eq)]
-pub enum Style {
-    Plain,
-    Coloured,
-}
-
-/// A line longer than this is shown in part.
+/// A line longer than this, in bytes, is shown in part.
 const LONGEST_LINE: usize = 240;
+/// The width that messages and cut lines keep to.
+const WIDTH: usize = 100;
 
-/// One finding in its text. `path` is shown as given.
-pub fn finding(finding: &LocatedFinding, text: &str, path: &str, style: Style) -> String {
-    let level = level(finding.severity);
-    let message = match &finding.case {
-        Some(case) => format!("{} (case \"{case}\")", finding.message),
-        None => finding.message.clone(),
-    };
-    let mut ranges: Vec<&Range<usize>> = vec![&finding.at];
+/// One finding in its text.
+pub fn finding(finding: &LocatedFinding, source: &Source, style: Style) -> String {
+    let mut ranges = vec![&finding.at];
     ranges.extend(finding.related.iter().map(|(at, _)| at));
-    let window = Window::around(text, &ranges);
-    let mut snippet = Snippet::source(window.text).line_start(window.line).path(path.to_owned());
-    snippet = snippet.annotation(AnnotationKind::Primary.span(window.inside(&finding.at)));
-    for (at, words) in &finding.related {
-        let label = words.clone();
-        snippet = snippet.annotation(AnnotationKind::Context.span(window.inside(at)).label(label));
+    let window = Window::around(source, &ranges);
+    let title = level(finding.severity).primary_title(message(finding)).id(finding.rule);
+    let mut group = Group::with_title(title);
+    if source.text.is_empty() {
+        group = group.element(Origin::path(&source.name));
+    } else {
+        let mut snippet = window.snippet(source);
+        if let Some(at) = window.inside(&finding.at) {
+            snippet = snippet.annotation(AnnotationKind::Primary.span(at));
+        }
+        for (at, words) in &finding.related {
+            if let Some(at) = window.inside(at) {
+                let mark = AnnotationKind::Context.span(at).label(words.as_str());
+                snippet = snippet.annotation(mark);
+            }
+        }
+        group = group.element(snippet);
     }
-    let mut group = level.primary_title(message).id(finding.rule).element(snippet);
     if let Some(help) = &finding.help {
-        group = group.element(Level::HELP.message(help.clone()));
+        group = group.element(Level::HELP.message(help.as_str()));
     }
     let mut groups: Vec<Group> = vec![group];
-    for fix in &finding.fixes {
-        let ranges: Vec<&Range<usize>> = fix.edits.iter().map(|(at, _)| at).collect();
-        let window = Window::around(text, &ranges);
-        let mut snippet = Snippet::source(window.text).line_start(window.line);
-        for (at, replacement) in &fix.edits {
-            snippet = snippet.patch(Patch::new(window.inside(at), replacement.clone()));
+    groups.extend(finding.fixes.iter().map(|fix| fix_group(fix, source)));
+    renderer(style).render(&groups)
+}
+
+fn fix_group<'a>(fix: &'a Fix<Range<usize>>, source: &'a Source) -> Group<'a> {
+    let ranges: Vec<&Range<usize>> = fix.edits.iter().map(|(at, _)| at).collect();
+    let window = Window::around(source, &ranges);
+    let mut snippet = Snippet::source(window.text).line_start(window.line);
+    for (at, replacement) in &fix.edits {
+        if let Some(at) = window.inside(at) {
+            snippet = snippet.patch(Patch::new(at, replacement.as_str()));
         }
-        groups.push(Level::HELP.secondary_title(fix.title.clone()).element(snippet));
     }
-    let renderer = match style {
+    Level::HELP.secondary_title(fix.title.as_str()).element(snippet)
+}
+
+/// Notes on one line each. Those that say the same of several places share one:
+/// `sump.lyate:12:1: note[source-missing]: … (also lines 13 and 14)`.
+pub fn notes(findings: &[&LocatedFinding], source: &Source, style: Style) -> String {
+    let mut groups: Vec<Vec<&LocatedFinding>> = Vec::new();
+    let mut known = HashMap::new();
+    for note in findings {
+        let key = (note.rule, &note.message, &note.case);
+        let index = *known.entry(key).or_insert(groups.len());
+        if index == groups.len() {
+            groups.push(Vec::new());
+        }
+        groups[index].push(note);
+    }
+    let mut text = String::new();
+    for group in groups {
+        let note = group[0];
+        let mut lines: Vec<usize> =
+            group[1..].iter().map(|later| source.region(&later.at).line).collect();
+        lines.dedup();
+        let title = format!("{}{}", message(note), also(&lines));
+        let window = Window::around(source, &[&note.at]);
+        let title = level(note.severity).primary_title(title).id(note.rule);
+        let mut group = Group::with_title(title);
+        if let Some(at) = window.inside(&note.at) {
+            let mark = AnnotationKind::Primary.span(at);
+            group = group.element(window.snippet(source).annotation(mark));
+        }
+        text += &renderer(style).short_message(true).render(&[group]);
+        text.push('\n');
+    }
+    text
+}
+
+fn also(lines: &[usize]) -> String {
+    match lines {
+        [] => String::new(),
+        [one] => format!(" (also line {one})"),
+        [most @ .., last] => {
+            let most: Vec<String> = most.iter().map(usize::to_string).collect();
+            format!(" (also lines {} and {last})", most.join(", "))
+        }
+    }
+}
+
+fn message(finding: &LocatedFinding) -> String {
+    match &finding.case {
+        Some(case) => format!("{} (case \"{case}\")", finding.message),
+        None => finding.message.clone(),
+    }
+}
+
+fn renderer(style: Style) -> Renderer {
+    match style {
         Style::Plain => Renderer::plain(),
         Style::Coloured => Renderer::styled().decor_style(DecorStyle::Unicode),
-    };
-    renderer.render(&groups)
+    }
+    .term_width(WIDTH)
 }
 
 fn level(severity: Severity) -> Level<'static> {
@@ -71,34 +134,43 @@ struct Window<'a> {
 }
 
 impl<'a> Window<'a> {
-    fn around(text: &'a str, ranges: &[&Range<usize>]) -> Window<'a> {
-        let first = ranges.iter().map(|r| r.start).min().unwrap_or(0).min(text.len());
-        let last = ranges.iter().map(|r| r.end).max().unwrap_or(0).clamp(first, text.len());
+    fn around(source: &'a Source, ranges: &[&Range<usize>]) -> Window<'a> {
+        let text: &str = &source.text;
+        let line_start = |at: usize| at - source.lines.position(at, Encoding::Utf8).column as usize;
+        let first = ranges.iter().map(|r| r.start).min().unwrap_or(0);
+        let last = ranges.iter().map(|r| r.end.max(r.start)).max().unwrap_or(0);
         let (first, last) = (floor(text, first), floor(text, last));
-        let start = text[..first].rfind('\n').map_or(0, |at| at + 1);
-        let end = text[last..].find('\n').map_or(text.len(), |at| last + at);
-        let line = text[..start].bytes().filter(|&b| b == b'\n').count() + 1;
-        let long = text[start..end].lines().any(|line| line.len() > LONGEST_LINE);
-        if !long {
+        let start = line_start(first);
+        // Looked for no farther than a line that is shown in full may reach.
+        let near = floor(text, last.saturating_add(LONGEST_LINE));
+        let end = text[last..near].find('\n').map_or(near, |at| last + at);
+        let long = |line: &str| line.len() > LONGEST_LINE;
+        if !text[start..end].lines().any(long) && (end == text.len() || near != end) {
+            let (line, _) = source.lines.line_column(start);
             return Window { text: &text[start..end], start, line };
         }
-        let at = ranges.first().map_or(first, |range| floor(text, range.start.min(text.len())));
-        let from = floor(text, at.saturating_sub(LONGEST_LINE / 2)).max(start);
-        let to = floor(text, (at + LONGEST_LINE / 2).min(end));
-        let cut = &text[from..to];
-        let line = line + text[start..from].bytes().filter(|&b| b == b'\n').count();
-        Window { text: cut, start: from, line }
+        let at = floor(text, ranges.first().map_or(first, |range| range.start));
+        let from = floor(text, at.saturating_sub(LONGEST_LINE / 2)).max(line_start(at));
+        let to = floor(text, at + LONGEST_LINE / 2);
+        let (line, _) = source.lines.line_column(from);
+        Window { text: &text[from..to], start: from, line }
     }
 
-    /// The range as seen from the window, cut to it.
-    fn inside(&self, range: &Range<usize>) -> Range<usize> {
-        let clip = |at: usize| floor(self.text, at.saturating_sub(self.start).min(self.text.len()));
-        clip(range.start)..clip(range.end)
+    fn snippet<T: Clone>(&self, source: &'a Source) -> Snippet<'a, T> {
+        Snippet::source(self.text).line_start(self.line).path(source.name.as_str())
+    }
+
+    /// The range as seen from the window; none where it starts outside.
+    fn inside(&self, range: &Range<usize>) -> Option<Range<usize>> {
+        let start = range.start.checked_sub(self.start)?;
+        let end = range.end.max(range.start) - self.start;
+        (start <= self.text.len()).then(|| floor(self.text, start)..floor(self.text, end))
     }
 }
 
 /// The nearest character boundary at or before an offset.
-fn floor(text: &str, mut at: usize) -> usize {
+fn floor(text: &str, at: usize) -> usize {
+    let mut at = at.min(text.len());
     while !text.is_char_boundary(at) {
         at -= 1;
     }

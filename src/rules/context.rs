@@ -1,5 +1,6 @@
 //! What a rule looks at.
 
+use super::compared::Compared;
 use super::outcome::State;
 use crate::equilibrium::quantities::Solved;
 use crate::problem::defect::Defect;
@@ -15,6 +16,8 @@ pub struct Context<'a> {
     pub left_out: &'a [Written<'a>],
     pub problem: &'a Problem,
     pub state: &'a State,
+    /// The written balances, held against the implied ones.
+    pub compared: &'a [Compared],
     /// Whether this is a case that shares the base's scope, looked over already.
     pub inherited: bool,
     syntax: Vec<(Written<'a>, &'a SyntaxProblem)>,
@@ -25,6 +28,7 @@ impl<'a> Context<'a> {
         in_force: &'a InForce<'a>,
         problem: &'a Problem,
         state: &'a State,
+        compared: &'a [Compared],
         inherited: bool,
     ) -> Self {
         let InForce { statements, left_out, .. } = in_force;
@@ -36,7 +40,7 @@ impl<'a> Context<'a> {
             .filter(|written| !is_case || written.part == Part::Case)
             .flat_map(|written| written.parsed.problems.iter().map(|problem| (*written, problem)))
             .collect();
-        Self { statements, left_out, problem, state, inherited, syntax }
+        Self { statements, left_out, problem, state, compared, inherited, syntax }
     }
 
     /// What was found while resolving; what a case only inherits is left out.
@@ -82,6 +86,13 @@ impl<'a> Context<'a> {
             at + name.len() >= end && text.get(at..).is_some_and(|rest| rest.starts_with(name))
         })?;
         Some(Place { span: Span::new(at, at + name.len()), ..part })
+    }
+
+    /// Where something stands that is about the problem as a whole: its title, or else the
+    /// first statement in force.
+    pub fn anchor(&self) -> Option<Place> {
+        let title = self.problem.title_at;
+        title.or_else(|| self.statements.first().map(|written| written.whole()))
     }
 
     /// The place just after a place.

@@ -1,7 +1,53 @@
-//! The value that an expectation asks for, in the unit that the file wrote it in.
+//! Expectations: whether the answer meets one, its value in the unit that the file wrote
+//! it in, and what was asked.
 
 use super::figures::{decimals, percent, scale_unit, significant};
-use crate::problem::model::{Expectation, Problem, Sought};
+use crate::equilibrium::quantities::Solved;
+use crate::problem::model::{Expectation, Limit, Problem, Sought};
+use crate::rules::check::{Checked, locate_place};
+use crate::text::span::Part;
+use crate::text::tree::Statement;
+
+/// The value that an expectation speaks of, in base units, and whether it is as expected.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub struct Verdict {
+    /// None where the quantity could not be had; then the expectation is not met.
+    pub value: Option<f64>,
+    pub met: bool,
+}
+
+pub fn verdict(problem: &Problem, solved: &Solved, expectation: &Expectation) -> Verdict {
+    let value = solved.value(problem, expectation.sought);
+    Verdict { value, met: value.is_some_and(|value| holds(expectation.limit, value)) }
+}
+
+fn holds(limit: Limit, value: f64) -> bool {
+    match limit {
+        Limit::Within { value: wanted, tolerance } => (value - wanted).abs() <= tolerance,
+        Limit::Below { value: limit, or_equal } => value < limit || or_equal && value == limit,
+        Limit::Above { value: limit, or_equal } => value > limit || or_equal && value == limit,
+        Limit::Between { low, high } => low <= value && value <= high,
+    }
+}
+
+/// What was asked, in canonical form without the source: `[NH3] < 200 mg/L as N`.
+pub fn asked(checked: &Checked, section: usize, expectation: &Expectation) -> String {
+    let at = expectation.at;
+    let section = if at.section == Part::Base { 0 } else { section };
+    let statements = &checked.document.sections[section].statements;
+    match statements.get(at.statement as usize).map(|placed| &placed.parsed.statement) {
+        Some(Statement::Expect { subject, relation, .. }) => {
+            format!("{} {relation}", subject.value)
+        }
+        _ => expectation.words.clone(),
+    }
+}
+
+/// The line that an expectation stands on, from one.
+pub fn line(checked: &Checked, section: usize, expectation: &Expectation) -> usize {
+    let start = locate_place(&checked.document, section, expectation.at).start;
+    checked.document.text[..start].bytes().filter(|&b| b == b'\n').count() + 1
+}
 
 /// `9.321`, `117 mg/L as N`, `62.3 %`.
 pub fn value_words(problem: &Problem, expectation: &Expectation, value: f64) -> String {

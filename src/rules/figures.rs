@@ -45,7 +45,9 @@ pub fn significant(value: f64, digits: usize) -> String {
     if value == 0.0 || !value.is_finite() {
         return if value == 0.0 { "0".into() } else { minus(&value.to_string()) };
     }
-    let size = value.abs().log10().floor() as i32;
+    // Rounded first, so that 9.9996 is 10.00 and not 10.000.
+    let rounded = format!("{:.*e}", digits.saturating_sub(1), value.abs());
+    let size: i32 = rounded.split_once('e').and_then(|(_, e)| e.parse().ok()).unwrap_or(0);
     if !(-4..6).contains(&size) {
         let text = format!("{value:.*e}", digits.saturating_sub(1));
         return match text.split_once('e') {
@@ -55,6 +57,16 @@ pub fn significant(value: f64, digits: usize) -> String {
     }
     let places = (digits as i32 - 1 - size).max(0) as usize;
     minus(&format!("{value:.places$}"))
+}
+
+/// A number with so many significant digits, always with its power of ten, so that a column
+/// of them compares.
+pub fn scientific(value: f64, digits: usize) -> String {
+    let text = format!("{value:.*e}", digits.saturating_sub(1));
+    match text.split_once('e') {
+        Some((number, power)) => format!("{}e{power}", minus(number)),
+        None => minus(&text),
+    }
 }
 
 /// With so many decimals.

@@ -2,6 +2,7 @@
 
 pub mod catalogue;
 pub mod check;
+pub mod compared;
 pub mod context;
 pub mod expectation;
 pub mod figures;

@@ -7,7 +7,8 @@ use std::path::{Path, PathBuf};
 use std::sync::Arc;
 use std::sync::atomic::AtomicBool;
 
-use crate::report::inline::{Hint, Hover, Symbol};
+use crate::report::inline::{Hint, Hover};
+pub use crate::report::inline::{Symbol, SymbolKind};
 use crate::rules::finding::LocatedFinding;
 
 /// Makes views of texts. Called from several threads at once, one call per document.

@@ -1,6 +1,7 @@
 //! Byte offsets to the protocol's lines and columns and back, and edits given in them.
 
-use std::cell::Cell;
+use std::cell::RefCell;
+use std::collections::HashMap;
 use std::ops::Range;
 
 use tower_lsp::lsp_types::{self as lsp, Position, PositionEncodingKind};
@@ -153,42 +154,53 @@ fn line_starts(bytes: &[u8], range: Range<usize>, mut found: impl FnMut(usize)) 
     }
 }
 
-/// Turns byte offsets of one text into positions. It remembers the last one, so that
-/// many offsets on one very long line, asked in order, cost one walk along it.
+/// How much of a line is walked to find a column.
+const STRETCH: usize = 1024;
+
+/// Turns byte offsets of one text into positions. On a long line it remembers the column
+/// of every [`STRETCH`] bytes, so that many offsets on it cost one walk along it.
 pub struct Positions<'a> {
     text: &'a str,
     lines: &'a Lines,
     encoding: Encoding,
-    last: Cell<Last>,
-}
-
-#[derive(Clone, Copy)]
-struct Last {
-    offset: usize,
-    line: usize,
-    units: usize,
+    /// Of each long line looked at, the column after each stretch.
+    marks: RefCell<HashMap<usize, Vec<usize>>>,
 }
 
 impl<'a> Positions<'a> {
     pub fn new(text: &'a str, lines: &'a Lines, encoding: Encoding) -> Self {
-        Self { text, lines, encoding, last: Cell::new(Last { offset: 0, line: 0, units: 0 }) }
+        Self { text, lines, encoding, marks: RefCell::default() }
     }
 
     /// The position of an offset; one past the end, inside a character or inside a line's
     /// end is moved back.
     pub fn position(&self, offset: usize) -> Position {
         let offset = floor(self.text, offset);
-        let last = self.last.get();
         let line = self.lines.line(offset);
-        let offset = offset.min(self.lines.content(self.text, line).end);
-        let start = self.lines.start(line);
-        let units = if last.line == line && (start..=offset).contains(&last.offset) {
-            last.units + self.encoding.units(&self.text[last.offset..offset])
-        } else {
-            self.encoding.units(&self.text[start..offset])
-        };
-        self.last.set(Last { offset, line, units });
-        Position { line: line as u32, character: units as u32 }
+        let content = self.lines.content(self.text, line);
+        let column =
+            self.column(line, &self.text[content.clone()], offset.min(content.end) - content.start);
+        Position { line: line as u32, character: column as u32 }
+    }
+
+    /// The column at a byte of a line.
+    fn column(&self, line: usize, content: &str, at: usize) -> usize {
+        let passed = at / STRETCH;
+        if self.encoding == Encoding::Utf8 || passed == 0 {
+            return self.encoding.units(&content[..at]);
+        }
+        let mark = |stretch: usize| floor(content, stretch * STRETCH);
+        let mut marks = self.marks.borrow_mut();
+        let marks = marks.entry(line).or_insert_with(|| {
+            let mut column = 0;
+            let stretches = 1..=content.len() / STRETCH;
+            let columns = stretches.map(|stretch| {
+                column += self.encoding.units(&content[mark(stretch - 1)..mark(stretch)]);
+                column
+            });
+            columns.collect()
+        });
+        marks[passed - 1] + self.encoding.units(&content[mark(passed)..at])
     }
 
     pub fn range(&self, range: &Range<usize>) -> lsp::Range {
@@ -270,6 +282,25 @@ mod tests {
                 let other = floor(&text, other);
                 lines.replace(&mut text, one.min(other)..one.max(other), &new);
                 prop_assert_eq!(&lines, &Lines::of(&text));
+            }
+        }
+
+        #[test]
+        fn columns_of_a_long_line_are_those_of_a_walk(
+            text in "[a𝄞µ]{0,3}", repeat in 1usize..2000, offsets in prop::collection::vec(0usize..20_000, 1..9),
+        ) {
+            let text = format!("a\n{}", text.repeat(repeat));
+            let lines = Lines::of(&text);
+            for encoding in [Encoding::Utf8, Encoding::Utf16, Encoding::Utf32] {
+                let positions = Positions::new(&text, &lines, encoding);
+                for &offset in &offsets {
+                    let offset = floor(&text, offset);
+                    let walked = match offset {
+                        0 | 1 => at(0, offset as u32),
+                        _ => at(1, encoding.units(&text[2..offset]) as u32),
+                    };
+                    prop_assert_eq!(positions.position(offset), walked);
+                }
             }
         }
 

@@ -56,15 +56,9 @@ pub fn species(entries: &[(usize, i64)], log_k: f64, charges: &[i64]) -> Species
     Species { row: row(entries), ln_k: log_k * LN_10, charge: charge as i32, ion_size: 4.0 }
 }
 
-/// A problem and what is known of its making.
-pub struct Made {
-    pub system: System,
-    pub charges: Vec<i64>,
-}
-
 /// Like chemistry: acids, metals, their hydrolysis and complexes, counter-ions, totals
 /// over nine decades, strong acid or base to carry the pH anywhere from −1 to 15.
-pub fn chemistry_like(random: &mut Random, components: usize, most_species: usize) -> Made {
+pub fn chemistry_like(random: &mut Random, components: usize, most_species: usize) -> System {
     let m = components.max(2);
     let mut charges = vec![1i64];
     for _ in 1..m {
@@ -144,24 +138,19 @@ pub fn chemistry_like(random: &mut Random, components: usize, most_species: usiz
     let carried = random.chance(0.5);
     let charge: f64 = (1..m).map(|j| charges[j] as f64 * totals[j]).sum();
     totals[0] = if carried { excess } else { excess - charge };
-    let system = System {
+    System {
         species: list,
         totals,
         fixed: Vec::new(),
         activity: IDEAL,
         ionic_strength: IonicStrength::Computed,
-    };
-    Made { system, charges }
+    }
 }
 
 /// Made to break a solver: any integer coefficients, constants over hundreds of
 /// decades, totals that are small differences, but with a state known to close it.
-/// Gives also the ln activity of the components and the concentrations of that state.
-pub fn adversarial(
-    random: &mut Random,
-    components: usize,
-    count: usize,
-) -> (System, Vec<f64>, Vec<f64>) {
+/// Gives also the concentrations of that state.
+pub fn adversarial(random: &mut Random, components: usize, count: usize) -> (System, Vec<f64>) {
     let m = components;
     let x: Vec<f64> = (0..m).map(|_| random.uniform(-60.0, 10.0)).collect();
     let mut rows: Vec<Vec<(usize, i64)>> = Vec::new();
@@ -210,7 +199,7 @@ pub fn adversarial(
         activity: IDEAL,
         ionic_strength: IonicStrength::Computed,
     };
-    (system, x, concentrations)
+    (system, concentrations)
 }
 
 /// Holds the pH, its own charge balance released.
@@ -221,4 +210,23 @@ pub fn hold_ph(system: &mut System, ph: f64) {
         concentration_of: None,
         supply: row(&[(0, 1)]),
     });
+}
+
+pub mod sample {
+    //! Choices of some things out of many.
+
+    /// All choices of `k` numbers below `n`, by rising number.
+    pub fn choices(n: usize, k: usize) -> Vec<Vec<usize>> {
+        let mut all: Vec<Vec<usize>> = vec![Vec::new()];
+        for _ in 0..k {
+            all = all
+                .into_iter()
+                .flat_map(|choice| {
+                    let from = choice.last().map_or(0, |last| last + 1);
+                    (from..n).map(move |next| [choice.as_slice(), &[next]].concat())
+                })
+                .collect();
+        }
+        all
+    }
 }

@@ -327,7 +327,12 @@ impl Fixture {
             text.replace_range(at.clone(), new);
         }
         trim_end(&mut text);
-        (text != fix.text).then(|| format!("after the fix the text is:\n{text}"))
+        if text != fix.text {
+            return Some(format!("after the fix the text is:\n{text}"));
+        }
+        let left = check_text(&text, &self.files).findings;
+        let still = left.iter().any(|finding| finding.rule == self.about());
+        still.then(|| format!("after the fix it is still found:\n{text}"))
     }
 
     /// The text with all findings drawn into it, as a fixture has them.

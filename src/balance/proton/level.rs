@@ -6,8 +6,8 @@ use num_traits::ToPrimitive;
 
 use super::{Reason, Reference, ReferenceForm, moiety_row};
 use crate::balance::Part;
-use crate::balance::elimination::{Solution, SparseRow, TooLarge, independent_rows, solve};
 use crate::balance::recipe::{Recipe, Row};
+use crate::problem::elimination::{Solution, SparseRow, TooLarge, independent_rows, solve};
 use crate::problem::stoichiometry::Stoichiometry;
 
 /// Levels looked at one by one; beyond that each component's form is bettered in turn.

@@ -5,8 +5,8 @@ use num_traits::{ToPrimitive, Zero};
 use super::view::{Fit, correction, placed, signed};
 use super::{Difference, Side, TermOf, WrittenTerm, WrittenWhat};
 use crate::balance::Part;
-use crate::balance::exact::Exact;
 use crate::balance::recipe::Recipe;
+use crate::problem::exact::Exact;
 
 /// A sum of what the recipe gives, by rising part, no zeros.
 type Sum<E> = Vec<(Part, E)>;

@@ -9,9 +9,9 @@ use num_rational::Rational64;
 use super::view::{Fit, View};
 use super::{Difference, Made, Verdict, WrittenTerm};
 use crate::balance::BalanceKind;
-use crate::balance::exact::Exact;
 use crate::balance::proton::ProtonCondition;
 use crate::balance::recipe::Recipe;
+use crate::problem::exact::Exact;
 use crate::problem::stoichiometry::Stoichiometry;
 
 /// Multiples of the charge balance that are tried.

@@ -5,8 +5,8 @@ use num_rational::Rational64;
 
 use super::constant::Constants;
 use super::{Difference, Side, TermOf, WrittenTerm, WrittenWhat};
-use crate::balance::exact::Exact;
 use crate::balance::recipe::Recipe;
+use crate::problem::exact::Exact;
 use crate::problem::stoichiometry::Stoichiometry;
 
 /// A combination of the charge balance and the mass balances of all components (the

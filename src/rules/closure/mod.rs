@@ -1,7 +1,15 @@
-//! Rules on whether equations and unknowns match.
+//! Rules on what closes a problem: as many unknowns as equations, and a charge that closes.
 
 use super::catalogue::family;
 
+mod remaining;
+
 family! {
     "Closure":
+    charge_cannot_close,
+    charge_imbalance,
+    nothing_left_free,
+    held_twice,
+    cannot_be_held,
+    not_solved,
 }

@@ -1,21 +1,19 @@
-//! Expressions in T, after `log K(T) =`. How deep one may nest is counted before it is
-//! parsed, so that neither the parser nor anything that walks the tree can run out of
-//! stack.
+//! Expressions in T, after `log K(T) =`. They alone may nest, so they are read with a
+//! stack of their own by the precedence of their operators: how deep an expression goes
+//! never depends on the thread's stack.
 
-use chumsky::prelude::*;
-use chumsky::primitive::select_ref;
-
-use super::basic::{Lexeme, Rule, sign, span_of, word};
+use super::basic::{Lexeme, span_of};
 use super::failure::{Expect, Failure};
-use super::quantity::number;
+use crate::text::number;
 use crate::text::problem::SyntaxProblemKind;
 use crate::text::span::{Span, Spanned};
 use crate::text::token::Token;
 use crate::text::tree::{Expression, Operator};
 
-/// How deep parentheses, powers and signs may nest.
+/// How deep parentheses may nest.
 pub const DEEPEST: usize = 64;
-/// How many operators an expression may hold.
+/// How many operators an expression may hold. With `DEEPEST` this bounds how deep its
+/// tree is, for all that walk it.
 pub const LONGEST: usize = 256;
 
 /// Reads an expression of `length` tokens at the start of `rest`. `before` is the range
@@ -26,137 +24,189 @@ pub(super) fn read(
     before: Span,
 ) -> Result<Spanned<Expression>, Failure> {
     let lexemes = rest.get(..length).unwrap_or(rest);
-    measure(lexemes)?;
-    let (expression, failures) = expression().parse(lexemes).into_output_errors();
-    match (expression, failures.into_iter().next()) {
-        (Some(expression), None) => Ok(Spanned::new(expression, span_of(lexemes))),
-        (_, Some(failure)) => {
+    let mut reader = Reader::default();
+    let read = lexemes.iter().enumerate().try_for_each(|(at, lexeme)| reader.take(at, lexeme));
+    match read.and_then(|()| reader.finish(lexemes.len())) {
+        Ok(expression) => Ok(Spanned::new(expression, span_of(lexemes))),
+        Err(failure) => {
             let problem = failure.into_problem(rest, before);
             Err(Failure::problem(problem.span, problem.kind))
         }
-        (None, None) => Err(Failure::at(0, Expect::Operand)),
     }
 }
 
-/// Counts what the parser would recurse for: open parentheses, and the powers and
-/// signs that wait for their right side.
-fn measure(lexemes: &[Lexeme<'_>]) -> Result<(), Failure> {
-    let mut open: Vec<usize> = Vec::new();
-    let mut waiting = 0;
-    let mut depth = 0;
-    let mut operators = 0;
-    let mut after_operand = false;
-    for lexeme in lexemes {
-        match lexeme.token {
-            Token::LeftParen => {
-                open.push(waiting);
-                waiting = 0;
-                depth += 1;
-                after_operand = false;
-            }
-            Token::RightParen => {
-                depth -= waiting;
-                if let Some(outer) = open.pop() {
-                    waiting = outer;
-                    depth = depth.saturating_sub(1);
-                } else {
-                    waiting = 0;
-                }
-                after_operand = true;
-            }
-            Token::Caret => {
-                waiting += 1;
-                depth += 1;
-                operators += 1;
-                after_operand = false;
-            }
-            Token::Plus | Token::Minus if !after_operand => {
-                waiting += 1;
-                depth += 1;
-                operators += 1;
-            }
-            Token::Plus | Token::Minus | Token::Times | Token::Slash => {
-                depth -= waiting;
-                waiting = 0;
-                operators += 1;
-                after_operand = false;
-            }
-            Token::Word => after_operand = false,
-            _ => after_operand = true,
+/// What waits for its right side, or for its closing parenthesis.
+#[derive(Clone, Copy)]
+enum Waiting {
+    Open(Function),
+    Minus,
+    Infix(Operator),
+}
+
+#[derive(Clone, Copy)]
+enum Function {
+    None,
+    Log,
+    Ln,
+}
+
+impl Waiting {
+    /// How tightly it holds the operand on its right. A sign before a power is taken
+    /// of the whole power, and before a product of its first factor.
+    fn precedence(self) -> u8 {
+        match self {
+            Waiting::Open(_) => 0,
+            Waiting::Infix(Operator::Add | Operator::Subtract) => 1,
+            Waiting::Infix(Operator::Multiply | Operator::Divide) => 2,
+            Waiting::Minus => 3,
+            Waiting::Infix(Operator::Power) => 4,
         }
-        if depth > DEEPEST {
+    }
+}
+
+/// What may come next.
+#[derive(Clone, Copy, Default)]
+enum Next {
+    #[default]
+    Operand,
+    /// The parenthesis of a function.
+    Open(Function),
+    Operator,
+}
+
+#[derive(Default)]
+struct Reader {
+    operands: Vec<Expression>,
+    waiting: Vec<Waiting>,
+    next: Next,
+    open: usize,
+    operators: usize,
+}
+
+impl Reader {
+    fn take(&mut self, at: usize, lexeme: &Lexeme<'_>) -> Result<(), Failure> {
+        match self.next {
+            Next::Operand => self.operand(at, lexeme),
+            Next::Open(function) if lexeme.token == Token::LeftParen => self.open(function, lexeme),
+            Next::Open(_) => Err(Failure::at(at, Expect::LeftParen)),
+            Next::Operator => self.operator(at, lexeme),
+        }
+    }
+
+    fn operand(&mut self, at: usize, lexeme: &Lexeme<'_>) -> Result<(), Failure> {
+        let operand = match (lexeme.token, lexeme.text) {
+            (Token::Number, text) => number::read(text).map(|(value, _)| Expression::Number(value)),
+            (Token::Temperature, _) => Some(Expression::T),
+            (Token::LeftParen, _) => return self.open(Function::None, lexeme),
+            (Token::Plus, _) => return self.count(lexeme),
+            (Token::Minus, _) => {
+                self.waiting.push(Waiting::Minus);
+                return self.count(lexeme);
+            }
+            (Token::Word, "log") => {
+                self.next = Next::Open(Function::Log);
+                return Ok(());
+            }
+            (Token::Word, "ln") => {
+                self.next = Next::Open(Function::Ln);
+                return Ok(());
+            }
+            _ => None,
+        };
+        self.operands.push(operand.ok_or_else(|| Failure::at(at, Expect::Operand))?);
+        self.next = Next::Operator;
+        Ok(())
+    }
+
+    fn open(&mut self, function: Function, lexeme: &Lexeme<'_>) -> Result<(), Failure> {
+        self.waiting.push(Waiting::Open(function));
+        self.next = Next::Operand;
+        self.open += 1;
+        if self.open > DEEPEST {
             let kind = SyntaxProblemKind::NestingTooDeep { limit: DEEPEST };
             return Err(Failure::problem(lexeme.span(), kind));
         }
-        if operators > LONGEST {
+        Ok(())
+    }
+
+    fn operator(&mut self, at: usize, lexeme: &Lexeme<'_>) -> Result<(), Failure> {
+        let operator = match lexeme.token {
+            Token::Plus => Operator::Add,
+            Token::Minus => Operator::Subtract,
+            Token::Times => Operator::Multiply,
+            Token::Slash => Operator::Divide,
+            Token::Caret => Operator::Power,
+            Token::RightParen if self.open > 0 => {
+                self.close();
+                return Ok(());
+            }
+            _ => return Err(self.expects_operator(at)),
+        };
+        let waiting = Waiting::Infix(operator);
+        match operator {
+            // From the right: `a^b^c` is `a^(b^c)`.
+            Operator::Power => {}
+            _ => self.reduce(waiting.precedence()),
+        }
+        self.waiting.push(waiting);
+        self.next = Next::Operand;
+        self.count(lexeme)
+    }
+
+    fn expects_operator(&self, at: usize) -> Failure {
+        let failure = Failure::at(at, Expect::Operator);
+        if self.open > 0 { failure.or(Expect::RightParen) } else { failure }
+    }
+
+    fn count(&mut self, lexeme: &Lexeme<'_>) -> Result<(), Failure> {
+        self.operators += 1;
+        if self.operators > LONGEST {
             let kind = SyntaxProblemKind::ExpressionTooLong { limit: LONGEST };
             return Err(Failure::problem(lexeme.span(), kind));
         }
+        Ok(())
     }
-    Ok(())
-}
 
-fn expression<'s>() -> impl Rule<'s, Expression> {
-    recursive(|expression| {
-        let open = sign(Token::LeftParen, Expect::LeftParen);
-        let close = sign(Token::RightParen, Expect::RightParen);
-        let inner = open.ignore_then(expression).then_ignore(close);
-        let temperature = select_ref(|lexeme: &'s Lexeme<'s>, _: &mut _| {
-            (lexeme.token == Token::Temperature).then_some(Expression::T)
-        });
-        let log = word("log", Expect::Operand)
-            .ignore_then(inner.clone())
-            .map(|of| Expression::Log(Box::new(of)));
-        let ln = word("ln", Expect::Operand)
-            .ignore_then(inner.clone())
-            .map(|of| Expression::Ln(Box::new(of)));
-        let number = number().map(|number| Expression::Number(number.value));
-        let operand = choice((number, temperature, log, ln, inner)).labelled(Expect::Operand);
-
-        let binary =
-            |left, (operator, right)| Expression::Binary(Box::new(left), operator, Box::new(right));
-        let infix = |token, operator| sign(token, Expect::Operator).to(operator);
-        let negative = sign(Token::Minus, Expect::Nothing).to(true);
-        let positive = sign(Token::Plus, Expect::Nothing).to(false);
-        // One value for every minus sign that stands before the operand.
-        let minuses = negative.or(positive).repeated().collect::<Vec<bool>>();
-        let signed = minuses.then(operand).labelled(Expect::Operand);
-        let power = signed
-            .separated_by(sign(Token::Caret, Expect::Operator))
-            .at_least(1)
-            .collect::<Vec<_>>()
-            .map(power);
-        let product = power.clone().foldl(
-            infix(Token::Times, Operator::Multiply)
-                .or(infix(Token::Slash, Operator::Divide))
-                .then(power)
-                .repeated(),
-            binary,
-        );
-        product.clone().foldl(
-            infix(Token::Plus, Operator::Add)
-                .or(infix(Token::Minus, Operator::Subtract))
-                .then(product)
-                .repeated(),
-            binary,
-        )
-    })
-}
-
-/// `a ^ -b ^ c` is `a ^ (-(b ^ c))`; a sign before a power is taken of the whole power.
-fn power(operands: Vec<(Vec<bool>, Expression)>) -> Expression {
-    let mut result: Option<Expression> = None;
-    for (minuses, operand) in operands.into_iter().rev() {
-        let mut whole = match result {
-            None => operand,
-            Some(exponent) => {
-                Expression::Binary(Box::new(operand), Operator::Power, Box::new(exponent))
-            }
-        };
-        for _ in minuses.into_iter().filter(|minus| *minus) {
-            whole = Expression::Negative(Box::new(whole));
+    fn close(&mut self) {
+        self.reduce(1);
+        self.open -= 1;
+        let function = self.waiting.pop();
+        if let Some(operand) = self.operands.pop() {
+            self.operands.push(match function {
+                Some(Waiting::Open(Function::Log)) => Expression::Log(Box::new(operand)),
+                Some(Waiting::Open(Function::Ln)) => Expression::Ln(Box::new(operand)),
+                _ => operand,
+            });
         }
-        result = Some(whole);
     }
-    result.unwrap_or(Expression::Number(0.0))
+
+    /// Completes what waits and holds its right operand at least as tightly as that.
+    fn reduce(&mut self, precedence: u8) {
+        while let Some(waiting) = self.waiting.last().copied()
+            && waiting.precedence() >= precedence
+            && let Some(right) = self.operands.pop()
+        {
+            self.waiting.pop();
+            let whole = match waiting {
+                Waiting::Infix(operator) => match self.operands.pop() {
+                    Some(left) => Expression::Binary(Box::new(left), operator, Box::new(right)),
+                    None => right,
+                },
+                Waiting::Minus => Expression::Negative(Box::new(right)),
+                Waiting::Open(_) => right,
+            };
+            self.operands.push(whole);
+        }
+    }
+
+    fn finish(mut self, end: usize) -> Result<Expression, Failure> {
+        match self.next {
+            Next::Operand => return Err(Failure::at(end, Expect::Operand)),
+            Next::Open(_) => return Err(Failure::at(end, Expect::LeftParen)),
+            Next::Operator if self.open > 0 => return Err(self.expects_operator(end)),
+            Next::Operator => {}
+        }
+        self.reduce(1);
+        self.operands.pop().ok_or_else(|| Failure::at(end, Expect::Operand))
+    }
 }

@@ -7,6 +7,7 @@ use chumsky::span::SimpleSpan;
 use chumsky::util::MaybeRef;
 
 use super::basic::{Lexeme, Tokens};
+use super::reaction::CLAUSES;
 use crate::text::number::shortened;
 use crate::text::problem::{SyntaxProblem, SyntaxProblemKind};
 use crate::text::span::Span;
@@ -51,7 +52,7 @@ expectations! {
     Equals "`=`",
     Relation "`=`, `<`, `<=`, `>`, `>=` or `between`",
     Arrow "`<=>`",
-    Plus "` + `",
+    Plus "`+`",
     RightBracket "`]`",
     RightBrace "`}`",
     Operand "a number, T, log(, ln( or an opening parenthesis",
@@ -100,6 +101,11 @@ impl Failure {
         Failure { at, expected: expect.bit(), problem: None }
     }
 
+    pub fn or(mut self, expect: Expect) -> Failure {
+        self.expected |= expect.bit();
+        self
+    }
+
     pub fn problem(span: Span, kind: SyntaxProblemKind) -> Failure {
         Failure { at: 0, expected: 0, problem: Some(Box::new(SyntaxProblem { span, kind })) }
     }
@@ -134,6 +140,9 @@ impl Failure {
             return SyntaxProblem { span: number.span().to(lexeme.span()), kind };
         }
         let expected = match self.nearest(lexeme) {
+            None if self.expects(Expect::Term) && lexeme.token == Token::Name => {
+                vec![format!("`[{}]`", shortened(lexeme.text))]
+            }
             Some(word) => vec![format!("`{word}`")],
             None => self.words(false),
         };
@@ -158,8 +167,15 @@ impl Failure {
         if lexeme.token != Token::Word {
             return None;
         }
+        if self.expects(Expect::Operand) {
+            return match lexeme.text {
+                "t" => Some("T"),
+                "log10" | "lg" => Some("log"),
+                _ => None,
+            };
+        }
         let words: &[&str] = if self.expects(Expect::Clause) {
-            &["pKa", "pKsp", "pK", "log", "enthalpy", "heat", "valid", "source"]
+            &CLAUSES
         } else if self.expects(Expect::Subject) {
             &["alkalinity", "ionic", "buffer", "saturation", "fraction", "charge", "total", "dose"]
         } else if self.expects(Expect::Kind) {

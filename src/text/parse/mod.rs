@@ -15,6 +15,7 @@ use std::hash::{DefaultHasher, Hash, Hasher};
 use std::sync::Arc;
 
 pub use expression::{DEEPEST, LONGEST};
+pub use reaction::CLAUSES;
 pub use statement::KEYWORDS;
 
 use self::basic::Lexeme;
@@ -22,7 +23,7 @@ use super::layout::{self, Extent};
 use super::number::shortened;
 use super::problem::{SyntaxProblem, SyntaxProblemKind};
 use super::span::Span;
-use super::token::lex;
+use super::token::{Token, lex};
 use super::tree::{Document, Parsed, Piece, Placed, Section, Statement};
 
 impl Document {
@@ -95,15 +96,14 @@ fn build(text: Arc<str>, extents: &[Extent], kept: Vec<Option<Arc<Parsed>>>) -> 
     let mut sections = vec![Section::default(); last_section as usize + 1];
     let mut pieces = Vec::with_capacity(2 * extents.len() + 1);
     let mut position = 0;
-    let mut lexemes = Vec::new();
+    let mut scratch = Scratch::default();
     for (extent, kept) in extents.iter().zip(kept) {
         if position < extent.start {
             pieces.push(Piece { start: position, end: extent.start, statement: None });
         }
         position = extent.end;
         let parsed = kept.unwrap_or_else(|| {
-            lexemes.clear();
-            Arc::new(parse(&text[extent.start..extent.end], extent.stray, &mut lexemes))
+            Arc::new(scratch.parse(&text[extent.start..extent.end], extent.stray))
         });
         if let Some(Section { statements }) = sections.get_mut(extent.section as usize) {
             let index = Some((extent.section, statements.len() as u32));
@@ -114,49 +114,70 @@ fn build(text: Arc<str>, extents: &[Extent], kept: Vec<Option<Arc<Parsed>>>) -> 
     if position < text.len() {
         pieces.push(Piece { start: position, end: text.len(), statement: None });
     }
-    drop(lexemes);
+    drop(scratch);
     Document { text, pieces, sections }
 }
 
-/// Reads one statement. `lexemes` is empty; it is the caller's so that its memory is
-/// used again.
-fn parse<'t>(text: &'t str, stray: bool, lexemes: &mut Vec<Lexeme<'t>>) -> Parsed {
-    let mut tokens = Vec::with_capacity(text.len() / 3);
-    let mut broken = Vec::new();
-    lex(text, &mut tokens, &mut broken);
-    lexemes.extend(tokens.iter().filter(|(token, _)| !token.is_trivia()).map(|(token, span)| {
-        Lexeme { token: *token, start: span.start, end: span.end, text: &text[span.range()] }
-    }));
+/// Memory that every statement uses again.
+#[derive(Default)]
+struct Scratch<'t> {
+    tokens: Vec<(Token, Span)>,
+    lexemes: Vec<Lexeme<'t>>,
+}
 
-    let mut problems = Vec::new();
-    let statement = match statement::read(lexemes, &mut problems) {
-        Some(statement) => {
-            // A token that is broken in itself needs no second finding.
-            problems.retain(|problem| !hides(&broken, problem));
-            problems.append(&mut broken);
-            statement
+impl<'t> Scratch<'t> {
+    /// Reads one statement.
+    fn parse(&mut self, text: &'t str, stray: bool) -> Parsed {
+        let Scratch { tokens, lexemes } = self;
+        tokens.clear();
+        lexemes.clear();
+        let mut broken = Vec::new();
+        lex(text, tokens, &mut broken);
+        for (token, span) in tokens.iter().filter(|(token, _)| !token.is_trivia()) {
+            let text = &text[span.range()];
+            lexemes.push(Lexeme { token: *token, start: span.start, end: span.end, text });
         }
-        None => {
-            broken.truncate(1);
-            let first = lexemes.first().map_or(Span::default(), Lexeme::span);
-            if broken.first().is_some_and(|problem| problem.span.start == first.start) {
+
+        let mut problems = Vec::new();
+        let statement = match statement::read(lexemes, &mut problems) {
+            Some(statement) => {
+                // A token that is broken in itself needs no second finding.
+                problems.retain(|problem| !hides(&broken, problem));
                 problems.append(&mut broken);
-            } else {
-                let word = lexemes.first().map_or("", |first| first.text);
-                let nearest = failure::nearest(word, &KEYWORDS);
-                let kind = SyntaxProblemKind::UnknownStatement { word: shortened(word), nearest };
-                problems.push(SyntaxProblem { span: first, kind });
+                statement
             }
-            Statement::Broken
+            None => {
+                problems.push(no_statement(lexemes.first(), broken));
+                Statement::Broken
+            }
+        };
+        if stray {
+            let span = lexemes.first().map_or(Span::default(), Lexeme::span);
+            problems.push(SyntaxProblem { span, kind: SyntaxProblemKind::StrayIndent });
         }
-    };
-    if stray {
-        let span = lexemes.first().map_or(Span::default(), Lexeme::span);
-        problems.push(SyntaxProblem { span, kind: SyntaxProblemKind::StrayIndent });
+        problems.sort_by_key(|problem| problem.span);
+        Parsed {
+            text: text.into(),
+            hash: hash(text),
+            tokens: tokens.as_slice().to_vec(),
+            statement,
+            problems,
+        }
     }
-    problems.sort_by_key(|problem| problem.span);
-    tokens.shrink_to_fit();
-    Parsed { text: text.into(), hash: hash(text), tokens, statement, problems }
+}
+
+/// Why a text whose first token is `first` is no statement at all.
+fn no_statement(first: Option<&Lexeme<'_>>, broken: Vec<SyntaxProblem>) -> SyntaxProblem {
+    let (span, word) = first.map_or((Span::default(), ""), |first| (first.span(), first.text));
+    // A first token that is broken in itself says more.
+    match broken.into_iter().next() {
+        Some(problem) if problem.span.start == span.start => problem,
+        _ => {
+            let nearest = failure::nearest(word, &KEYWORDS);
+            let kind = SyntaxProblemKind::UnknownStatement { word: shortened(word), nearest };
+            SyntaxProblem { span, kind }
+        }
+    }
 }
 
 fn hides(broken: &[SyntaxProblem], problem: &SyntaxProblem) -> bool {

@@ -16,13 +16,17 @@ use crate::text::tree::{
     Constant, ConstantKind, ConstantValue, Name, Quantity, Reaction, Statement,
 };
 
+/// The words that start a clause and can be nothing else.
+pub const CLAUSES: [&str; 9] =
+    ["pKa", "pKsp", "pK", "log", "enthalpy", "heat", "at", "valid", "source"];
+
 #[derive(Clone)]
 enum Clause {
     Constant(Spanned<ConstantKind>, ConstantValue),
     Enthalpy(Quantity),
     HeatCapacity(Quantity),
     At(Quantity),
-    Valid(Quantity, Quantity),
+    Valid(Box<(Quantity, Quantity)>),
     Source(Name),
     /// Could not be read; its problem is told.
     Broken,
@@ -31,8 +35,8 @@ enum Clause {
 pub(super) fn reaction<'s>() -> impl Rule<'s, Statement> {
     let equation = members().then_ignore(arrow()).then(members());
     let clause = clause()
-        .then_ignore(clause_end())
         .map_with(|clause, extra| (clause, span_of(extra.slice())))
+        .then_ignore(clause_end().or(first_word().rewind().ignored()))
         .recover_with(via_parser(
             select_ref(|lexeme: &'s Lexeme<'s>, _: &mut _| {
                 (lexeme.token != Token::Comma).then_some(())
@@ -40,10 +44,12 @@ pub(super) fn reaction<'s>() -> impl Rule<'s, Statement> {
             .repeated()
             .map(|()| (Clause::Broken, Span::default())),
         ));
+    let clauses = separator().ignore_then(clause).repeated().collect::<Vec<_>>();
     equation
-        .map_with(|(left, right), extra| {
-            let equation = span_of(extra.slice());
-            Reaction {
+        .map_with(|(left, right), extra| (left, right, span_of(extra.slice())))
+        .then(clauses)
+        .validate(|((left, right, equation), clauses), _, emitter| {
+            let mut reaction = Box::new(Reaction {
                 left,
                 right,
                 equation,
@@ -53,18 +59,32 @@ pub(super) fn reaction<'s>() -> impl Rule<'s, Statement> {
                 at: None,
                 valid: None,
                 source: None,
-            }
-        })
-        .then(sign(Token::Comma, Expect::Comma).ignore_then(clause).repeated().collect::<Vec<_>>())
-        .validate(|(mut reaction, clauses), _, emitter| {
+            });
             for (clause, span) in clauses {
                 if let Err(clause) = take(&mut reaction, clause, span) {
                     let kind = SyntaxProblemKind::RepeatedClause { clause };
                     emitter.emit(Failure::problem(span, kind));
                 }
             }
-            Statement::Reaction(Box::new(reaction))
+            Statement::Reaction(reaction)
         })
+}
+
+/// The comma before a clause. Where it is left out before the first word of one, the
+/// clause is read all the same.
+fn separator<'s>() -> impl Rule<'s, ()> {
+    let missing = first_word().rewind().validate(|next: &Lexeme<'_>, _, emitter| {
+        emitter.emit(Failure::unexpected(next, Expect::Comma));
+    });
+    sign(Token::Comma, Expect::Comma).ignored().or(missing)
+}
+
+/// A word that can only start a clause.
+fn first_word<'s>() -> impl Rule<'s, &'s Lexeme<'s>> + Copy {
+    select_ref(|lexeme: &'s Lexeme<'s>, _: &mut _| {
+        (lexeme.token == Token::Word && CLAUSES.contains(&lexeme.text)).then_some(lexeme)
+    })
+    .labelled(Expect::Nothing)
 }
 
 /// `<=>`; another arrow is read as that and said to be wrong.
@@ -95,7 +115,7 @@ fn take(reaction: &mut Reaction, clause: Clause, span: Span) -> Result<(), &'sta
         Clause::Enthalpy(value) => put(&mut reaction.enthalpy, value, "enthalpy"),
         Clause::HeatCapacity(value) => put(&mut reaction.heat_capacity, value, "heat capacity"),
         Clause::At(value) => put(&mut reaction.at, value, "at"),
-        Clause::Valid(from, to) => put(&mut reaction.valid, (from, to), "valid"),
+        Clause::Valid(range) => put(&mut reaction.valid, *range, "valid"),
         Clause::Source(value) => put(&mut reaction.source, value, "source"),
         Clause::Broken => Ok(()),
     }
@@ -117,7 +137,7 @@ fn clause<'s>() -> impl Rule<'s, Clause> {
         .ignore_then(quantity())
         .then_ignore(word("to", Expect::To))
         .then(quantity())
-        .map(|(from, to)| Clause::Valid(from, to));
+        .map(|range| Clause::Valid(Box::new(range)));
     let source = source().map(Clause::Source);
     choice((constant(), of_temperature(), enthalpy, source, at, valid, heat))
         .labelled(Expect::Clause)

@@ -1,0 +1,147 @@
+//! `lyate solve`: the answer for a file and each of its cases.
+
+use std::path::PathBuf;
+
+use super::chosen::{chosen, readable};
+use super::library::Checker;
+use super::reply::{Complaint, Reply};
+use super::terminal::style;
+use crate::equilibrium::system::Failure;
+use crate::report::answer::{answer, conditions, overview};
+use crate::report::expectation::verdict;
+use crate::report::solution::json;
+use crate::report::source::{FileReport, Stated};
+use crate::report::style::{Paint, Style};
+use crate::report::terminal;
+use crate::rules::finding::Severity;
+use crate::rules::outcome::State;
+
+/// Solve a problem file, and show the answer for its base and each case
+///
+/// Shows pH, ionic strength and alkalinity; every dissolved species with its activity
+/// and its share; partial pressures, saturation indices, both sides of the charge balance
+/// and the proton condition; and what the file expects of the answer.
+#[derive(clap::Args)]
+#[command(
+    verbatim_doc_comment,
+    after_help = "\
+Exit code:
+  0  everything asked for was solved, and meets what the file expects
+  1  something was not solved, or an expectation is not met
+  2  not run: wrong usage, or a file that cannot be read"
+)]
+pub struct Arguments {
+    /// The problem file
+    file: PathBuf,
+    /// Only the case of this title
+    #[arg(long, value_name = "NAME")]
+    case: Option<String>,
+    /// The folder that imports may not leave
+    #[arg(long, value_name = "FOLDER")]
+    root: Option<PathBuf>,
+    /// How to tell the answer
+    #[arg(long, value_name = "FORM", value_enum, default_value_t = Form::Text)]
+    output: Form,
+}
+
+#[derive(Clone, Copy, PartialEq, Eq, clap::ValueEnum)]
+enum Form {
+    /// For people
+    Text,
+    /// For programs
+    Json,
+}
+
+pub fn run(arguments: &Arguments) -> Result<Reply, Complaint> {
+    let file = Checker::new(arguments.root.as_ref()).check(&arguments.file);
+    readable(&file)?;
+    let problems = chosen(&file, arguments.case.as_deref())?;
+    let good = !problems.is_empty() && problems.iter().all(is_good);
+    let style = style();
+    let (text, remark) = match arguments.output {
+        Form::Text => (text(&file, &problems, style), String::new()),
+        Form::Json => {
+            let text = json(&file, &problems)
+                .map_err(|e| Complaint(format!("the answer could not be written: {e}")))?;
+            let hindrances: Vec<String> = problems
+                .iter()
+                .filter(|stated| stated.outcome.solved().is_none())
+                .map(|stated| hindrance(&file, *stated, Style::Plain))
+                .collect();
+            (text + "\n", hindrances.concat())
+        }
+    };
+    let text = if problems.is_empty() && arguments.output == Form::Text {
+        format!("{} states no amounts: there is nothing to solve\n", file.source.name)
+    } else {
+        text
+    };
+    Ok(Reply { text, remark, code: u8::from(!good) })
+}
+
+fn is_good(stated: &Stated) -> bool {
+    let problem = &stated.outcome.problem;
+    stated.outcome.solved().is_some_and(|solved| {
+        problem.expectations.iter().all(|expectation| verdict(problem, solved, expectation).met)
+    })
+}
+
+fn text(file: &FileReport, problems: &[Stated], style: Style) -> String {
+    let mut parts = Vec::new();
+    let title = problems.iter().find_map(|stated| stated.outcome.problem.title.as_deref());
+    let title = style.paint(Paint::Heading, title.unwrap_or(&file.source.name));
+    for stated in problems {
+        let head = match stated.case {
+            Some(case) => format!("{title}, case \"{case}\""),
+            None => title.clone(),
+        };
+        let body = match (file.checked(), stated.outcome.solved()) {
+            (Some(checked), Some(solved)) => answer(checked, *stated, solved, style),
+            _ => {
+                let conditions = conditions(&stated.outcome.problem);
+                let state = style.paint(Paint::Bad, "not solved");
+                format!("{conditions}: {state}\n\n{}", hindrance(file, *stated, style))
+            }
+        };
+        parts.push(format!("{head}\n{body}"));
+    }
+    if problems.len() > 1 {
+        parts.push(overview(problems, style));
+    }
+    parts.join("\n\n")
+}
+
+/// The findings that stand in the way of a problem's answer.
+fn hindrance(file: &FileReport, stated: Stated, style: Style) -> String {
+    let findings = file.findings.iter().filter(|finding| {
+        finding.severity == Severity::Error
+            && (finding.case.is_none() || finding.case.as_deref() == stated.case)
+    });
+    let shown: Vec<String> =
+        findings.map(|finding| terminal::finding(finding, &file.source, style) + "\n").collect();
+    if shown.is_empty() {
+        return format!("{}\n", failure(stated));
+    }
+    shown.join("\n")
+}
+
+/// What became of the equations, where no finding says it.
+fn failure(stated: Stated) -> String {
+    let scope = &stated.outcome.problem.scope;
+    let component =
+        |j: usize| scope.components.get(j).map_or("a component", |c| c.formula.name.as_str());
+    match &stated.outcome.state {
+        State::Failed(Failure::Infeasible { component: j }) => {
+            format!("no state meets the balance of {}", component(*j))
+        }
+        State::Failed(Failure::Dependent { .. }) => {
+            "what is given says the same thing twice, and something else not at all".into()
+        }
+        State::Failed(Failure::NotConverged { residual, iterations }) => {
+            format!(
+                "no answer after {iterations} steps; the worst balance is off by {residual:.1e} of its terms"
+            )
+        }
+        _ => "the problem is not well posed".into(),
+    }
+}

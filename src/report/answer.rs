@@ -1,0 +1,309 @@
+//! An answer as text for a terminal.
+
+use super::expectation::{asked, line, value_words, verdict};
+use super::figures::{
+    celsius, concentration, decimals, log10_of_exp, percent, scale_unit, scientific, significant,
+};
+use super::sheet::{Entry, Ledger, Sheet};
+use super::solution::in_phase;
+use super::source::Stated;
+use super::style::{Paint, Style};
+use super::summary::counted;
+use super::table::{Cell, Side, Table};
+use crate::chemistry::activity::ActivityKind;
+use crate::chemistry::formula::Phase;
+use crate::chemistry::quantity::Scale;
+use crate::equilibrium::quantities::Solved;
+use crate::problem::model::{HeldWhat, Problem, Sought};
+use crate::problem::scope::PROTON;
+use crate::rules::check::Checked;
+
+/// The conditions, the pH and every table that applies.
+pub fn answer(checked: &Checked, stated: Stated, solved: &Solved, style: Style) -> String {
+    let problem = &stated.outcome.problem;
+    let mut text = conditions(problem) + "\n\n";
+    text += &main_figures(problem, solved, style);
+    let ledger = Ledger::new(problem, Some(solved));
+    for (title, body) in [
+        ("Dissolved", species(problem, solved, style)),
+        ("Components", components(problem, solved, style)),
+        ("Put in and held", put_in(problem, style)),
+        ("Gases", gases(problem, solved, style)),
+        ("Solids", solids(problem, solved, style)),
+        ("Charge balance", sheet(&ledger.charge(), problem.scale, style)),
+        ("Proton condition", protons(&ledger, problem, style)),
+        ("Expectations", expectations(checked, stated, solved, style)),
+    ] {
+        if !body.is_empty() {
+            text += &format!("\n{}\n{body}", style.paint(Paint::Heading, title));
+        }
+    }
+    text
+}
+
+/// `18 °C, Davies activities`.
+pub fn conditions(problem: &Problem) -> String {
+    let activities = match problem.activity {
+        ActivityKind::Ideal => "ideal activities",
+        ActivityKind::DebyeHuckel => "Debye–Hückel activities (limiting law)",
+        ActivityKind::ExtendedDebyeHuckel => "extended Debye–Hückel activities",
+        ActivityKind::Guntelberg => "Güntelberg activities",
+        ActivityKind::Davies => "Davies activities",
+    };
+    format!("{}, {activities}", celsius(problem.kelvin))
+}
+
+fn main_figures(problem: &Problem, solved: &Solved, style: Style) -> String {
+    let mut table = Table::new(&[("", Side::Left), ("", Side::Left), ("", Side::Left)]);
+    let mut row = |what: &str, value: String, remark: &str| {
+        table.row([what.into(), value.into(), Cell::painted(Paint::Faint, remark)]);
+    };
+    let holds = |sought: fn(HeldWhat) -> bool| problem.held.iter().any(|held| sought(held.what));
+    let held = |is_held: bool| if is_held { "held" } else { "" };
+    let ph_held = holds(|what| matches!(what, HeldWhat::Ph(_)));
+    row("pH", decimals(solved.ph(), 3), held(ph_held));
+    if let Some(pe) = solved.value(problem, Sought::Pe) {
+        row("pe", decimals(pe, 3), held(holds(|what| matches!(what, HeldWhat::Pe(_)))));
+    }
+    let given = if problem.ionic_strength.is_some() { "given" } else { "" };
+    row("ionic strength", concentration(solved.answer.ionic_strength, problem.scale), given);
+    let per = match problem.scale {
+        Scale::PerLitre => "L",
+        Scale::PerKilogram => "kg",
+    };
+    let milli = |eq: f64| format!("{} meq/{per}", significant(1000.0 * eq, 3));
+    row("alkalinity", milli(solved.alkalinity(problem)), "");
+    if let Some(capacity) = solved.value(problem, Sought::BufferCapacity) {
+        row("buffer capacity", format!("{} per pH", concentration(capacity, problem.scale)), "");
+    }
+    if ph_held {
+        let (cations, anions) = solved.charges();
+        let size = format!("{} %", decimals(solved.imbalance_percent(), 2));
+        let remark = format!("cations less anions: {}", milli(cations - anions));
+        row("charge imbalance", size, &remark);
+    }
+    table.render(style)
+}
+
+/// Component by component, the form that holds most of it first.
+fn species(problem: &Problem, solved: &Solved, style: Style) -> String {
+    let unit = scale_unit(problem.scale);
+    let mut table = Table::new(&[
+        ("species", Side::Left),
+        (unit, Side::Right),
+        ("activity", Side::Right),
+        ("γ", Side::Right),
+        ("share of its component", Side::Left),
+    ]);
+    let scope = &problem.scope;
+    let rows = &scope.stoichiometry.species;
+    let component = |row: usize| rows[row].row.iter().map(|&(j, _)| j).find(|&j| j != PROTON);
+    let share = |row: usize, j: usize| {
+        let total = solved.total(j);
+        let held = solved.shares(j).find(|&(i, _)| i == row).map(|(_, share)| share);
+        held.filter(|_| total > 0.0).map(|held| held / total)
+    };
+    let mut order: Vec<usize> = (0..rows.len()).collect();
+    order.retain(|&row| solved.answer.concentrations[row] > 0.0);
+    order.sort_by(|&a, &b| {
+        let size = |row: usize| component(row).and_then(|j| share(row, j)).unwrap_or(0.0);
+        component(a).cmp(&component(b)).then(size(b).total_cmp(&size(a)))
+    });
+    for row in order {
+        let ln_gamma = solved.answer.ln_gammas[row];
+        let amount = solved.answer.concentrations[row];
+        let (activity, gamma) = if problem.activity == ActivityKind::Ideal {
+            (String::new(), String::new())
+        } else {
+            (scientific(amount * ln_gamma.exp(), 4), decimals(ln_gamma.exp(), 3))
+        };
+        let share = component(row).and_then(|j| {
+            let name = &scope.components[j].formula.name;
+            Some(format!("{} of {name}", percent(share(row, j)?)))
+        });
+        table.row([
+            rows[row].name.as_str().into(),
+            scientific(amount, 4).into(),
+            activity.into(),
+            gamma.into(),
+            share.unwrap_or_default().into(),
+        ]);
+    }
+    table.render(style)
+}
+
+fn components(problem: &Problem, solved: &Solved, style: Style) -> String {
+    let mut table = Table::new(&[
+        ("component", Side::Left),
+        ("total", Side::Right),
+        ("free", Side::Right),
+        ("", Side::Left),
+    ]);
+    for (j, component) in problem.scope.components.iter().enumerate().skip(PROTON + 1) {
+        let free = problem.scope.row_of(component.species);
+        let free = free.map(|row| scientific(solved.answer.concentrations[row], 4));
+        table.row([
+            component.formula.name.as_str().into(),
+            scientific(solved.total(j), 4).into(),
+            free.unwrap_or_default().into(),
+            component.title.clone().unwrap_or_default().into(),
+        ]);
+    }
+    table.render(style)
+}
+
+fn put_in(problem: &Problem, style: Style) -> String {
+    let mut table = Table::new(&[("", Side::Left), ("", Side::Left)]);
+    for reagent in &problem.reagents {
+        let amount = concentration(reagent.amount, problem.scale);
+        table.row([reagent.formula.name.as_str().into(), amount.into()]);
+    }
+    for held in &problem.held {
+        let value = match held.what {
+            HeldWhat::Ph(value) | HeldWhat::Pe(value) => decimals(value, 3),
+            HeldWhat::Pressure { atm, .. } => format!("{} atm", significant(atm, 4)),
+            HeldWhat::Activity { value, .. } => significant(value, 4),
+            HeldWhat::Concentration { value, .. } => concentration(value, problem.scale),
+        };
+        table.row([held.words.as_str().into(), format!("{value}, held").into()]);
+    }
+    table.render(style)
+}
+
+fn gases(problem: &Problem, solved: &Solved, style: Style) -> String {
+    let mut table = Table::new(&[("gas", Side::Left), ("atm", Side::Right)]);
+    for s in in_phase(problem, |phase| *phase == Phase::Gas) {
+        if let Some(atm) = solved.value(problem, Sought::Pressure(s)).filter(|&atm| atm > 0.0) {
+            let name = problem.scope.species[s].name.as_str();
+            table.row([name.into(), scientific(atm, 4).into()]);
+        }
+    }
+    if table.is_empty() { String::new() } else { table.render(style) }
+}
+
+fn solids(problem: &Problem, solved: &Solved, style: Style) -> String {
+    let mut table =
+        Table::new(&[("solid", Side::Left), ("saturation index", Side::Right), ("", Side::Left)]);
+    for s in in_phase(problem, |phase| matches!(phase, Phase::Solid(_))) {
+        let Some(ln_saturation) = solved.ln_activity(problem, s) else { continue };
+        let index = log10_of_exp(ln_saturation);
+        let (value, remark) = if !index.is_finite() {
+            (String::new(), Cell::from("one of its parts is absent"))
+        } else if index > 0.005 {
+            let words = "supersaturated: it may precipitate";
+            (decimals(index, 2), Cell::painted(Paint::Doubtful, words))
+        } else {
+            (decimals(index, 2), Cell::default())
+        };
+        table.row([problem.scope.species[s].name.as_str().into(), value.into(), remark]);
+    }
+    if table.is_empty() { String::new() } else { table.render(style) }
+}
+
+/// The two sides of a balance side by side, the largest terms on top.
+fn sheet(sheet: &Sheet, scale: Scale, style: Style) -> String {
+    let unit = scale_unit(scale);
+    let mut table = Table::new(&[
+        ("", Side::Left),
+        (unit, Side::Right),
+        ("", Side::Left),
+        ("", Side::Left),
+        (unit, Side::Right),
+    ]);
+    let sorted = |side: &[Entry]| {
+        let mut side = side.to_vec();
+        side.retain(|entry| entry.value != Some(0.0));
+        side.sort_by(|a, b| b.value.unwrap_or(0.0).total_cmp(&a.value.unwrap_or(0.0)));
+        side
+    };
+    let (left, right) = (sorted(&sheet.left), sorted(&sheet.right));
+    for index in 0..left.len().max(right.len()) {
+        let cells = |entry: Option<&Entry>| match entry {
+            Some(entry) => {
+                let paint = if entry.dominant { Paint::Heading } else { Paint::Plain };
+                let value = entry.value.map_or(String::new(), |value| scientific(value, 4));
+                let words = entry.with_coefficient();
+                (Cell::painted(paint, words), Cell::painted(paint, value))
+            }
+            None => (Cell::default(), Cell::default()),
+        };
+        let ((name, value), (other, other_value)) =
+            (cells(left.get(index)), cells(right.get(index)));
+        let sign = if index == 0 { "=" } else { "" };
+        table.row([name, value, sign.into(), other, other_value]);
+    }
+    table.render(style)
+}
+
+fn protons(ledger: &Ledger, problem: &Problem, style: Style) -> String {
+    // Where the pH is held, protons come or go by themselves.
+    if problem.held.iter().any(|held| matches!(held.what, HeldWhat::Ph(_))) {
+        return String::new();
+    }
+    ledger.protons().map_or(String::new(), |(protons, _)| sheet(&protons, problem.scale, style))
+}
+
+fn expectations(checked: &Checked, stated: Stated, solved: &Solved, style: Style) -> String {
+    let problem = &stated.outcome.problem;
+    let mut table = Table::new(&[
+        ("line", Side::Right),
+        ("expected", Side::Left),
+        ("found", Side::Left),
+        ("", Side::Left),
+    ]);
+    for expectation in &problem.expectations {
+        let verdict = verdict(problem, solved, expectation);
+        let found = verdict.value.map(|value| value_words(problem, expectation, value));
+        table.row([
+            line(checked, stated.section, expectation).to_string().into(),
+            asked(checked, stated.section, expectation).into(),
+            found.unwrap_or_else(|| "not known".into()).into(),
+            if verdict.met {
+                Cell::painted(Paint::Good, "met")
+            } else {
+                Cell::painted(Paint::Bad, "not met")
+            },
+        ]);
+    }
+    if table.is_empty() { String::new() } else { table.render(style) }
+}
+
+/// One line for each problem of the file: its pH, and how many expectations it meets.
+pub fn overview(problems: &[Stated], style: Style) -> String {
+    let mut table = Table::new(&[
+        ("", Side::Left),
+        ("pH", Side::Right),
+        ("ionic strength", Side::Right),
+        ("expectations", Side::Left),
+    ]);
+    for stated in problems {
+        let problem = &stated.outcome.problem;
+        let name = stated.case.map_or("base".into(), |case| format!("case \"{case}\""));
+        let all = problem.expectations.len();
+        match stated.outcome.solved() {
+            None => table.row([
+                name.into(),
+                Cell::default(),
+                Cell::default(),
+                Cell::painted(Paint::Bad, "not solved"),
+            ]),
+            Some(solved) => {
+                let met = |e: &&_| verdict(problem, solved, e).met;
+                let met = problem.expectations.iter().filter(met).count();
+                let words = match all {
+                    0 => Cell::default(),
+                    all if met == all => Cell::painted(Paint::Good, format!("{met} of {all} met")),
+                    all => Cell::painted(Paint::Bad, format!("{met} of {all} met")),
+                };
+                table.row([
+                    name.into(),
+                    decimals(solved.ph(), 3).into(),
+                    concentration(solved.answer.ionic_strength, problem.scale).into(),
+                    words,
+                ]);
+            }
+        }
+    }
+    let head = counted(problems.len(), "problem");
+    format!("{}\n{}", style.paint(Paint::Heading, &head), table.render(style))
+}

@@ -1,0 +1,309 @@
+//! What `lyate solve --output json` writes: stable, versioned by its `schema` field.
+//!
+//! A number that could not be had is absent; lists that do not apply are empty.
+
+use num_rational::Rational64;
+use num_traits::ToPrimitive;
+use serde::Serialize;
+
+use super::expectation::{line, verdict};
+use super::sheet::{Ledger, Sheet};
+use super::source::{FileReport, Stated};
+use crate::chemistry::formula::Phase;
+use crate::chemistry::quantity::Scale;
+use crate::chemistry::water;
+use crate::equilibrium::quantities::Solved;
+use crate::equilibrium::system::Failure;
+use crate::problem::model::{Problem, Sought};
+use crate::problem::scope::PROTON;
+use crate::rules::check::Checked;
+use crate::rules::outcome::State;
+
+#[derive(Serialize)]
+struct Report<'a> {
+    schema: u32,
+    file: &'a str,
+    problem: Option<&'a str>,
+    solutions: Vec<Solution<'a>>,
+}
+
+#[derive(Serialize)]
+struct Solution<'a> {
+    case: Option<&'a str>,
+    status: &'static str,
+    #[serde(flatten)]
+    answer: Option<Answer<'a>>,
+}
+
+#[derive(Serialize)]
+struct Answer<'a> {
+    /// Kelvin.
+    temperature: f64,
+    activity_model: &'static str,
+    scale: &'static str,
+    #[serde(skip_serializing_if = "Option::is_none")]
+    ph: Option<f64>,
+    #[serde(skip_serializing_if = "Option::is_none")]
+    ph_uncertainty: Option<f64>,
+    #[serde(skip_serializing_if = "Option::is_none")]
+    ionic_strength: Option<f64>,
+    #[serde(skip_serializing_if = "Option::is_none")]
+    alkalinity: Option<f64>,
+    #[serde(skip_serializing_if = "Option::is_none")]
+    buffer_capacity: Option<f64>,
+    charge_imbalance: ChargeImbalance,
+    species: Vec<Species<'a>>,
+    components: Vec<Component<'a>>,
+    solids: Vec<Solid<'a>>,
+    gases: Vec<Gas<'a>>,
+    doses: Vec<Dose<'a>>,
+    balances: Vec<Balance>,
+    expectations: Vec<Expectation<'a>>,
+}
+
+#[derive(Serialize)]
+struct ChargeImbalance {
+    meq_per_litre: f64,
+    percent: f64,
+}
+
+#[derive(Serialize)]
+struct Species<'a> {
+    name: &'a str,
+    charge: i32,
+    concentration: f64,
+    #[serde(skip_serializing_if = "Option::is_none")]
+    activity: Option<f64>,
+}
+
+#[derive(Serialize)]
+struct Component<'a> {
+    name: &'a str,
+    total: f64,
+    #[serde(skip_serializing_if = "Option::is_none")]
+    free_concentration: Option<f64>,
+    balance_error: f64,
+}
+
+#[derive(Serialize)]
+struct Solid<'a> {
+    name: &'a str,
+    #[serde(skip_serializing_if = "Option::is_none")]
+    saturation_index: Option<f64>,
+    precipitated: f64,
+}
+
+#[derive(Serialize)]
+struct Gas<'a> {
+    name: &'a str,
+    #[serde(skip_serializing_if = "Option::is_none")]
+    partial_pressure_atm: Option<f64>,
+}
+
+#[derive(Serialize)]
+struct Dose<'a> {
+    reagent: &'a str,
+    amount: f64,
+}
+
+#[derive(Serialize)]
+struct Balance {
+    kind: String,
+    left: Vec<Term>,
+    right: Vec<Term>,
+    #[serde(skip_serializing_if = "Option::is_none")]
+    error: Option<f64>,
+    dominant: Vec<String>,
+}
+
+#[derive(Serialize)]
+struct Term {
+    term: String,
+    coefficient: serde_json::Number,
+    /// Coefficient included.
+    #[serde(skip_serializing_if = "Option::is_none")]
+    value: Option<f64>,
+}
+
+#[derive(Serialize)]
+struct Expectation<'a> {
+    quantity: &'a str,
+    #[serde(skip_serializing_if = "Option::is_none")]
+    value: Option<f64>,
+    met: bool,
+    line: usize,
+}
+
+/// The answers to these problems of the file, as indented JSON.
+///
+/// # Errors
+/// Those of the serialiser; none are known for this data.
+pub fn json(file: &FileReport, problems: &[Stated]) -> serde_json::Result<String> {
+    let title = file.checked().and_then(|checked| checked.outcomes.first());
+    serde_json::to_string_pretty(&Report {
+        schema: 1,
+        file: &file.source.name,
+        problem: title.and_then(|base| base.problem.title.as_deref()),
+        solutions: problems
+            .iter()
+            .map(|stated| Solution {
+                case: stated.case,
+                status: status(&stated.outcome.state),
+                answer: file.checked().zip(stated.outcome.solved()).map(|(checked, solved)| {
+                    answer(checked, stated.section, &stated.outcome.problem, solved)
+                }),
+            })
+            .collect(),
+    })
+}
+
+/// The word for what became of a problem.
+pub fn status(state: &State) -> &'static str {
+    match state {
+        State::Solved(_) => "solved",
+        State::NothingStated | State::NotWellPosed => "not-well-posed",
+        State::Failed(Failure::Infeasible { .. }) => "no-solution",
+        State::Failed(Failure::Dependent { .. }) => "not-well-posed",
+        State::Failed(Failure::NotConverged { .. } | Failure::Cancelled) => "not-converged",
+    }
+}
+
+fn answer<'a>(
+    checked: &Checked,
+    section: usize,
+    problem: &'a Problem,
+    solved: &Solved,
+) -> Answer<'a> {
+    let finite = |value: Option<f64>| value.filter(|value| value.is_finite());
+    let value = |sought: Sought| finite(solved.value(problem, sought));
+    let ledger = Ledger::new(problem, Some(solved));
+    let mut sheets = vec![ledger.charge()];
+    sheets.extend(ledger.masses());
+    sheets.extend(ledger.protons().map(|(sheet, _)| sheet));
+    Answer {
+        temperature: problem.kelvin,
+        activity_model: problem.activity.name(),
+        scale: super::figures::scale_unit(problem.scale),
+        ph: value(Sought::Ph),
+        ph_uncertainty: None,
+        ionic_strength: value(Sought::IonicStrength),
+        alkalinity: value(Sought::Alkalinity),
+        buffer_capacity: value(Sought::BufferCapacity),
+        charge_imbalance: charge_imbalance(problem, solved),
+        species: species(problem, solved),
+        components: components(problem, solved),
+        solids: in_phase(problem, |phase| matches!(phase, Phase::Solid(_)))
+            .map(|s| Solid {
+                name: &problem.scope.species[s].name,
+                saturation_index: value(Sought::SaturationIndex(s)),
+                precipitated: 0.0,
+            })
+            .collect(),
+        gases: in_phase(problem, |phase| *phase == Phase::Gas)
+            .map(|s| Gas {
+                name: &problem.scope.species[s].name,
+                partial_pressure_atm: value(Sought::Pressure(s)),
+            })
+            .collect(),
+        doses: Vec::new(),
+        balances: sheets.iter().map(balance).collect(),
+        expectations: problem
+            .expectations
+            .iter()
+            .map(|expectation| {
+                let verdict = verdict(problem, solved, expectation);
+                Expectation {
+                    quantity: &expectation.words,
+                    value: finite(verdict.value),
+                    met: verdict.met,
+                    line: line(checked, section, expectation),
+                }
+            })
+            .collect(),
+    }
+}
+
+/// The species of the problem in a phase.
+pub fn in_phase(problem: &Problem, fits: impl Fn(&Phase) -> bool) -> impl Iterator<Item = usize> {
+    let scope = &problem.scope;
+    (0..scope.species.len()).filter(move |&s| scope.belongs(s) && fits(&scope.species[s].phase))
+}
+
+/// Per litre on either scale: per kilogram converts with the density of water.
+fn charge_imbalance(problem: &Problem, solved: &Solved) -> ChargeImbalance {
+    let (cations, anions) = solved.charges();
+    let per_litre = match problem.scale {
+        Scale::PerLitre => 1.0,
+        Scale::PerKilogram => water::density(problem.kelvin) / 1000.0,
+    };
+    ChargeImbalance {
+        meq_per_litre: 1000.0 * per_litre * (cations - anions),
+        percent: solved.imbalance_percent(),
+    }
+}
+
+fn species<'a>(problem: &'a Problem, solved: &Solved) -> Vec<Species<'a>> {
+    let scope = &problem.scope;
+    let rows = scope.stoichiometry.species.iter().zip(&scope.dissolved);
+    rows.zip(&solved.answer.concentrations)
+        .map(|((row, &s), &concentration)| Species {
+            name: &row.name,
+            charge: row.charge,
+            concentration,
+            activity: solved
+                .value(problem, Sought::Activity(s))
+                .filter(|activity| activity.is_finite()),
+        })
+        .collect()
+}
+
+fn components<'a>(problem: &'a Problem, solved: &Solved) -> Vec<Component<'a>> {
+    let scope = &problem.scope;
+    let listed = scope.components.iter().enumerate().skip(PROTON + 1);
+    listed
+        .map(|(j, component)| {
+            let total = solved.total(j);
+            let brought = solved.system.fixed.iter().zip(&solved.answer.amounts);
+            let brought: f64 = brought
+                .flat_map(|(fixed, &amount)| {
+                    fixed.supply.iter().filter(|&&(k, _)| k == j).map(move |(_, n)| (n, amount))
+                })
+                .map(|(n, amount)| n.to_f64().unwrap_or(0.0) * amount)
+                .sum();
+            Component {
+                name: &component.formula.name,
+                total,
+                free_concentration: scope
+                    .row_of(component.species)
+                    .and_then(|row| solved.answer.concentrations.get(row).copied()),
+                balance_error: total - solved.system.totals[j] - brought,
+            }
+        })
+        .collect()
+}
+
+fn balance(sheet: &Sheet) -> Balance {
+    let terms = |side: &[super::sheet::Entry]| {
+        let terms = side.iter().map(|entry| Term {
+            term: entry.words.clone(),
+            coefficient: number(entry.coefficient),
+            value: entry.value,
+        });
+        terms.collect()
+    };
+    let entries = sheet.left.iter().chain(&sheet.right);
+    Balance {
+        kind: sheet.name.clone(),
+        left: terms(&sheet.left),
+        right: terms(&sheet.right),
+        error: sheet.error(),
+        dominant: entries.filter(|e| e.dominant).map(|e| e.words.clone()).collect(),
+    }
+}
+
+/// A whole number where it is one.
+pub fn number(value: Rational64) -> serde_json::Number {
+    let fraction = || serde_json::Number::from_f64(value.to_f64()?);
+    let whole = value.is_integer().then(|| serde_json::Number::from(value.to_integer()));
+    whole.or_else(fraction).unwrap_or_else(|| 0.into())
+}

@@ -1,0 +1,76 @@
+//! Written balances held against those that the reactions and the recipe imply.
+
+use crate::balance::proton::proton_condition;
+use crate::balance::recipe::Recipe;
+use crate::balance::written::{Side, Verdict, WrittenTerm, WrittenWhat, compare};
+use crate::balance::{BalanceKind, Part};
+use crate::problem::model::{self, BalanceKindResolved, Problem, WrittenBalance};
+
+/// A written balance, by its index in the problem, and what it was found to be.
+#[derive(Debug)]
+pub struct Compared {
+    pub balance: usize,
+    pub verdict: Verdict,
+}
+
+/// Compares every balance whose terms could all be read. `brought` is what each held value
+/// brought, where that is known.
+pub fn compared(problem: &Problem, brought: Option<&[f64]>) -> Vec<Compared> {
+    if problem.balances.is_empty() {
+        return Vec::new();
+    }
+    let stoichiometry = &problem.scope.stoichiometry;
+    let recipe = Recipe::of(problem, brought);
+    let about_protons = |balance: &WrittenBalance| balance.kind == BalanceKindResolved::Protons;
+    let condition = problem
+        .balances
+        .iter()
+        .any(about_protons)
+        .then(|| proton_condition(stoichiometry, &recipe, &[]).ok())
+        .flatten();
+    problem
+        .balances
+        .iter()
+        .enumerate()
+        .filter(|(_, balance)| balance.complete)
+        .filter_map(|(index, balance)| {
+            let kind = kind(balance.kind);
+            let terms = terms(balance);
+            let verdict = compare(kind, &terms, stoichiometry, &recipe, condition.as_ref()).ok()?;
+            Some(Compared { balance: index, verdict })
+        })
+        .collect()
+}
+
+/// The balance's kind as the balance room has it.
+pub fn kind(kind: BalanceKindResolved) -> BalanceKind {
+    match kind {
+        BalanceKindResolved::Charge => BalanceKind::Charge,
+        BalanceKindResolved::Protons => BalanceKind::Protons,
+        BalanceKindResolved::Component(j) => BalanceKind::Component(j),
+    }
+}
+
+/// The written terms, left side first: a difference's index counts through both.
+fn terms(balance: &WrittenBalance) -> Vec<WrittenTerm> {
+    let side = |terms: &[model::WrittenTerm], side: Side| -> Vec<WrittenTerm> {
+        terms
+            .iter()
+            .map(|term| WrittenTerm {
+                side,
+                coefficient: term.coefficient,
+                what: match term.what {
+                    model::WrittenWhat::Species(row) => WrittenWhat::Species(row),
+                    model::WrittenWhat::Total(j) => WrittenWhat::Constant(Part::Total(j)),
+                    model::WrittenWhat::Added(r) => WrittenWhat::Constant(Part::Added(r)),
+                    model::WrittenWhat::Amount { value, half_digit } => {
+                        WrittenWhat::Amount { value, half_digit }
+                    }
+                },
+            })
+            .collect()
+    };
+    let mut terms = side(&balance.left, Side::Left);
+    terms.extend(side(&balance.right, Side::Right));
+    terms
+}
