@@ -12,7 +12,7 @@ use super::effective::Written;
 use super::expect;
 use super::held;
 use super::model::Problem;
-use super::reaction::{Origin, STANDARD, TemperatureIssue};
+use super::reaction::{LogK, Origin, STANDARD, TemperatureIssue};
 use super::resolve::Resolver;
 use super::scope::Scope;
 use super::written;
