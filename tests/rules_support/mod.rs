@@ -225,6 +225,11 @@ impl Fixture {
         self.marks.iter().any(|mark| !mark.related && mark.rule == self.about())
     }
 
+    /// The files beside it.
+    pub fn files(&self) -> &[(String, String)] {
+        &self.files
+    }
+
     /// All that the check says of it.
     pub fn findings(&self) -> Vec<LocatedFinding> {
         check_text(&self.text, &self.files).findings
