@@ -218,3 +218,27 @@ fn nothing_goes_unsolved_or_unread_in_silence() {
     assert!(unsolved > 100, "only {unsolved} without an answer");
     assert!(report.is_empty(), "{}", report.join("\n\n"));
 }
+
+#[test]
+fn what_can_be_read_is_a_warning_where_what_cannot_is_an_error() {
+    let follows = |pk: &str| {
+        format!(
+            "component CO3^2-\n\
+             reaction HCO3- <=> CO3^2- + H+, pKa = 10.33\n\
+             reaction H2CO3* <=> HCO3- + H+, pKa = 6.35\n\
+             reaction H2CO3* <=> CO3^2- + 2 H+, pK = {pk}\n"
+        )
+    };
+    let cases = [
+        ("ambiguous-charge", "component SO4-2\n".to_owned(), Severity::Error),
+        ("ambiguous-charge", "component Ca2+\n".to_owned(), Severity::Warning),
+        ("reaction-follows-from-others", follows("16.65"), Severity::Error),
+        ("reaction-follows-from-others", follows("16.67"), Severity::Warning),
+    ];
+    for (rule, text, severity) in cases {
+        let checked = check_text(&text, &[]);
+        let found: Vec<_> =
+            checked.findings.iter().filter(|f| f.rule == rule).map(|f| f.severity).collect();
+        assert_eq!(found, [severity], "{text}");
+    }
+}
