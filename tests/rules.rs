@@ -7,6 +7,7 @@ use std::path::{Path, PathBuf};
 
 use lyate::rules::catalogue::{Rule, find, rules};
 use lyate::rules::finding::Severity;
+use lyate::rules::outcome::State;
 use rules_support::{Fixture, check_text, read};
 
 fn folder(name: &str) -> PathBuf {
@@ -182,6 +183,40 @@ fn messages_are_one_plain_sentence_in_lower_case() {
         }
     }
     assert!(seen > 0);
+}
+
+/// A problem without an answer has an error that says why, and a balance that is not
+/// compared has one in its own statement: in every fixture, whole and with one line less.
+#[test]
+fn nothing_goes_unsolved_or_unread_in_silence() {
+    let mut unsolved = 0;
+    let mut report = Vec::new();
+    for (_, fixture) in fixtures() {
+        let lines: Vec<&str> = fixture.text.lines().collect();
+        for left_out in 0..=lines.len() {
+            let kept = lines.iter().enumerate().filter(|(i, _)| *i != left_out);
+            let text: String = kept.map(|(_, line)| format!("{line}\n")).collect();
+            let checked = check_text(&text, fixture.files());
+            let errors = checked.count(Severity::Error);
+            // A base may be left open for its cases to close.
+            let open = checked.outcomes.len() > 1
+                && checked.outcomes[1..].iter().all(|case| case.solved().is_some());
+            for outcome in &checked.outcomes[usize::from(open)..] {
+                let silent = match outcome.state {
+                    State::Failed(_) | State::NotWellPosed => {
+                        unsolved += 1;
+                        errors == 0
+                    }
+                    _ => errors == 0 && outcome.problem.balances.iter().any(|b| !b.complete),
+                };
+                if silent {
+                    report.push(format!("{:?} in\n{text}", outcome.state));
+                }
+            }
+        }
+    }
+    assert!(unsolved > 100, "only {unsolved} without an answer");
+    assert!(report.is_empty(), "{}", report.join("\n\n"));
 }
 
 #[test]

@@ -285,7 +285,7 @@ fn is_blocked(statements: &[Written], scope: &Scope, problem: &Problem) -> bool 
             .binary_search_by_key(&(at.section, at.statement), |w| (w.part, w.index))
             .is_ok_and(|found| !is_about_answers(&statements[found]))
     };
-    statements.iter().any(|w| !w.parsed.problems.is_empty() && !is_about_answers(w))
+    statements.iter().any(|w| !w.parsed.is_read_whole() && !is_about_answers(w))
         || scope
             .defects
             .iter()
