@@ -75,9 +75,7 @@ impl Recipe {
         });
         let totals = problem.amounts.iter().map(|amount| match amount.source {
             AmountSource::Total => amount.total,
-            // Listed and never brought in: absent.
-            AmountSource::Nothing => Some(0.0),
-            AmountSource::Reagents | AmountSource::Held(_) => None,
+            AmountSource::Nothing | AmountSource::Reagents | AmountSource::Held(_) => None,
         });
         let mut recipe =
             Recipe { reagents: reagents.collect(), totals: totals.collect(), held: Vec::new() };
@@ -87,6 +85,13 @@ impl Recipe {
         for (index, held) in problem.held.iter().enumerate() {
             let amount = brought.and_then(|brought| brought.get(index)).copied();
             recipe.held.push(Held::of(problem, held, amount));
+        }
+        for (j, amount) in problem.amounts.iter().enumerate().skip(1) {
+            let brings = |held: &Held| held.brings.iter().any(|(column, _)| *column == j);
+            // Listed and never brought in: absent.
+            if amount.source == AmountSource::Nothing && !recipe.held.iter().any(brings) {
+                recipe.totals[j] = Some(0.0);
+            }
         }
         recipe
     }

@@ -57,7 +57,7 @@ fn finding(
     let message = if missing.is_empty() {
         format!("{name} is not in this problem: no component and no reaction names it")
     } else if alone {
-        format!("{name} is not in this problem: it is not listed, and no reaction makes it")
+        format!("{name} is not in this problem: it is not listed as a component")
     } else {
         let missing = list(missing, "and");
         format!("{name} is not in this problem: its component {missing} is not listed")
@@ -88,7 +88,7 @@ fn is_told_elsewhere(context: &Context, name: &str, missing: &[String]) -> bool 
                 .iter()
                 .any(|d| d.at.section == written.part && d.at.statement == written.index),
             Statement::Component { .. } | Statement::Reaction(_) | Statement::Group { .. } => {
-                !written.parsed.problems.is_empty() && concerns(text)
+                !written.parsed.is_read_whole() && concerns(text)
             }
             Statement::Broken => {
                 let word = text.split_whitespace().next().unwrap_or_default();
