@@ -6,7 +6,7 @@ use tower_lsp::lsp_types::{
 
 use super::analysis::{Symbol, SymbolKind};
 use super::convert::Positions;
-use super::documents::Checked;
+use super::generation::Checked;
 use super::settings::Settings;
 
 /// Entries below this depth are left out; a file has two levels.
