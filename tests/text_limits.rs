@@ -14,6 +14,7 @@ fn read(text: &str) -> Arc<Parsed> {
     let start = Instant::now();
     let document = Document::parse(text);
     let spent = start.elapsed();
+    println!("T {spent:?} {:?}", &text.chars().take(50).collect::<String>());
     assert!(spent < Duration::from_secs(20), "{spent:?} for {:?}…", &text[..40.min(text.len())]);
     let mut parsed: Vec<_> = document.statements().map(|placed| placed.parsed.clone()).collect();
     assert_eq!(parsed.len(), 1);

@@ -113,6 +113,11 @@ pub enum Token {
 }
 
 impl Token {
+    fn may_be_broken(self) -> bool {
+        use Token::{BrokenNumber, String, UnclosedString, Unknown};
+        matches!(self, BrokenNumber | UnclosedString | String | Unknown)
+    }
+
     /// White space or a comment: nothing that a parser looks at.
     pub fn is_trivia(self) -> bool {
         matches!(self, Token::Space | Token::Newline | Token::Comment)
@@ -291,6 +296,10 @@ struct Sink<'s, 'o> {
 impl Sink<'_, '_> {
     fn push(&mut self, token: Token, start: usize, end: usize) {
         let span = Span::new(start, end);
+        if !token.may_be_broken() {
+            self.tokens.push((token, span));
+            return;
+        }
         let text = &self.text[start..end];
         let kind = match token {
             Token::BrokenNumber => {

@@ -1,9 +1,8 @@
 //! One parser for each statement, started by its first word.
 
 use chumsky::prelude::*;
-use chumsky::primitive::select_ref;
 
-use super::basic::{Lexeme, Rule, any_word, clause_end, name, sign, string, word};
+use super::basic::{Lexeme, Rule, any_word, clause_end, name, sign, string, to_comma, word};
 use super::failure::{Expect, Failure};
 use super::quantity::{edition, quantity};
 use super::reaction::{reaction, source};
@@ -119,13 +118,7 @@ fn components<'s>() -> impl Rule<'s, Statement> {
         .then(string().or_not())
         .then_ignore(clause_end())
         .map(|(name, title)| Some(ComponentItem { name, title }))
-        .recover_with(via_parser(
-            select_ref(|lexeme: &'s Lexeme<'s>, _: &mut _| {
-                (lexeme.token != Token::Comma).then_some(())
-            })
-            .repeated()
-            .map(|()| None),
-        ));
+        .recover_with(via_parser(to_comma().map(|()| None)));
     item.separated_by(sign(Token::Comma, Expect::Comma)).at_least(1).collect::<Vec<_>>().map(
         |items| {
             let items: Vec<ComponentItem> = items.into_iter().flatten().collect();
