@@ -4,7 +4,7 @@
 use logos::{Lexer, Logos};
 
 use super::number;
-use super::problem::{SyntaxProblem, SyntaxProblemKind};
+use super::problem::{MOST_PROBLEMS, SyntaxProblem, SyntaxProblemKind};
 use super::run;
 use super::span::Span;
 
@@ -201,9 +201,6 @@ impl From<ExpressionToken> for Token {
         }
     }
 }
-
-/// More than this many broken tokens of one statement are not each worth a finding.
-const MOST_PROBLEMS: usize = 10;
 
 /// How much of `log K(T) =` stands before the next token.
 #[derive(Clone, Copy, PartialEq, Eq)]

@@ -8,7 +8,7 @@ use super::quantity::{edition, quantity};
 use super::reaction::{reaction, source};
 use super::subject::{expect, hold, without};
 use super::sum::{members, terms};
-use crate::text::problem::{SyntaxProblem, SyntaxProblemKind};
+use crate::text::problem::{MOST_PROBLEMS, SyntaxProblem, SyntaxProblemKind};
 use crate::text::span::{Span, Spanned};
 use crate::text::token::Token;
 use crate::text::tree::{BalanceKind, ComponentItem, Name, Over, Statement, Use};
@@ -92,8 +92,8 @@ struct Run<'s, 'p> {
 impl<'s> Run<'s, '_> {
     fn parse(self, rule: impl Rule<'s, Statement>) -> Statement {
         let (statement, failures) = rule.parse(self.rest).into_output_errors();
-        let problems = failures.into_iter().map(|f| f.into_problem(self.rest, self.start));
-        self.problems.extend(problems);
+        let told = failures.into_iter().take(MOST_PROBLEMS);
+        self.problems.extend(told.map(|failure| failure.into_problem(self.rest, self.start)));
         statement.unwrap_or(Statement::Broken)
     }
 }
