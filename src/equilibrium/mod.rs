@@ -16,6 +16,7 @@ mod point;
 mod root;
 mod search;
 pub mod sensitivity;
+pub mod several;
 mod skew;
 pub mod solve;
 mod start;
