@@ -6,6 +6,7 @@ use clap::{Parser, Subcommand};
 
 mod check;
 mod chosen;
+mod explain;
 mod library;
 mod reply;
 mod serve;
@@ -14,7 +15,7 @@ mod terminal;
 
 /// Checks, balances, solves and explains chemical-equilibrium problem files.
 #[derive(Parser)]
-#[command(name = "lyate", version, about, max_term_width = 100)]
+#[command(name = "lyate", version, about)]
 struct Arguments {
     #[command(subcommand)]
     command: Command,
@@ -24,6 +25,7 @@ struct Arguments {
 enum Command {
     Check(check::Arguments),
     Solve(solve::Arguments),
+    Explain(explain::Arguments),
     Serve(serve::Arguments),
 }
 
@@ -32,6 +34,7 @@ pub fn run() -> ExitCode {
     match Arguments::parse().command {
         Command::Check(arguments) => reply::give(check::run(&arguments)),
         Command::Solve(arguments) => reply::give(solve::run(&arguments)),
+        Command::Explain(arguments) => reply::give(explain::run(&arguments)),
         Command::Serve(arguments) => serve::run(&arguments),
     }
 }

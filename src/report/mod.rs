@@ -5,6 +5,7 @@ pub mod check_json;
 pub mod editor;
 pub mod inline;
 pub mod junit;
+pub mod page;
 pub mod sarif;
 pub mod sheet;
 pub mod solution;
