@@ -6,6 +6,7 @@ use clap::{Parser, Subcommand};
 
 mod check;
 mod chosen;
+mod derive;
 mod explain;
 mod library;
 mod reply;
@@ -25,6 +26,7 @@ struct Arguments {
 enum Command {
     Check(check::Arguments),
     Solve(solve::Arguments),
+    Derive(derive::Arguments),
     Explain(explain::Arguments),
     Serve(serve::Arguments),
 }
@@ -34,6 +36,7 @@ pub fn run() -> ExitCode {
     match Arguments::parse().command {
         Command::Check(arguments) => reply::give(check::run(&arguments)),
         Command::Solve(arguments) => reply::give(solve::run(&arguments)),
+        Command::Derive(arguments) => reply::give(derive::run(&arguments)),
         Command::Explain(arguments) => reply::give(explain::run(&arguments)),
         Command::Serve(arguments) => serve::run(&arguments),
     }

@@ -238,7 +238,7 @@ fn protons(ledger: &Ledger, problem: &Problem, style: Style) -> String {
     if problem.held.iter().any(|held| matches!(held.what, HeldWhat::Ph(_))) {
         return String::new();
     }
-    ledger.protons().map_or(String::new(), |(protons, _)| sheet(&protons, problem.scale, style))
+    ledger.protons(&[]).map_or(String::new(), |(protons, _)| sheet(&protons, problem.scale, style))
 }
 
 fn expectations(checked: &Checked, stated: Stated, solved: &Solved, style: Style) -> String {

@@ -2,6 +2,7 @@
 
 use super::check_json::severity;
 use super::style::{Paint, Style};
+use super::wrap::wrapped;
 use crate::rules::FAMILIES;
 use crate::rules::catalogue::{Rule, rules};
 use crate::rules::finding::Severity;
@@ -56,27 +57,6 @@ fn wrap(lines: &[&str]) -> String {
     let mut text = wrapped(&lines.join(" "), 0, indent, WIDTH);
     if !text.is_empty() {
         text.push('\n');
-    }
-    text
-}
-
-/// Words in lines no longer than `width`: the first starts at column `start`, others are
-/// indented.
-fn wrapped(words: &str, start: usize, indent: usize, width: usize) -> String {
-    let mut text = String::new();
-    let mut at = start;
-    for word in words.split_whitespace() {
-        let length = word.chars().count();
-        if !text.is_empty() && at + 1 + length > width {
-            text.push('\n');
-            text.extend(std::iter::repeat_n(' ', indent));
-            at = indent;
-        } else if !text.is_empty() {
-            text.push(' ');
-            at += 1;
-        }
-        text += word;
-        at += length;
     }
     text
 }

@@ -104,10 +104,20 @@ impl<'a> Ledger<'a> {
         components.map(|j| self.sheet(&mass_balance(stoichiometry, j))).collect()
     }
 
-    /// The proton condition; none where its coefficients do not fit 64 bits.
-    pub fn protons(&self) -> Option<(Sheet, ProtonCondition)> {
+    /// What a component's total is made of; none where it is given itself.
+    pub fn sources(&self, component: usize) -> Option<Vec<Entry>> {
+        let sources = self.recipe.sources(component);
+        if sources.iter().any(|(part, _)| matches!(part, Part::Total(_))) {
+            return None;
+        }
+        Some(sources.iter().map(|&(part, n)| self.entry(Quantity::Part(part), n)).collect())
+    }
+
+    /// The proton condition, at the reference level of these species where some are given;
+    /// none where its coefficients do not fit 64 bits.
+    pub fn protons(&self, level: &[usize]) -> Option<(Sheet, ProtonCondition)> {
         let stoichiometry = &self.problem.scope.stoichiometry;
-        let condition = proton_condition(stoichiometry, &self.recipe, &[]).ok()?;
+        let condition = proton_condition(stoichiometry, &self.recipe, level).ok()?;
         Some((self.sheet(&condition.balance), condition))
     }
 
