@@ -210,6 +210,18 @@ fn normal(text: &str) -> String {
 
 /// Units near to a text that is none, three at most.
 fn nearest(key: &str) -> Vec<&'static str> {
+    // `mmol` lacks what it is counted per.
+    let begun: Vec<&'static str> = UNITS
+        .iter()
+        .filter(|unit| {
+            normal(unit.name).strip_prefix(key).is_some_and(|rest| rest.starts_with('/'))
+        })
+        .map(|unit| unit.name)
+        .take(3)
+        .collect();
+    if !begun.is_empty() {
+        return begun;
+    }
     let mut near: Vec<(usize, &'static str)> = UNITS
         .iter()
         .filter_map(|unit| {

@@ -24,3 +24,4 @@ pub mod solve;
 mod start;
 mod sum;
 pub mod system;
+pub mod weighed;

@@ -7,7 +7,7 @@ use num_traits::ToPrimitive;
 use super::build::ln_formation;
 use super::sensitivity;
 use super::system::{Answer, System};
-use crate::problem::model::{Problem, Sought};
+use crate::problem::model::{Problem, Sought, WrittenBalance, WrittenTerm, WrittenWhat};
 use crate::problem::reaction::STANDARD;
 use crate::problem::scope::{PROTON, WATER};
 
@@ -49,6 +49,25 @@ impl Solved {
             let at = species.row.iter().find(|&&(j, _)| j == component)?;
             Some((i, at.1.to_f64()? * self.answer.concentrations[i]))
         })
+    }
+
+    /// Left less right of a written balance at the answer, mol per litre or kilogram.
+    pub fn written_error(&self, problem: &Problem, balance: &WrittenBalance) -> f64 {
+        let sum = |terms: &[WrittenTerm]| -> f64 {
+            terms
+                .iter()
+                .map(|term| {
+                    let value = match term.what {
+                        WrittenWhat::Species(row) => self.answer.concentrations[row],
+                        WrittenWhat::Total(component) => self.total(component),
+                        WrittenWhat::Added(reagent) => problem.reagents[reagent].amount,
+                        WrittenWhat::Amount { value, .. } => value,
+                    };
+                    term.coefficient.to_f64().unwrap_or(0.0) * value
+                })
+                .sum()
+        };
+        sum(&balance.left) - sum(&balance.right)
     }
 
     /// Charge of all cations and of all anions, both positive, eq per litre or kilogram.

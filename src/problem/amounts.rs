@@ -120,6 +120,11 @@ fn add(
                 case.resolver.report(at, kind);
                 None
             }
+            Split::Impossible => {
+                let kind = DefectKind::ReagentNotMade { name: formula.name.clone() };
+                case.resolver.report(at, kind);
+                None
+            }
         },
     };
     let pieces = pieces?;

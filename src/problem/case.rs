@@ -247,7 +247,8 @@ impl CaseResolver<'_> {
             || {
                 names()
                     .map(|other| (strsim::osa_distance(&other.name, &formula.name), &other.name))
-                    .filter(|(distance, _)| *distance <= 2)
+                    // Short names are all near to one another.
+                    .filter(|(distance, name)| *distance <= 2 && distance * 3 < name.len())
                     .min()
                     .map(|(_, name)| name.clone())
             },

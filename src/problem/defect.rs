@@ -199,6 +199,10 @@ pub enum DefectKind {
         name: String,
         element: String,
     },
+    /// Each element of it is held, yet no sum of the components is this reagent.
+    ReagentNotMade {
+        name: String,
+    },
     /// What `giving` names does not add up to the reagent.
     GivingNotConserved {
         what: Conserved,

@@ -122,28 +122,63 @@ impl Scope {
         self.reactions.iter().enumerate().filter(|(r, _)| self.belonging.used[*r])
     }
 
-    /// Components that would bring a species in: those that another reaction of it needs.
+    /// Components that would bring a species in: the bases that it, or what it is made of,
+    /// is an acid of.
     pub fn missing_for(&self, species: usize) -> Vec<String> {
-        let mut best: Option<Vec<String>> = None;
-        for reaction in &self.reactions {
-            if !reaction.participants.iter().any(|p| p.formula.name == self.species[species].name) {
-                continue;
+        let base = self.base_of(species);
+        let made_of = self.reactions.iter().find_map(|reaction| {
+            let name = &self.species[base].name;
+            let mut right = reaction.participants.iter().filter(|p| p.coefficient > Zero::zero());
+            if right.next()?.formula.name != *name || right.next().is_some() {
+                return None;
             }
-            let missing: Vec<_> = reaction
+            let left: Vec<usize> = reaction
                 .participants
                 .iter()
-                .filter(|p| {
-                    p.formula.phase == Phase::Aqueous
-                        && self.find(&p.formula.name).is_some_and(|s| !self.belongs(s))
-                        && p.formula.name != self.species[species].name
-                })
-                .map(|p| p.formula.name.clone())
+                .filter(|p| p.coefficient < Zero::zero() && p.formula.phase == Phase::Aqueous)
+                .filter_map(|p| self.find(&p.formula.name))
+                .filter(|&s| s != WATER && s != PROTON)
                 .collect();
-            if !missing.is_empty() && best.as_ref().is_none_or(|best| missing.len() < best.len()) {
-                best = Some(missing);
+            (left.len() > 1).then_some(left)
+        });
+        let missing = |s: usize| (!self.belongs(s)).then(|| self.base_of(s));
+        let mut wanted: Vec<usize> = match made_of {
+            Some(left) => left.into_iter().filter_map(missing).collect(),
+            None => vec![base],
+        };
+        if wanted.is_empty() {
+            wanted.push(base);
+        }
+        wanted.dedup();
+        wanted.into_iter().map(|s| self.species[s].name.clone()).collect()
+    }
+
+    /// The species with all its protons given off, by the acid reactions in scope; of a gas
+    /// or solid, what it dissolves into.
+    fn base_of(&self, species: usize) -> usize {
+        let mut base = species;
+        // No acid has more protons to give than this.
+        for _ in 0..12 {
+            let name = &self.species[base].name;
+            let next = self.reactions.iter().find_map(|reaction| {
+                let of = |left: bool| {
+                    reaction.participants.iter().filter(move |p| {
+                        (p.coefficient < Zero::zero()) == left
+                            && !p.formula.is_water()
+                            && !p.formula.is_proton()
+                    })
+                };
+                let (mut left, mut right) = (of(true), of(false));
+                let (from, to) = (left.next()?, right.next()?);
+                let one_each = left.next().is_none() && right.next().is_none();
+                (one_each && from.formula.name == *name).then(|| self.find(&to.formula.name))?
+            });
+            match next {
+                Some(next) if next != base => base = next,
+                _ => break,
             }
         }
-        best.unwrap_or_else(|| vec![self.species[species].name.clone()])
+        base
     }
 }
 

@@ -16,6 +16,8 @@ pub enum Split {
     NotUnique,
     /// It holds something that no component holds.
     Foreign(String),
+    /// Each of its elements is held, and no sum of the components makes it.
+    Impossible,
 }
 
 /// Splits one unit of a neutral formula. A solid or a gas that is put in dissolves: its
@@ -42,17 +44,9 @@ pub fn split(formula: &Formula, scope: &Scope) -> Split {
             Ok(pieces) => Split::Into(pieces),
             Err(SplitProblem::Unheld { atom }) => Split::Foreign(atom.to_string()),
             Err(SplitProblem::NotUnique { .. } | SplitProblem::TooLarge) => Split::NotUnique,
-            Err(_) => Split::Foreign(unheld(formula)),
+            Err(_) => Split::Impossible,
         },
     }
-}
-
-/// An element of the reagent to name where none stands out: not hydrogen or oxygen, if it
-/// can be helped.
-fn unheld(formula: &Formula) -> String {
-    let mut atoms = formula.atoms.keys();
-    let named = atoms.clone().find(|atom| !is_water_atom(atom)).or_else(|| atoms.next());
-    named.map(Atom::to_string).unwrap_or_default()
 }
 
 /// The counts of these species that make the formula.

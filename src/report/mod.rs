@@ -1,6 +1,7 @@
 //! How it is told: terminal text, JSON, SARIF, JUnit, and an editor's inline words.
 
 pub mod answer;
+pub mod balance;
 pub mod check_json;
 pub mod derivation;
 pub mod editor;

@@ -1,7 +1,7 @@
 //! One base or case taken through the rooms: resolved, solved, and looked over.
 
-use std::sync::Arc;
 use std::sync::atomic::AtomicBool;
+use std::sync::{Arc, OnceLock};
 
 use super::catalogue::rules;
 use super::compared::{Compared, compared};
@@ -11,6 +11,7 @@ use crate::equilibrium::build::system;
 use crate::equilibrium::quantities::Solved;
 use crate::equilibrium::solve::solve;
 use crate::equilibrium::system::{Answer, Failure};
+use crate::equilibrium::weighed::{Balances, balances};
 use crate::problem::case::resolve;
 use crate::problem::effective::InForce;
 use crate::problem::model::Problem;
@@ -23,6 +24,8 @@ pub struct Outcome {
     pub state: State,
     pub compared: Vec<Compared>,
     pub findings: Vec<Finding<Place>>,
+    /// Weighed when first asked for: no rule needs them.
+    balances: OnceLock<Balances>,
 }
 
 /// What became of the equations.
@@ -42,6 +45,12 @@ impl Outcome {
             State::Solved(solved) => Some(solved),
             _ => None,
         }
+    }
+
+    /// The implied balances, term by term; none where there is no answer.
+    pub fn balances(&self) -> Option<&Balances> {
+        let solved = self.solved()?;
+        Some(self.balances.get_or_init(|| balances(&self.problem, solved)))
     }
 
     /// Takes the statements in force through all rooms. `near` is an answer to start from;
@@ -84,6 +93,6 @@ impl Outcome {
         for rule in rules() {
             (rule.find)(&context, &mut findings);
         }
-        Some(Outcome { problem, state, compared, findings })
+        Some(Outcome { problem, state, compared, findings, balances: OnceLock::new() })
     }
 }

@@ -16,7 +16,9 @@ vim.api.nvim_create_autocmd('LspAttach', {
     end
     vim.lsp.inlay_hint.enable(true, { bufnr = event.buf })
     -- Findings follow each keystroke, not only the end of typing.
-    local namespace = vim.lsp.diagnostic.get_namespace(client.id)
-    vim.diagnostic.config({ update_in_insert = true, virtual_text = true }, namespace)
+    for _, pulled in ipairs({ false, true }) do
+      local namespace = vim.lsp.diagnostic.get_namespace(client.id, pulled)
+      vim.diagnostic.config({ update_in_insert = true, virtual_text = true }, namespace)
+    end
   end,
 })

@@ -3,12 +3,15 @@
 
 use std::ops::Range;
 
+use crate::balance::written::Verdict;
 use crate::equilibrium::quantities::Solved;
 use crate::problem::model::{Expectation, Problem};
+use crate::report::balance;
 use crate::report::expectation::value_words;
 use crate::report::figures::{concentration, decimals, percent, significant};
 use crate::report::inline::Hint;
 use crate::rules::check::Checked;
+use crate::rules::compared::kind;
 use crate::rules::outcome::Outcome;
 use crate::text::span::Part;
 use crate::text::tree::{Placed, Statement};
@@ -96,8 +99,43 @@ fn statement(
                 hints.extend(expected(problem, solved, expectation, offset));
             }
         }
+        Statement::Balance { .. } => {
+            let at = problem.balances.iter().position(|balance| here(&balance.at));
+            let offset = placed.start + first_line(&placed.parsed.text);
+            hints.extend(at.and_then(|at| written_balance(outcome, solved, at, offset)));
+        }
         _ => {}
     }
+}
+
+/// Whether a written balance closes at the answer, and what the implied one rests on.
+fn written_balance(
+    outcome: &Outcome,
+    solved: &Solved,
+    index: usize,
+    offset: usize,
+) -> Option<Hint> {
+    let problem = &outcome.problem;
+    let written = &problem.balances[index];
+    let implied = outcome.balances()?.all.iter().find(|b| b.kind == kind(written.kind))?;
+    let verdict = outcome.compared.iter().find(|compared| compared.balance == index);
+    let is_wrong =
+        verdict.is_some_and(|compared| matches!(compared.verdict, Verdict::Wrong { .. }));
+    let head = if !written.complete {
+        return None;
+    } else if is_wrong {
+        let error = solved.written_error(problem, written);
+        format!("off by {}", concentration(error, problem.scale))
+    } else if implied.closes() {
+        "closes".into()
+    } else {
+        format!("open by {}", concentration(implied.error(), problem.scale))
+    };
+    Some(Hint {
+        offset,
+        text: format!("{head} · {}", balance::rests_on(problem, implied)),
+        tooltip: Some(balance::long(problem, implied)),
+    })
 }
 
 /// The form of a component that holds most of it; none where it has one form only.

@@ -31,7 +31,7 @@ use super::remaining::remaining;
 use crate::equilibrium::system::Failure;
 use crate::rules::catalogue::rule;
 use crate::rules::context::Context;
-use crate::rules::figures::significant;
+use crate::rules::figures::percent;
 use crate::rules::finding::Finding;
 use crate::rules::outcome::State;
 use crate::rules::words::list;
@@ -104,8 +104,8 @@ fn dependent(
 fn not_converged(context: &Context, residual: f64, iterations: u32) -> Option<Finding<Place>> {
     let at = context.problem.activity_at.or_else(|| context.anchor())?;
     let message = format!(
-        "no answer was found: after {iterations} steps the balances are open by {} of their size",
-        significant(residual, 2)
+        "no answer was found: after {iterations} steps the balances are still open by {}",
+        percent(residual)
     );
     let help = "far outside the range of the activity model there may be none; `activity ideal` \
                 shows which amount is so large";

@@ -57,7 +57,7 @@ fn finding(
     let message = if missing.is_empty() {
         format!("{name} is not in this problem: no component and no reaction names it")
     } else if alone {
-        format!("{name} is not in this problem: it is not listed, and no reaction makes it")
+        format!("{name} is not in this problem: it is not listed as a component")
     } else {
         let missing = list(missing, "and");
         format!("{name} is not in this problem: its component {missing} is not listed")

@@ -39,14 +39,17 @@ rule!("reagent-element-not-held", Error, "reagent_element_not_held.rs", find);
 
 fn find(context: &Context, found: &mut Vec<Finding<Place>>) {
     for defect in context.defects() {
-        let DefectKind::ReagentHoldsForeign { name, element } = &defect.kind else { continue };
-        if element == "charge" {
-            let message = format!("the components cannot make {name} up: no sum of them is neutral");
-            let help = "list the form of each element that it brings, or e- where it is oxidised \
-                        or reduced";
-            found.push(RULE.at(defect.at, message).with_help(help));
-            continue;
-        }
+        let (name, element) = match &defect.kind {
+            DefectKind::ReagentHoldsForeign { name, element } => (name, element),
+            DefectKind::ReagentNotMade { name } => {
+                let message = format!("no sum of the components makes up {name}");
+                let help = "list the form of each element that it brings, and e- where one is \
+                            oxidised or reduced";
+                found.push(RULE.at(defect.at, message).with_help(help));
+                continue;
+            }
+            _ => continue,
+        };
         let message = format!("{name} holds {element}, and no component does");
         let mut finding = RULE.at(defect.at, message);
         let holder = holder(context, name, element);
