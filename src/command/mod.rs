@@ -16,7 +16,14 @@ mod terminal;
 
 /// Checks, balances, solves and explains chemical-equilibrium problem files.
 #[derive(Parser)]
-#[command(name = "lyate", version, about)]
+#[command(
+    name = "lyate",
+    version,
+    about,
+    after_help = "\
+`lyate check` reads every .lyate file below the current folder, and is where to start.
+`lyate COMMAND --help` says more about a command, its forms of output and exit codes."
+)]
 struct Arguments {
     #[command(subcommand)]
     command: Command,

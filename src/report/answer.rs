@@ -72,7 +72,9 @@ fn main_figures(problem: &Problem, solved: &Solved, style: Style) -> String {
         Scale::PerKilogram => "kg",
     };
     let milli = |eq: f64| format!("{} meq/{per}", significant(1000.0 * eq, 3));
-    row("alkalinity", milli(solved.alkalinity(problem)), "");
+    // What is left of sums that cancel is nothing.
+    let alkalinity = solved.alkalinity(problem);
+    row("alkalinity", milli(if alkalinity.abs() < 1e-12 { 0.0 } else { alkalinity }), "");
     if let Some(capacity) = solved.value(problem, Sought::BufferCapacity) {
         row("buffer capacity", format!("{} per pH", concentration(capacity, problem.scale)), "");
     }
@@ -161,7 +163,7 @@ fn put_in(problem: &Problem, style: Style) -> String {
     for held in &problem.held {
         let value = match held.what {
             HeldWhat::Ph(value) | HeldWhat::Pe(value) => decimals(value, 3),
-            HeldWhat::Pressure { atm, .. } => format!("{} atm", significant(atm, 4)),
+            HeldWhat::Pressure { atm, .. } => format!("{} atm", significant(atm, 3)),
             HeldWhat::Activity { value, .. } => significant(value, 4),
             HeldWhat::Concentration { value, .. } => concentration(value, problem.scale),
         };
