@@ -86,7 +86,14 @@ impl Recipe {
         }
         for (index, held) in problem.held.iter().enumerate() {
             let amount = brought.and_then(|brought| brought.get(index)).copied();
-            recipe.held.push(Held::of(problem, held, amount));
+            let held = Held::of(problem, held, amount);
+            // What only a held gas brings has that for its source.
+            for &(j, _) in &held.brings {
+                if problem.amounts[j].source == AmountSource::Nothing {
+                    recipe.totals[j] = None;
+                }
+            }
+            recipe.held.push(held);
         }
         recipe
     }
