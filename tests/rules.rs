@@ -6,6 +6,8 @@ use std::collections::BTreeSet;
 use std::path::{Path, PathBuf};
 
 use lyate::rules::catalogue::{Rule, find, rules};
+use lyate::rules::finding::Severity;
+use lyate::rules::outcome::State;
 use rules_support::{Fixture, check_text, read};
 
 fn folder(name: &str) -> PathBuf {
@@ -181,4 +183,62 @@ fn messages_are_one_plain_sentence_in_lower_case() {
         }
     }
     assert!(seen > 0);
+}
+
+/// A problem without an answer has an error that says why, and a balance that is not
+/// compared has one in its own statement: in every fixture, whole and with one line less.
+#[test]
+fn nothing_goes_unsolved_or_unread_in_silence() {
+    let mut unsolved = 0;
+    let mut report = Vec::new();
+    for (_, fixture) in fixtures() {
+        let lines: Vec<&str> = fixture.text.lines().collect();
+        for left_out in 0..=lines.len() {
+            let kept = lines.iter().enumerate().filter(|(i, _)| *i != left_out);
+            let text: String = kept.map(|(_, line)| format!("{line}\n")).collect();
+            let checked = check_text(&text, fixture.files());
+            let errors = checked.count(Severity::Error);
+            // A base may be left open for its cases to close.
+            let open = checked.outcomes.len() > 1
+                && checked.outcomes[1..].iter().all(|case| case.solved().is_some());
+            for outcome in &checked.outcomes[usize::from(open)..] {
+                let silent = match outcome.state {
+                    State::Failed(_) | State::NotWellPosed => {
+                        unsolved += 1;
+                        errors == 0
+                    }
+                    _ => errors == 0 && outcome.problem.balances.iter().any(|b| !b.complete),
+                };
+                if silent {
+                    report.push(format!("{:?} in\n{text}", outcome.state));
+                }
+            }
+        }
+    }
+    assert!(unsolved > 100, "only {unsolved} without an answer");
+    assert!(report.is_empty(), "{}", report.join("\n\n"));
+}
+
+#[test]
+fn what_can_be_read_is_a_warning_where_what_cannot_is_an_error() {
+    let follows = |pk: &str| {
+        format!(
+            "component CO3^2-\n\
+             reaction HCO3- <=> CO3^2- + H+, pKa = 10.33\n\
+             reaction H2CO3* <=> HCO3- + H+, pKa = 6.35\n\
+             reaction H2CO3* <=> CO3^2- + 2 H+, pK = {pk}\n"
+        )
+    };
+    let cases = [
+        ("ambiguous-charge", "component SO4-2\n".to_owned(), Severity::Error),
+        ("ambiguous-charge", "component Ca2+\n".to_owned(), Severity::Warning),
+        ("reaction-follows-from-others", follows("16.65"), Severity::Error),
+        ("reaction-follows-from-others", follows("16.67"), Severity::Warning),
+    ];
+    for (rule, text, severity) in cases {
+        let checked = check_text(&text, &[]);
+        let found: Vec<_> =
+            checked.findings.iter().filter(|f| f.rule == rule).map(|f| f.severity).collect();
+        assert_eq!(found, [severity], "{text}");
+    }
 }

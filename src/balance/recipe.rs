@@ -75,9 +75,7 @@ impl Recipe {
         });
         let totals = problem.amounts.iter().map(|amount| match amount.source {
             AmountSource::Total => amount.total,
-            // Listed and never brought in: absent.
-            AmountSource::Nothing => Some(0.0),
-            AmountSource::Reagents | AmountSource::Held(_) => None,
+            AmountSource::Nothing | AmountSource::Reagents | AmountSource::Held(_) => None,
         });
         let mut recipe =
             Recipe { reagents: reagents.collect(), totals: totals.collect(), held: Vec::new() };
@@ -94,6 +92,13 @@ impl Recipe {
                 }
             }
             recipe.held.push(held);
+        }
+        for (j, amount) in problem.amounts.iter().enumerate().skip(1) {
+            let brings = |held: &Held| held.brings.iter().any(|(column, _)| *column == j);
+            // Listed and never brought in: absent.
+            if amount.source == AmountSource::Nothing && !recipe.held.iter().any(brings) {
+                recipe.totals[j] = Some(0.0);
+            }
         }
         recipe
     }

@@ -3,6 +3,8 @@
 
 use std::sync::Arc;
 
+use num_traits::ToPrimitive;
+
 use super::amounts;
 use super::charge_reading;
 use super::defect::{Defect, DefectKind, Expected};
@@ -17,7 +19,7 @@ use super::written;
 use crate::chemistry::activity::ActivityKind;
 use crate::chemistry::formula::Formula;
 use crate::chemistry::quantity::Scale;
-use crate::text::span::Place;
+use crate::text::span::{Part, Place};
 use crate::text::tree::{Name, Statement, Use};
 
 /// The work in hand for one base or case.
@@ -72,8 +74,12 @@ pub fn resolve(statements: &[Written], merging: Vec<Defect>, scope: Arc<Scope>) 
     amounts::close(&mut case, &mut problem);
     problem.balances = written::read(&mut case, &problem);
     problem.expectations = expect::read(&mut case);
-    for written in statements.iter().filter(|w| !charge_reading::defines(w.statement())) {
-        charge_reading::look(&mut case.resolver, written, &scope.balanced);
+    // A case has only its own to add to what the base was told.
+    let is_case = statements.iter().any(|written| written.part == Part::Case);
+    for written in statements.iter().filter(|w| !is_case || w.part == Part::Case) {
+        if !charge_reading::defines(written.statement()) {
+            charge_reading::look(&mut case.resolver, written, &scope.balanced);
+        }
     }
     for written in statements {
         let unsupported = match written.statement() {
@@ -145,7 +151,10 @@ fn constants(case: &mut CaseResolver, problem: &mut Problem) {
             Origin::Own(place) => Some(*place),
             _ => None,
         };
-        let Some(issue) = issue else { continue };
+        // Where water's own constant ends, so do its other properties: that is told as one.
+        let constant = reaction.constant.as_ref().map(|constant| &constant.value);
+        let is_water = matches!(constant, Some(LogK::Water));
+        let Some(issue) = issue.filter(|_| !is_water) else { continue };
         let at = own.or(problem.temperature_at).or_else(|| first_use(case.statements));
         let Some(at) = at else { continue };
         let equation = reaction.equation.clone();
@@ -168,19 +177,17 @@ fn constants(case: &mut CaseResolver, problem: &mut Problem) {
             },
         );
     }
-    for (r, combination) in &scope.belonging.cycles {
-        let by: f64 = combination
+    for (_, combination) in &scope.belonging.cycles {
+        // Told at the last of the file's own reactions in it; a set alone agrees with itself.
+        let own = combination
             .iter()
-            .map(|&(r, n)| num_traits::ToPrimitive::to_f64(&n).unwrap_or(0.0) * problem.log_k[r])
-            .sum();
-        // Told at the file's own part in it: a set alone agrees with itself.
-        let own = |&(r, _): &(usize, _)| scope.reactions[r].origin.own();
-        let at = scope.reactions[*r].origin.own().or_else(|| combination.iter().find_map(own));
-        if let Some(at) = at {
-            case.resolver.report(at, DefectKind::Follows { by });
-        }
+            .filter_map(|&(r, n)| Some((scope.reactions[r].origin.own()?, n)))
+            .max_by_key(|&(at, _)| at);
+        let Some((at, share)) = own else { continue };
+        let number = |n: num_rational::Rational64| n.to_f64().unwrap_or(0.0);
+        let sum: f64 = combination.iter().map(|&(r, n)| number(n) * problem.log_k[r]).sum();
+        case.resolver.report(at, DefectKind::Follows { by: sum / number(share) });
     }
-    let _ = LogK::Water;
 }
 
 /// Where a constant that another file or set brought is told of, without a `temperature`.
@@ -273,12 +280,12 @@ fn states_a_problem(statement: &Statement) -> bool {
 /// would be an answer to another question.
 fn is_blocked(statements: &[Written], scope: &Scope, problem: &Problem) -> bool {
     let counts = |at: Place| {
+        // In the order of the text, the base before the case.
         statements
-            .iter()
-            .find(|w| w.part == at.section && w.index == at.statement)
-            .is_some_and(|w| !is_about_answers(w))
+            .binary_search_by_key(&(at.section, at.statement), |w| (w.part, w.index))
+            .is_ok_and(|found| !is_about_answers(&statements[found]))
     };
-    statements.iter().any(|w| !w.parsed.problems.is_empty() && !is_about_answers(w))
+    statements.iter().any(|w| !w.parsed.is_read_whole() && !is_about_answers(w))
         || scope
             .defects
             .iter()

@@ -50,7 +50,7 @@ impl Resolver {
         match &tree.constants[..] {
             [] => {
                 // A broken clause has been reported already.
-                if written.parsed.problems.is_empty() {
+                if written.parsed.is_read_whole() {
                     self.report(written.place(tree.equation), DefectKind::NoConstant);
                 }
             }
@@ -64,7 +64,7 @@ impl Resolver {
                 terms.constant = self.constant(written, first, kelvin);
             }
         }
-        if tree.source.is_none() && written.parsed.problems.is_empty() {
+        if tree.source.is_none() && written.parsed.is_read_whole() {
             self.report(written.place(tree.equation), DefectKind::NoSource);
         }
         self.base_reaction(written, tree, participants);

@@ -191,8 +191,9 @@ impl Reader<'_> {
         }
         let origin = Origin::File(path.to_path_buf());
         let mut found = self.resolve(&document, &origin, |what| {
-            used.remove(&use_key(what)).unwrap_or_else(|| {
-                Err(DefectKind::FileMissing { path: shown.clone(), why: "used twice".into() })
+            used.get(&use_key(what)).cloned().unwrap_or_else(|| {
+                let why = "it was not read".into();
+                Err(DefectKind::FileMissing { path: shown.clone(), why })
             })
         });
         found.files.insert(0, path.to_path_buf());

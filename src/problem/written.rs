@@ -27,7 +27,7 @@ pub fn read(case: &mut CaseResolver, problem: &Problem) -> Vec<WrittenBalance> {
         };
         let (left_terms, right_terms) = (side(left), side(right));
         let complete = left_terms.iter().chain(&right_terms).all(Option::is_some)
-            && written.parsed.problems.is_empty();
+            && written.parsed.is_read_whole();
         let terms = || left.iter().chain(right);
         let equation = match (terms().next(), terms().last()) {
             (Some(first), Some(last)) => first.span.to(last.span),

@@ -4,7 +4,7 @@ use super::compared::Compared;
 use super::outcome::State;
 use crate::equilibrium::quantities::Solved;
 use crate::problem::defect::Defect;
-use crate::problem::effective::Written;
+use crate::problem::effective::{InForce, Written};
 use crate::problem::model::Problem;
 use crate::text::problem::SyntaxProblem;
 use crate::text::span::{Part, Place, Span};
@@ -20,9 +20,29 @@ pub struct Context<'a> {
     pub compared: &'a [Compared],
     /// Whether this is a case that shares the base's scope, looked over already.
     pub inherited: bool,
+    syntax: Vec<(Written<'a>, &'a SyntaxProblem)>,
 }
 
 impl<'a> Context<'a> {
+    pub fn new(
+        in_force: &'a InForce<'a>,
+        problem: &'a Problem,
+        state: &'a State,
+        compared: &'a [Compared],
+        inherited: bool,
+    ) -> Self {
+        let InForce { statements, left_out, .. } = in_force;
+        // A case has only its own to add to what the base was told.
+        let is_case = statements.iter().any(|written| written.part == Part::Case);
+        let syntax = statements
+            .iter()
+            .chain(left_out)
+            .filter(|written| !is_case || written.part == Part::Case)
+            .flat_map(|written| written.parsed.problems.iter().map(|problem| (*written, problem)))
+            .collect();
+        Self { statements, left_out, problem, state, compared, inherited, syntax }
+    }
+
     /// What was found while resolving; what a case only inherits is left out.
     pub fn defects(&self) -> impl Iterator<Item = &'a Defect> {
         let scope: &[Defect] = if self.inherited { &[] } else { &self.problem.scope.defects };
@@ -31,12 +51,7 @@ impl<'a> Context<'a> {
 
     /// What is wrong with the writing of the statements, those left out too.
     pub fn syntax(&self) -> impl Iterator<Item = (Written<'a>, &'a SyntaxProblem)> {
-        let is_case = self.statements.iter().any(|written| written.part == Part::Case);
-        self.statements
-            .iter()
-            .chain(self.left_out)
-            .filter(move |written| !is_case || written.part == Part::Case)
-            .flat_map(|written| written.parsed.problems.iter().map(|problem| (*written, problem)))
+        self.syntax.iter().copied()
     }
 
     pub fn solved(&self) -> Option<&'a Solved> {
@@ -47,10 +62,12 @@ impl<'a> Context<'a> {
     }
 
     pub fn statement(&self, place: Place) -> Option<&Written<'a>> {
-        self.statements
-            .iter()
-            .chain(self.left_out)
-            .find(|written| written.part == place.section && written.index == place.statement)
+        // Both are in the order of the text, the base before the case.
+        [self.statements, self.left_out].into_iter().find_map(|statements| {
+            let key = (place.section, place.statement);
+            let at = statements.binary_search_by_key(&key, |w| (w.part, w.index)).ok()?;
+            statements.get(at)
+        })
     }
 
     /// The text at a place; empty where it is no text of this file.

@@ -45,7 +45,9 @@ pub fn significant(value: f64, digits: usize) -> String {
     if value == 0.0 || !value.is_finite() {
         return if value == 0.0 { "0".into() } else { minus(&value.to_string()) };
     }
-    let size = value.abs().log10().floor() as i32;
+    // Rounded first, so that 9.9996 is 10.00 and not 10.000.
+    let rounded = format!("{:.*e}", digits.saturating_sub(1), value.abs());
+    let size: i32 = rounded.split_once('e').and_then(|(_, e)| e.parse().ok()).unwrap_or(0);
     if !(-4..6).contains(&size) {
         let text = format!("{value:.*e}", digits.saturating_sub(1));
         return match text.split_once('e') {

@@ -62,8 +62,7 @@ impl Outcome {
         near: Option<&Answer>,
         cancel: &AtomicBool,
     ) -> Option<Outcome> {
-        let InForce { statements, left_out, defects } = in_force;
-        let problem = resolve(statements, defects.clone(), scope);
+        let problem = resolve(&in_force.statements, in_force.defects.clone(), scope);
         let state = if !problem.states_problem {
             State::NothingStated
         } else if problem.blocked {
@@ -82,14 +81,7 @@ impl Outcome {
         };
         let compared = compared(&problem, brought);
         let mut findings = Vec::new();
-        let context = Context {
-            statements,
-            left_out,
-            problem: &problem,
-            state: &state,
-            compared: &compared,
-            inherited,
-        };
+        let context = Context::new(in_force, &problem, &state, &compared, inherited);
         for rule in rules() {
             (rule.find)(&context, &mut findings);
         }

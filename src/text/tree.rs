@@ -4,7 +4,7 @@
 
 use std::sync::Arc;
 
-use super::problem::SyntaxProblem;
+use super::problem::{SyntaxProblem, SyntaxProblemKind};
 use super::span::{Span, Spanned};
 use super::token::Token;
 
@@ -50,6 +50,13 @@ pub struct Parsed {
     pub tokens: Vec<(Token, Span)>,
     pub statement: Statement,
     pub problems: Vec<SyntaxProblem>,
+}
+
+impl Parsed {
+    /// Whether all of it was read: a stray indent alone takes nothing from its meaning.
+    pub fn is_read_whole(&self) -> bool {
+        self.problems.iter().all(|problem| problem.kind == SyntaxProblemKind::StrayIndent)
+    }
 }
 
 /// A name as written: a formula, a unit, a model. Its meaning is found later.

@@ -225,6 +225,11 @@ impl Fixture {
         self.marks.iter().any(|mark| !mark.related && mark.rule == self.about())
     }
 
+    /// The files beside it.
+    pub fn files(&self) -> &[(String, String)] {
+        &self.files
+    }
+
     /// All that the check says of it.
     pub fn findings(&self) -> Vec<LocatedFinding> {
         check_text(&self.text, &self.files).findings
@@ -327,7 +332,15 @@ impl Fixture {
             text.replace_range(at.clone(), new);
         }
         trim_end(&mut text);
-        (text != fix.text).then(|| format!("after the fix the text is:\n{text}"))
+        if text != fix.text {
+            return Some(format!("after the fix the text is:\n{text}"));
+        }
+        let count = |findings: &[LocatedFinding]| {
+            findings.iter().filter(|finding| finding.rule == self.about()).count()
+        };
+        let before = found.iter().filter(|finding| finding.rule == self.about()).count();
+        let left = count(&check_text(&text, &self.files).findings);
+        (before > 0 && left >= before).then(|| format!("after the fix it is still found:\n{text}"))
     }
 
     /// The text with all findings drawn into it, as a fixture has them.

@@ -1,7 +1,10 @@
-//! Rules on what the answer must meet.
+//! Rules on the answer: what it must meet, and how far the models behind it reach.
 
 use super::catalogue::family;
 
 family! {
     "Answers":
+    expectation_not_met,
+    ionic_strength_past_model,
+    temperature_past_model,
 }

@@ -7,7 +7,8 @@
 //! Up to 5 % is commonly accepted in a full water analysis (common practice; many codes ask
 //! for less in strong waters). Beyond that an ion is missing. Where the missing ion is an
 //! acid or a base, the answer is as far out. To judge it by a limit of your own, write
-//! `expect charge imbalance`: then this is silent.
+//! `expect charge imbalance`: then this is silent. Where no counter-ion is listed at all, the
+//! file asks for shares at a pH, and this is only noted.
 //!
 //! Before:
 //!
@@ -31,12 +32,14 @@
 //! ```
 
 use super::charge_cannot_close::counter_charge;
+use crate::equilibrium::quantities::Solved;
 use crate::problem::model::{HeldWhat, Sought};
+use crate::problem::scope::PROTON;
 use crate::rules::catalogue::rule;
 use crate::rules::context::Context;
 use crate::rules::figures::{equivalents, percent};
 use crate::rules::finding::{Finding, Severity};
-use crate::text::span::Place;
+use crate::text::span::{Part, Place};
 
 rule!("charge-imbalance", Note, "charge_imbalance.rs", find);
 
@@ -66,8 +69,13 @@ fn find(context: &Context, found: &mut Vec<Finding<Place>>) {
         counter_charge(charge),
         percent(share.abs() / 100.0),
     );
-    let bad = share.abs() > ACCEPTED;
+    let bad = share.abs() > ACCEPTED && is_whole(context, solved);
     let severity = if bad { Severity::Warning } else { Severity::Note };
+    // A note is told once, with the base.
+    let is_case = context.statements.iter().any(|written| written.part == Part::Case);
+    if !bad && is_case && held.at.section == Part::Base {
+        return;
+    }
     let mut finding = RULE.at(held.at, message).with_severity(severity);
     if bad {
         let kind = if charge > 0.0 { "an anion" } else { "a cation" };
@@ -77,4 +85,17 @@ fn find(context: &Context, found: &mut Vec<Finding<Place>>) {
         ));
     }
     found.push(finding);
+}
+
+/// Whether there are ions of both signs besides those of water. A file without any
+/// counter-ion asks for shares at a pH and does not pretend to a whole analysis.
+fn is_whole(context: &Context, solved: &Solved) -> bool {
+    let species = &context.problem.scope.stoichiometry.species;
+    let is_there = |sign: i32| {
+        species.iter().zip(&solved.answer.concentrations).any(|(species, c)| {
+            let of_water = species.row.iter().all(|&(j, _)| j == PROTON);
+            species.charge.signum() == sign && !of_water && *c > 0.0
+        })
+    };
+    is_there(1) && is_there(-1)
 }

@@ -88,7 +88,7 @@ fn is_told_elsewhere(context: &Context, name: &str, missing: &[String]) -> bool 
                 .iter()
                 .any(|d| d.at.section == written.part && d.at.statement == written.index),
             Statement::Component { .. } | Statement::Reaction(_) | Statement::Group { .. } => {
-                !written.parsed.problems.is_empty() && concerns(text)
+                !written.parsed.is_read_whole() && concerns(text)
             }
             Statement::Broken => {
                 let word = text.split_whitespace().next().unwrap_or_default();

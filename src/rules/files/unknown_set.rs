@@ -46,7 +46,7 @@ fn find(context: &Context, found: &mut Vec<Finding<Place>>) {
                 let message = format!("the set `{name}` has no edition {edition}");
                 found.push(
                     RULE.at(at, message).with_help(format!("its newest edition is {newest}")).with_fix(
-                        format!("write {newest}"),
+                        format!("write `{newest}`"),
                         false,
                         at,
                         newest.to_string(),

@@ -48,6 +48,7 @@ fn find(context: &Context, found: &mut Vec<Finding<Place>>) {
             DefectKind::AmbiguousCharge { text, suggestion } => {
                 let sign = text.find(['+', '-', '−', '–']).unwrap_or(text.len());
                 let (atoms, charge) = text.split_at(sign);
+                let charge = if charge.starts_with('+') { "+1" } else { "−1" };
                 let message = format!(
                     "`{text}` is read as {atoms} with the charge {charge}, \
                      and no balanced reaction has it"

@@ -19,7 +19,7 @@
 //! ```
 
 use super::kinds::{measured, needed, units};
-use crate::chemistry::unit::Dimension;
+use crate::chemistry::unit::{Dimension, Unit};
 use crate::problem::defect::{DefectKind, Expected};
 use crate::rules::catalogue::rule;
 use crate::rules::context::Context;
@@ -44,7 +44,15 @@ fn find(context: &Context, found: &mut Vec<Finding<Place>>) {
             let title = format!("write `{new}`");
             finding = finding.with_fix(title, false, defect.at, new);
         }
-        if *expected == Expected::Plain {
+        if *expected == Expected::Plain && dimension.is_concentration() {
+            // Without its unit a millimole would count as a mole.
+            finding = finding.with_help(match Unit::parse(unit) {
+                Ok(unit) if unit.factor != 1.0 => {
+                    format!("write a number alone; 1 {} counts as {}", unit.name, unit.factor)
+                }
+                _ => "write a number alone".to_owned(),
+            });
+        } else if *expected == Expected::Plain {
             let whole = with_space(context, defect.at);
             finding = finding.with_fix(format!("take `{unit}` out"), false, whole, "");
         } else {

@@ -32,36 +32,42 @@ rule!("constant-for-other-temperature", Warning, "constant_for_other_temperature
 
 fn find(context: &Context, found: &mut Vec<Finding<Place>>) {
     // Those of used files and sets have no place here: all are told at the temperature.
-    let mut used: Option<(Place, f64, Vec<String>)> = None;
+    let mut used: Vec<(&str, f64)> = Vec::new();
+    let mut told_at: Option<(Place, f64)> = None;
     for defect in context.defects() {
         let DefectKind::ConstantAtOtherTemperature { reaction, given, wanted, own } = &defect.kind
         else {
             continue;
         };
-        if !own {
-            let words = format!("`{reaction}` for {}", celsius(*given));
-            used.get_or_insert((defect.at, *wanted, Vec::new())).2.push(words);
-            continue;
+        if *own {
+            let help = format!(
+                "give `enthalpy = … kJ/mol`, or a constant for {} with `at {}`",
+                celsius(*wanted),
+                celsius(*wanted),
+            );
+            found.push(RULE.at(defect.at, message("the constant", *given, *wanted)).with_help(help));
+        } else {
+            told_at.get_or_insert((defect.at, *wanted));
+            used.push((reaction, *given));
         }
-        let message = format!(
-            "the constant is for {} and the problem is at {}; it is taken as it stands",
-            celsius(*given),
-            celsius(*wanted),
-        );
-        let help = format!(
-            "give `enthalpy = … kJ/mol`, or a constant for {} with `at {}`",
-            celsius(*wanted),
-            celsius(*wanted),
-        );
-        found.push(RULE.at(defect.at, message).with_help(help));
     }
-    if let Some((at, wanted, reactions)) = used {
-        let message = format!(
-            "at {} these constants are taken as they stand: {}",
-            celsius(wanted),
-            list(&reactions, "and"),
-        );
-        let help = "write them in this file with `enthalpy = … kJ/mol`, or with `at`";
-        found.push(RULE.at(at, message).with_help(help));
-    }
+    let Some((at, wanted)) = told_at else { return };
+    let message = match used[..] {
+        [(reaction, given)] => message(&format!("the constant of `{reaction}`"), given, wanted),
+        _ => {
+            let words = |&(reaction, given): &(&str, f64)| {
+                format!("`{reaction}` for {}", celsius(given))
+            };
+            let all: Vec<String> = used.iter().map(words).collect();
+            let all = list(&all, "and");
+            format!("at {} these constants are taken as they stand: {all}", celsius(wanted))
+        }
+    };
+    let help = "write it in this file with `enthalpy = … kJ/mol`, or with `at`";
+    found.push(RULE.at(at, message).with_help(help));
+}
+
+fn message(constant: &str, given: f64, wanted: f64) -> String {
+    let (given, wanted) = (celsius(given), celsius(wanted));
+    format!("{constant} is for {given} and the problem is at {wanted}; it is taken as it stands")
 }

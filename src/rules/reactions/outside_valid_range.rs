@@ -33,7 +33,8 @@ rule!("outside-valid-range", Warning, "outside_valid_range.rs", find);
 
 fn find(context: &Context, found: &mut Vec<Finding<Place>>) {
     // Those of used files and sets have no place here: all are told at the temperature.
-    let mut used: Option<(Place, f64, Vec<String>)> = None;
+    let mut used: Vec<(&str, String)> = Vec::new();
+    let mut told_at: Option<(Place, f64)> = None;
     for defect in context.defects() {
         let DefectKind::OutsideValidRange { reaction, low, high, wanted, own } = &defect.kind
         else {
@@ -41,22 +42,25 @@ fn find(context: &Context, found: &mut Vec<Finding<Place>>) {
         };
         let range = format!("{} to {}", celsius(*low).trim_end_matches(" °C"), celsius(*high));
         if *own {
-            let message = format!(
-                "the problem is at {} and the constant is valid from {range}",
-                celsius(*wanted)
-            );
-            found.push(RULE.at(defect.at, message));
+            found.push(RULE.at(defect.at, message("the constant", &range, *wanted)));
         } else {
-            let words = format!("`{reaction}` ({range})");
-            used.get_or_insert((defect.at, *wanted, Vec::new())).2.push(words);
+            told_at.get_or_insert((defect.at, *wanted));
+            used.push((reaction, range));
         }
     }
-    if let Some((at, wanted, reactions)) = used {
-        let message = format!(
-            "{} is outside the range of these constants: {}",
-            celsius(wanted),
-            list(&reactions, "and"),
-        );
-        found.push(RULE.at(at, message));
-    }
+    let Some((at, wanted)) = told_at else { return };
+    let message = match &used[..] {
+        [(reaction, range)] => message(&format!("the constant of `{reaction}`"), range, wanted),
+        _ => {
+            let words = |(reaction, range): &(&str, String)| format!("`{reaction}` ({range})");
+            let all: Vec<String> = used.iter().map(words).collect();
+            let all = list(&all, "and");
+            format!("{} is outside the range of these constants: {all}", celsius(wanted))
+        }
+    };
+    found.push(RULE.at(at, message));
+}
+
+fn message(constant: &str, range: &str, wanted: f64) -> String {
+    format!("{constant} is valid from {range} and the problem is at {}", celsius(wanted))
 }

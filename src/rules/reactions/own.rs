@@ -9,12 +9,15 @@ use crate::text::tree::{self, Statement};
 
 /// The file's own reaction in the statement of a place, with its index in the scope.
 pub fn reaction<'a>(context: &Context<'a>, at: Place) -> Option<(usize, &'a Arc<Reaction>)> {
-    context.problem.scope.reactions.iter().enumerate().find(|(_, reaction)| {
-        reaction
-            .origin
-            .own()
-            .is_some_and(|own| (own.section, own.statement) == (at.section, at.statement))
-    })
+    // Own reactions come first, in the order of the text.
+    let reactions = &context.problem.scope.reactions;
+    let statement = |place: Place| (place.section, place.statement);
+    let index = reactions.partition_point(|reaction| {
+        reaction.origin.own().is_some_and(|own| statement(own) < statement(at))
+    });
+    let found = reactions.get(index)?;
+    let own = found.origin.own()?;
+    (statement(own) == statement(at)).then_some((index, found))
 }
 
 /// The reaction as it was written there.

@@ -38,7 +38,14 @@ fn find(context: &Context, found: &mut Vec<Finding<Place>>) {
             let at = written.place(problem.span);
             let mut finding = RULE.at(at, message(text, expected));
             let first = written.parsed.text.split_whitespace().next().unwrap_or_default();
-            if let Some(example) = example(first) {
+            let in_expression = expected.iter().any(|words| words.contains("T, log("))
+                || expected.iter().any(|words| words.starts_with("`+`"));
+            let example = if in_expression {
+                Some("log K(T) = 3.165 - 1170.5/T - 0.0134*T")
+            } else {
+                example(first)
+            };
+            if let Some(example) = example {
                 finding = finding.with_help(format!("for example: {example}"));
             }
             found.push(with_fixes(finding, &written, text, expected));
@@ -87,14 +94,24 @@ fn with_fixes(
     {
         let title = format!("write `{new}`");
         let is_arrow = new == "<=>" && (text == "=" || !is_plain(text));
+        let before = Place { span: Span { end: at.span.start, ..at.span }, ..at };
         return if is_arrow || is_misspelt(text, &new) {
             finding.with_fix(title, is_arrow && !ONE_WAY.contains(&text), at, new)
+        } else if is_closing(&new) {
+            finding.with_fix(title, false, end_of_last(written, before), new)
+        } else if text.is_empty() {
+            // More is missing than this one sign.
+            finding
         } else {
-            let space = if text.is_empty() || is_closing(&new) { "" } else { " " };
-            let before = Place { span: Span { end: at.span.start, ..at.span }, ..at };
-            let before = if is_closing(&new) { end_of_last(written, before) } else { before };
-            finding.with_fix(title, false, before, new + space)
+            finding.with_fix(title, false, before, new + " ")
         };
+    }
+    if let [only] = expected
+        && only == "the end of the statement"
+        && follows_unit(written, at, text)
+    {
+        let title = format!("write `as {text}`");
+        return finding.with_fix(title, false, at, format!("as {text}"));
     }
     if !text.is_empty() && expected.iter().any(|words| words == "a comma") {
         let place = end_of_last(written, at);
@@ -118,18 +135,26 @@ fn is_misspelt(text: &str, word: &str) -> bool {
         && strsim::damerau_levenshtein(text, word) <= word.len() / 3
 }
 
+/// Whether an element stands after a quantity, as in `3 mg/L P`.
+fn follows_unit(written: &Written, at: Place, text: &str) -> bool {
+    let takes_basis = ["total", "add", "hold", "expect"]
+        .iter()
+        .any(|word| written.parsed.text.starts_with(word));
+    let before = last_before(written, at);
+    takes_basis
+        && text.starts_with(|c: char| c.is_ascii_uppercase())
+        && before.is_some_and(|(token, _)| matches!(token, Token::Name | Token::Word))
+}
+
 /// Just after the last thing that stands before a place.
 fn end_of_last(written: &Written, at: Place) -> Place {
-    let last = written
-        .parsed
-        .tokens
-        .iter()
-        .rev()
-        .find(|(token, span)| !is_blank(*token) && span.end <= at.span.start);
-    let end = last.map_or(at.span.start, |(_, span)| span.end);
+    let end = last_before(written, at).map_or(at.span.start, |(_, span)| span.end);
     Place { span: Span { start: end, end }, ..at }
 }
 
-fn is_blank(token: Token) -> bool {
-    token.is_trivia()
+/// The last token before a place that is neither white space nor a comment.
+fn last_before(written: &Written, at: Place) -> Option<(Token, Span)> {
+    let tokens = &written.parsed.tokens;
+    let before = tokens.partition_point(|(_, span)| span.end <= at.span.start);
+    tokens[..before].iter().rev().find(|(token, _)| !token.is_trivia()).copied()
 }

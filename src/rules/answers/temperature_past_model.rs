@@ -1,0 +1,55 @@
+//! The temperature lies outside the range of water's own properties.
+//!
+//! The ion product of water, its density and its permittivity, from which the activity
+//! coefficients come, are taken from published equations between 0 and 100 °C. Outside, the
+//! values at the nearer end are used, and the answer is only as good as that.
+//!
+//! It matters for hot condensate and boiler water, where pKw goes on falling, and for
+//! brines below zero. Use a source made for such conditions there.
+//!
+//! Before:
+//!
+//! ```lyate
+//! use aqueous
+//! temperature 130 °C
+//! component NH3
+//! total NH3 = 0.1 mmol/L
+//! ```
+//!
+//! After:
+//!
+//! ```lyate
+//! use aqueous
+//! temperature 95 °C
+//! component NH3
+//! total NH3 = 0.1 mmol/L
+//! ```
+
+use crate::chemistry::water;
+use crate::rules::catalogue::rule;
+use crate::rules::context::Context;
+use crate::rules::figures::celsius;
+use crate::rules::finding::Finding;
+use crate::text::span::Place;
+
+rule!("temperature-past-model", Warning, "temperature_past_model.rs", find);
+
+fn find(context: &Context, found: &mut Vec<Finding<Place>>) {
+    let kelvin = context.problem.kelvin;
+    let Some(at) = context.problem.temperature_at else { return };
+    if water::in_range(kelvin) {
+        return;
+    }
+    let nearer = if kelvin < *water::RANGE.start() {
+        *water::RANGE.start()
+    } else {
+        *water::RANGE.end()
+    };
+    let message = format!(
+        "{} lies outside the 0 to 100 °C for which water's own properties are published here; \
+         those at {} are used",
+        celsius(kelvin),
+        celsius(nearer),
+    );
+    found.push(RULE.at(at, message));
+}
