@@ -200,9 +200,32 @@ fn every_word_of_the_parser_stands_in_the_grammar_and_in_the_reference() {
     let mut wanted: Vec<&str> = KEYWORDS.into_iter().chain(CLAUSES).collect();
     wanted.extend(ActivityKind::ALL.map(ActivityKind::name));
     wanted.extend([
-        "strength", "with", "giving", "by", "charge", "protons", "added", "as", "between", "and",
-        "pH", "pOH", "pe", "fraction", "alkalinity", "buffer", "capacity", "saturation", "index",
-        "dose", "imbalance", "over", "from", "to", "beta", "ln",
+        "strength",
+        "with",
+        "giving",
+        "by",
+        "charge",
+        "protons",
+        "added",
+        "as",
+        "between",
+        "and",
+        "pH",
+        "pOH",
+        "pe",
+        "fraction",
+        "alkalinity",
+        "buffer",
+        "capacity",
+        "saturation",
+        "index",
+        "dose",
+        "imbalance",
+        "over",
+        "from",
+        "to",
+        "beta",
+        "ln",
     ]);
     for word in wanted {
         assert!(ebnf.contains(&format!("\"{word}\"")), "{word} is not in the grammar");
@@ -281,9 +304,9 @@ fn the_examples_of_the_reference_hold() {
                     let solved = matches!(outcome.state, State::Solved(_));
                     assert!(solved, "{:?}\nin\n{block}", outcome.state);
                     for compared in outcome.problem.expectations.iter() {
-                        let value = outcome.solved().and_then(|solved| {
-                            solved.value(&outcome.problem, compared.sought)
-                        });
+                        let value = outcome
+                            .solved()
+                            .and_then(|solved| solved.value(&outcome.problem, compared.sought));
                         let met = value.is_some_and(|value| compared.limit.is_met_by(value));
                         assert!(met, "{} is {value:?}\nin\n{block}", compared.words);
                     }

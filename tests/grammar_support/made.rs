@@ -46,8 +46,8 @@ impl<'g> Maker<'g> {
         let mut text = String::new();
         let mut last = "[".to_owned();
         for word in words {
-            let may_touch = ["[", "{"].contains(&last.as_str())
-                || ["]", "}", ","].contains(&word.as_str());
+            let may_touch =
+                ["[", "{"].contains(&last.as_str()) || ["]", "}", ","].contains(&word.as_str());
             if !(text.is_empty() || may_touch && self.below(2) == 0) {
                 text.push_str(self.space());
             }

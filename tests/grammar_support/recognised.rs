@@ -57,8 +57,7 @@ impl<'g> Recogniser<'g, '_> {
             Expression::Sequence(parts) => {
                 let mut reached = Ends::from([at]);
                 for part in parts {
-                    reached =
-                        reached.iter().flat_map(|&at| self.ends(part, at, lexical)).collect();
+                    reached = reached.iter().flat_map(|&at| self.ends(part, at, lexical)).collect();
                 }
                 reached
             }
@@ -79,8 +78,7 @@ impl<'g> Recogniser<'g, '_> {
                     if reached.is_empty() || Some(times) == *most {
                         break;
                     }
-                    reached =
-                        reached.iter().flat_map(|&at| self.ends(part, at, lexical)).collect();
+                    reached = reached.iter().flat_map(|&at| self.ends(part, at, lexical)).collect();
                 }
                 all
             }
