@@ -84,7 +84,14 @@ impl Recipe {
         }
         for (index, held) in problem.held.iter().enumerate() {
             let amount = brought.and_then(|brought| brought.get(index)).copied();
-            recipe.held.push(Held::of(problem, held, amount));
+            let held = Held::of(problem, held, amount);
+            // What only a held gas brings has that for its source.
+            for &(j, _) in &held.brings {
+                if problem.amounts[j].source == AmountSource::Nothing {
+                    recipe.totals[j] = None;
+                }
+            }
+            recipe.held.push(held);
         }
         for (j, amount) in problem.amounts.iter().enumerate().skip(1) {
             let brings = |held: &Held| held.brings.iter().any(|(column, _)| *column == j);

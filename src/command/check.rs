@@ -1,5 +1,6 @@
 //! `lyate check`: checks problem files and solves what can be solved.
 
+use std::collections::HashMap;
 use std::path::PathBuf;
 
 use super::library::{Checker, find};
@@ -110,8 +111,8 @@ fn text(files: &[FileReport], summary: &Summary) -> String {
     for file in files {
         let (notes, others): (Vec<&LocatedFinding>, Vec<&LocatedFinding>) =
             file.findings.iter().partition(|finding| finding.severity == Severity::Note);
-        for finding in others {
-            text += &terminal::finding(finding, &file.source, style);
+        for (finding, cases) in by_place(&others) {
+            text += &terminal::likewise(finding, &cases, &file.source, style);
             text += "\n\n";
         }
         if !notes.is_empty() {
@@ -120,4 +121,26 @@ fn text(files: &[FileReport], summary: &Summary) -> String {
         }
     }
     text + &summary.words(style) + "\n"
+}
+
+/// Findings of one rule at one place in several cases, told together.
+fn by_place<'a>(
+    findings: &[&'a LocatedFinding],
+) -> Vec<(&'a LocatedFinding, Vec<&'a LocatedFinding>)> {
+    let mut groups: Vec<(&LocatedFinding, Vec<&LocatedFinding>)> = Vec::new();
+    let mut known: HashMap<(&str, usize, usize), usize> = HashMap::new();
+    for finding in findings {
+        let key = (finding.rule, finding.at.start, finding.at.end);
+        match known.get(&key) {
+            // Only other cases: one section may have two faults of a kind at one place.
+            Some(&index) if finding.case.is_some() && finding.case != groups[index].0.case => {
+                groups[index].1.push(finding);
+            }
+            _ => {
+                known.insert(key, groups.len());
+                groups.push((finding, Vec::new()));
+            }
+        }
+    }
+    groups
 }

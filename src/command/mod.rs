@@ -6,6 +6,8 @@ use clap::{Parser, Subcommand};
 
 mod check;
 mod chosen;
+mod derive;
+mod explain;
 mod library;
 mod reply;
 mod serve;
@@ -14,7 +16,14 @@ mod terminal;
 
 /// Checks, balances, solves and explains chemical-equilibrium problem files.
 #[derive(Parser)]
-#[command(name = "lyate", version, about, max_term_width = 100)]
+#[command(
+    name = "lyate",
+    version,
+    about,
+    after_help = "\
+`lyate check` reads every .lyate file below the current folder, and is where to start.
+`lyate COMMAND --help` says more about a command, its forms of output and exit codes."
+)]
 struct Arguments {
     #[command(subcommand)]
     command: Command,
@@ -24,6 +33,8 @@ struct Arguments {
 enum Command {
     Check(check::Arguments),
     Solve(solve::Arguments),
+    Derive(derive::Arguments),
+    Explain(explain::Arguments),
     Serve(serve::Arguments),
 }
 
@@ -32,6 +43,8 @@ pub fn run() -> ExitCode {
     match Arguments::parse().command {
         Command::Check(arguments) => reply::give(check::run(&arguments)),
         Command::Solve(arguments) => reply::give(solve::run(&arguments)),
+        Command::Derive(arguments) => reply::give(derive::run(&arguments)),
+        Command::Explain(arguments) => reply::give(explain::run(&arguments)),
         Command::Serve(arguments) => serve::run(&arguments),
     }
 }

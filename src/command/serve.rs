@@ -5,7 +5,7 @@ use std::sync::Arc;
 
 use crate::server::{self, checker::Checker};
 
-/// Serves an editor on standard input and output, by the Language Server Protocol
+/// Serve an editor by the Language Server Protocol, on standard input and output
 #[derive(clap::Args)]
 pub struct Arguments {
     /// Accepted for editors that pass it; changes nothing

@@ -6,7 +6,6 @@ use super::chosen::{chosen, readable};
 use super::library::Checker;
 use super::reply::{Complaint, Reply};
 use super::terminal::style;
-use crate::equilibrium::system::Failure;
 use crate::report::answer::{answer, conditions, overview};
 use crate::report::expectation::verdict;
 use crate::report::solution::json;
@@ -14,7 +13,6 @@ use crate::report::source::{FileReport, Stated};
 use crate::report::style::{Paint, Style};
 use crate::report::terminal;
 use crate::rules::finding::Severity;
-use crate::rules::outcome::State;
 
 /// Solve a problem file, and show the answer for its base and each case
 ///
@@ -120,28 +118,7 @@ fn hindrance(file: &FileReport, stated: Stated, style: Style) -> String {
     let shown: Vec<String> =
         findings.map(|finding| terminal::finding(finding, &file.source, style) + "\n").collect();
     if shown.is_empty() {
-        return format!("{}\n", failure(stated));
+        return "the problem is not well posed\n".into();
     }
     shown.join("\n")
-}
-
-/// What became of the equations, where no finding says it.
-fn failure(stated: Stated) -> String {
-    let scope = &stated.outcome.problem.scope;
-    let component =
-        |j: usize| scope.components.get(j).map_or("a component", |c| c.formula.name.as_str());
-    match &stated.outcome.state {
-        State::Failed(Failure::Infeasible { component: j }) => {
-            format!("no state meets the balance of {}", component(*j))
-        }
-        State::Failed(Failure::Dependent { .. }) => {
-            "what is given says the same thing twice, and something else not at all".into()
-        }
-        State::Failed(Failure::NotConverged { residual, iterations }) => {
-            format!(
-                "no answer after {iterations} steps; the worst balance is off by {residual:.1e} of its terms"
-            )
-        }
-        _ => "the problem is not well posed".into(),
-    }
 }

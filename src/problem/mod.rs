@@ -5,6 +5,7 @@ mod amounts;
 pub mod belong;
 pub mod case;
 mod charge_reading;
+mod compare;
 mod constant;
 pub mod defect;
 pub mod effective;

@@ -72,7 +72,9 @@ fn main_figures(problem: &Problem, solved: &Solved, style: Style) -> String {
         Scale::PerKilogram => "kg",
     };
     let milli = |eq: f64| format!("{} meq/{per}", significant(1000.0 * eq, 3));
-    row("alkalinity", milli(solved.alkalinity(problem)), "");
+    // What is left of sums that cancel is nothing.
+    let alkalinity = solved.alkalinity(problem);
+    row("alkalinity", milli(if alkalinity.abs() < 1e-12 { 0.0 } else { alkalinity }), "");
     if let Some(capacity) = solved.value(problem, Sought::BufferCapacity) {
         row("buffer capacity", format!("{} per pH", concentration(capacity, problem.scale)), "");
     }
@@ -161,7 +163,7 @@ fn put_in(problem: &Problem, style: Style) -> String {
     for held in &problem.held {
         let value = match held.what {
             HeldWhat::Ph(value) | HeldWhat::Pe(value) => decimals(value, 3),
-            HeldWhat::Pressure { atm, .. } => format!("{} atm", significant(atm, 4)),
+            HeldWhat::Pressure { atm, .. } => format!("{} atm", significant(atm, 3)),
             HeldWhat::Activity { value, .. } => significant(value, 4),
             HeldWhat::Concentration { value, .. } => concentration(value, problem.scale),
         };
@@ -200,37 +202,35 @@ fn solids(problem: &Problem, solved: &Solved, style: Style) -> String {
     if table.is_empty() { String::new() } else { table.render(style) }
 }
 
-/// The two sides of a balance side by side, the largest terms on top.
+/// The two sides of a balance side by side, the largest terms on top; a dot before those
+/// that it rests on.
 fn sheet(sheet: &Sheet, scale: Scale, style: Style) -> String {
     let unit = scale_unit(scale);
-    let mut table = Table::new(&[
-        ("", Side::Left),
-        (unit, Side::Right),
-        ("", Side::Left),
-        ("", Side::Left),
-        (unit, Side::Right),
-    ]);
+    let side = [("", Side::Left), ("", Side::Left), (unit, Side::Right)];
+    let mut table =
+        Table::new(&[side[0], side[1], side[2], ("", Side::Left), side[0], side[1], side[2]]);
     let sorted = |side: &[Entry]| {
         let mut side = side.to_vec();
         side.retain(|entry| entry.value != Some(0.0));
         side.sort_by(|a, b| b.value.unwrap_or(0.0).total_cmp(&a.value.unwrap_or(0.0)));
         side
     };
+    let cells = |entry: Option<&Entry>| match entry {
+        Some(entry) => {
+            let value = entry.value.map_or(String::new(), |value| scientific(value, 4));
+            let (mark, paint) =
+                if entry.dominant { ("•", Paint::Heading) } else { ("", Paint::Plain) };
+            let words = entry.with_coefficient();
+            [mark.into(), Cell::painted(paint, words), Cell::painted(paint, value)]
+        }
+        None => [Cell::default(), Cell::default(), Cell::default()],
+    };
     let (left, right) = (sorted(&sheet.left), sorted(&sheet.right));
     for index in 0..left.len().max(right.len()) {
-        let cells = |entry: Option<&Entry>| match entry {
-            Some(entry) => {
-                let paint = if entry.dominant { Paint::Heading } else { Paint::Plain };
-                let value = entry.value.map_or(String::new(), |value| scientific(value, 4));
-                let words = entry.with_coefficient();
-                (Cell::painted(paint, words), Cell::painted(paint, value))
-            }
-            None => (Cell::default(), Cell::default()),
-        };
-        let ((name, value), (other, other_value)) =
-            (cells(left.get(index)), cells(right.get(index)));
+        let [mark, name, value] = cells(left.get(index));
+        let [other_mark, other, other_value] = cells(right.get(index));
         let sign = if index == 0 { "=" } else { "" };
-        table.row([name, value, sign.into(), other, other_value]);
+        table.row([mark, name, value, sign.into(), other_mark, other, other_value]);
     }
     table.render(style)
 }
@@ -240,7 +240,7 @@ fn protons(ledger: &Ledger, problem: &Problem, style: Style) -> String {
     if problem.held.iter().any(|held| matches!(held.what, HeldWhat::Ph(_))) {
         return String::new();
     }
-    ledger.protons().map_or(String::new(), |(protons, _)| sheet(&protons, problem.scale, style))
+    ledger.protons(&[]).map_or(String::new(), |(protons, _)| sheet(&protons, problem.scale, style))
 }
 
 fn expectations(checked: &Checked, stated: Stated, solved: &Solved, style: Style) -> String {

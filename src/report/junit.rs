@@ -1,5 +1,7 @@
 //! A check as JUnit's XML: one test suite per file, one test case per problem in it.
 
+use std::cmp::Reverse;
+
 use quick_junit::{NonSuccessKind, Report, SerializeError, TestCase, TestCaseStatus, TestSuite};
 
 use super::source::{FileReport, Reading};
@@ -53,7 +55,7 @@ fn status(
     fail_on: Severity,
 ) -> TestCaseStatus {
     let failing: Vec<_> = findings.iter().filter(|f| f.severity >= fail_on).collect();
-    let Some(worst) = failing.iter().max_by_key(|f| f.severity) else {
+    let Some(worst) = failing.iter().min_by_key(|f| Reverse(f.severity)) else {
         return match outcome {
             None => TestCaseStatus::skipped(),
             Some(outcome) if outcome.solved().is_some() => TestCaseStatus::success(),

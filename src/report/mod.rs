@@ -3,16 +3,20 @@
 pub mod answer;
 pub mod balance;
 pub mod check_json;
+pub mod derivation;
 pub mod editor;
 pub mod inline;
 pub mod junit;
+pub mod page;
 pub mod sarif;
 pub mod sheet;
+pub mod sheet_json;
 pub mod solution;
 pub mod source;
 pub mod style;
 pub mod summary;
 pub mod table;
 pub mod terminal;
+pub mod wrap;
 
 pub use crate::rules::{expectation, figures};

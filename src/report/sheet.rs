@@ -1,6 +1,8 @@
 //! Balances as equations with two sides: the words of each term, and its value where
 //! there is an answer.
 
+use std::sync::atomic::AtomicBool;
+
 use num_rational::Rational64;
 use num_traits::{Signed, ToPrimitive};
 
@@ -9,6 +11,7 @@ use crate::balance::mass::mass_balance;
 use crate::balance::proton::{ProtonCondition, proton_condition};
 use crate::balance::recipe::Recipe;
 use crate::balance::{Balance, BalanceKind, Part};
+use crate::equilibrium::dominance::{self, Decides, DominanceTerm, dominance};
 use crate::equilibrium::quantities::Solved;
 use crate::problem::model::Problem;
 
@@ -32,6 +35,8 @@ pub struct Entry {
     pub value: Option<f64>,
     /// Whether the balance at the answer rests on it.
     pub dominant: bool,
+    /// How the pH would move without this term alone.
+    pub ph_shift: Option<f64>,
 }
 
 /// What a term counts.
@@ -99,10 +104,20 @@ impl<'a> Ledger<'a> {
         components.map(|j| self.sheet(&mass_balance(stoichiometry, j))).collect()
     }
 
-    /// The proton condition; none where its coefficients do not fit 64 bits.
-    pub fn protons(&self) -> Option<(Sheet, ProtonCondition)> {
+    /// What a component's total is made of; none where it is given itself.
+    pub fn sources(&self, component: usize) -> Option<Vec<Entry>> {
+        let sources = self.recipe.sources(component);
+        if sources.iter().any(|(part, _)| matches!(part, Part::Total(_))) {
+            return None;
+        }
+        Some(sources.iter().map(|&(part, n)| self.entry(Quantity::Part(part), n)).collect())
+    }
+
+    /// The proton condition, at the reference level of these species where some are given;
+    /// none where its coefficients do not fit 64 bits.
+    pub fn protons(&self, level: &[usize]) -> Option<(Sheet, ProtonCondition)> {
         let stoichiometry = &self.problem.scope.stoichiometry;
-        let condition = proton_condition(stoichiometry, &self.recipe, &[]).ok()?;
+        let condition = proton_condition(stoichiometry, &self.recipe, level).ok()?;
         Some((self.sheet(&condition.balance), condition))
     }
 
@@ -127,7 +142,38 @@ impl<'a> Ledger<'a> {
             let side = if coefficient.is_positive() { &mut sheet.right } else { &mut sheet.left };
             side.push(entry);
         }
+        self.weigh(&mut sheet);
         sheet
+    }
+
+    /// Marks the terms that the balance rests on at the answer. Where that cannot be told,
+    /// none is marked.
+    fn weigh(&self, sheet: &mut Sheet) {
+        let Some(solved) = self.solved else { return };
+        let decides = match sheet.kind {
+            BalanceKind::Charge | BalanceKind::Protons => Decides::Ph,
+            BalanceKind::Component(j) => Decides::Component(j),
+        };
+        let terms = |side: &[Entry]| -> Option<Vec<(f64, DominanceTerm)>> {
+            let term = |entry: &Entry| match entry.what {
+                Quantity::Species(row) => {
+                    Some((entry.coefficient.to_f64()?, DominanceTerm::Species(row)))
+                }
+                Quantity::Part(_) => Some((1.0, DominanceTerm::Constant(entry.value?))),
+            };
+            side.iter().map(term).collect()
+        };
+        let Some((left, right)) = terms(&sheet.left).zip(terms(&sheet.right)) else { return };
+        let balance = dominance::Balance { decides, left, right };
+        let never = AtomicBool::new(false);
+        let Ok(weights) = dominance(&solved.system, &solved.answer, &balance, &never) else {
+            return;
+        };
+        let entries = sheet.left.iter_mut().chain(&mut sheet.right);
+        for (entry, weight) in entries.zip(weights.left.iter().chain(&weights.right)) {
+            entry.dominant = weight.dominant;
+            entry.ph_shift = weight.ph_shift;
+        }
     }
 
     fn entry(&self, what: Quantity, coefficient: Rational64) -> Entry {
@@ -155,7 +201,7 @@ impl<'a> Ledger<'a> {
             Quantity::Part(part) => self.recipe.value(part),
         };
         let value = amount.zip(coefficient.to_f64()).map(|(amount, n)| n * amount);
-        Entry { what, words, coefficient, value, dominant: false }
+        Entry { what, words, coefficient, value, dominant: false, ph_shift: None }
     }
 
     fn component(&self, j: usize) -> &str {

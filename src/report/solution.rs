@@ -2,12 +2,12 @@
 //!
 //! A number that could not be had is absent; lists that do not apply are empty.
 
-use num_rational::Rational64;
 use num_traits::ToPrimitive;
 use serde::Serialize;
 
 use super::expectation::{line, verdict};
 use super::sheet::{Ledger, Sheet};
+use super::sheet_json::SheetJson;
 use super::source::{FileReport, Stated};
 use crate::chemistry::formula::Phase;
 use crate::chemistry::quantity::Scale;
@@ -57,7 +57,7 @@ struct Answer<'a> {
     solids: Vec<Solid<'a>>,
     gases: Vec<Gas<'a>>,
     doses: Vec<Dose<'a>>,
-    balances: Vec<Balance>,
+    balances: Vec<SheetJson>,
     expectations: Vec<Expectation<'a>>,
 }
 
@@ -104,25 +104,6 @@ struct Gas<'a> {
 struct Dose<'a> {
     reagent: &'a str,
     amount: f64,
-}
-
-#[derive(Serialize)]
-struct Balance {
-    kind: String,
-    left: Vec<Term>,
-    right: Vec<Term>,
-    #[serde(skip_serializing_if = "Option::is_none")]
-    error: Option<f64>,
-    dominant: Vec<String>,
-}
-
-#[derive(Serialize)]
-struct Term {
-    term: String,
-    coefficient: serde_json::Number,
-    /// Coefficient included.
-    #[serde(skip_serializing_if = "Option::is_none")]
-    value: Option<f64>,
 }
 
 #[derive(Serialize)]
@@ -179,7 +160,7 @@ fn answer<'a>(
     let ledger = Ledger::new(problem, Some(solved));
     let mut sheets = vec![ledger.charge()];
     sheets.extend(ledger.masses());
-    sheets.extend(ledger.protons().map(|(sheet, _)| sheet));
+    sheets.extend(ledger.protons(&[]).map(|(sheet, _)| sheet));
     Answer {
         temperature: problem.kelvin,
         activity_model: problem.activity.name(),
@@ -206,7 +187,7 @@ fn answer<'a>(
             })
             .collect(),
         doses: Vec::new(),
-        balances: sheets.iter().map(balance).collect(),
+        balances: sheets.iter().map(Sheet::json).collect(),
         expectations: problem
             .expectations
             .iter()
@@ -280,30 +261,4 @@ fn components<'a>(problem: &'a Problem, solved: &Solved) -> Vec<Component<'a>> {
             }
         })
         .collect()
-}
-
-fn balance(sheet: &Sheet) -> Balance {
-    let terms = |side: &[super::sheet::Entry]| {
-        let terms = side.iter().map(|entry| Term {
-            term: entry.words.clone(),
-            coefficient: number(entry.coefficient),
-            value: entry.value,
-        });
-        terms.collect()
-    };
-    let entries = sheet.left.iter().chain(&sheet.right);
-    Balance {
-        kind: sheet.name.clone(),
-        left: terms(&sheet.left),
-        right: terms(&sheet.right),
-        error: sheet.error(),
-        dominant: entries.filter(|e| e.dominant).map(|e| e.words.clone()).collect(),
-    }
-}
-
-/// A whole number where it is one.
-pub fn number(value: Rational64) -> serde_json::Number {
-    let fraction = || serde_json::Number::from_f64(value.to_f64()?);
-    let whole = value.is_integer().then(|| serde_json::Number::from(value.to_integer()));
-    whole.or_else(fraction).unwrap_or_else(|| 0.into())
 }

@@ -75,6 +75,24 @@ impl Table {
         lines.concat()
     }
 
+    /// The same as a Markdown table.
+    pub fn markdown(&self) -> String {
+        let line = |cells: &[Cell]| {
+            let cells: Vec<String> =
+                cells.iter().map(|cell| cell.text.replace('|', "\\|")).collect();
+            format!("| {} |\n", cells.join(" | "))
+        };
+        let heads: Vec<Cell> = self.heads.iter().map(|(head, _)| head.clone()).collect();
+        let sides = self.heads.iter().map(|(_, side)| match side {
+            Side::Left => "---",
+            Side::Right => "---:",
+        });
+        let mut text = line(&heads);
+        text += &format!("| {} |\n", sides.collect::<Vec<_>>().join(" | "));
+        text.extend(self.rows.iter().map(|row| line(row)));
+        text
+    }
+
     fn line(&self, cells: &[Cell], widths: &[usize], style: Style) -> String {
         let mut line = String::from("  ");
         let mut owed = 0;

@@ -8,6 +8,7 @@ use annotate_snippets::{AnnotationKind, Group, Level, Origin, Patch, Renderer, S
 
 use super::source::Source;
 pub use super::style::Style;
+use super::wrap::wrapped;
 use crate::rules::finding::{Fix, LocatedFinding, Severity};
 use crate::text::lines::Encoding;
 
@@ -15,9 +16,24 @@ use crate::text::lines::Encoding;
 const LONGEST_LINE: usize = 240;
 /// The width that messages and cut lines keep to.
 const WIDTH: usize = 100;
+/// Where the words of a help start, for line numbers of up to three digits.
+const HELP_INDENT: usize = 12;
+/// So many other cases are told with a finding.
+const OTHER_CASES: usize = 4;
 
 /// One finding in its text.
 pub fn finding(finding: &LocatedFinding, source: &Source, style: Style) -> String {
+    likewise(finding, &[], source, style)
+}
+
+/// A finding with those of the same rule at the same place in other cases.
+pub fn likewise(
+    finding: &LocatedFinding,
+    others: &[&LocatedFinding],
+    source: &Source,
+    style: Style,
+) -> String {
+    let others: Vec<String> = told(others);
     let mut ranges = vec![&finding.at];
     ranges.extend(finding.related.iter().map(|(at, _)| at));
     let window = Window::around(source, &ranges);
@@ -39,11 +55,31 @@ pub fn finding(finding: &LocatedFinding, source: &Source, style: Style) -> Strin
         group = group.element(snippet);
     }
     if let Some(help) = &finding.help {
-        group = group.element(Level::HELP.message(help.as_str()));
+        group = group.element(Level::HELP.message(wrapped(help, HELP_INDENT, 0, WIDTH)));
+    }
+    for other in &others {
+        group = group.element(Level::NOTE.message(other.as_str()));
     }
     let mut groups: Vec<Group> = vec![group];
     groups.extend(finding.fixes.iter().map(|fix| fix_group(fix, source)));
     renderer(style).render(&groups)
+}
+
+/// What other cases say, a few of them in full.
+fn told(others: &[&LocatedFinding]) -> Vec<String> {
+    let case = |finding: &LocatedFinding| match &finding.case {
+        Some(case) => format!("case \"{case}\""),
+        None => "the base".into(),
+    };
+    let shown = if others.len() > OTHER_CASES { OTHER_CASES - 1 } else { others.len() };
+    let mut told: Vec<String> = others[..shown]
+        .iter()
+        .map(|other| format!("in {}: {}", case(other), other.message))
+        .collect();
+    if shown < others.len() {
+        told.push(format!("likewise in {} more cases", others.len() - shown));
+    }
+    told
 }
 
 fn fix_group<'a>(fix: &'a Fix<Range<usize>>, source: &'a Source) -> Group<'a> {

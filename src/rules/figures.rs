@@ -62,6 +62,9 @@ pub fn significant(value: f64, digits: usize) -> String {
 /// A number with so many significant digits, always with its power of ten, so that a column
 /// of them compares.
 pub fn scientific(value: f64, digits: usize) -> String {
+    if value == 0.0 {
+        return "0".into();
+    }
     let text = format!("{value:.*e}", digits.saturating_sub(1));
     match text.split_once('e') {
         Some((number, power)) => format!("{}e{power}", minus(number)),

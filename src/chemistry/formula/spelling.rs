@@ -5,7 +5,7 @@
 /// text comes back much as it is.
 pub fn canonical(text: &str) -> String {
     let text = text.trim();
-    let plain = text.is_ascii() && !text.contains("(aq)") && !text.contains(['.', '^', ' ']);
+    let plain = text.is_ascii() && !text.contains("(aq)") && !text.contains(['.', '^', ' ', ',']);
     if plain {
         return text.to_owned();
     }

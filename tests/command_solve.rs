@@ -1,0 +1,130 @@
+//! `lyate solve`: what it says, in each form, and how it ends.
+
+mod command_support;
+
+use command_support::{FAULTY, RINSE, code, folder, run, session, stderr, stdout};
+use serde_json::Value;
+
+#[test]
+fn an_answer_for_people() {
+    insta::assert_snapshot!(session(&[("rinse.lyate", RINSE)], &["solve", "rinse.lyate"]));
+}
+
+#[test]
+fn an_answer_for_programs() {
+    let arguments = ["solve", "rinse.lyate", "--case", "warm", "--output", "json"];
+    insta::assert_snapshot!(session(&[("rinse.lyate", RINSE)], &arguments));
+}
+
+/// Everything held at once: pH, a gas, a solid near saturation, another scale.
+#[test]
+fn measured_and_held_values() {
+    let text = "\
+# Tank under a gas blanket, pH from the meter. Invented figures.
+problem \"Blanketed tank\"
+use aqueous
+component CO3^2-, Ca^2+, Cl-
+reaction CaCO3(s) <=> Ca^2+ + CO3^2-, pKsp = 8.48, source \"plant constants\"
+activity guntelberg
+total Ca^2+ = 2.0 mmol/kg
+total Cl-   = 1.0 mmol/kg
+hold CO2(g) = 0.01 atm
+hold pH = 7.2
+expect saturation index CaCO3(s) < 0
+expect charge imbalance between -5 % and 5 %
+";
+    insta::assert_snapshot!(session(&[("tank.lyate", text)], &["solve", "tank.lyate"]));
+    let arguments = ["solve", "tank.lyate", "--output", "json"];
+    insta::assert_snapshot!(session(&[("tank.lyate", text)], &arguments));
+}
+
+#[test]
+fn what_cannot_be_solved_says_why() {
+    insta::assert_snapshot!(session(
+        &[("condensate.lyate", FAULTY)],
+        &["solve", "condensate.lyate"]
+    ));
+    let folder = folder(&[("condensate.lyate", FAULTY)]);
+    let output = run(folder.path(), &["solve", "condensate.lyate", "--output", "json"]);
+    assert_eq!(code(&output), 1);
+    let report: Value = serde_json::from_slice(&output.stdout).unwrap();
+    let expected = serde_json::json!([{"case": null, "status": "not-well-posed"}]);
+    assert_eq!(report["solutions"], expected, "other fields are absent");
+    assert!(stderr(&output).contains("error["), "why goes to standard error");
+}
+
+#[test]
+fn an_expectation_that_is_missed_ends_with_one() {
+    let text = RINSE.replace("[NH3] < 20 mg/L as N", "[NH3] < 2 mg/L as N");
+    let folder = folder(&[("rinse.lyate", &text)]);
+    let output = run(folder.path(), &["solve", "rinse.lyate"]);
+    assert_eq!(code(&output), 1);
+    let line = stdout(&output).lines().find(|line| line.contains("< 2 mg/L")).unwrap().to_owned();
+    assert!(line.ends_with("not met") && line.trim_start().starts_with("17 "), "{line}");
+    let output = run(folder.path(), &["solve", "rinse.lyate", "--output", "json"]);
+    assert_eq!(code(&output), 1);
+    let report: Value = serde_json::from_slice(&output.stdout).unwrap();
+    let expectations = &report["solutions"][0]["expectations"];
+    assert_eq!(expectations[1]["quantity"], "[NH3]");
+    assert_eq!(expectations[1]["met"], false);
+    assert_eq!(expectations[1]["line"], 17);
+}
+
+#[test]
+fn a_case_by_its_title() {
+    let folder = folder(&[("rinse.lyate", RINSE), ("plain.lyate", "component Na+\n")]);
+    let output = run(folder.path(), &["solve", "rinse.lyate", "--case", "warm"]);
+    assert_eq!(code(&output), 0);
+    assert!(stdout(&output).starts_with("Milk line, last rinse, case \"warm\"\n38 °C"));
+    let output = run(folder.path(), &["solve", "rinse.lyate", "--case", "wram"]);
+    assert_eq!(code(&output), 2);
+    assert_eq!(
+        stderr(&output),
+        "lyate: rinse.lyate has no case \"wram\"; did you mean \"warm\"?\n"
+    );
+    let output = run(folder.path(), &["solve", "plain.lyate", "--case", "warm"]);
+    assert_eq!(code(&output), 2);
+    assert_eq!(stderr(&output), "lyate: plain.lyate has no cases\n");
+}
+
+/// A base that leaves an amount to its cases is no problem of its own.
+#[test]
+fn a_base_may_leave_amounts_to_its_cases() {
+    let text = "\
+use aqueous
+component NH3, Cl-
+total Cl- = 5 mmol/L
+
+case \"weak\"
+    total NH3 = 5 mmol/L
+
+case \"strong\"
+    total NH3 = 50 mmol/L
+";
+    let folder = folder(&[("bath.lyate", text)]);
+    let output = run(folder.path(), &["solve", "bath.lyate", "--output", "json"]);
+    let report: Value = serde_json::from_slice(&output.stdout).unwrap();
+    let cases: Vec<&str> = report["solutions"]
+        .as_array()
+        .unwrap()
+        .iter()
+        .map(|solution| solution["case"].as_str().unwrap())
+        .collect();
+    assert_eq!(cases, ["weak", "strong"]);
+    assert_eq!(code(&output), 0);
+    let output = run(folder.path(), &["check", "bath.lyate"]);
+    assert_eq!(stdout(&output), "1 file, 2 problems solved, no findings\n");
+    assert_eq!(code(&output), 0);
+}
+
+#[test]
+fn definitions_alone_have_no_answer() {
+    let text = "reaction HOCl <=> OCl- + H+, pKa = 7.54, source \"plant constants\"\n";
+    let folder = folder(&[("bleach.lyate", text)]);
+    let output = run(folder.path(), &["solve", "bleach.lyate"]);
+    assert_eq!(code(&output), 1);
+    assert_eq!(stdout(&output), "bleach.lyate states no amounts: there is nothing to solve\n");
+    let output = run(folder.path(), &["check", "bleach.lyate"]);
+    assert_eq!(stdout(&output), "1 file, 0 problems solved, no findings\n");
+    assert_eq!(code(&output), 0);
+}
