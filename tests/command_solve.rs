@@ -94,6 +94,8 @@ fn a_base_may_leave_amounts_to_its_cases() {
 use aqueous
 component NH3, Cl-
 total Cl- = 5 mmol/L
+balance NH3
+    [NH3] + [NH4+] = total NH3
 
 case \"weak\"
     total NH3 = 5 mmol/L

@@ -92,7 +92,7 @@ pub fn percent(share: f64) -> String {
     if value > 0.0 && value < 1e-4 {
         return "<0.0001 %".into();
     }
-    if value >= 99.95 && value <= 100.0 {
+    if (99.95..=100.0).contains(&value) {
         return "100 %".into();
     }
     if value.abs() >= 10.0 {
