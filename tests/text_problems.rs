@@ -16,10 +16,8 @@ fn render(text: &str) -> String {
             for problem in &placed.parsed.problems {
                 let start = placed.start + problem.span.start as usize;
                 let end = placed.start + problem.span.end as usize;
-                let last = line_start + line.len() == text.len() && !line.ends_with('\n');
-                if !(line_start..line_start + line.len()).contains(&start)
-                    && !(last && start == text.len())
-                {
+                let at_end = start == text.len() && !line.ends_with('\n');
+                if !(at_end || (line_start..line_start + line.len()).contains(&start)) {
                     continue;
                 }
                 let column = text[line_start..start].chars().count();

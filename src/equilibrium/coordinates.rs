@@ -33,7 +33,7 @@ impl Coordinates {
         let held: Vec<(usize, usize)> = (0..frame.slots.len())
             .filter_map(|s| match frame.slots[s] {
                 Slot::Held(k) => Some((s, k)),
-                Slot::Free | Slot::Empty(_) => None,
+                Slot::Free | Slot::Empty => None,
             })
             .collect();
         let offsets: Vec<f64> = slots.iter().map(|&s| frame.offset(s)).collect();

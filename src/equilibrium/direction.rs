@@ -42,9 +42,10 @@ pub(super) fn log_step(at: &Coordinates, point: &Point, step: &mut [f64]) -> boo
     solved
 }
 
-/// The Newton step of the convex function, its matrix scaled to a unit diagonal; false
-/// where that is not positive definite in floating point.
-pub(super) fn convex_step(at: &Coordinates, point: &Point, step: &mut [f64]) -> bool {
+/// The Newton step of the convex function, its matrix scaled to a unit diagonal; where
+/// that fails in floating point, or no longer descends once it is cut to `longest` in
+/// every unknown, each unknown by its own diagonal, which always descends.
+pub(super) fn convex_step(at: &Coordinates, point: &Point, longest: f64, step: &mut [f64]) {
     let size = step.len();
     let mut matrix = DMatrix::<f64>::zeros(size, size);
     for i in 0..at.species.len() {
@@ -65,16 +66,20 @@ pub(super) fn convex_step(at: &Coordinates, point: &Point, step: &mut [f64]) -> 
         }
     }
     let rows = point.positive.iter().zip(&point.negative);
-    let mut side =
-        DVector::from_iterator(size, rows.zip(&scales).map(|((p, n), scale)| (n - p) * scale));
-    let Some(factor) = Cholesky::new(matrix) else {
-        return false;
-    };
-    if size > 0 {
-        factor.solve_mut(&mut side);
+    let side: Vec<f64> = rows.zip(&scales).map(|((p, n), scale)| (n - p) * scale).collect();
+    if let Some(factor) = Cholesky::new(matrix) {
+        let mut solved = DVector::from_column_slice(&side);
+        if size > 0 {
+            factor.solve_mut(&mut solved);
+        }
+        for j in 0..size {
+            step[j] = (solved[j] * scales[j]).clamp(-longest, longest);
+        }
+        if point.slope(step) < 0.0 {
+            return;
+        }
     }
     for j in 0..size {
-        step[j] = side[j] * scales[j];
+        step[j] = (side[j] * scales[j]).clamp(-longest, longest);
     }
-    step.iter().all(|s| s.is_finite())
 }

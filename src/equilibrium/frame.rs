@@ -20,8 +20,8 @@ pub(super) enum Slot {
     Free,
     /// Held phase `k` stands here.
     Held(usize),
-    /// Nothing that needs it is present: ln activity minus (or plus) infinity.
-    Empty(f64),
+    /// Nothing that needs it is present.
+    Empty,
 }
 
 #[derive(Clone, Debug)]
@@ -179,7 +179,7 @@ impl<'a> Frame<'a> {
                 return Err(Failure::Dependent { components: support, fixed: Vec::new() });
             }
         }
-        self.slots[slot] = Slot::Empty(if down { f64::INFINITY } else { f64::NEG_INFINITY });
+        self.slots[slot] = Slot::Empty;
         Ok(())
     }
 
@@ -209,7 +209,7 @@ impl<'a> Frame<'a> {
                 let line = self.basis.line(slot);
                 self.system.species.get(line).map_or(0.0, |species| species.ln_k)
             }
-            Slot::Held(_) | Slot::Empty(_) => 0.0,
+            Slot::Held(_) | Slot::Empty => 0.0,
         }
     }
 }

@@ -19,6 +19,7 @@ pub mod quantities;
 mod root;
 mod search;
 pub mod sensitivity;
+pub mod several;
 mod skew;
 pub mod solve;
 mod start;

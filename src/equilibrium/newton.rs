@@ -17,6 +17,9 @@ pub(super) const CLOSED: f64 = 1e-12;
 const NEARLY_CLOSED: f64 = 1e-10;
 /// Below this the logarithmic step needs no judging if it makes the rows close.
 const NEAR: f64 = 1e-2;
+/// No step is longer than this in any ln activity: from far above, the slope alone would
+/// let one fall without end.
+const LONGEST: f64 = 100.0;
 const HYBRID_STEPS: u32 = 100;
 const CONVEX_STEPS: u32 = 2000;
 /// How often a convex step is doubled while it still goes straight down.
@@ -88,6 +91,10 @@ impl Search<'_> {
         if !log_step(&self.at, &self.point, &mut self.step) {
             return false;
         }
+        let longest = self.step.iter().fold(0.0f64, |most, s| most.max(s.abs()));
+        if longest > LONGEST {
+            self.step.iter_mut().for_each(|s| *s *= LONGEST / longest);
+        }
         if residual < NEAR {
             self.try_step(1.0);
             if self.trial.residual() < 0.5 * residual {
@@ -101,7 +108,8 @@ impl Search<'_> {
     fn convex_move(&mut self) -> bool {
         const BACKTRACKS: u32 = 60;
         self.step.resize(self.point.u.len(), 0.0);
-        if !convex_step(&self.at, &self.point, &mut self.step) || !self.descend(BACKTRACKS) {
+        convex_step(&self.at, &self.point, LONGEST, &mut self.step);
+        if !self.descend(BACKTRACKS) {
             return false;
         }
         self.stretch();

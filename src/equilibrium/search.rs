@@ -218,7 +218,7 @@ impl<'a> Search<'a> {
             .iter()
             .map(|slot| match slot {
                 Slot::Free => 0.0,
-                Slot::Empty(ln) => *ln,
+                Slot::Empty => f64::NEG_INFINITY,
                 Slot::Held(k) => {
                     let fixed = &system.fixed[*k];
                     let ln_gamma = match (fixed.concentration_of, self.ionic_strength) {
@@ -246,9 +246,13 @@ impl<'a> Search<'a> {
                 let line = basis.unit_line(l);
                 let mut ln = 0.0;
                 for (slot, value) in values.iter().enumerate() {
-                    if !basis.is_zero(line, slot) {
-                        ln += basis.value(line, slot) * value;
+                    if basis.is_zero(line, slot) {
+                        continue;
                     }
+                    if *value == f64::NEG_INFINITY {
+                        return f64::NEG_INFINITY;
+                    }
+                    ln += basis.value(line, slot) * value;
                 }
                 ln * basis.scale(l)
             })

@@ -124,7 +124,7 @@ impl<'a> Sensitivity<'a> {
     pub fn by_total(&self, component: usize) -> Option<Response> {
         let frame = &self.search.frame;
         let line = frame.basis.unit_line(component);
-        let absent = |s: usize| matches!(frame.slots[s], Slot::Empty(_));
+        let absent = |s: usize| matches!(frame.slots[s], Slot::Empty);
         if (0..frame.slots.len()).any(|s| absent(s) && !frame.basis.is_zero(line, s)) {
             return None;
         }

@@ -27,6 +27,18 @@ pub(super) fn solve_skew(
     start: Option<&Answer>,
     cancel: &AtomicBool,
 ) -> Result<Answer, Failure> {
+    let (mut states, closest) = states(system, start, cancel)?;
+    let taken = |answer: &Answer| answer.amounts.iter().map(|n| n.abs()).sum::<f64>();
+    states.sort_by(|a, b| taken(a).total_cmp(&taken(b)));
+    states.into_iter().next().ok_or(closest)
+}
+
+/// All states, by rising pH; and how near the search came, for where there are none.
+pub(super) fn states(
+    system: &System,
+    start: Option<&Answer>,
+    cancel: &AtomicBool,
+) -> Result<(Vec<Answer>, Failure), Failure> {
     let mut outer = Outer { held: system.clone(), cancel, last: start.cloned(), iterations: 0 };
     let row = vec![(0, Rational64::from_integer(1))];
     outer.held.fixed.push(Fixed {
@@ -35,32 +47,20 @@ pub(super) fn solve_skew(
         concentration_of: None,
         supply: row,
     });
-    let mut best: Option<(f64, Answer)> = None;
-    let mut before: Option<(f64, f64)> = None;
-    let mut ph = LOOK.0;
-    while ph <= LOOK.1 {
-        let here = match outer.missing(ph) {
-            Ok(missing) => Some((ph, missing)),
-            Err(Failure::NotConverged { .. }) => None,
-            Err(other) => return Err(other),
-        };
-        if let (Some(from), Some(to)) = (before, here)
-            && (from.1 == 0.0 || from.1.signum() != to.1.signum())
-        {
-            let answer = outer.settle(from, to)?;
-            let taken = answer.amounts.iter().map(|n| n.abs()).sum();
-            if best.as_ref().is_none_or(|b| taken < b.0) {
-                best = Some((taken, answer));
-            }
+    let marks = outer.look()?;
+    let mut found = Vec::new();
+    for pair in marks.windows(2) {
+        if pair[0].1 == 0.0 || pair[0].1 * pair[1].1 < 0.0 {
+            found.push(outer.settle(pair[0], pair[1])?);
         }
-        before = here;
-        ph += LOOK.2;
     }
-    let (_, mut answer) = best.ok_or(Failure::Infeasible { component: 0 })?;
-    answer.amounts.truncate(system.fixed.len());
-    answer.residual = super::fixed::residual(system, &answer.concentrations, &answer.amounts);
-    answer.iterations = outer.iterations;
-    Ok(answer)
+    for answer in &mut found {
+        answer.amounts.truncate(system.fixed.len());
+        answer.residual = super::fixed::residual(system, &answer.concentrations, &answer.amounts);
+        answer.iterations = outer.iterations;
+    }
+    let least = marks.iter().fold(f64::INFINITY, |least, mark| least.min(mark.1.abs()));
+    Ok((found, Failure::NotConverged { residual: least, iterations: outer.iterations }))
 }
 
 struct Outer<'a> {
@@ -82,6 +82,59 @@ impl Outer<'_> {
         let missing = answer.amounts.last().copied().unwrap_or(0.0);
         self.last = Some(answer);
         Ok(missing)
+    }
+
+    /// The protons missing at one pH after another, and where they come nearest to
+    /// nothing without changing sign, a look whether they do in between.
+    fn look(&mut self) -> Result<Vec<Mark>, Failure> {
+        let mut marks: Vec<Mark> = Vec::new();
+        let mut ph = LOOK.0;
+        while ph <= LOOK.1 {
+            match self.missing(ph) {
+                Ok(missing) => marks.push((ph, missing)),
+                // No state at this pH: nothing to pass through either.
+                Err(Failure::NotConverged { .. }) => {}
+                Err(other) => return Err(other),
+            }
+            ph += LOOK.2;
+        }
+        let dips: Vec<[Mark; 3]> = marks
+            .windows(3)
+            .filter(|m| {
+                let (low, at, high) = (m[0].1, m[1].1, m[2].1);
+                at * low > 0.0 && at * high > 0.0 && at.abs() < low.abs().min(high.abs())
+            })
+            .map(|m| [m[0], m[1], m[2]])
+            .collect();
+        for [low, at, high] in dips {
+            if let Some(other_side) = self.dip(low, at, high)? {
+                marks.push(other_side);
+            }
+        }
+        marks.sort_by(|a, b| a.0.total_cmp(&b.0));
+        Ok(marks)
+    }
+
+    /// Between three marks of one sign, the middle one the least, a place of the other
+    /// sign if there is one.
+    fn dip(&mut self, low: Mark, at: Mark, high: Mark) -> Result<Option<Mark>, Failure> {
+        let (mut low, mut at, mut high) = (low.0, at, high.0);
+        for _ in 0..40 {
+            // Into the wider of the two halves, by the golden section.
+            let wide_above = high - at.0 > at.0 - low;
+            let next = at.0 + 0.381_966 * if wide_above { high - at.0 } else { low - at.0 };
+            let missing = self.missing(next)?;
+            if missing * at.1 <= 0.0 {
+                return Ok(Some((next, missing)));
+            }
+            if missing.abs() < at.1.abs() {
+                *(if wide_above { &mut low } else { &mut high }) = at.0;
+                at = (next, missing);
+            } else {
+                *(if wide_above { &mut high } else { &mut low }) = next;
+            }
+        }
+        Ok(None)
     }
 
     /// The state at the change of sign between two pH.

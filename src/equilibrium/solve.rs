@@ -11,6 +11,9 @@ use super::start::{first_guess, sweep, warm_guess};
 use super::system::{Answer, Failure, IonicStrength, System};
 use crate::chemistry::activity::ActivityKind;
 
+/// An answer whose rows close no better than this is not given.
+const TRUSTED: f64 = 1e-9;
+
 /// Finds the state in which every row of the system closes.
 ///
 /// `start` is an answer to a system of the same components that is thought to be near;
@@ -56,7 +59,13 @@ pub fn solve(
         IonicStrength::Computed => ionic::converge(&mut search, start.is_some(), cancel)?,
     }
     search.polish();
-    Ok(search.answer())
+    let answer = search.answer();
+    // The rows as given must close too; where amounts past all measure were divided by
+    // their size they do not.
+    if answer.residual <= TRUSTED && search.point.ln_scale == 0.0 {
+        return Ok(answer);
+    }
+    Err(Failure::NotConverged { residual: answer.residual, iterations: answer.iterations })
 }
 
 /// Whether any activity coefficient can differ from one.

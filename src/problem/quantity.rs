@@ -351,7 +351,9 @@ fn without_formula(unit: Unit, basis: Option<&Basis>) -> Result<(f64, Scale), Co
 /// The uncertainty in base units, from an absolute one in the written unit or a percentage.
 fn uncertainty(quantity: &Quantity, to_base: impl Fn(f64) -> f64) -> Option<f64> {
     let uncertainty = quantity.uncertainty.as_ref()?;
-    let size = if uncertainty.percent {
+    // Of a quantity in percent it is in percent too: 62 % ± 2 % is 60 to 64 %.
+    let in_percent = quantity.unit.as_ref().is_some_and(|unit| unit.value == "%");
+    let size = if uncertainty.percent && !in_percent {
         quantity.number.value.abs() * uncertainty.number.value / 100.0
     } else {
         uncertainty.number.value

@@ -7,7 +7,7 @@ use tower_lsp::lsp_types::*;
 
 use super::convert::Positions;
 use super::diagnostics::diagnostic;
-use super::documents::Checked;
+use super::generation::Checked;
 use super::settings::{FIX_ALL, Settings};
 use crate::rules::finding::{Fix, LocatedFinding};
 

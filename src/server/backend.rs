@@ -4,12 +4,14 @@
 use std::panic::{AssertUnwindSafe, catch_unwind};
 use std::sync::Arc;
 
+use serde::Serialize;
 use serde_json::to_value;
 use tower_lsp::jsonrpc::{Error, ErrorCode, Result};
 use tower_lsp::lsp_types::*;
 use tower_lsp::{LanguageServer, async_trait};
 
-use super::documents::{Checked, Missing};
+use super::documents::Missing;
+use super::generation::Checked;
 use super::session::Session;
 use super::{actions, diagnostics, hints, hover, order, symbols};
 
@@ -26,19 +28,22 @@ impl Backend {
         &self.session
     }
 
-    /// An answer about the document as it was when the request came in; none where it
+    /// Answers about the document as it was when the request came in; with null where it
     /// is not open. Never about another text: where that has changed, the request ends.
-    async fn answer<T>(&self, make: impl FnOnce(&Checked) -> T) -> Result<Option<T>> {
-        let Some(snapshot) = order::snapshot() else { return Ok(None) };
+    ///
+    /// The answer is written at once, so handlers have nothing left to return.
+    async fn answer<T: Serialize>(&self, make: impl FnOnce(&Checked) -> T) -> Result<()> {
+        let Some(snapshot) = order::snapshot() else { return Ok(()) };
         let checked = self.session.documents.checked(snapshot).await.map_err(|why| match why {
             Missing::Superseded => Error::content_modified(),
             Missing::Failed => Error::internal_error(),
         })?;
         // Caught here as well as around the whole request, so that the library forgets
         // the request's id.
-        catch_unwind(AssertUnwindSafe(|| make(&checked)))
-            .map(Some)
-            .map_err(|_| Error::internal_error())
+        catch_unwind(AssertUnwindSafe(|| order::write(&make(&checked))))
+            .is_ok_and(|written| written.is_ok())
+            .then_some(())
+            .ok_or_else(Error::internal_error)
     }
 }
 
@@ -67,26 +72,29 @@ impl LanguageServer for Backend {
 
     async fn hover(&self, params: HoverParams) -> Result<Option<Hover>> {
         let position = params.text_document_position_params.position;
-        let Session { analyser, .. } = &*self.session;
-        let settings = self.session.settings();
-        let hover =
-            self.answer(|checked| hover::hover(checked, position, &**analyser, settings)).await?;
-        Ok(hover.flatten())
+        let (analyser, settings) = (&*self.session.analyser, self.session.settings());
+        self.answer(|checked| hover::hover(checked, position, analyser, settings)).await?;
+        Ok(None)
     }
 
     async fn inlay_hint(&self, params: InlayHintParams) -> Result<Option<Vec<InlayHint>>> {
-        self.answer(|checked| hints::hints(checked, params.range, self.session.settings())).await
+        let settings = self.session.settings();
+        self.answer(|checked| hints::hints(checked, params.range, settings)).await?;
+        Ok(None)
     }
 
     async fn document_symbol(
         &self,
         _: DocumentSymbolParams,
     ) -> Result<Option<DocumentSymbolResponse>> {
-        self.answer(|checked| symbols::symbols(checked, self.session.settings())).await
+        self.answer(|checked| symbols::symbols(checked, self.session.settings())).await?;
+        Ok(None)
     }
 
     async fn code_action(&self, params: CodeActionParams) -> Result<Option<CodeActionResponse>> {
-        self.answer(|checked| actions::actions(checked, &params, self.session.settings())).await
+        let settings = self.session.settings();
+        self.answer(|checked| actions::actions(checked, &params, settings)).await?;
+        Ok(None)
     }
 
     async fn diagnostic(
@@ -97,14 +105,14 @@ impl LanguageServer for Backend {
             return Err(Error::method_not_found());
         }
         let known = params.previous_result_id.as_deref();
-        let report = self
-            .answer(|checked| diagnostics::answer(checked.report.as_deref(), known))
-            .await
-            .map_err(|error| match error.code {
-                ErrorCode::ContentModified => server_cancelled(),
-                _ => error,
-            })?;
-        Ok(report.unwrap_or_else(|| diagnostics::answer(None, known)).into())
+        let answered =
+            self.answer(|checked| diagnostics::Answer::new(checked.report.as_deref(), known)).await;
+        answered.map_err(|error| match error.code {
+            ErrorCode::ContentModified => server_cancelled(),
+            _ => error,
+        })?;
+        // For a document that is not open.
+        Ok(DocumentDiagnosticReport::from(RelatedFullDocumentDiagnosticReport::default()).into())
     }
 }
 

@@ -1,31 +1,58 @@
 //! Findings as the editor's diagnostics, pushed or reported on request.
 
+use std::sync::Arc;
+
+use serde::Serialize;
 use serde_json::json;
+use serde_json::value::{RawValue, to_raw_value};
 use tower_lsp::lsp_types::*;
 
 use super::convert::Positions;
 use super::settings::{SOURCE, Settings};
 use crate::rules::finding::{LocatedFinding, Severity};
 
-/// What was last told to a client that asks, and the name it has there.
+/// What is told to a client that asks: the list, written already, and the name it has.
 pub struct Report {
-    pub id: u64,
-    pub diagnostics: Vec<Diagnostic>,
+    id: u64,
+    items: Box<RawValue>,
 }
 
 impl Report {
-    /// A report of these; the one before, where it says the same.
+    /// A report of these; the one before, where it says the same. The number is one that
+    /// no report had before, so that no client takes one for another.
     pub fn following(
-        previous: Option<std::sync::Arc<Report>>,
-        diagnostics: Vec<Diagnostic>,
-    ) -> std::sync::Arc<Report> {
-        match previous {
-            Some(previous) if previous.diagnostics == diagnostics => previous,
-            previous => {
-                let id = previous.map_or(1, |previous| previous.id + 1);
-                std::sync::Arc::new(Report { id, diagnostics })
-            }
-        }
+        previous: Option<Arc<Report>>,
+        diagnostics: &[Diagnostic],
+        number: u64,
+    ) -> serde_json::Result<Arc<Report>> {
+        let items = to_raw_value(diagnostics)?;
+        Ok(match previous {
+            Some(previous) if previous.items.get() == items.get() => previous,
+            _ => Arc::new(Report { id: number, items }),
+        })
+    }
+}
+
+/// The answer to a client that asks, and may know the last report already.
+#[derive(Serialize)]
+#[serde(rename_all = "camelCase")]
+pub struct Answer {
+    kind: &'static str,
+    result_id: String,
+    #[serde(skip_serializing_if = "Option::is_none")]
+    items: Option<Box<RawValue>>,
+}
+
+impl Answer {
+    /// None where no report was made, as for a client that does not ask.
+    pub fn new(report: Option<&Report>, known: Option<&str>) -> Option<Self> {
+        let report = report?;
+        let result_id = report.id.to_string();
+        Some(if known == Some(result_id.as_str()) {
+            Self { kind: "unchanged", result_id, items: None }
+        } else {
+            Self { kind: "full", result_id, items: Some(report.items.clone()) }
+        })
     }
 }
 
@@ -88,27 +115,4 @@ pub fn failure() -> Diagnostic {
             .into(),
         ..Default::default()
     }
-}
-
-/// The answer to a client that asks, and may know the last report already.
-pub fn answer(report: Option<&Report>, known: Option<&str>) -> DocumentDiagnosticReport {
-    let Some(report) = report else { return RelatedFullDocumentDiagnosticReport::default().into() };
-    let id = report.id.to_string();
-    if known == Some(id.as_str()) {
-        return RelatedUnchangedDocumentDiagnosticReport {
-            related_documents: None,
-            unchanged_document_diagnostic_report: UnchangedDocumentDiagnosticReport {
-                result_id: id,
-            },
-        }
-        .into();
-    }
-    RelatedFullDocumentDiagnosticReport {
-        related_documents: None,
-        full_document_diagnostic_report: FullDocumentDiagnosticReport {
-            result_id: Some(id),
-            items: report.diagnostics.clone(),
-        },
-    }
-    .into()
 }

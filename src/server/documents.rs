@@ -2,16 +2,17 @@
 //! makes a new generation, which requests wait for and which is analysed once.
 
 use std::collections::{HashMap, HashSet};
-use std::path::{Component, Path, PathBuf};
-use std::sync::atomic::{AtomicBool, AtomicU64, Ordering};
+use std::path::{Path, PathBuf};
+use std::sync::atomic::{AtomicU64, Ordering};
 use std::sync::{Arc, Mutex, MutexGuard, PoisonError};
 
-use tokio::sync::watch;
 use tower_lsp::lsp_types::{TextDocumentContentChangeEvent, Url};
 
 use super::analysis::View;
-use super::convert::{Encoding, Lines, Positions};
+use super::convert::{Encoding, Lines};
 use super::diagnostics::Report;
+use super::generation::{Checked, Generation, Progress};
+use super::place::{Place, normal};
 
 /// All open documents. The lock is held for a copy of a text at most, never for work.
 #[derive(Default)]
@@ -41,48 +42,6 @@ struct Document {
     /// A worker is at it, and will look again before it leaves.
     worked_on: bool,
     closed: bool,
-}
-
-/// Where a document lies: as it is spelled, and with symbolic links resolved.
-#[derive(Clone, Default)]
-struct Place {
-    spelled: Option<PathBuf>,
-    real: Option<PathBuf>,
-}
-
-/// One analysis of one text: the text may be analysed again where an import changed.
-pub struct Generation {
-    edit: u64,
-    cancel: AtomicBool,
-    progress: watch::Sender<Progress>,
-    /// Paths that the running analysis has asked for.
-    asked: Mutex<HashSet<PathBuf>>,
-}
-
-#[derive(Clone)]
-enum Progress {
-    Waiting,
-    Done(Arc<Checked>),
-    Failed,
-    /// There is a newer generation, or the document is closed.
-    Superseded,
-}
-
-/// A finished analysis, with all that an answer needs.
-pub struct Checked {
-    pub uri: Url,
-    pub version: i32,
-    pub view: Arc<dyn View>,
-    pub lines: Arc<Lines>,
-    pub encoding: Encoding,
-    /// Made where the client asks for reports.
-    pub report: Option<Arc<Report>>,
-}
-
-impl Checked {
-    pub fn positions(&self) -> Positions<'_> {
-        Positions::new(self.view.text(), &self.lines, self.encoding)
-    }
 }
 
 /// What a message has set going.
@@ -129,32 +88,6 @@ pub struct Work {
     pub report: Option<Arc<Report>>,
 }
 
-impl Generation {
-    fn new(edit: u64) -> Arc<Self> {
-        Arc::new(Self {
-            edit,
-            cancel: AtomicBool::new(false),
-            progress: watch::Sender::new(Progress::Waiting),
-            asked: Mutex::default(),
-        })
-    }
-
-    pub fn cancel(&self) -> &AtomicBool {
-        &self.cancel
-    }
-
-    fn supersede(&self) {
-        self.cancel.store(true, Ordering::Relaxed);
-        self.progress.send_if_modified(|progress| {
-            let waiting = matches!(progress, Progress::Waiting);
-            if waiting {
-                *progress = Progress::Superseded;
-            }
-            waiting
-        });
-    }
-}
-
 impl Document {
     fn restart(&mut self) {
         self.generation.supersede();
@@ -165,18 +98,12 @@ impl Document {
         self.shared.get_or_insert_with(|| Arc::from(self.text.as_str())).clone()
     }
 
-    fn lies_at(&self, path: &Path) -> bool {
-        self.place.spelled.as_deref() == Some(path) || self.place.real.as_deref() == Some(path)
+    fn is_open_at(&self, place: &Place) -> bool {
+        !self.closed && self.place.meets(place)
     }
 
     fn depends_on(&self, place: &Place) -> bool {
-        let asked = lock(&self.generation.asked);
-        place.paths().any(|path| self.imports.contains(path) || asked.contains(path))
-    }
-
-    /// Whether a worker must be started for it.
-    fn needs_worker(&mut self) -> bool {
-        !std::mem::replace(&mut self.worked_on, true)
+        place.paths().any(|path| self.imports.contains(path)) || self.generation.has_asked(place)
     }
 }
 
@@ -192,7 +119,7 @@ impl Documents {
             text,
             shared: None,
             lines,
-            place: place.clone(),
+            place,
             generation: Generation::new(edit),
             finished: None,
             report: None,
@@ -200,21 +127,12 @@ impl Documents {
             worked_on: false,
             closed: false,
         };
-        let mut changed = Changed::default();
         if let Some(old) = open.remove(&uri) {
             old.generation.supersede();
             document.worked_on = old.worked_on;
         }
-        if document.needs_worker() {
-            changed.workers.push(uri.clone());
-        }
         open.insert(uri.clone(), document);
-        recheck(
-            &mut open,
-            |other, document| *other != uri && document.depends_on(&place),
-            &mut changed,
-        );
-        changed
+        changed_text(&mut open, &uri)
     }
 
     /// Applies edits; those of a document that is not open are left out.
@@ -225,10 +143,9 @@ impl Documents {
         changes: Vec<TextDocumentContentChangeEvent>,
         encoding: Encoding,
     ) -> Changed {
-        let mut changed = Changed::default();
         let mut open = self.lock();
         let Some(document) = open.get_mut(uri).filter(|document| !document.closed) else {
-            return changed;
+            return Changed::default();
         };
         let lines = Arc::make_mut(&mut document.lines);
         for change in changes {
@@ -247,36 +164,17 @@ impl Documents {
         document.edit = self.count_edit();
         document.shared = None;
         document.restart();
-        let place = document.place.clone();
-        if document.needs_worker() {
-            changed.workers.push(uri.clone());
-        }
-        recheck(
-            &mut open,
-            |other, document| other != uri && document.depends_on(&place),
-            &mut changed,
-        );
-        changed
+        changed_text(&mut open, uri)
     }
 
     pub fn close(&self, uri: &Url) -> Changed {
-        let mut changed = Changed::default();
         let mut open = self.lock();
         let Some(document) = open.get_mut(uri).filter(|document| !document.closed) else {
-            return changed;
+            return Changed::default();
         };
         document.closed = true;
         document.generation.supersede();
-        let place = document.place.clone();
-        if document.needs_worker() {
-            changed.workers.push(uri.clone());
-        }
-        recheck(
-            &mut open,
-            |other, document| other != uri && document.depends_on(&place),
-            &mut changed,
-        );
-        changed
+        changed_text(&mut open, uri)
     }
 
     /// Files changed on disk: those that depend on them are to be analysed again. Not on
@@ -285,10 +183,7 @@ impl Documents {
         let places: Vec<_> = paths.into_iter().map(|path| Place::of(Some(path))).collect();
         let mut changed = Changed::default();
         let mut open = self.lock();
-        let is_open = |place: &&Place| {
-            let mut open = open.values().filter(|document| !document.closed);
-            open.any(|document| place.paths().any(|path| document.lies_at(path)))
-        };
+        let is_open = |place: &&Place| open.values().any(|document| document.is_open_at(place));
         let (_, closed): (Vec<_>, Vec<_>) = places.iter().partition(is_open);
         recheck(
             &mut open,
@@ -324,21 +219,14 @@ impl Documents {
     pub fn text_at(&self, asker: &Generation, path: &Path) -> Option<Arc<str>> {
         let place = Place::of(Some(path.to_owned()));
         // Noted before it is looked at, so that a change in between is not missed.
-        lock(&asker.asked).extend(place.paths().cloned());
-        self.lock()
-            .values_mut()
-            .find(|document| !document.closed && place.paths().any(|path| document.lies_at(path)))
-            .map(Document::share)
+        asker.note_asked(&place);
+        self.lock().values_mut().find(|document| document.is_open_at(&place)).map(Document::share)
     }
 
     /// Waits for the analysis of a snapshot's text.
     pub async fn checked(&self, mut snapshot: Snapshot) -> Result<Arc<Checked>, Missing> {
         loop {
-            let mut progress = snapshot.generation.progress.subscribe();
-            let progress = match progress.wait_for(|now| !matches!(now, Progress::Waiting)).await {
-                Ok(progress) => progress.clone(),
-                Err(_) => Progress::Superseded,
-            };
+            let progress = snapshot.generation.settled().await;
             let now = self.snapshot(&snapshot.uri).ok_or(Missing::Superseded)?;
             if !Arc::ptr_eq(&now.generation, &snapshot.generation) {
                 // The same text again, since an import changed: that one counts.
@@ -363,7 +251,7 @@ impl Documents {
         if document.closed {
             return Job::Clear;
         }
-        if !matches!(*document.generation.progress.borrow(), Progress::Waiting) {
+        if !document.generation.is_waiting() {
             document.worked_on = false;
             return Job::Rest;
         }
@@ -389,8 +277,8 @@ impl Documents {
     /// Takes a finished analysis in. False where a newer generation has come meanwhile:
     /// then the view only serves as a start for the next.
     pub fn finish(&self, uri: &Url, generation: &Arc<Generation>, checked: Checked) -> bool {
-        let mut imports: HashSet<_> =
-            checked.view.imports().iter().map(|path| normal(path)).collect();
+        let mut imports = generation.asked();
+        imports.extend(checked.view.imports().iter().map(|path| normal(path)));
         let mut open = self.lock();
         let Some(document) = open
             .get_mut(uri)
@@ -398,14 +286,13 @@ impl Documents {
         else {
             return false;
         };
-        imports.extend(lock(&generation.asked).iter().cloned());
         document.imports = imports;
         document.finished = Some(checked.view.clone());
         if !Arc::ptr_eq(&document.generation, generation) {
             return false;
         }
         document.report = checked.report.clone();
-        generation.progress.send_replace(Progress::Done(Arc::new(checked)));
+        generation.settle(Progress::Done(Arc::new(checked)));
         true
     }
 
@@ -417,7 +304,7 @@ impl Documents {
         document.report = None;
         let current = !document.closed && Arc::ptr_eq(&document.generation, generation);
         if current {
-            generation.progress.send_replace(Progress::Failed);
+            generation.settle(Progress::Failed);
         }
         current
     }
@@ -427,8 +314,23 @@ impl Documents {
     }
 
     fn lock(&self) -> MutexGuard<'_, HashMap<Url, Document>> {
-        lock(&self.open)
+        // A panic elsewhere leaves the documents whole, so a poisoned lock is still good.
+        self.open.lock().unwrap_or_else(PoisonError::into_inner)
     }
+}
+
+/// Sets a document's worker going after its text has changed, and has those documents
+/// analysed again that depend on it.
+fn changed_text(open: &mut HashMap<Url, Document>, uri: &Url) -> Changed {
+    let mut changed = Changed::default();
+    if let Some(document) = open.get_mut(uri) {
+        changed.start_worker(uri, document);
+        let place = document.place.clone();
+        let depends =
+            |other: &Url, document: &Document| other != uri && document.depends_on(&place);
+        recheck(open, depends, &mut changed);
+    }
+    changed
 }
 
 /// Starts a new generation of the same text for each document that is chosen.
@@ -441,40 +343,15 @@ fn recheck(
         if !document.closed && chosen(uri, document) {
             document.restart();
             changed.others = true;
-            if document.needs_worker() {
-                changed.workers.push(uri.clone());
-            }
+            changed.start_worker(uri, document);
         }
     }
 }
 
-/// A panic elsewhere leaves these maps whole, so a poisoned lock is still good.
-fn lock<T>(mutex: &Mutex<T>) -> MutexGuard<'_, T> {
-    mutex.lock().unwrap_or_else(PoisonError::into_inner)
-}
-
-impl Place {
-    fn of(path: Option<PathBuf>) -> Self {
-        let real = path.as_deref().and_then(|path| path.canonicalize().ok());
-        Self { spelled: path.map(|path| normal(&path)), real }
-    }
-
-    fn paths(&self) -> impl Iterator<Item = &PathBuf> {
-        [&self.spelled, &self.real].into_iter().flatten()
-    }
-}
-
-/// A path without `.` and, as far as the spelling tells, without `..`.
-fn normal(path: &Path) -> PathBuf {
-    let mut normal = PathBuf::new();
-    for part in path.components() {
-        match part {
-            Component::CurDir => {}
-            Component::ParentDir if normal.file_name().is_some() => {
-                normal.pop();
-            }
-            part => normal.push(part),
+impl Changed {
+    fn start_worker(&mut self, uri: &Url, document: &mut Document) {
+        if !std::mem::replace(&mut document.worked_on, true) {
+            self.workers.push(uri.clone());
         }
     }
-    normal
 }

@@ -2,7 +2,7 @@
 
 use tower_lsp::lsp_types::*;
 
-use super::documents::Checked;
+use super::generation::Checked;
 use super::settings::Settings;
 
 /// The hints of the range that the editor shows.

@@ -3,7 +3,7 @@
 use tower_lsp::lsp_types::*;
 
 use super::analysis::Analyser;
-use super::documents::Checked;
+use super::generation::Checked;
 use super::settings::Settings;
 
 /// The view's own words for the place; where it has none, the pages of the rules that

@@ -1,27 +1,31 @@
 //! The editor's protocol: the only room that knows lines, UTF-16 and its types.
 //!
-//! Bytes come in through [`stdio`] and the framing filter of [`transport`], which checks
-//! each message with [`envelope`]. [`order`] applies edits to [`documents`] in the order
-//! received and hands every request its snapshot; [`session`] analyses documents on
-//! blocking threads through the seam in [`analysis`]; [`backend`] answers requests, one
-//! file per feature.
+//! Bytes come in through [`stdio`], are cut into messages by [`framing`] and read by
+//! [`envelope`], in the loop of [`connection`]. [`order`] applies edits to [`documents`]
+//! in the order received and hands every request its snapshot; [`session`] analyses
+//! documents on blocking threads through the seam in [`analysis`]; [`backend`] answers
+//! requests, one file per feature, and [`outbox`] sends the answers.
 
 pub mod actions;
 pub mod analysis;
 mod backend;
 pub mod checker;
+mod connection;
 pub mod convert;
 pub mod diagnostics;
 mod documents;
 mod envelope;
+mod framing;
+mod generation;
 mod hints;
 mod hover;
 mod order;
+mod outbox;
+mod place;
 mod session;
 mod settings;
 mod stdio;
 mod symbols;
-mod transport;
 
 use std::io::Write;
 use std::process::ExitCode;
@@ -30,22 +34,14 @@ use std::sync::atomic::Ordering;
 use std::time::Duration;
 
 use tokio::io::{AsyncRead, AsyncWrite};
-use tokio::runtime::{Builder, Handle};
-use tokio::sync::Notify;
-use tower_lsp::{LspService, Server};
+use tokio::runtime::Builder;
+use tower_lsp::LspService;
 
 use analysis::Analyser;
 use backend::Backend;
-use order::InOrder;
 use session::Session;
-use stdio::{Input, Lasting, Output};
-use transport::Filtered;
+use stdio::{Input, Output};
 
-/// How many requests may wait at a time. One that waits costs next to nothing, and one
-/// too many would keep the next edit from being read.
-const WAITING_REQUESTS: usize = 10_000;
-/// How long requests may go on once the client has left.
-const GRACE: Duration = Duration::from_secs(2);
 /// Idle workers are kept this long, so that a pause in typing costs no new thread.
 const IDLE_WORKER: Duration = Duration::from_secs(300);
 const WORKERS: usize = 16;
@@ -98,29 +94,13 @@ pub fn run(analyser: Arc<dyn Analyser>) -> ExitCode {
 pub async fn serve(
     analyser: Arc<dyn Analyser>,
     reader: impl AsyncRead + Unpin,
-    writer: impl AsyncWrite + Unpin,
+    writer: impl AsyncWrite + Unpin + Send + 'static,
 ) -> Ending {
+    let (outbox, outgoing) = outbox::channel();
     let (service, socket) =
-        LspService::new(|client| Backend::new(Session::new(analyser, client, Handle::current())));
+        LspService::new(|client| Backend::new(Session::new(analyser, client, outbox)));
     let session = service.inner().session().clone();
-    let (left, lost) = (Notify::new(), Notify::new());
-    let reader = Filtered::new(reader, || left.notify_one());
-    let writer = Lasting::new(writer, || lost.notify_one());
-    let refreshing = tokio::spawn(session.clone().keep_refreshing());
-    let serving = Server::new(reader, writer, socket)
-        .concurrency_level(WAITING_REQUESTS)
-        .serve(InOrder::new(service, session.clone()));
-    let too_late = async {
-        left.notified().await;
-        tokio::time::sleep(GRACE).await;
-    };
-    tokio::select! {
-        () = serving => {}
-        () = too_late => {}
-        () = lost.notified() => {}
-    }
-    session.documents.end();
-    refreshing.abort();
+    connection::serve(&session, service, socket, outgoing, reader, writer).await;
     if session.shut_down.load(Ordering::Relaxed) { Ending::Orderly } else { Ending::Abrupt }
 }
 

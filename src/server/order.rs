@@ -1,36 +1,55 @@
 //! Keeps the order of messages. The protocol library runs handlers at the same time as
-//! each other, so what changes a document is applied here, before the library sees the
-//! next message, and each request is given the document as it was when it came in.
+//! each other, so what changes a document is applied here, before the next message is
+//! looked at, and each request is given the document as it was when it came in.
 
 use std::borrow::Cow;
-use std::future::{Future, ready};
+use std::cell::RefCell;
+use std::future::Future;
 use std::panic::{AssertUnwindSafe, catch_unwind};
 use std::pin::Pin;
 use std::sync::Arc;
 use std::sync::atomic::Ordering;
 use std::task::{Context, Poll};
 
+use serde::Serialize;
 use serde::de::DeserializeOwned;
+use serde_json::value::{RawValue, to_raw_value};
 use serde_json::{Value, json};
 use tower::Service;
-use tower_lsp::jsonrpc::{Error, ErrorCode, Id, Request, Response};
+use tower_lsp::LspService;
+use tower_lsp::jsonrpc::{Error, Id, Request};
 use tower_lsp::lsp_types::*;
-use tower_lsp::{ExitedError, LspService};
 
 use super::backend::Backend;
-use super::documents::Snapshot;
+use super::documents::{Changed, Snapshot};
+use super::outbox::Reply;
 use super::session::Session;
 use super::settings::{Settings, roots};
-use super::transport::MALFORMED;
+
+/// What a running request has beside its parameters.
+#[derive(Default)]
+struct Desk {
+    snapshot: Option<Snapshot>,
+    written: RefCell<Option<Box<RawValue>>>,
+}
 
 tokio::task_local! {
-    static SNAPSHOT: Option<Snapshot>;
+    static DESK: Desk;
 }
 
 /// The document that the running request is about, as it was when the request came in;
 /// none where it is not open.
 pub fn snapshot() -> Option<Snapshot> {
-    SNAPSHOT.try_with(Clone::clone).ok().flatten()
+    DESK.try_with(|desk| desk.snapshot.clone()).ok().flatten()
+}
+
+/// Puts down the running request's result as text, to be sent in place of what its
+/// handler returns; see [`super::outbox`].
+pub fn write(result: &impl Serialize) -> serde_json::Result<()> {
+    let text = to_raw_value(result)?;
+    // Outside a request there is nobody to send it to.
+    let _ = DESK.try_with(|desk| desk.written.replace(Some(text)));
+    Ok(())
 }
 
 /// The library's service, with documents kept in order around it.
@@ -39,78 +58,77 @@ pub struct InOrder {
     session: Arc<Session>,
 }
 
+/// What became of a message.
+pub enum Taken {
+    /// It is dealt with; requests have their answer.
+    Done(Option<Reply>),
+    Going(Answer),
+    /// The session is over.
+    Exit,
+}
+
 impl InOrder {
     pub fn new(inner: LspService<Backend>, session: Arc<Session>) -> Self {
         Self { inner, session }
     }
-}
 
-type Answer = Result<Option<Response>, ExitedError>;
-type Answering = Pin<Box<dyn Future<Output = Answer> + Send>>;
-
-impl Service<Request> for InOrder {
-    type Response = Option<Response>;
-    type Error = ExitedError;
-    type Future = Answering;
-
-    fn poll_ready(&mut self, context: &mut Context<'_>) -> Poll<Result<(), ExitedError>> {
-        self.inner.poll_ready(context)
-    }
-
-    fn call(&mut self, request: Request) -> Answering {
+    /// Takes a request or notification.
+    pub fn take(&mut self, request: Request) -> Taken {
         let id = request.id().cloned();
-        let answering = catch_unwind(AssertUnwindSafe(|| self.receive(request)));
-        Box::pin(Guarded {
-            id: id.clone(),
-            answering: answering.unwrap_or_else(|_| Box::pin(ready(panicked(id)))),
-        })
+        catch_unwind(AssertUnwindSafe(|| self.receive(request)))
+            .unwrap_or_else(|_| Taken::Done(panicked(id)))
     }
-}
 
-impl InOrder {
-    fn receive(&mut self, request: Request) -> Answering {
+    fn receive(&mut self, request: Request) -> Taken {
         let (method, id, mut params) = request.into_parts();
-        match method.as_ref() {
-            MALFORMED => return Box::pin(ready(Ok(id.map(|id| malformed(id, params))))),
-            "initialize" if id.is_some() => {
+        match (method.as_ref(), &id) {
+            ("initialize", Some(_)) => {
                 // The library reads only an empty value, so that nothing odd in a
                 // client's capabilities can keep it from starting.
                 let said = params.unwrap_or_default();
                 self.session.start(Settings::read(&said), roots(&said));
                 params = Some(json!({ "capabilities": {} }));
             }
-            "initialized" => params = Some(json!({})),
-            // Many clients send null or {} here, which the library would refuse.
-            "shutdown" | "exit" => {
+            ("initialized", _) => params = Some(json!({})),
+            ("shutdown", Some(_)) => {
+                // Many clients send null or {} here, which the library would refuse.
                 params = None;
-                match (method.as_ref(), &id) {
-                    ("shutdown", Some(_)) if self.session.is_open() => {
-                        self.session.shut_down.store(true, Ordering::Relaxed);
-                    }
-                    ("exit", None) => self.session.documents.end(),
-                    _ => {}
+                if self.session.is_open() {
+                    self.session.shut_down.store(true, Ordering::Relaxed);
                 }
             }
-            _ if id.is_none() && self.session.is_open() => {
-                if let Some(said) = self.apply(&method, &mut params) {
-                    if let Err(error) = said {
-                        super::log(&format!("{method} cannot be read: {error}"));
+            ("exit", None) => {
+                self.session.documents.end();
+                return Taken::Exit;
+            }
+            (other, None) if self.session.is_open() => {
+                if let Some(changed) = self.apply(other, &mut params) {
+                    match changed {
+                        Ok(changed) => self.session.work_on(changed),
+                        Err(error) => super::log(&format!("{method} cannot be read: {error}")),
                     }
-                    return Box::pin(ready(Ok(None)));
+                    return Taken::Done(None);
                 }
             }
             // The library would leave these requests without any answer.
-            other if other.starts_with("$/") => {
-                if let Some(id) = id {
-                    let error = Error::method_not_found();
-                    return Box::pin(ready(Ok(Some(Response::from_error(id, error)))));
-                }
+            (other, Some(id)) if other.starts_with("$/") => {
+                return Taken::Done(Some(Reply::error(id.clone(), Error::method_not_found())));
             }
             _ => {}
         }
         let snapshot = params.as_ref().and_then(|params| self.snapshot(params));
-        let call = self.inner.call(rebuild(method, id, params));
-        Box::pin(SNAPSHOT.scope(snapshot, call))
+        let answering = self.inner.call(rebuild(method, id.clone(), params));
+        let desk = Desk { snapshot, written: RefCell::default() };
+        let answering = DESK.scope(desk, async move {
+            // Fails only after `exit`, when nothing comes here any more.
+            let response = answering.await.ok().flatten()?;
+            let written = DESK.with(|desk| desk.written.take());
+            Some(match written {
+                Some(written) if response.is_ok() => Reply::Written(response.id().clone(), written),
+                _ => Reply::Library(response),
+            })
+        });
+        Taken::Going(Answer { id, answering: Box::pin(answering) })
     }
 
     fn snapshot(&self, params: &Value) -> Option<Snapshot> {
@@ -119,10 +137,14 @@ impl InOrder {
     }
 
     /// Applies a notification that changes documents; none where it is another.
-    fn apply(&self, method: &str, params: &mut Option<Value>) -> Option<serde_json::Result<()>> {
+    fn apply(
+        &self,
+        method: &str,
+        params: &mut Option<Value>,
+    ) -> Option<serde_json::Result<Changed>> {
         let documents = &self.session.documents;
         let mut params = || params.take().unwrap_or_default();
-        let changed = match method {
+        Some(match method {
             "textDocument/didOpen" => read(params()).map(|said: DidOpenTextDocumentParams| {
                 let document = said.text_document;
                 documents.open(document.uri, document.version, document.text)
@@ -147,13 +169,7 @@ impl InOrder {
                 })
             }
             _ => return None,
-        };
-        Some(changed.map(|changed| {
-            if changed.others {
-                self.session.refresh();
-            }
-            self.session.work_on(changed.workers);
-        }))
+        })
     }
 
     fn change_folders(&self, event: WorkspaceFoldersChangeEvent) {
@@ -183,28 +199,20 @@ fn rebuild(method: Cow<'static, str>, id: Option<Id>, params: Option<Value>) -> 
     request.finish()
 }
 
-/// The error that the framing filter found.
-fn malformed(id: Id, params: Option<Value>) -> Response {
-    let params = params.unwrap_or_default();
-    let code = params["code"].as_i64().map_or(ErrorCode::ParseError, ErrorCode::from);
-    let message = params["message"].as_str().unwrap_or("the message cannot be read").to_owned();
-    Response::from_error(id, Error { code, message: message.into(), data: None })
+fn panicked(id: Option<Id>) -> Option<Reply> {
+    id.map(|id| Reply::error(id, Error::internal_error()))
 }
 
-fn panicked(id: Option<Id>) -> Answer {
-    Ok(id.map(|id| Response::from_error(id, Error::internal_error())))
-}
-
-/// A request that answers with an error where it panics.
-struct Guarded {
+/// The answer to come; an error where the request panics.
+pub struct Answer {
     id: Option<Id>,
-    answering: Answering,
+    answering: Pin<Box<dyn Future<Output = Option<Reply>> + Send>>,
 }
 
-impl Future for Guarded {
-    type Output = Answer;
+impl Future for Answer {
+    type Output = Option<Reply>;
 
-    fn poll(mut self: Pin<&mut Self>, context: &mut Context<'_>) -> Poll<Answer> {
+    fn poll(mut self: Pin<&mut Self>, context: &mut Context<'_>) -> Poll<Option<Reply>> {
         let polled = catch_unwind(AssertUnwindSafe(|| self.answering.as_mut().poll(context)));
         polled.unwrap_or_else(|_| Poll::Ready(panicked(self.id.take())))
     }

@@ -4,40 +4,48 @@
 
 use std::panic::{AssertUnwindSafe, catch_unwind};
 use std::path::PathBuf;
-use std::sync::atomic::{AtomicBool, Ordering};
+use std::sync::atomic::{AtomicBool, AtomicU64, Ordering};
 use std::sync::{Arc, Mutex, OnceLock, PoisonError};
 
 use tokio::runtime::Handle;
 use tokio::sync::Notify;
 use tower_lsp::Client;
-use tower_lsp::lsp_types::{Diagnostic, Url};
+use tower_lsp::lsp_types::notification::{Notification, PublishDiagnostics};
+use tower_lsp::lsp_types::{Diagnostic, PublishDiagnosticsParams, Url};
 
 use super::analysis::{Analyser, Request};
 use super::diagnostics::{Report, diagnostics, failure};
-use super::documents::{Checked, Documents, Job, Work};
+use super::documents::{Changed, Documents, Job, Work};
+use super::generation::Checked;
+use super::outbox::Outbox;
 use super::settings::Settings;
 
 pub struct Session {
     pub analyser: Arc<dyn Analyser>,
     pub client: Client,
     pub documents: Documents,
+    pub outbox: Outbox,
     runtime: Handle,
     settings: OnceLock<Settings>,
     roots: Mutex<Arc<[PathBuf]>>,
     refresh: Notify,
+    reports: AtomicU64,
     pub shut_down: AtomicBool,
 }
 
 impl Session {
-    pub fn new(analyser: Arc<dyn Analyser>, client: Client, runtime: Handle) -> Arc<Self> {
+    /// A session inside the running runtime.
+    pub fn new(analyser: Arc<dyn Analyser>, client: Client, outbox: Outbox) -> Arc<Self> {
         Arc::new(Self {
             analyser,
             client,
+            outbox,
+            runtime: Handle::current(),
             documents: Documents::default(),
-            runtime,
             settings: OnceLock::new(),
             roots: Mutex::new(Arc::new([])),
             refresh: Notify::new(),
+            reports: AtomicU64::new(1),
             shut_down: AtomicBool::new(false),
         })
     }
@@ -69,9 +77,12 @@ impl Session {
         self.roots.lock().unwrap_or_else(PoisonError::into_inner).clone()
     }
 
-    /// Starts a worker for each of these documents.
-    pub fn work_on(self: &Arc<Self>, documents: Vec<Url>) {
-        for uri in documents {
+    /// Starts a worker for each document that needs one.
+    pub fn work_on(self: &Arc<Self>, changed: Changed) {
+        if changed.others {
+            self.refresh.notify_one();
+        }
+        for uri in changed.workers {
             let session = self.clone();
             self.runtime.spawn_blocking(move || session.work(&uri));
         }
@@ -128,29 +139,26 @@ impl Session {
         };
         let found = diagnostics(checked.view.findings(), uri, &checked.positions(), settings);
         if settings.pull {
-            checked.report = Some(Report::following(work.report, found));
+            checked.report = Report::following(work.report, &found, self.count_report()).ok();
             return Some((checked, Vec::new()));
         }
         Some((checked, found))
     }
 
+    fn count_report(&self) -> u64 {
+        self.reports.fetch_add(1, Ordering::Relaxed)
+    }
+
     /// Pushes diagnostics, unless the client asks for them itself.
     fn publish(&self, uri: &Url, diagnostics: Vec<Diagnostic>, version: Option<i32>) {
         if !self.settings().pull {
-            self.runtime.block_on(self.client.publish_diagnostics(
-                uri.clone(),
-                diagnostics,
-                version,
-            ));
+            let params = PublishDiagnosticsParams::new(uri.clone(), diagnostics, version);
+            self.outbox.notify(PublishDiagnostics::METHOD, params);
         }
     }
 
-    /// Tells the client that answers about texts it did not touch are out of date.
-    pub fn refresh(&self) {
-        self.refresh.notify_one();
-    }
-
-    /// Sends what [`Session::refresh`] asks for, one at a time, however many there are.
+    /// Tells the client, one time after another, that answers about texts which it did
+    /// not touch are out of date.
     pub async fn keep_refreshing(self: Arc<Self>) {
         loop {
             self.refresh.notified().await;

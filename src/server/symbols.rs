@@ -5,7 +5,7 @@ use tower_lsp::lsp_types::{
 };
 
 use super::convert::Positions;
-use super::documents::Checked;
+use super::generation::Checked;
 use super::settings::Settings;
 use crate::report::inline::{Symbol, SymbolKind};
 

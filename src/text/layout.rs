@@ -77,18 +77,29 @@ fn is_case(content: &str) -> bool {
 /// The width of a line's indentation and its length in bytes; nothing where the line
 /// is blank or a comment.
 fn indentation(line: &str) -> Option<(usize, usize)> {
-    let mut width = 0;
-    for (offset, c) in line.char_indices() {
+    let (mut width, mut offset) = (0, 0);
+    loop {
+        // Almost every byte that is seen here is a space or starts a statement.
+        match line.as_bytes().get(offset)? {
+            b' ' => {
+                width += 1;
+                offset += 1;
+                continue;
+            }
+            b'#' => return None,
+            b'!'..=b'~' => return Some((width, offset)),
+            _ => {}
+        }
+        let c = line[offset..].chars().next()?;
         match c {
             '\t' => width += TAB - width % TAB,
             // A byte-order mark, at the top of a file.
             '\u{FEFF}' => {}
-            '#' => return None,
             c if c.is_whitespace() => width += 1,
             _ => return Some((width, offset)),
         }
+        offset += c.len_utf8();
     }
-    None
 }
 
 /// The lines of a text without their ends, which are LF, CRLF or CR.

@@ -3,6 +3,10 @@
 
 use super::span::Span;
 
+/// Of broken tokens, and again of what else is wrong, no more than this many are told
+/// for one statement: the next ones are most likely of the same kind.
+pub const MOST_PROBLEMS: usize = 10;
+
 #[derive(Clone, Debug, PartialEq)]
 pub struct SyntaxProblem {
     pub span: Span,

@@ -44,6 +44,8 @@ pub(super) fn name(rest: &str) -> usize {
             ')' | '^' | '*' => {}
             '+' if after.starts_with("/-") => break,
             '-' if after.starts_with('>') => break,
+            // `9 mmol/L+[NH3]`
+            '+' | '-' if after.starts_with(['[', '{']) => break,
             '+' | '-' | '−' | '–' | '⁺' | '⁻' | '₊' | '₋' => {}
             '.' | '·' | '⋅' | '•' | '∙' => {
                 if !after.starts_with(|c: char| c.is_ascii_alphanumeric() || c == '(') {

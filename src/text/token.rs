@@ -4,7 +4,7 @@
 use logos::{Lexer, Logos};
 
 use super::number;
-use super::problem::{SyntaxProblem, SyntaxProblemKind};
+use super::problem::{MOST_PROBLEMS, SyntaxProblem, SyntaxProblemKind};
 use super::run;
 use super::span::Span;
 
@@ -113,6 +113,11 @@ pub enum Token {
 }
 
 impl Token {
+    fn may_be_broken(self) -> bool {
+        use Token::{BrokenNumber, String, UnclosedString, Unknown};
+        matches!(self, BrokenNumber | UnclosedString | String | Unknown)
+    }
+
     /// White space or a comment: nothing that a parser looks at.
     pub fn is_trivia(self) -> bool {
         matches!(self, Token::Space | Token::Newline | Token::Comment)
@@ -196,9 +201,6 @@ impl From<ExpressionToken> for Token {
         }
     }
 }
-
-/// More than this many broken tokens of one statement are not each worth a finding.
-const MOST_PROBLEMS: usize = 10;
 
 /// How much of `log K(T) =` stands before the next token.
 #[derive(Clone, Copy, PartialEq, Eq)]
@@ -291,6 +293,10 @@ struct Sink<'s, 'o> {
 impl Sink<'_, '_> {
     fn push(&mut self, token: Token, start: usize, end: usize) {
         let span = Span::new(start, end);
+        if !token.may_be_broken() {
+            self.tokens.push((token, span));
+            return;
+        }
         let text = &self.text[start..end];
         let kind = match token {
             Token::BrokenNumber => {

@@ -1,7 +1,6 @@
 //! What every statement is built from: words, signs, formulas, strings.
 
 use chumsky::prelude::*;
-use chumsky::primitive::select_ref;
 
 use super::failure::{Expect, Failure};
 use crate::text::span::{Span, Spanned};
@@ -47,37 +46,49 @@ pub(super) fn span_of(lexemes: &[Lexeme<'_>]) -> Span {
     }
 }
 
+/// One token that `read` makes something of.
+pub(super) fn one<'s, O, F>(expect: Expect, read: F) -> impl Rule<'s, O> + Copy
+where
+    F: Fn(&'s Lexeme<'s>) -> Option<O> + Copy,
+{
+    // Not `select_ref` with a label, which makes its error twice: most of the time of
+    // reading goes into alternatives that fail.
+    custom::<_, Tokens<'s>, O, Extra>(move |input| match input.peek_ref().and_then(read) {
+        Some(value) => {
+            input.next_ref();
+            Ok(value)
+        }
+        None => Err(Failure::at(*input.cursor().inner(), expect)),
+    })
+}
+
 pub(super) fn sign<'s>(token: Token, expect: Expect) -> impl Rule<'s, &'s Lexeme<'s>> + Copy {
-    select_ref(move |lexeme: &'s Lexeme<'s>, _: &mut _| (lexeme.token == token).then_some(lexeme))
-        .labelled(expect)
+    one(expect, move |lexeme| (lexeme.token == token).then_some(lexeme))
 }
 
 pub(super) fn word<'s>(text: &'static str, expect: Expect) -> impl Rule<'s, &'s Lexeme<'s>> + Copy {
-    select_ref(move |lexeme: &'s Lexeme<'s>, _: &mut _| {
+    one(expect, move |lexeme| {
         (lexeme.token == Token::Word && lexeme.text == text).then_some(lexeme)
     })
-    .labelled(expect)
 }
 
 /// Any word, or a name where one is written with a capital: the rules judge it.
 pub(super) fn any_word<'s>(expect: Expect) -> impl Rule<'s, Name> + Copy {
-    select_ref(move |lexeme: &'s Lexeme<'s>, _: &mut _| {
+    one(expect, move |lexeme| {
         matches!(lexeme.token, Token::Word | Token::Name).then(|| lexeme.name())
     })
-    .labelled(expect)
 }
 
 /// A formula, the electron among them.
 pub(super) fn name<'s>(expect: Expect) -> impl Rule<'s, Name> + Copy {
-    select_ref(move |lexeme: &'s Lexeme<'s>, _: &mut _| {
+    one(expect, move |lexeme| {
         matches!(lexeme.token, Token::Name | Token::Electron).then(|| lexeme.name())
     })
-    .labelled(expect)
 }
 
 /// The text between quotes; the range is that of the quotes too.
 pub(super) fn string<'s>() -> impl Rule<'s, Name> + Copy {
-    select_ref(move |lexeme: &'s Lexeme<'s>, _: &mut _| {
+    one(Expect::Text, move |lexeme| {
         let mut inside = lexeme.text.chars();
         inside.next();
         match lexeme.token {
@@ -87,10 +98,14 @@ pub(super) fn string<'s>() -> impl Rule<'s, Name> + Copy {
         };
         Some(Spanned::new(inside.as_str().to_owned(), lexeme.span()))
     })
-    .labelled(Expect::Text)
 }
 
 /// A comma, or the end: looked at, not taken.
 pub(super) fn clause_end<'s>() -> impl Rule<'s, ()> + Copy {
     sign(Token::Comma, Expect::Comma).ignored().or(end()).rewind()
+}
+
+/// Whatever stands before the next comma: what is left out where a clause is broken.
+pub(super) fn to_comma<'s>() -> impl Rule<'s, ()> + Copy {
+    one(Expect::Nothing, |lexeme| (lexeme.token != Token::Comma).then_some(())).repeated()
 }

@@ -1,9 +1,8 @@
 //! Numbers, units glued from the tokens that touch, uncertainties and bases.
 
 use chumsky::prelude::*;
-use chumsky::primitive::select_ref;
 
-use super::basic::{Extra, Lexeme, Rule, Tokens, name, sign, span_of, word};
+use super::basic::{Extra, Lexeme, Rule, Tokens, name, one, sign, span_of, word};
 use super::failure::{Expect, Failure};
 use crate::text::number;
 use crate::text::span::Spanned;
@@ -18,14 +17,13 @@ const RESERVED: [&str; 14] = [
 
 /// A number without a sign.
 pub(super) fn number<'s>() -> impl Rule<'s, Number> + Copy {
-    select_ref(move |lexeme: &'s Lexeme<'s>, _: &mut _| {
+    one(Expect::Number, move |lexeme| {
         if lexeme.token != Token::Number {
             return None;
         }
         let (value, half_digit) = number::read(lexeme.text)?;
         Some(Number { value, half_digit, text: lexeme.text.to_owned(), span: lexeme.span() })
     })
-    .labelled(Expect::Number)
 }
 
 fn signed_number<'s>() -> impl Rule<'s, Number> + Copy {
@@ -54,20 +52,18 @@ pub(super) fn fraction<'s>() -> impl Rule<'s, Spanned<Fraction>> + Copy {
 }
 
 fn whole_number<'s>() -> impl Rule<'s, Spanned<i64>> + Copy {
-    select_ref(move |lexeme: &'s Lexeme<'s>, _: &mut _| {
+    one(Expect::WholeNumber, move |lexeme| {
         let value = (lexeme.token == Token::Number).then(|| lexeme.text.parse::<i64>().ok())??;
         (value > 0).then(|| Spanned::new(value, lexeme.span()))
     })
-    .labelled(Expect::WholeNumber)
 }
 
 /// The edition of a set.
 pub(super) fn edition<'s>() -> impl Rule<'s, Spanned<u32>> + Copy {
-    select_ref(move |lexeme: &'s Lexeme<'s>, _: &mut _| {
+    one(Expect::WholeNumber, move |lexeme| {
         let value = (lexeme.token == Token::Number).then(|| lexeme.text.parse().ok())??;
         Some(Spanned::new(value, lexeme.span()))
     })
-    .labelled(Expect::WholeNumber)
 }
 
 /// One thing that follows a number, in whatever order they are written.

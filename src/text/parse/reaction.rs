@@ -2,9 +2,10 @@
 //! clause.
 
 use chumsky::prelude::*;
-use chumsky::primitive::select_ref;
 
-use super::basic::{Extra, Lexeme, Rule, Tokens, clause_end, sign, span_of, string, word};
+use super::basic::{
+    Extra, Lexeme, Rule, Tokens, clause_end, one, sign, span_of, string, to_comma, word,
+};
 use super::expression;
 use super::failure::{Expect, Failure};
 use super::quantity::quantity;
@@ -37,13 +38,7 @@ pub(super) fn reaction<'s>() -> impl Rule<'s, Statement> {
     let clause = clause()
         .map_with(|clause, extra| (clause, span_of(extra.slice())))
         .then_ignore(clause_end().or(first_word().rewind().ignored()))
-        .recover_with(via_parser(
-            select_ref(|lexeme: &'s Lexeme<'s>, _: &mut _| {
-                (lexeme.token != Token::Comma).then_some(())
-            })
-            .repeated()
-            .map(|()| (Clause::Broken, Span::default())),
-        ));
+        .recover_with(via_parser(to_comma().map(|()| (Clause::Broken, Span::default()))));
     let clauses = separator().ignore_then(clause).repeated().collect::<Vec<_>>();
     equation
         .map_with(|(left, right), extra| (left, right, span_of(extra.slice())))
@@ -81,10 +76,9 @@ fn separator<'s>() -> impl Rule<'s, ()> {
 
 /// A word that can only start a clause.
 fn first_word<'s>() -> impl Rule<'s, &'s Lexeme<'s>> + Copy {
-    select_ref(|lexeme: &'s Lexeme<'s>, _: &mut _| {
+    one(Expect::Nothing, |lexeme| {
         (lexeme.token == Token::Word && CLAUSES.contains(&lexeme.text)).then_some(lexeme)
     })
-    .labelled(Expect::Nothing)
 }
 
 /// `<=>`; another arrow is read as that and said to be wrong.
@@ -149,7 +143,7 @@ pub(super) fn source<'s>() -> impl Rule<'s, Name> {
 }
 
 fn constant<'s>() -> impl Rule<'s, Clause> {
-    let single = select_ref(|lexeme: &'s Lexeme<'s>, _: &mut _| {
+    let single = one(Expect::Nothing, |lexeme| {
         let kind = match (lexeme.token, lexeme.text) {
             (Token::Word, "pKa") => ConstantKind::PKa,
             (Token::Word, "pKsp") => ConstantKind::PKsp,
@@ -159,7 +153,7 @@ fn constant<'s>() -> impl Rule<'s, Clause> {
         };
         Some(Spanned::new(kind, lexeme.span()))
     });
-    let logarithm = select_ref(|lexeme: &'s Lexeme<'s>, _: &mut _| {
+    let logarithm = one(Expect::Nothing, |lexeme| {
         let kind = match (lexeme.token, lexeme.text) {
             (Token::Name, "K") => ConstantKind::LogK,
             (Token::Word, "beta") => ConstantKind::LogBeta,
@@ -182,10 +176,9 @@ fn constant<'s>() -> impl Rule<'s, Clause> {
 /// `log K(T) = …`
 fn of_temperature<'s>() -> impl Rule<'s, Clause> {
     let named = |text: &'static str| {
-        select_ref(move |lexeme: &'s Lexeme<'s>, _: &mut _| {
+        one(Expect::Nothing, move |lexeme| {
             (lexeme.token == Token::Name && lexeme.text == text).then_some(())
         })
-        .labelled(Expect::Nothing)
     };
     let kind = word("log", Expect::Clause)
         .ignore_then(named("K(T)").or(named("K").ignore_then(named("(T)"))))

@@ -1,15 +1,14 @@
 //! One parser for each statement, started by its first word.
 
 use chumsky::prelude::*;
-use chumsky::primitive::select_ref;
 
-use super::basic::{Lexeme, Rule, any_word, clause_end, name, sign, string, word};
+use super::basic::{Lexeme, Rule, any_word, clause_end, name, sign, string, to_comma, word};
 use super::failure::{Expect, Failure};
 use super::quantity::{edition, quantity};
 use super::reaction::{reaction, source};
 use super::subject::{expect, hold, without};
 use super::sum::{members, terms};
-use crate::text::problem::{SyntaxProblem, SyntaxProblemKind};
+use crate::text::problem::{MOST_PROBLEMS, SyntaxProblem, SyntaxProblemKind};
 use crate::text::span::{Span, Spanned};
 use crate::text::token::Token;
 use crate::text::tree::{BalanceKind, ComponentItem, Name, Over, Statement, Use};
@@ -93,8 +92,8 @@ struct Run<'s, 'p> {
 impl<'s> Run<'s, '_> {
     fn parse(self, rule: impl Rule<'s, Statement>) -> Statement {
         let (statement, failures) = rule.parse(self.rest).into_output_errors();
-        let problems = failures.into_iter().map(|f| f.into_problem(self.rest, self.start));
-        self.problems.extend(problems);
+        let told = failures.into_iter().take(MOST_PROBLEMS);
+        self.problems.extend(told.map(|failure| failure.into_problem(self.rest, self.start)));
         statement.unwrap_or(Statement::Broken)
     }
 }
@@ -119,13 +118,7 @@ fn components<'s>() -> impl Rule<'s, Statement> {
         .then(string().or_not())
         .then_ignore(clause_end())
         .map(|(name, title)| Some(ComponentItem { name, title }))
-        .recover_with(via_parser(
-            select_ref(|lexeme: &'s Lexeme<'s>, _: &mut _| {
-                (lexeme.token != Token::Comma).then_some(())
-            })
-            .repeated()
-            .map(|()| None),
-        ));
+        .recover_with(via_parser(to_comma().map(|()| None)));
     item.separated_by(sign(Token::Comma, Expect::Comma)).at_least(1).collect::<Vec<_>>().map(
         |items| {
             let items: Vec<ComponentItem> = items.into_iter().flatten().collect();

@@ -2,9 +2,8 @@
 //! and `without`.
 
 use chumsky::prelude::*;
-use chumsky::primitive::select_ref;
 
-use super::basic::{Lexeme, Rule, name, sign, span_of, word};
+use super::basic::{Rule, name, one, sign, span_of, word};
 use super::failure::{Expect, Failure};
 use super::quantity::quantity;
 use super::statement::{balance_kind, closing_source};
@@ -16,7 +15,7 @@ use crate::text::tree::{By, Name, Relation, Statement, Subject, Without};
 
 /// A quantity of the answer, as it is named.
 fn subject<'s>() -> impl Rule<'s, Spanned<Subject>> {
-    let single = select_ref(|lexeme: &'s Lexeme<'s>, _: &mut _| {
+    let single = one(Expect::Nothing, |lexeme| {
         if lexeme.token != Token::Word {
             return None;
         }

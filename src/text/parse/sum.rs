@@ -31,7 +31,12 @@ pub(super) fn members<'s>() -> impl Rule<'s, Vec<Member>> {
                 {
                     emitter.emit(failure);
                 }
-                let mut parts = split(&name);
+                // The plus at the end of a formula is its charge.
+                let last = name.value.len().saturating_sub(1);
+                let mut parts = match name.value.find('+') {
+                    Some(plus) if plus < last => split(&name),
+                    _ => Vec::new(),
+                };
                 if parts.len() < 2 {
                     members.push(Member { coefficient, name, span });
                     continue;

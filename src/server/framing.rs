@@ -1,19 +1,9 @@
-//! The framing filter between the input and the protocol library. It passes on whole,
-//! readable messages only; in place of anything else it passes a message that asks for
-//! the error to be told, and finds the next good one.
+//! The framing filter: bytes in, messages out. Where something is no message, that is
+//! told in its place, and the next good message is found.
 
-use std::io;
 use std::ops::Range;
-use std::pin::Pin;
-use std::task::{Context, Poll, ready};
 
-use serde_json::json;
-use tokio::io::{AsyncRead, ReadBuf};
-
-use super::envelope::{self, Refusal};
-
-/// The method of the message that stands in for a malformed one; see [`super::order`].
-pub const MALFORMED: &str = "lyate/malformed";
+use super::envelope::{self, Incoming, Refusal};
 
 /// No message is longer; a longer one is taken for a broken header.
 const LONGEST_BODY: usize = 1 << 28;
@@ -29,8 +19,6 @@ pub struct Filter {
     state: State,
     /// Whether what follows still belongs to a message that was complained of.
     quiet: bool,
-    /// Whether `exit` has passed; nothing goes on after it.
-    ended: bool,
 }
 
 #[derive(Debug, Default)]
@@ -48,18 +36,10 @@ enum State {
 }
 
 impl Filter {
-    /// Whether `exit` has passed.
-    pub fn ended(&self) -> bool {
-        self.ended
-    }
-
     /// Takes bytes and appends the messages they complete.
-    pub fn push(&mut self, bytes: &[u8], out: &mut Vec<u8>) {
+    pub fn push(&mut self, bytes: &[u8], out: &mut Vec<Incoming>) {
         self.bytes.extend_from_slice(bytes);
-        while !self.ended && self.step(out) {}
-        if self.ended {
-            self.start = self.bytes.len();
-        }
+        while self.step(out) {}
         self.bytes.drain(..self.start);
         self.start = 0;
         if self.bytes.is_empty() && self.bytes.capacity() > 1 << 20 {
@@ -68,7 +48,7 @@ impl Filter {
     }
 
     /// One step; false where more bytes are needed.
-    fn step(&mut self, out: &mut Vec<u8>) -> bool {
+    fn step(&mut self, out: &mut Vec<Incoming>) -> bool {
         match &mut self.state {
             State::Header => self.header(out),
             State::Lost => match find_header(&self.bytes[self.start..]) {
@@ -105,7 +85,7 @@ impl Filter {
         }
     }
 
-    fn header(&mut self, out: &mut Vec<u8>) -> bool {
+    fn header(&mut self, out: &mut Vec<Incoming>) -> bool {
         let mut at = self.start;
         let mut length = None;
         let mut refused = None;
@@ -152,7 +132,7 @@ impl Filter {
     }
 
     /// Gives up on a header; the search for the next one starts at `from`.
-    fn lose(&mut self, from: usize, why: &str, out: &mut Vec<u8>) -> bool {
+    fn lose(&mut self, from: usize, why: &str, out: &mut Vec<Incoming>) -> bool {
         self.start = from;
         self.state = State::Lost;
         if !self.quiet {
@@ -161,25 +141,15 @@ impl Filter {
         true
     }
 
-    fn body(&mut self, range: Range<usize>, refused: Option<&str>, out: &mut Vec<u8>) {
+    fn body(&mut self, range: Range<usize>, refused: Option<&str>, out: &mut Vec<Incoming>) {
         self.state = State::Header;
         self.start = range.end;
         if let Some(why) = refused {
             return self.complain(why, out);
         }
         let body = &self.bytes[range.clone()];
-        let checked = match envelope::check(body) {
-            Ok(envelope) => Ok((envelope, None)),
-            Err(refusal) => match envelope::mend_surrogates(body) {
-                Some(mended) => envelope::check(&mended).map(|envelope| (envelope, Some(mended))),
-                None => Err(refusal),
-            },
-        };
-        match checked {
-            Ok((envelope, mended)) => {
-                frame(mended.as_deref().unwrap_or(body), out);
-                self.ended = envelope.method.as_deref() == Some("exit") && !envelope.is_request;
-            }
+        match envelope::read(body) {
+            Ok(incoming) => out.push(incoming),
             Err(refusal) => {
                 // A length that is too large has swallowed what follows: no JSON text
                 // holds a header, since a string holds no line end.
@@ -192,25 +162,14 @@ impl Filter {
         }
     }
 
-    fn complain(&mut self, why: &str, out: &mut Vec<u8>) {
+    fn complain(&mut self, why: &str, out: &mut Vec<Incoming>) {
         self.refuse(Refusal::parse(why), out);
     }
 
-    fn refuse(&mut self, refusal: Refusal, out: &mut Vec<u8>) {
+    fn refuse(&mut self, refusal: Refusal, out: &mut Vec<Incoming>) {
         self.quiet = true;
-        let message = json!({
-            "jsonrpc": "2.0",
-            "id": refusal.id,
-            "method": MALFORMED,
-            "params": { "code": refusal.code, "message": refusal.message },
-        });
-        frame(message.to_string().as_bytes(), out);
+        out.push(Incoming::Refused(refusal));
     }
-}
-
-fn frame(body: &[u8], out: &mut Vec<u8>) {
-    out.extend_from_slice(format!("Content-Length: {}\r\n\r\n", body.len()).as_bytes());
-    out.extend_from_slice(body);
 }
 
 fn is_token(byte: u8) -> bool {
@@ -268,65 +227,6 @@ fn find_begun_header(bytes: &[u8]) -> Option<usize> {
     })
 }
 
-/// A reader of which only whole, readable messages come.
-pub struct Filtered<R, F> {
-    reader: R,
-    filter: Filter,
-    chunk: Box<[u8]>,
-    out: Vec<u8>,
-    given: usize,
-    /// Called once, at the end of the input or at `exit`.
-    on_end: Option<F>,
-}
-
-impl<R, F: FnOnce()> Filtered<R, F> {
-    pub fn new(reader: R, on_end: F) -> Self {
-        Self {
-            reader,
-            filter: Filter::default(),
-            chunk: vec![0; 1 << 16].into_boxed_slice(),
-            out: Vec::new(),
-            given: 0,
-            on_end: Some(on_end),
-        }
-    }
-}
-
-impl<R: AsyncRead + Unpin, F: FnOnce() + Unpin> AsyncRead for Filtered<R, F> {
-    fn poll_read(
-        self: Pin<&mut Self>,
-        context: &mut Context<'_>,
-        buffer: &mut ReadBuf<'_>,
-    ) -> Poll<io::Result<()>> {
-        let this = self.get_mut();
-        loop {
-            let waiting = &this.out[this.given..];
-            if !waiting.is_empty() {
-                let count = waiting.len().min(buffer.remaining());
-                buffer.put_slice(&waiting[..count]);
-                this.given += count;
-                if this.given == this.out.len() {
-                    this.given = 0;
-                    this.out.clear();
-                    this.out.shrink_to(1 << 20);
-                }
-                return Poll::Ready(Ok(()));
-            }
-            let mut read = ReadBuf::new(&mut this.chunk);
-            let ended = this.filter.ended()
-                || ready!(Pin::new(&mut this.reader).poll_read(context, &mut read)).is_err()
-                || read.filled().is_empty();
-            if ended {
-                if let Some(on_end) = this.on_end.take() {
-                    on_end();
-                }
-                return Poll::Ready(Ok(()));
-            }
-            this.filter.push(read.filled(), &mut this.out);
-        }
-    }
-}
-
 #[cfg(test)]
 mod tests {
     use proptest::prelude::*;
@@ -342,28 +242,18 @@ mod tests {
     }
 
     /// The methods of what comes out, `!` for a complaint.
-    fn methods(mut out: &[u8]) -> Vec<String> {
-        let mut found = Vec::new();
-        while !out.is_empty() {
-            let end = out.windows(4).position(|four| four == b"\r\n\r\n").expect("a header");
-            let header = std::str::from_utf8(&out[..end]).expect("text");
-            let length: usize = header["Content-Length: ".len()..].parse().expect("a length");
-            let body: serde_json::Value =
-                serde_json::from_slice(&out[end + 4..end + 4 + length]).expect("JSON");
-            let method = body["method"].as_str().unwrap_or("?");
-            found.push(if method == MALFORMED { "!".into() } else { method.to_owned() });
-            out = &out[end + 4 + length..];
-        }
-        found
-    }
-
     fn filtered(input: &[u8], chunk: usize) -> Vec<String> {
         let mut filter = Filter::default();
         let mut out = Vec::new();
         for part in input.chunks(chunk) {
             filter.push(part, &mut out);
         }
-        methods(&out)
+        let methods = out.into_iter().map(|incoming| match incoming {
+            Incoming::Request(request) => request.method().to_owned(),
+            Incoming::Response(_) => "?".into(),
+            Incoming::Refused(_) => "!".into(),
+        });
+        methods.collect()
     }
 
     /// Between two good messages: each chunk size gives the same, and the second lives.
@@ -431,12 +321,6 @@ mod tests {
     #[test]
     fn a_bare_text_is_complained_of_before_the_next_message() {
         assert_eq!(filtered(b"{\"jsonrpc\"", 100), ["!"]);
-    }
-
-    #[test]
-    fn nothing_goes_on_after_exit() {
-        let input = [framed(&message("exit")), framed(&message("late"))].concat();
-        assert_eq!(filtered(input.as_bytes(), input.len()), ["exit"]);
     }
 
     proptest! {
