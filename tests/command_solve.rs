@@ -94,6 +94,8 @@ fn a_base_may_leave_amounts_to_its_cases() {
 use aqueous
 component NH3, Cl-
 total Cl- = 5 mmol/L
+balance NH3
+    [NH3] + [NH4+] = total NH3
 
 case \"weak\"
     total NH3 = 5 mmol/L
@@ -127,4 +129,35 @@ fn definitions_alone_have_no_answer() {
     let output = run(folder.path(), &["check", "bleach.lyate"]);
     assert_eq!(stdout(&output), "1 file, 0 problems solved, no findings\n");
     assert_eq!(code(&output), 0);
+}
+
+/// The pH is uncertain by what its constants' uncertainties move it, in quadrature.
+#[test]
+fn the_uncertainty_of_the_ph_is_what_constants_move() {
+    let file = |ammonia: &str, carbonic: &str| {
+        format!(
+            "use aqueous\ncomponent NH3, CO3^2-\nadd NH4HCO3 20 mmol/L\n\
+             reaction NH4+ <=> NH3 + H+, pKa = {ammonia}, source \"plant\"\n\
+             reaction CO2 + H2O <=> HCO3- + H+, pKa = {carbonic}, source \"plant\"\n",
+        )
+    };
+    let solve = |ammonia: &str, carbonic: &str| -> Value {
+        let folder = folder(&[("tank.lyate", &file(ammonia, carbonic))]);
+        let output = run(folder.path(), &["solve", "tank.lyate", "--output", "json"]);
+        let report: Value = serde_json::from_slice(&output.stdout).unwrap();
+        report["solutions"][0].clone()
+    };
+    let ph = |ammonia: &str, carbonic: &str| solve(ammonia, carbonic)["ph"].as_f64().unwrap();
+    let by_ammonia = (ph("9.27", "6.35") - ph("9.23", "6.35")) / 2.0;
+    let by_carbonic = (ph("9.25", "6.38") - ph("9.25", "6.32")) / 2.0;
+    let found = |ammonia: &str, carbonic: &str| {
+        solve(ammonia, carbonic)["ph_uncertainty"].as_f64().unwrap()
+    };
+    let near = |found: f64, expected: f64| {
+        assert!((found - expected.abs()).abs() < 1e-3 * expected.abs(), "{found}, {expected}");
+    };
+    near(found("9.25 ± 0.02", "6.35"), by_ammonia);
+    near(found("9.25", "6.35 ± 0.03"), by_carbonic);
+    near(found("9.25 ± 0.02", "6.35 ± 0.03"), by_ammonia.hypot(by_carbonic));
+    assert_eq!(solve("9.25", "6.35").get("ph_uncertainty"), None, "absent where none is stated");
 }

@@ -108,18 +108,22 @@ pub fn run(arguments: &Arguments) -> Result<Reply, Complaint> {
 fn text(files: &[FileReport], summary: &Summary) -> String {
     let style = style();
     let mut text = String::new();
+    let mut before_are_notes = true;
     for file in files {
         let (notes, others): (Vec<&LocatedFinding>, Vec<&LocatedFinding>) =
             file.findings.iter().partition(|finding| finding.severity == Severity::Note);
         for (finding, cases) in by_place(&others) {
+            text += if before_are_notes && !text.is_empty() { "\n" } else { "" };
             text += &terminal::likewise(finding, &cases, &file.source, style);
             text += "\n\n";
+            before_are_notes = false;
         }
         if !notes.is_empty() {
             text += &terminal::notes(&notes, &file.source, style);
-            text.push('\n');
+            before_are_notes = true;
         }
     }
+    text += if before_are_notes && !text.is_empty() { "\n" } else { "" };
     text + &summary.words(style) + "\n"
 }
 

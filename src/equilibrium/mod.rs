@@ -25,4 +25,5 @@ pub mod solve;
 mod start;
 mod sum;
 pub mod system;
+pub mod uncertainty;
 pub mod weighed;

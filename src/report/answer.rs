@@ -14,6 +14,7 @@ use crate::chemistry::activity::ActivityKind;
 use crate::chemistry::formula::Phase;
 use crate::chemistry::quantity::Scale;
 use crate::equilibrium::quantities::Solved;
+use crate::equilibrium::uncertainty::ph_uncertainty;
 use crate::problem::model::{HeldWhat, Problem, Sought};
 use crate::problem::scope::PROTON;
 use crate::rules::check::Checked;
@@ -61,7 +62,11 @@ fn main_figures(problem: &Problem, solved: &Solved, style: Style) -> String {
     let holds = |sought: fn(HeldWhat) -> bool| problem.held.iter().any(|held| sought(held.what));
     let held = |is_held: bool| if is_held { "held" } else { "" };
     let ph_held = holds(|what| matches!(what, HeldWhat::Ph(_)));
-    row("pH", decimals(solved.ph(), 3), held(ph_held));
+    let ph = decimals(solved.ph(), 3);
+    match ph_uncertainty(problem, solved) {
+        Some(u) => row("pH", format!("{ph} ± {}", decimals(u, 3)), "from its constants"),
+        None => row("pH", ph, held(ph_held)),
+    }
     if let Some(pe) = solved.value(problem, Sought::Pe) {
         row("pe", decimals(pe, 3), held(holds(|what| matches!(what, HeldWhat::Pe(_)))));
     }

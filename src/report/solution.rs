@@ -14,6 +14,7 @@ use crate::chemistry::quantity::Scale;
 use crate::chemistry::water;
 use crate::equilibrium::quantities::Solved;
 use crate::equilibrium::system::Failure;
+use crate::equilibrium::uncertainty::ph_uncertainty;
 use crate::problem::model::{Problem, Sought};
 use crate::problem::scope::PROTON;
 use crate::rules::check::Checked;
@@ -166,7 +167,7 @@ fn answer<'a>(
         activity_model: problem.activity.name(),
         scale: super::figures::scale_unit(problem.scale),
         ph: value(Sought::Ph),
-        ph_uncertainty: None,
+        ph_uncertainty: ph_uncertainty(problem, solved),
         ionic_strength: value(Sought::IonicStrength),
         alkalinity: value(Sought::Alkalinity),
         buffer_capacity: value(Sought::BufferCapacity),

@@ -54,7 +54,7 @@ fn one(derivation: &Derivation) -> String {
             .collect();
         display("Multipliers", &lines);
         lines = vec![
-            format!("  &\\text{{{}}}", protons.combination("$-$", |name| ce(name))),
+            format!("  &\\text{{{}}}", protons.combination("$-$", ce)),
             equation(&protons.sheet),
         ];
         display("Proton condition", &lines);
