@@ -134,7 +134,9 @@ def drawn(row, top: float, background: str):
         if look.under:
             line = look.line or ink
             y = top + HEIGHT - 2.5
-            path = wave(left, right, y) if look.under == "curly" else f"M{number(left)} {number(y)}H{number(right)}"
+            path = f"M{number(left)} {number(y)}H{number(right)}"
+            if look.under == "curly":
+                path = wave(left, right, y)
             yield f'<path d="{path}" fill="none" stroke="{line}" stroke-width="1.3"/>'
         # Each word by itself: white space between words is not fitted alike everywhere.
         for word in re.finditer(r"\S+(?: \S+)*", text):
@@ -143,8 +145,8 @@ def drawn(row, top: float, background: str):
             style += ' font-weight="bold"' if look.bold else ""
             style += ' font-style="italic"' if look.italic else ""
             length = len(word.group()) * WIDTH
-            yield (f'<text x="{number(x)}" y="{number(top + 13)}" textLength="{number(length)}"{style}>'
-                   f"{html.escape(word.group(), quote=False)}</text>")
+            place = f'x="{number(x)}" y="{number(top + 13)}" textLength="{number(length)}"'
+            yield f"<text {place}{style}>{html.escape(word.group(), quote=False)}</text>"
 
 
 def main() -> None:
@@ -163,9 +165,8 @@ def main() -> None:
           f'fill="{INK}" xml:space="preserve">')
     print(f"<title>{html.escape(title)}</title>")
     print(f'<rect width="100%" height="100%" rx="8" fill="{background}"/>')
-    for index, shade in enumerate(["#5a5f6b", "#5a5f6b", "#5a5f6b"]):
-        print(f'<circle cx="{20 + 18 * index}" cy="15" r="5" fill="{shade}"/>')
-    print(f'<text x="50%" y="19" text-anchor="middle" fill="#9b9ea4" font-size="12">{html.escape(title)}</text>')
+    print(f'<text x="50%" y="19" text-anchor="middle" fill="#9b9ea4" font-size="12">'
+          f"{html.escape(title)}</text>")
     for index, row in enumerate(rows):
         for shape in drawn(row, BAR + index * HEIGHT, background):
             print(shape)
