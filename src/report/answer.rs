@@ -24,7 +24,7 @@ pub fn answer(checked: &Checked, stated: Stated, solved: &Solved, style: Style) 
     let problem = &stated.outcome.problem;
     let mut text = conditions(problem) + "\n\n";
     text += &main_figures(problem, solved, style);
-    let ledger = Ledger::new(problem, Some(solved));
+    let ledger = Ledger::new(stated.outcome);
     for (title, body) in [
         ("Dissolved", species(problem, solved, style)),
         ("Components", components(problem, solved, style)),
@@ -245,7 +245,7 @@ fn protons(ledger: &Ledger, problem: &Problem, style: Style) -> String {
     if problem.held.iter().any(|held| matches!(held.what, HeldWhat::Ph(_))) {
         return String::new();
     }
-    ledger.protons(&[]).map_or(String::new(), |(protons, _)| sheet(&protons, problem.scale, style))
+    ledger.protons().map_or(String::new(), |(protons, _)| sheet(&protons, problem.scale, style))
 }
 
 fn expectations(checked: &Checked, stated: Stated, solved: &Solved, style: Style) -> String {
