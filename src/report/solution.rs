@@ -5,10 +5,10 @@
 use num_traits::ToPrimitive;
 use serde::Serialize;
 
-use super::expectation::{line, verdict};
+use super::expectation::verdict;
 use super::sheet::{Ledger, Sheet};
 use super::sheet_json::SheetJson;
-use super::source::{FileReport, Stated};
+use super::source::{FileReport, Source, Stated};
 use crate::chemistry::formula::Phase;
 use crate::chemistry::quantity::Scale;
 use crate::chemistry::water;
@@ -17,7 +17,7 @@ use crate::equilibrium::system::Failure;
 use crate::equilibrium::uncertainty::ph_uncertainty;
 use crate::problem::model::{Problem, Sought};
 use crate::problem::scope::PROTON;
-use crate::rules::check::Checked;
+use crate::rules::check::{Checked, locate_place};
 use crate::rules::outcome::{Outcome, State};
 
 #[derive(Serialize)]
@@ -132,7 +132,7 @@ pub fn json(file: &FileReport, problems: &[Stated]) -> serde_json::Result<String
                 case: stated.case,
                 status: status(&stated.outcome.state),
                 answer: file.checked().zip(stated.outcome.solved()).map(|(checked, solved)| {
-                    answer(checked, stated.section, stated.outcome, solved)
+                    answer(&file.source, checked, stated.section, stated.outcome, solved)
                 }),
             })
             .collect(),
@@ -151,6 +151,7 @@ pub fn status(state: &State) -> &'static str {
 }
 
 fn answer<'a>(
+    source: &Source,
     checked: &Checked,
     section: usize,
     outcome: &'a Outcome,
@@ -199,7 +200,9 @@ fn answer<'a>(
                     quantity: &expectation.words,
                     value: finite(verdict.value),
                     met: verdict.met,
-                    line: line(checked, section, expectation),
+                    line: source
+                        .region(&locate_place(&checked.document, section, expectation.at))
+                        .line,
                 }
             })
             .collect(),
