@@ -148,7 +148,7 @@ fn snippet() -> BoxedStrategy<String> {
 }
 
 proptest! {
-    #![proptest_config(ProptestConfig::with_cases(if cfg!(debug_assertions) { 600 } else { 20_000 }))]
+    #![proptest_config(ProptestConfig::with_cases(if cfg!(debug_assertions) { 600 } else { 5_000 }))]
 
     #[test]
     fn a_printed_statement_reads_as_the_same_tree(statement in statement()) {

@@ -33,19 +33,3 @@ pub fn celsius(kelvin: f64) -> String {
     // Adding zero takes the sign from minus zero.
     format!("{} °C", degrees + 0.0).replace('-', "−")
 }
-
-/// A measured value with as many digits as help: four significant ones, powers of ten past
-/// six places.
-pub fn figure(value: f64) -> String {
-    if value == 0.0 {
-        return "0".into();
-    }
-    let size = value.abs().log10().floor();
-    if !(-4.0..6.0).contains(&size) {
-        let text = format!("{value:.3e}");
-        return text.replace('-', "−").replace("e−", "e-");
-    }
-    let places = (3.0 - size).clamp(0.0, 8.0) as usize;
-    let text = format!("{value:.places$}");
-    text.replace('-', "−")
-}

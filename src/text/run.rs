@@ -9,6 +9,7 @@ pub(super) fn word(start: &str, rest: &str) -> (Token, usize) {
     if start == "e"
         && let Some(minus) = rest.chars().next()
         && matches!(minus, '-' | '−' | '–' | '⁻')
+        && !rest[minus.len_utf8()..].starts_with(|next: char| next.is_ascii_lowercase())
     {
         return (Token::Electron, minus.len_utf8());
     }

@@ -15,10 +15,17 @@ vim.api.nvim_create_autocmd('LspAttach', {
       return
     end
     vim.lsp.inlay_hint.enable(true, { bufnr = event.buf })
-    -- Findings follow each keystroke, not only the end of typing.
+    -- Findings follow each keystroke, not only the end of typing. Beside a line stands the
+    -- name of its rule, since the sentences are long; under the cursor's line, all of it.
     for _, pulled in ipairs({ false, true }) do
-      local namespace = vim.lsp.diagnostic.get_namespace(client.id, pulled)
-      vim.diagnostic.config({ update_in_insert = true, virtual_text = true }, namespace)
+      vim.diagnostic.config({
+        update_in_insert = true,
+        virtual_text = { format = function(finding) return finding.code end },
+        virtual_lines = {
+          current_line = true,
+          format = function(finding) return finding.message end,
+        },
+      }, vim.lsp.diagnostic.get_namespace(client.id, pulled))
     end
   end,
 })

@@ -75,10 +75,10 @@ fn constant(
     let should_be = TermOf::Constant(part);
     let words = term_words(problem, should_be, coefficient);
     let of = kind_words(problem, wrong.balance.kind);
-    let finding = RULE.at(term.at, format!("{name} in {of} should be {words}"));
+    let finding = RULE.at(term.at, format!("`{name}` in {of} should be `{words}`"));
     let text = term_text(problem, should_be, coefficient);
     match text.filter(|_| coefficient.is_positive() && term.coefficient.is_positive()) {
-        Some(text) => finding.with_fix(format!("write {text}"), false, term.at, text),
+        Some(text) => finding.with_fix(format!("write `{text}`"), false, term.at, text),
         None => finding,
     }
 }
@@ -98,13 +98,13 @@ fn amount(
         (Some(number), Some(unit)) => format!("{number} {}", unit.value),
         _ => concentration(should_be, problem.scale),
     };
-    let mut finding = RULE.at(term.at, format!("{name} in {of} should be {needed}"));
+    let mut finding = RULE.at(term.at, format!("`{name}` in {of} should be {needed}"));
     if let BalanceKindResolved::Component(j) = wrong.balance.kind
         && term.coefficient.is_one()
         && is_only_constant(wrong, term)
     {
         let total = format!("total {}", problem.scope.components[j].formula.name);
-        finding = finding.with_fix(format!("write {total}"), false, term.at, total);
+        finding = finding.with_fix(format!("write `{total}`"), false, term.at, total);
     }
     if let (Some(number), Some(quantity)) = (written, quantity) {
         let at = Place { span: quantity.number.span, ..term.at };

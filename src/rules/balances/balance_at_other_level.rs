@@ -44,7 +44,7 @@ fn find(context: &Context, found: &mut Vec<Finding<Place>>) {
         let Verdict::OtherLevel(made) = &compared.verdict else { continue };
         let balance = &context.problem.balances[compared.balance];
         let message = format!(
-            "right, at another reference level: the combination {} of the charge and mass balances",
+            "right, at another reference level: the combination `{}` of the charge and mass balances",
             combination(context.problem, made)
         );
         found.push(RULE.at(balance.at, message));

@@ -74,11 +74,11 @@ fn finding(
         let to = if should_be.is_negative() { other(side) } else { side };
         let amount = if count.is_one() { name.to_owned() } else { format!("{count} {name}") };
         let message = if to == side {
-            format!("{name} adds to this side of {of}, and is taken off it")
+            format!("`{name}` adds to this side of {of}, and is taken off it")
         } else if count == term.coefficient.abs() {
-            format!("{name} belongs {} of {of}", on(to))
+            format!("`{name}` belongs {} of {of}", on(to))
         } else {
-            format!("{name} belongs {} of {of}, with the coefficient {count}", on(to))
+            format!("`{name}` belongs {} of {of}, with the coefficient {count}", on(to))
         };
         let finding = RULE.at(term.at, message);
         return match wrong.remove(index).zip(wrong.append(to, &[amount])) {
@@ -93,7 +93,7 @@ fn finding(
     }
     let at = term.coefficient_at.unwrap_or(term.at);
     let message = format!(
-        "the coefficient of {name} in {of} is {} and should be {count}{}",
+        "the coefficient of `{name}` in {of} is {} and should be {count}{}",
         term.coefficient.abs(),
         reason(context, wrong.balance.kind, term, count),
     );
@@ -131,7 +131,7 @@ fn reason(
             let held = species.row.iter().find(|&&(k, _)| k == j).map(|&(_, n)| n);
             match held {
                 Some(held) if held == count => {
-                    format!(": it holds {held} {}", kind.words(&context.problem.scope))
+                    format!(": it holds {held} `{}`", kind.words(&context.problem.scope))
                 }
                 _ => String::new(),
             }

@@ -53,13 +53,13 @@ fn find(context: &Context, found: &mut Vec<Finding<Place>>) {
             let name = bare(context, term);
             let of = kind_words(context.problem, kind);
             let message = if twice {
-                format!("{name} stands in {of} already")
+                format!("`{name}` stands in {of} already")
             } else {
-                format!("{name} does not belong in {of}{}", reason(context, kind, term))
+                format!("`{name}` does not belong in {of}{}", reason(context, kind, term))
             };
             let mut finding = RULE.at(term.at, message);
             if let Some(edit) = wrong.remove(index) {
-                finding = finding.with_edits(format!("take {name} out"), false, vec![edit]);
+                finding = finding.with_edits(format!("take `{name}` out"), false, vec![edit]);
             }
             found.push(finding);
         }
@@ -72,7 +72,7 @@ fn reason(context: &Context, kind: BalanceKindResolved, term: &WrittenTerm) -> S
     match kind {
         BalanceKindResolved::Charge if species.charge == 0 => ": it carries no charge".to_owned(),
         BalanceKindResolved::Component(j) if species.row.iter().all(|&(k, _)| k != j) => {
-            format!(": it holds no {}", kind.words(&context.problem.scope))
+            format!(": it holds no `{}`", kind.words(&context.problem.scope))
         }
         BalanceKindResolved::Protons => ": it is at the reference level".to_owned(),
         _ => String::new(),

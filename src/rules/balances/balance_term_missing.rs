@@ -33,7 +33,7 @@ use crate::balance::written::{Difference, Side, TermOf};
 use crate::rules::catalogue::rule;
 use crate::rules::context::Context;
 use crate::rules::finding::Finding;
-use crate::rules::words::list;
+use crate::rules::words::names;
 use crate::text::span::Place;
 
 rule!("balance-term-missing", Error, "balance_term_missing.rs", find);
@@ -62,7 +62,7 @@ fn find(context: &Context, found: &mut Vec<Finding<Place>>) {
             let verb = if words.len() == 1 { "is" } else { "are" };
             let message = format!(
                 "{} {verb} missing {} of {}",
-                list(&words, "and"),
+                names(&words, "and"),
                 on(side),
                 kind_words(problem, wrong.balance.kind),
             );
@@ -70,7 +70,7 @@ fn find(context: &Context, found: &mut Vec<Finding<Place>>) {
             let texts: Option<Vec<String>> =
                 missing.iter().map(|&(term, n)| term_text(problem, term, n)).collect();
             if let Some(edit) = texts.and_then(|texts| wrong.append(side, &texts)) {
-                finding = finding.with_edits(format!("add {}", list(&words, "and")), false, vec![edit]);
+                finding = finding.with_edits(format!("add {}", names(&words, "and")), false, vec![edit]);
             }
             found.push(finding);
         }

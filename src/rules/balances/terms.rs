@@ -163,7 +163,7 @@ pub fn kind_words(problem: &Problem, kind: BalanceKindResolved) -> String {
         BalanceKindResolved::Charge => "the charge balance".to_owned(),
         BalanceKindResolved::Protons => "the proton balance".to_owned(),
         BalanceKindResolved::Component(_) => {
-            format!("the balance of {}", kind.words(&problem.scope))
+            format!("the balance of `{}`", kind.words(&problem.scope))
         }
     }
 }

@@ -41,7 +41,7 @@ fn find(context: &Context, found: &mut Vec<Finding<Place>>) {
             }
             other => format!("write `expect {other} = …` to see whether it is met"),
         };
-        let message = format!("{subject} is an outcome and cannot be held by itself");
+        let message = format!("`{subject}` is an outcome and cannot be held by itself");
         found.push(RULE.at(defect.at, message).with_help(help));
     }
 }

@@ -63,7 +63,7 @@ fn find(context: &Context, found: &mut Vec<Finding<Place>>) {
     let (cations, anions) = solved.charges();
     let charge = cations - anions;
     let message = format!(
-        "with {} held, {} of {} is missing: {} of all charge",
+        "with `{}` held, {} of {} is missing: {} of all charge",
         held.words,
         equivalents(charge.abs(), problem.scale),
         counter_charge(charge),

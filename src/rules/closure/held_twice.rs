@@ -43,9 +43,9 @@ fn find(context: &Context, found: &mut Vec<Finding<Place>>) {
         let first = context.text(*other).trim_start_matches("hold").trim_start();
         let same = first.starts_with(subject.as_str());
         let message = if same {
-            format!("{subject} is held twice")
+            format!("`{subject}` is held twice")
         } else {
-            format!("{first} is held already, and fixes {subject}")
+            format!("`{first}` is held already, and fixes `{subject}`")
         };
         let finding = RULE
             .at(defect.at, message)

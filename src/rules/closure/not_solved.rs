@@ -34,7 +34,7 @@ use crate::rules::context::Context;
 use crate::rules::figures::percent;
 use crate::rules::finding::Finding;
 use crate::rules::outcome::State;
-use crate::rules::words::list;
+use crate::rules::words::names;
 use crate::text::span::Place;
 
 rule!("not-solved", Error, "not_solved.rs", find);
@@ -67,10 +67,10 @@ fn name(context: &Context, component: usize) -> String {
 
 fn infeasible(context: &Context, component: usize) -> Option<Finding<Place>> {
     let name = name(context, component);
-    let message = format!("no state of this solution holds this amount of {name}");
+    let message = format!("no state of this solution holds this amount of `{name}`");
     let finding = RULE.at(place_of(context, component)?, message);
     Some(finding.with_help(format!(
-        "a reaction that binds {name} may be missing, or another amount that goes with it"
+        "a reaction that binds `{name}` may be missing, or another amount that goes with it"
     )))
 }
 
@@ -80,10 +80,10 @@ fn dependent(
     fixed: &[usize],
 ) -> Option<Finding<Place>> {
     let held: Vec<_> = fixed.iter().filter_map(|&k| context.problem.held.get(k)).collect();
-    let names: Vec<String> = components.iter().map(|&j| name(context, j)).collect();
+    let all: Vec<String> = components.iter().map(|&j| name(context, j)).collect();
     if let Some((last, others)) = held.split_last() {
         let all: Vec<String> = held.iter().map(|held| held.words.clone()).collect();
-        let message = format!("{} cannot all be held: one follows from the others", list(&all, "and"));
+        let message = format!("{} cannot all be held: one follows from the others", names(&all, "and"));
         let mut finding = RULE.at(last.at, message).with_help("leave one of them out");
         for other in others {
             finding = finding.with_related(other.at, "held here");
@@ -91,7 +91,7 @@ fn dependent(
         return Some(finding);
     }
     let (&last, others) = components.split_last()?;
-    let message = format!("every species holds {} in one proportion", list(&names, "and"));
+    let message = format!("every species holds {} in one proportion", names(&all, "and"));
     let mut finding = RULE.at(place_of(context, last)?, message);
     for &other in others {
         if let Some(at) = place_of(context, other) {

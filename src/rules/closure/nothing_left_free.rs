@@ -46,8 +46,8 @@ fn find(context: &Context, found: &mut Vec<Finding<Place>>) {
         let mut finding = RULE.at(
             defect.at,
             match given {
-                Some(_) => format!("{subject} is held, and the amount it would set is given too"),
-                None => format!("{subject} is held, and no total is free to meet it"),
+                Some(_) => format!("`{subject}` is held, and the amount it would set is given too"),
+                None => format!("`{subject}` is held, and no total is free to meet it"),
             },
         );
         if let Some(given) = given {

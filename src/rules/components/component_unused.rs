@@ -35,12 +35,12 @@ rule!("component-unused", Warning, "component_unused.rs", find);
 fn find(context: &Context, found: &mut Vec<Finding<Place>>) {
     for defect in context.defects() {
         let DefectKind::ComponentUnused { name } = &defect.kind else { continue };
-        let message = format!("{name} is given no amount, and nothing speaks of it");
+        let message = format!("`{name}` is given no amount, and nothing speaks of it");
         let mut finding = RULE.at(defect.at, message).with_help(format!(
             "write `total {name} = …`, `add` a reagent that holds it, or take it off the list"
         ));
         if let Some(edit) = listing::remove(context, defect.at) {
-            finding = finding.with_edits(format!("take {name} off the list"), false, vec![edit]);
+            finding = finding.with_edits(format!("take `{name}` off the list"), false, vec![edit]);
         }
         found.push(finding);
     }

@@ -33,7 +33,7 @@ use crate::problem::defect::{Defect, DefectKind};
 use crate::rules::catalogue::rule;
 use crate::rules::context::Context;
 use crate::rules::finding::{Finding, Severity};
-use crate::rules::words::list;
+use crate::rules::words::names;
 use crate::text::span::Place;
 
 rule!("components-not-independent", Error, "components_not_independent.rs", find);
@@ -49,7 +49,7 @@ fn find(context: &Context, found: &mut Vec<Finding<Place>>) {
         if let Some(edit) = listing::remove(context, defect.at) {
             // Taking a surplus name away changes nothing; which of two tied ones to keep is
             // the writer's choice.
-            let title = format!("take {name} off the list");
+            let title = format!("take `{name}` off the list");
             finding = finding.with_edits(title, from.is_empty(), vec![edit]);
         }
         found.push(finding);
@@ -60,9 +60,9 @@ fn surplus(context: &Context, defect: &Defect, name: &str) -> Finding<Place> {
     let first = context.problem.scope.components.iter().find(|c| c.formula.name == name);
     match first.and_then(|component| component.at) {
         Some(first) => RULE
-            .at(defect.at, format!("{name} is listed twice"))
+            .at(defect.at, format!("`{name}` is listed twice"))
             .with_related(first, "the first time"),
-        None => RULE.at(defect.at, format!("{name} is always a component and need not be listed")),
+        None => RULE.at(defect.at, format!("`{name}` is always a component and need not be listed")),
     }
     .with_severity(Severity::Warning)
 }
@@ -77,16 +77,16 @@ fn tied(
         let last = link.last().map(|&(j, _)| scope.components[j].formula.name.as_str());
         (last == Some(name)).then(|| scope.reactions[*r].equation.as_str())
     });
-    let by = equation.map_or_else(String::new, |equation| format!(" by {equation}"));
-    let others = list(from, "and");
-    let message = format!("{name} can be made of {others}{by}, so it is no component of its own");
+    let by = equation.map_or_else(String::new, |equation| format!(" by `{equation}`"));
+    let others = names(from, "and");
+    let message = format!("`{name}` can be made of {others}{by}, so it is no component of its own");
     let mut finding = RULE.at(defect.at, message);
     let listed: Vec<String> = from.iter().filter(|n| !matches!(n.as_str(), "H+" | "H2O")).cloned().collect();
     finding = if listed.is_empty() {
-        finding.with_help(format!("{others} is always a component: leave {name} out"))
+        finding.with_help(format!("{others} is always a component: leave `{name}` out"))
     } else {
-        let one = list(&[listed, vec![name.to_owned()]].concat(), "and");
-        finding.with_help(format!("of {one} one is too many: give what is left the whole total"))
+        let both = names(&[listed, vec![name.to_owned()]].concat(), "and");
+        finding.with_help(format!("of {both} one is too many: give what is left the whole total"))
     };
     if let Some(reaction) = reaction {
         finding = finding.with_related(reaction, "by this reaction");

@@ -31,7 +31,7 @@ use crate::problem::defect::DefectKind;
 use crate::rules::catalogue::rule;
 use crate::rules::context::Context;
 use crate::rules::finding::Finding;
-use crate::rules::words::list;
+use crate::rules::words::names;
 use crate::text::span::Place;
 
 rule!("not-a-component", Error, "not_a_component.rs", find);
@@ -43,28 +43,28 @@ fn find(context: &Context, found: &mut Vec<Finding<Place>>) {
         let belongs = scope.find(name).is_some_and(|s| scope.belongs(s));
         found.push(match components.as_slice() {
             [] if belongs => {
-                let message = format!("{name} is made of water alone and has no total of its own");
+                let message = format!("`{name}` is made of water alone and has no total of its own");
                 RULE.at(defect.at, message)
             }
             [] => {
-                let message = format!("{name} is not a component of this problem");
+                let message = format!("`{name}` is not a component of this problem");
                 let finding = RULE.at(defect.at, message);
                 match listing::add(context, name) {
                     Some(edit) => {
-                        let title = format!("list {name} as a component");
+                        let title = format!("list `{name}` as a component");
                         finding.with_edits(title, false, vec![edit])
                     }
                     None => finding.with_help(format!("write `component {name}`")),
                 }
             }
             [one] => {
-                let message = format!("{name} is not a component; it is a form of {one}");
-                let title = format!("write {one}");
+                let message = format!("`{name}` is not a component; it is a form of `{one}`");
+                let title = format!("write `{one}`");
                 RULE.at(defect.at, message).with_fix(title, false, defect.at, one.clone())
             }
             several => {
-                let made_of = list(several, "and");
-                RULE.at(defect.at, format!("{name} is not a component; it is made of {made_of}"))
+                let made_of = names(several, "and");
+                RULE.at(defect.at, format!("`{name}` is not a component; it is made of {made_of}"))
             }
         });
     }

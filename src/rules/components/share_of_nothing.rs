@@ -34,7 +34,7 @@ rule!("share-of-nothing", Error, "share_of_nothing.rs", find);
 fn find(context: &Context, found: &mut Vec<Finding<Place>>) {
     for defect in context.defects() {
         let DefectKind::HasNoShare { name } = &defect.kind else { continue };
-        let message = format!("{name} holds no component, so it is no share of one");
+        let message = format!("`{name}` holds no component, so it is no share of one");
         let help = format!("for how much of it there is, write `[{name}]`");
         found.push(RULE.at(defect.at, message).with_help(help));
     }

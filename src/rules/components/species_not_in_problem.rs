@@ -32,7 +32,7 @@ use crate::problem::reaction::Origin;
 use crate::rules::catalogue::rule;
 use crate::rules::context::Context;
 use crate::rules::finding::Finding;
-use crate::rules::words::list;
+use crate::rules::words::names;
 use crate::text::span::Place;
 use crate::text::tree::Statement;
 
@@ -55,23 +55,23 @@ fn finding(
 ) -> Finding<Place> {
     let alone = missing.iter().all(|other| other == name);
     let message = if missing.is_empty() {
-        format!("{name} is not in this problem: no component and no reaction names it")
+        format!("`{name}` is not in this problem: no component and no reaction names it")
     } else if alone {
-        format!("{name} is not in this problem: it is not listed as a component")
+        format!("`{name}` is not in this problem: it is not listed as a component")
     } else {
-        let missing = list(missing, "and");
-        format!("{name} is not in this problem: its component {missing} is not listed")
+        let missing = names(missing, "and");
+        format!("`{name}` is not in this problem: its component {missing} is not listed")
     };
     let mut finding = RULE.at(defect.at, message);
     if let Some(nearest) = nearest {
-        finding = finding.with_fix(format!("write {nearest}"), false, defect.at, nearest);
+        finding = finding.with_fix(format!("write `{nearest}`"), false, defect.at, nearest);
     }
     if missing.is_empty() {
         return finding;
     }
     let wanted = missing.join(", ");
     match listing::add(context, &wanted) {
-        Some(edit) => finding.with_edits(format!("list {wanted} as a component"), false, vec![edit]),
+        Some(edit) => finding.with_edits(format!("list `{wanted}` as a component"), false, vec![edit]),
         None => finding.with_help(format!("write `component {wanted}`")),
     }
 }

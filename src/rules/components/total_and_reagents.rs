@@ -31,7 +31,7 @@ use crate::problem::defect::DefectKind;
 use crate::rules::catalogue::rule;
 use crate::rules::context::Context;
 use crate::rules::finding::Finding;
-use crate::rules::words::list;
+use crate::rules::words::names;
 use crate::text::span::Place;
 
 rule!("total-and-reagents", Error, "total_and_reagents.rs", find);
@@ -47,14 +47,14 @@ fn find(context: &Context, found: &mut Vec<Finding<Place>>) {
         }
     }
     for (at, name, reagents) in totals {
-        let names: Vec<String> = reagents.iter().map(|at| context.text(*at).to_owned()).collect();
-        let bring = if names.len() == 1 { "brings" } else { "bring" };
-        let message = format!("{name} has a total here, and {} {bring} it too", list(&names, "and"));
+        let added: Vec<String> = reagents.iter().map(|at| context.text(*at).to_owned()).collect();
+        let bring = if added.len() == 1 { "brings" } else { "bring" };
+        let message = format!("`{name}` has a total here, and {} {bring} it too", names(&added, "and"));
         let mut finding = RULE.at(at, message);
         for reagent in reagents {
-            finding = finding.with_related(reagent, format!("brings {name}"));
+            finding = finding.with_related(reagent, format!("brings `{name}`"));
         }
-        let help = format!("give {name} by reagents alone, or by a total that counts all of it");
+        let help = format!("give `{name}` by reagents alone, or by a total that counts all of it");
         found.push(finding.with_help(help));
     }
 }

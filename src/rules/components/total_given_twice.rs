@@ -41,7 +41,7 @@ fn find(context: &Context, found: &mut Vec<Finding<Place>>) {
     for defect in context.defects() {
         let DefectKind::TotalTwice { name, other } = &defect.kind else { continue };
         let finding = RULE
-            .at(defect.at, format!("the total of {name} is given twice"))
+            .at(defect.at, format!("the total of `{name}` is given twice"))
             .with_related(*other, "the first time")
             .with_help("keep one of them, or move the other into a case");
         found.push(finding);

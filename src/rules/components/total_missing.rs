@@ -37,7 +37,7 @@ rule!("total-missing", Error, "total_missing.rs", find);
 fn find(context: &Context, found: &mut Vec<Finding<Place>>) {
     for defect in context.defects() {
         let DefectKind::TotalMissing { name } = &defect.kind else { continue };
-        let message = format!("nothing says how much {name} there is");
+        let message = format!("nothing says how much `{name}` there is");
         found.push(RULE.at(defect.at, message).with_help(format!(
             "write `total {name} = …`, `add` a reagent that holds it, or `hold` one of its species"
         )));

@@ -41,10 +41,10 @@ fn find(context: &Context, found: &mut Vec<Finding<Place>>) {
         let written = context.statement(defect.at).map(|written| written.statement());
         found.push(match written {
             Some(Statement::Total { .. }) => {
-                RULE.at(defect.at, format!("the total of {name} is {value}, below zero"))
+                RULE.at(defect.at, format!("the total of `{name}` is {value}, below zero"))
             }
             _ => RULE
-                .at(defect.at, format!("the reagents add up to {value} of {name}, below zero"))
+                .at(defect.at, format!("the reagents add up to {value} of `{name}`, below zero"))
                 .with_help("list another form of this component, such as the one put in"),
         });
     }

@@ -46,9 +46,9 @@ fn find(context: &Context, found: &mut Vec<Finding<Place>>) {
             Some(formula) => words(&formula.phase),
             None => "of another phase",
         };
-        let mut finding = RULE.at(defect.at, format!("{name} is {is}; this takes {needs}"));
+        let mut finding = RULE.at(defect.at, format!("`{name}` is {is}; this takes {needs}"));
         if let Some(other) = species.and_then(|s| in_phase(scope, &scope.species[s], needs)) {
-            finding = finding.with_fix(format!("write {other}"), false, defect.at, other);
+            finding = finding.with_fix(format!("write `{other}`"), false, defect.at, other);
         }
         found.push(finding);
     }

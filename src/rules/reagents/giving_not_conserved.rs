@@ -52,7 +52,7 @@ fn find(context: &Context, found: &mut Vec<Finding<Place>>) {
             Some(Statement::Add { reagent, .. }) => reagent.value.as_str(),
             _ => "the reagent",
         };
-        let message = format!("for one {reagent} this adds up to {}", list(&differences, "and"));
+        let message = format!("for one `{reagent}` this adds up to {}", list(&differences, "and"));
         found.push(RULE.at(at, message));
     }
 }

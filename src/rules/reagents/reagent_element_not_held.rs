@@ -42,7 +42,7 @@ fn find(context: &Context, found: &mut Vec<Finding<Place>>) {
         let (name, element) = match &defect.kind {
             DefectKind::ReagentHoldsForeign { name, element } => (name, element),
             DefectKind::ReagentNotMade { name } => {
-                let message = format!("no sum of the components makes up {name}");
+                let message = format!("no sum of the components makes up `{name}`");
                 let help = "list the form of each element that it brings, and e- where one is \
                             oxidised or reduced";
                 found.push(RULE.at(defect.at, message).with_help(help));
@@ -50,16 +50,16 @@ fn find(context: &Context, found: &mut Vec<Finding<Place>>) {
             }
             _ => continue,
         };
-        let message = format!("{name} holds {element}, and no component does");
+        let message = format!("`{name}` holds {element}, and no component does");
         let mut finding = RULE.at(defect.at, message);
         let holder = holder(context, name, element);
         if let Some(holder) = &holder
             && let Some(edit) = listing::add(context, holder)
         {
-            let title = format!("list {holder} as a component");
+            let title = format!("list `{holder}` as a component");
             finding = finding.with_edits(title, false, vec![edit]);
         }
-        let such = holder.map_or_else(String::new, |holder| format!(", such as {holder}"));
+        let such = holder.map_or_else(String::new, |holder| format!(", such as `{holder}`"));
         let help = format!("list a component that holds {element}{such}");
         found.push(finding.with_help(help));
     }

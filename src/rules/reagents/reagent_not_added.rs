@@ -53,7 +53,7 @@ fn find(context: &Context, found: &mut Vec<Finding<Place>>) {
         if added.contains(name) {
             continue;
         }
-        let message = format!("{name} is not put in, so there is no `added {name}`");
+        let message = format!("`{name}` is not put in, so there is no `added {name}`");
         let mut finding = RULE.at(defect.at, message).with_help(format!("write `add {name} …`"));
         let nearest = added
             .iter()
@@ -61,7 +61,7 @@ fn find(context: &Context, found: &mut Vec<Finding<Place>>) {
             .filter(|(distance, _)| *distance <= 2)
             .min();
         if let Some((_, nearest)) = nearest {
-            let title = format!("write {nearest}");
+            let title = format!("write `{nearest}`");
             finding = finding.with_fix(title, false, defect.at, nearest.clone());
         }
         found.push(finding);

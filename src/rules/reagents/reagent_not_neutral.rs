@@ -37,14 +37,14 @@ fn find(context: &Context, found: &mut Vec<Finding<Place>>) {
     for defect in context.defects() {
         let DefectKind::ReagentNotNeutral { name, charge } = &defect.kind else { continue };
         let left = signed((*charge).into());
-        let message = format!("{name} is put in alone and leaves a charge of {left}");
+        let message = format!("`{name}` is put in alone and leaves a charge of {left}");
         let kind = if *charge > 0 { "an anion" } else { "a cation" };
         let mut finding = RULE.at(defect.at, message);
         finding = match salt(name, *charge) {
             Some((salt, counter_ion)) => {
                 let known = context.problem.scope.component(counter_ion).is_some();
                 if known {
-                    let title = format!("put it in as {salt}");
+                    let title = format!("put it in as `{salt}`");
                     finding = finding.with_fix(title, false, defect.at, salt.clone());
                 }
                 finding.with_help(format!(

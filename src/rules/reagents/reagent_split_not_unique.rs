@@ -38,7 +38,7 @@ rule!("reagent-split-not-unique", Error, "reagent_split_not_unique.rs", find);
 fn find(context: &Context, found: &mut Vec<Finding<Place>>) {
     for defect in context.defects() {
         let DefectKind::ReagentNotUnique { name } = &defect.kind else { continue };
-        let message = format!("{name} can be made of the components in more than one way");
+        let message = format!("`{name}` can be made of the components in more than one way");
         let help = format!("say what it falls into: `add {name} …, giving …`");
         found.push(RULE.at(defect.at, message).with_help(help));
     }
