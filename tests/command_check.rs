@@ -65,6 +65,26 @@ fn a_path_that_is_not_there_is_a_matter_of_usage() {
 }
 
 #[test]
+fn imports_stay_below_the_root() {
+    let user = "use \"../shared.lyate\"\nuse aqueous\ncomponent NH3\ntotal NH3 = 1 mmol/L\n";
+    let folder = folder(&[("shared.lyate", "group Hum\n"), ("site/tank.lyate", user)]);
+    let rules = |arguments: &[&str]| -> Vec<String> {
+        let output = run(folder.path(), arguments);
+        let report: Value = serde_json::from_slice(&output.stdout).unwrap();
+        let findings = report["findings"].as_array().unwrap().iter();
+        findings.map(|finding| finding["rule"].as_str().unwrap().to_owned()).collect()
+    };
+    let tank = ["check", "site/tank.lyate", "--output", "json"];
+    assert_eq!(rules(&[&tank[..], &["--root", "."]].concat()), [""; 0]);
+    assert_eq!(rules(&[&tank[..], &["--root", "site"]].concat()), ["import-outside-root"]);
+    for command in [&["check"][..], &["solve", "site/tank.lyate"], &["derive", "site/tank.lyate"]] {
+        let output = run(folder.path(), &[command, &["--root", "gone"]].concat());
+        assert_eq!(code(&output), 2);
+        assert_eq!(stderr(&output), "lyate: --root gone: there is no such folder\n");
+    }
+}
+
+#[test]
 fn an_empty_folder_says_so() {
     let folder = folder(&[("notes.txt", "nothing to see")]);
     let output = run(folder.path(), &["check"]);

@@ -68,11 +68,8 @@ pub fn run(arguments: &Arguments) -> Result<Reply, Complaint> {
     if paths.is_empty() {
         paths.push(PathBuf::from("."));
     }
-    if let Some(root) = arguments.root.as_ref().filter(|root| !root.is_dir()) {
-        return Err(Complaint(format!("--root {}: there is no such folder", root.display())));
-    }
     let found = find(&paths).map_err(Complaint)?;
-    let files = Checker::new(arguments.root.as_ref()).check_all(&found);
+    let files = Checker::new(arguments.root.as_ref())?.check_all(&found);
     let summary = Summary::of(&files);
     let fail_on = match arguments.fail_on {
         FailOn::Error => Severity::Error,

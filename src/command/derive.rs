@@ -49,7 +49,7 @@ enum Form {
 }
 
 pub fn run(arguments: &Arguments) -> Result<Reply, Complaint> {
-    let file = Checker::new(arguments.root.as_ref()).check(&arguments.file);
+    let file = Checker::new(arguments.root.as_ref())?.check(&arguments.file);
     readable(&file)?;
     let problems = chosen(&file, arguments.case.as_deref())?;
     let derivations: Vec<Derivation> = problems.iter().map(Derivation::new).collect();

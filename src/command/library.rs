@@ -6,6 +6,7 @@ use std::sync::atomic::{AtomicBool, AtomicUsize, Ordering};
 
 use ignore::WalkBuilder;
 
+use super::reply::Complaint;
 use crate::problem::files::{Disk, Files, ReadProblem};
 use crate::problem::import::Imports;
 use crate::report::source::{FileReport, Reading, Source};
@@ -93,8 +94,15 @@ pub struct Checker {
 
 impl Checker {
     /// `root` is the folder that imports may not leave.
-    pub fn new(root: Option<&PathBuf>) -> Checker {
-        Checker { roots: root.cloned().into_iter().collect(), imports: Imports::default() }
+    ///
+    /// # Errors
+    /// Where there is no such folder.
+    pub fn new(root: Option<&PathBuf>) -> Result<Checker, Complaint> {
+        if let Some(root) = root.filter(|root| !root.is_dir()) {
+            return Err(Complaint(format!("--root {}: there is no such folder", root.display())));
+        }
+        let roots = root.cloned().into_iter().collect();
+        Ok(Checker { roots, imports: Imports::default() })
     }
 
     /// All of them, on all cores, in the order given.

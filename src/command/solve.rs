@@ -51,7 +51,7 @@ enum Form {
 }
 
 pub fn run(arguments: &Arguments) -> Result<Reply, Complaint> {
-    let file = Checker::new(arguments.root.as_ref()).check(&arguments.file);
+    let file = Checker::new(arguments.root.as_ref())?.check(&arguments.file);
     readable(&file)?;
     let problems = chosen(&file, arguments.case.as_deref())?;
     let good = !problems.is_empty() && problems.iter().all(is_good);
@@ -94,7 +94,7 @@ fn text(file: &FileReport, problems: &[Stated], style: Style) -> String {
             None => title.clone(),
         };
         let body = match (file.checked(), stated.outcome.solved()) {
-            (Some(checked), Some(solved)) => answer(checked, *stated, solved, style),
+            (Some(checked), Some(solved)) => answer(&file.source, checked, *stated, solved, style),
             _ => {
                 let conditions = conditions(&stated.outcome.problem);
                 let state = style.paint(Paint::Bad, "not solved");

@@ -1,12 +1,12 @@
 //! An answer as text for a terminal.
 
-use super::expectation::{asked, line, value_words, verdict};
+use super::expectation::{asked, value_words, verdict};
 use super::figures::{
     celsius, concentration, decimals, log10_of_exp, percent, scale_unit, scientific, significant,
 };
 use super::sheet::{Entry, Ledger, Sheet};
 use super::solution::in_phase;
-use super::source::Stated;
+use super::source::{Source, Stated};
 use super::style::{Paint, Style};
 use super::summary::counted;
 use super::table::{Cell, Side, Table};
@@ -17,14 +17,20 @@ use crate::equilibrium::quantities::Solved;
 use crate::equilibrium::uncertainty::ph_uncertainty;
 use crate::problem::model::{HeldWhat, Problem, Sought};
 use crate::problem::scope::PROTON;
-use crate::rules::check::Checked;
+use crate::rules::check::{Checked, locate_place};
 
 /// The conditions, the pH and every table that applies.
-pub fn answer(checked: &Checked, stated: Stated, solved: &Solved, style: Style) -> String {
+pub fn answer(
+    source: &Source,
+    checked: &Checked,
+    stated: Stated,
+    solved: &Solved,
+    style: Style,
+) -> String {
     let problem = &stated.outcome.problem;
     let mut text = conditions(problem) + "\n\n";
     text += &main_figures(problem, solved, style);
-    let ledger = Ledger::new(problem, Some(solved));
+    let ledger = Ledger::new(stated.outcome);
     for (title, body) in [
         ("Dissolved", species(problem, solved, style)),
         ("Components", components(problem, solved, style)),
@@ -33,7 +39,7 @@ pub fn answer(checked: &Checked, stated: Stated, solved: &Solved, style: Style) 
         ("Solids", solids(problem, solved, style)),
         ("Charge balance", sheet(&ledger.charge(), problem.scale, style)),
         ("Proton condition", protons(&ledger, problem, style)),
-        ("Expectations", expectations(checked, stated, solved, style)),
+        ("Expectations", expectations(source, checked, stated, solved, style)),
     ] {
         if !body.is_empty() {
             text += &format!("\n{}\n{body}", style.paint(Paint::Heading, title));
@@ -245,10 +251,16 @@ fn protons(ledger: &Ledger, problem: &Problem, style: Style) -> String {
     if problem.held.iter().any(|held| matches!(held.what, HeldWhat::Ph(_))) {
         return String::new();
     }
-    ledger.protons(&[]).map_or(String::new(), |(protons, _)| sheet(&protons, problem.scale, style))
+    ledger.protons().map_or(String::new(), |(protons, _)| sheet(&protons, problem.scale, style))
 }
 
-fn expectations(checked: &Checked, stated: Stated, solved: &Solved, style: Style) -> String {
+fn expectations(
+    source: &Source,
+    checked: &Checked,
+    stated: Stated,
+    solved: &Solved,
+    style: Style,
+) -> String {
     let problem = &stated.outcome.problem;
     let mut table = Table::new(&[
         ("line", Side::Right),
@@ -258,9 +270,10 @@ fn expectations(checked: &Checked, stated: Stated, solved: &Solved, style: Style
     ]);
     for expectation in &problem.expectations {
         let verdict = verdict(problem, solved, expectation);
+        let at = locate_place(&checked.document, stated.section, expectation.at);
         let found = verdict.value.map(|value| value_words(problem, expectation, value));
         table.row([
-            line(checked, stated.section, expectation).to_string().into(),
+            source.region(&at).line.to_string().into(),
             asked(checked, stated.section, expectation).into(),
             found.unwrap_or_else(|| "not known".into()).into(),
             if verdict.met {

@@ -1,19 +1,18 @@
 //! Balances as equations with two sides: the words of each term, and its value where
 //! there is an answer.
 
-use std::sync::atomic::AtomicBool;
-
 use num_rational::Rational64;
 use num_traits::{Signed, ToPrimitive};
 
+use super::balance::{kind_words, term_words};
 use crate::balance::charge::charge_balance;
 use crate::balance::mass::mass_balance;
 use crate::balance::proton::{ProtonCondition, proton_condition};
 use crate::balance::recipe::Recipe;
+use crate::balance::written::TermOf;
 use crate::balance::{Balance, BalanceKind, Part};
-use crate::equilibrium::dominance::{self, Decides, DominanceTerm, dominance};
-use crate::equilibrium::quantities::Solved;
 use crate::problem::model::Problem;
+use crate::rules::outcome::Outcome;
 
 /// A balance with all terms positive, each on its side.
 #[derive(Clone, Debug, PartialEq)]
@@ -27,7 +26,7 @@ pub struct Sheet {
 
 #[derive(Clone, Debug, PartialEq)]
 pub struct Entry {
-    pub what: Quantity,
+    pub what: TermOf,
     /// Without its coefficient: `[NH4+]`, `total NH3`, `added NaOH`.
     pub words: String,
     pub coefficient: Rational64,
@@ -37,14 +36,6 @@ pub struct Entry {
     pub dominant: bool,
     /// How the pH would move without this term alone.
     pub ph_shift: Option<f64>,
-}
-
-/// What a term counts.
-#[derive(Clone, Copy, Debug, PartialEq, Eq)]
-pub enum Quantity {
-    /// A row of the stoichiometry.
-    Species(usize),
-    Part(Part),
 }
 
 impl Entry {
@@ -82,26 +73,32 @@ pub fn side(entries: &[Entry]) -> String {
 
 /// The balances of a problem.
 pub struct Ledger<'a> {
+    outcome: &'a Outcome,
     problem: &'a Problem,
-    solved: Option<&'a Solved>,
     recipe: Recipe,
 }
 
 impl<'a> Ledger<'a> {
-    pub fn new(problem: &'a Problem, solved: Option<&'a Solved>) -> Ledger<'a> {
-        let brought = solved.map(|solved| solved.answer.amounts.as_slice());
-        Ledger { problem, solved, recipe: Recipe::of(problem, brought) }
+    pub fn new(outcome: &'a Outcome) -> Ledger<'a> {
+        let problem = &outcome.problem;
+        let brought = outcome.solved().map(|solved| solved.answer.amounts.as_slice());
+        Ledger { outcome, problem, recipe: Recipe::of(problem, brought) }
     }
 
     pub fn charge(&self) -> Sheet {
-        self.sheet(&charge_balance(&self.problem.scope.stoichiometry))
+        let mut sheet = self.sheet(&charge_balance(&self.problem.scope.stoichiometry));
+        self.weigh(&mut sheet);
+        sheet
     }
 
     /// One for each component but the proton.
     pub fn masses(&self) -> Vec<Sheet> {
         let stoichiometry = &self.problem.scope.stoichiometry;
         let components = 1..stoichiometry.components.len();
-        components.map(|j| self.sheet(&mass_balance(stoichiometry, j))).collect()
+        let mut sheets: Vec<Sheet> =
+            components.map(|j| self.sheet(&mass_balance(stoichiometry, j))).collect();
+        sheets.iter_mut().for_each(|sheet| self.weigh(sheet));
+        sheets
     }
 
     /// What a component's total is made of; none where it is given itself.
@@ -110,101 +107,77 @@ impl<'a> Ledger<'a> {
         if sources.iter().any(|(part, _)| matches!(part, Part::Total(_))) {
             return None;
         }
-        Some(sources.iter().map(|&(part, n)| self.entry(Quantity::Part(part), n)).collect())
+        Some(sources.iter().map(|&(part, n)| self.entry(TermOf::Constant(part), n)).collect())
     }
 
-    /// The proton condition, at the reference level of these species where some are given;
-    /// none where its coefficients do not fit 64 bits.
-    pub fn protons(&self, level: &[usize]) -> Option<(Sheet, ProtonCondition)> {
-        let stoichiometry = &self.problem.scope.stoichiometry;
-        let condition = proton_condition(stoichiometry, &self.recipe, level).ok()?;
-        Some((self.sheet(&condition.balance), condition))
+    /// The proton condition; none where its coefficients do not fit 64 bits.
+    pub fn protons(&self) -> Option<(Sheet, ProtonCondition)> {
+        let condition = self.condition(&[])?;
+        let mut sheet = self.sheet(&condition.balance);
+        self.weigh(&mut sheet);
+        Some((sheet, condition))
+    }
+
+    /// The proton condition at the reference level of these species.
+    pub fn protons_at(&self, level: &[usize]) -> Option<Sheet> {
+        Some(self.sheet(&self.condition(level)?.balance))
+    }
+
+    fn condition(&self, level: &[usize]) -> Option<ProtonCondition> {
+        proton_condition(&self.problem.scope.stoichiometry, &self.recipe, level).ok()
     }
 
     fn sheet(&self, balance: &Balance) -> Sheet {
         let mut sheet = Sheet {
             kind: balance.kind,
-            name: match balance.kind {
-                BalanceKind::Charge => "charge".into(),
-                BalanceKind::Protons => "protons".into(),
-                BalanceKind::Component(j) => self.component(j).to_owned(),
-            },
+            name: kind_words(self.problem, balance.kind),
             left: Vec::new(),
             right: Vec::new(),
         };
         for &(row, coefficient) in &balance.terms {
-            let entry = self.entry(Quantity::Species(row), coefficient.abs());
+            let entry = self.entry(TermOf::Species(row), coefficient.abs());
             let side = if coefficient.is_positive() { &mut sheet.left } else { &mut sheet.right };
             side.push(entry);
         }
         for &(part, coefficient) in &balance.parts {
-            let entry = self.entry(Quantity::Part(part), coefficient.abs());
+            let entry = self.entry(TermOf::Constant(part), coefficient.abs());
             let side = if coefficient.is_positive() { &mut sheet.right } else { &mut sheet.left };
             side.push(entry);
         }
-        self.weigh(&mut sheet);
         sheet
     }
 
     /// Marks the terms that the balance rests on at the answer. Where that cannot be told,
     /// none is marked.
     fn weigh(&self, sheet: &mut Sheet) {
-        let Some(solved) = self.solved else { return };
-        let decides = match sheet.kind {
-            BalanceKind::Charge | BalanceKind::Protons => Decides::Ph,
-            BalanceKind::Component(j) => Decides::Component(j),
-        };
-        let terms = |side: &[Entry]| -> Option<Vec<(f64, DominanceTerm)>> {
-            let term = |entry: &Entry| match entry.what {
-                Quantity::Species(row) => {
-                    Some((entry.coefficient.to_f64()?, DominanceTerm::Species(row)))
+        let Some(balances) = self.outcome.balances() else { return };
+        let Some(weighed) = balances.all.iter().find(|b| b.kind == sheet.kind) else { return };
+        for (side, weights) in
+            [(&mut sheet.left, &weighed.left), (&mut sheet.right, &weighed.right)]
+        {
+            for entry in side {
+                if let Some(term) = weights.iter().find(|term| term.what == entry.what) {
+                    entry.dominant = term.weight.dominant;
+                    entry.ph_shift = term.weight.ph_shift;
                 }
-                Quantity::Part(_) => Some((1.0, DominanceTerm::Constant(entry.value?))),
-            };
-            side.iter().map(term).collect()
-        };
-        let Some((left, right)) = terms(&sheet.left).zip(terms(&sheet.right)) else { return };
-        let balance = dominance::Balance { decides, left, right };
-        let never = AtomicBool::new(false);
-        let Ok(weights) = dominance(&solved.system, &solved.answer, &balance, &never) else {
-            return;
-        };
-        let entries = sheet.left.iter_mut().chain(&mut sheet.right);
-        for (entry, weight) in entries.zip(weights.left.iter().chain(&weights.right)) {
-            entry.dominant = weight.dominant;
-            entry.ph_shift = weight.ph_shift;
+            }
         }
     }
 
-    fn entry(&self, what: Quantity, coefficient: Rational64) -> Entry {
-        let words = match what {
-            Quantity::Species(row) => format!("[{}]", self.problem.row_name(row)),
-            Quantity::Part(Part::Total(j)) => format!("total {}", self.component(j)),
-            Quantity::Part(Part::Added(reagent)) => {
-                let reagent = self.problem.reagents.get(reagent);
-                format!("added {}", reagent.map_or("?", |r| r.formula.name.as_str()))
-            }
-            Quantity::Part(Part::Held(held)) => {
-                let held = self.problem.held.get(held);
-                match held.map(|held| (held.releases, held.words.as_str())) {
-                    Some((Some(j), _)) => format!("total {}", self.component(j)),
-                    Some((None, words)) => format!("{words} taken up"),
-                    None => "?".into(),
-                }
-            }
-        };
+    fn entry(&self, what: TermOf, coefficient: Rational64) -> Entry {
+        let solved = self.outcome.solved();
         let amount = match what {
-            Quantity::Species(row) => {
-                self.solved.and_then(|s| s.answer.concentrations.get(row).copied())
-            }
+            TermOf::Species(row) => solved.and_then(|s| s.answer.concentrations.get(row).copied()),
             // Without an answer too, what was given is known.
-            Quantity::Part(part) => self.recipe.value(part),
+            TermOf::Constant(part) => self.recipe.value(part),
         };
-        let value = amount.zip(coefficient.to_f64()).map(|(amount, n)| n * amount);
-        Entry { what, words, coefficient, value, dominant: false, ph_shift: None }
-    }
-
-    fn component(&self, j: usize) -> &str {
-        &self.problem.scope.components[j].formula.name
+        Entry {
+            what,
+            words: term_words(self.problem, what, Rational64::from(1)),
+            coefficient,
+            value: amount.zip(coefficient.to_f64()).map(|(amount, n)| n * amount),
+            dominant: false,
+            ph_shift: None,
+        }
     }
 }

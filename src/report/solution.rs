@@ -5,10 +5,10 @@
 use num_traits::ToPrimitive;
 use serde::Serialize;
 
-use super::expectation::{line, verdict};
+use super::expectation::verdict;
 use super::sheet::{Ledger, Sheet};
 use super::sheet_json::SheetJson;
-use super::source::{FileReport, Stated};
+use super::source::{FileReport, Source, Stated};
 use crate::chemistry::formula::Phase;
 use crate::chemistry::quantity::Scale;
 use crate::chemistry::water;
@@ -17,8 +17,8 @@ use crate::equilibrium::system::Failure;
 use crate::equilibrium::uncertainty::ph_uncertainty;
 use crate::problem::model::{Problem, Sought};
 use crate::problem::scope::PROTON;
-use crate::rules::check::Checked;
-use crate::rules::outcome::State;
+use crate::rules::check::{Checked, locate_place};
+use crate::rules::outcome::{Outcome, State};
 
 #[derive(Serialize)]
 struct Report<'a> {
@@ -132,7 +132,7 @@ pub fn json(file: &FileReport, problems: &[Stated]) -> serde_json::Result<String
                 case: stated.case,
                 status: status(&stated.outcome.state),
                 answer: file.checked().zip(stated.outcome.solved()).map(|(checked, solved)| {
-                    answer(checked, stated.section, &stated.outcome.problem, solved)
+                    answer(&file.source, checked, stated.section, stated.outcome, solved)
                 }),
             })
             .collect(),
@@ -151,17 +151,19 @@ pub fn status(state: &State) -> &'static str {
 }
 
 fn answer<'a>(
+    source: &Source,
     checked: &Checked,
     section: usize,
-    problem: &'a Problem,
+    outcome: &'a Outcome,
     solved: &Solved,
 ) -> Answer<'a> {
+    let problem = &outcome.problem;
     let finite = |value: Option<f64>| value.filter(|value| value.is_finite());
     let value = |sought: Sought| finite(solved.value(problem, sought));
-    let ledger = Ledger::new(problem, Some(solved));
+    let ledger = Ledger::new(outcome);
     let mut sheets = vec![ledger.charge()];
     sheets.extend(ledger.masses());
-    sheets.extend(ledger.protons(&[]).map(|(sheet, _)| sheet));
+    sheets.extend(ledger.protons().map(|(sheet, _)| sheet));
     Answer {
         temperature: problem.kelvin,
         activity_model: problem.activity.name(),
@@ -198,7 +200,9 @@ fn answer<'a>(
                     quantity: &expectation.words,
                     value: finite(verdict.value),
                     met: verdict.met,
-                    line: line(checked, section, expectation),
+                    line: source
+                        .region(&locate_place(&checked.document, section, expectation.at))
+                        .line,
                 }
             })
             .collect(),

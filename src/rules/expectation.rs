@@ -4,7 +4,7 @@
 use super::figures::{decimals, percent, scale_unit, significant};
 use crate::equilibrium::quantities::Solved;
 use crate::problem::model::{Expectation, Limit, Problem, Sought};
-use crate::rules::check::{Checked, locate_place};
+use crate::rules::check::Checked;
 use crate::text::span::Part;
 use crate::text::tree::Statement;
 
@@ -41,12 +41,6 @@ pub fn asked(checked: &Checked, section: usize, expectation: &Expectation) -> St
         }
         _ => expectation.words.clone(),
     }
-}
-
-/// The line that an expectation stands on, from one.
-pub fn line(checked: &Checked, section: usize, expectation: &Expectation) -> usize {
-    let start = locate_place(&checked.document, section, expectation.at).start;
-    checked.document.text[..start].bytes().filter(|&b| b == b'\n').count() + 1
 }
 
 /// `9.321`, `117 mg/L as N`, `62.3 %`.

@@ -5,8 +5,9 @@ use num_traits::Signed;
 
 use super::{Derivation, simplified};
 use crate::balance::Part;
+use crate::balance::written::TermOf;
 use crate::report::figures::{celsius, decimals};
-use crate::report::sheet::{Entry, Quantity, Sheet};
+use crate::report::sheet::{Entry, Sheet};
 
 /// Derivations as sections with displayed equations. They need the packages amsmath and
 /// mhchem.
@@ -97,14 +98,15 @@ fn sum(entries: &[Entry]) -> String {
 fn symbol(entry: &Entry) -> String {
     let name = entry.words.trim_start_matches("total ").trim_start_matches("added ");
     match entry.what {
-        Quantity::Species(_) => {
+        TermOf::Species(_) => {
             let name = name.strip_prefix('[').and_then(|name| name.strip_suffix(']'));
             format!("[{}]", ce(name.unwrap_or_default()))
         }
-        Quantity::Part(Part::Total(_)) => format!("T_{{{}}}", ce(name)),
-        Quantity::Part(Part::Added(_)) => format!("C_{{{}}}", ce(name)),
-        Quantity::Part(Part::Held(_)) => {
-            format!("X_{{{}}}", ce(name.trim_end_matches(" taken up")))
+        TermOf::Constant(Part::Total(_)) => format!("T_{{{}}}", ce(name)),
+        TermOf::Constant(Part::Added(_)) => format!("C_{{{}}}", ce(name)),
+        TermOf::Constant(Part::Held(_)) => {
+            let name = name.trim_start_matches("brought by ").trim_end_matches(" held");
+            format!("X_{{{}}}", ce(name.trim_matches(['[', ']', '{', '}'])))
         }
     }
 }

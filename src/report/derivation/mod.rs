@@ -72,7 +72,7 @@ impl<'a> Derivation<'a> {
     pub fn new(stated: &Stated<'a>) -> Derivation<'a> {
         let problem = &stated.outcome.problem;
         let solved = stated.outcome.solved();
-        let ledger = Ledger::new(problem, solved);
+        let ledger = Ledger::new(stated.outcome);
         let masses = ledger.masses().into_iter().enumerate().map(|(index, sheet)| Mass {
             component: sheet.name.clone(),
             sheet,
@@ -86,7 +86,7 @@ impl<'a> Derivation<'a> {
             masses: masses.collect(),
             charge: ledger.charge(),
             protons: ledger
-                .protons(&[])
+                .protons()
                 .map(|(sheet, condition)| protons(problem, &ledger, sheet, &condition)),
         }
     }
@@ -136,7 +136,7 @@ fn protons(
                     form: problem.row_name(other.species).to_owned(),
                     amount: other.amount,
                     instead_of: reference(instead_of.form).0,
-                    sheet: ledger.protons(&[other.species])?.0,
+                    sheet: ledger.protons_at(&[other.species])?,
                 })
             })
             .collect(),
