@@ -265,3 +265,20 @@ async fn nothing_is_answered_before_initialize_or_after_shutdown() {
     client.notify("exit", Value::Null).await;
     assert_eq!(client.ended().await, Ending::Orderly);
 }
+
+/// The protocol asks clients to wait for the answer to `initialize`; some do not.
+#[tokio::test]
+async fn a_client_that_does_not_wait_is_served() {
+    let mut client = Client::silent(Words::new());
+    let first = client.request("initialize", json!({ "capabilities": pushed() })).await;
+    client.notify("initialized", json!({})).await;
+    client.open(URI, 1, "bad").await;
+    let outline = client.request_about("textDocument/documentSymbol", URI, json!({})).await;
+    let last = client.request("shutdown", Value::Null).await;
+    client.notify("exit", Value::Null).await;
+    client.answer(first).await.expect("capabilities");
+    // Answered or cut short by `exit`, but not left open.
+    let _ = client.answer(outline).await;
+    client.answer(last).await.expect("an answer");
+    assert_eq!(client.ended().await, Ending::Orderly);
+}

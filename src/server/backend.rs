@@ -6,6 +6,8 @@ use std::sync::Arc;
 
 use serde::Serialize;
 use serde_json::to_value;
+use serde_json::value::to_raw_value;
+use tokio::task::spawn_blocking;
 use tower_lsp::jsonrpc::{Error, ErrorCode, Result};
 use tower_lsp::lsp_types::*;
 use tower_lsp::{LanguageServer, async_trait};
@@ -13,6 +15,7 @@ use tower_lsp::{LanguageServer, async_trait};
 use super::documents::Missing;
 use super::generation::Checked;
 use super::session::Session;
+use super::settings::Settings;
 use super::{actions, diagnostics, hints, hover, order, symbols};
 
 pub struct Backend {
@@ -34,16 +37,35 @@ impl Backend {
     /// The answer is written at once, so handlers have nothing left to return.
     async fn answer<T: Serialize>(&self, make: impl FnOnce(&Checked) -> T) -> Result<()> {
         let Some(snapshot) = order::snapshot() else { return Ok(()) };
-        let checked = self.session.documents.checked(snapshot).await.map_err(|why| match why {
-            Missing::Superseded => Error::content_modified(),
-            Missing::Failed => Error::internal_error(),
-        })?;
+        let checked = self.session.documents.checked(snapshot).await.map_err(missing)?;
         // Caught here as well as around the whole request, so that the library forgets
         // the request's id.
-        catch_unwind(AssertUnwindSafe(|| order::write(&make(&checked))))
-            .is_ok_and(|written| written.is_ok())
-            .then_some(())
-            .ok_or_else(Error::internal_error)
+        let written = catch_unwind(AssertUnwindSafe(|| to_raw_value(&make(&checked))));
+        order::write(written.map_err(drop).and_then(|written| written.map_err(drop)))
+    }
+
+    /// The same for an answer that takes long to make. Meanwhile others are served.
+    async fn answer_aside<T: Serialize>(
+        &self,
+        make: impl FnOnce(&Checked, &Settings) -> T + Send + 'static,
+    ) -> Result<()> {
+        let Some(snapshot) = order::snapshot() else { return Ok(()) };
+        let documents = &self.session.documents;
+        let checked = documents.checked(snapshot.clone()).await.map_err(missing)?;
+        let session = self.session.clone();
+        let written = spawn_blocking(move || to_raw_value(&make(&checked, session.settings())));
+        let written = written.await.map_err(drop).and_then(|written| written.map_err(drop));
+        if !documents.is_current(&snapshot) {
+            return Err(missing(Missing::Superseded));
+        }
+        order::write(written)
+    }
+}
+
+fn missing(why: Missing) -> Error {
+    match why {
+        Missing::Superseded => Error::content_modified(),
+        Missing::Failed => Error::internal_error(),
     }
 }
 
@@ -87,7 +109,7 @@ impl LanguageServer for Backend {
         &self,
         _: DocumentSymbolParams,
     ) -> Result<Option<DocumentSymbolResponse>> {
-        self.answer(|checked| symbols::symbols(checked, self.session.settings())).await?;
+        self.answer_aside(symbols::symbols).await?;
         Ok(None)
     }
 

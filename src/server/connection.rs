@@ -61,6 +61,9 @@ pub async fn serve(
             match incoming {
                 Incoming::Request(request) => match service.take(request) {
                     Taken::Done(reply) => reply.iter().for_each(|reply| outbox.reply(reply)),
+                    Taken::First(answer) => {
+                        answer.await.iter().for_each(|reply| outbox.reply(reply));
+                    }
                     Taken::Going(answer) => {
                         let outbox = outbox.clone();
                         requests.spawn(async move {

@@ -215,6 +215,12 @@ impl Documents {
         Some(Snapshot { uri: uri.clone(), generation: document.generation.clone() })
     }
 
+    /// Whether the document still has the text of the snapshot.
+    pub fn is_current(&self, snapshot: &Snapshot) -> bool {
+        let now = self.snapshot(&snapshot.uri);
+        now.is_some_and(|now| now.generation.edit == snapshot.generation.edit)
+    }
+
     /// The text of an open document at a path.
     pub fn text_at(&self, asker: &Generation, path: &Path) -> Option<Arc<str>> {
         let place = Place::of(Some(path.to_owned()));

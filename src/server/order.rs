@@ -11,9 +11,8 @@ use std::sync::Arc;
 use std::sync::atomic::Ordering;
 use std::task::{Context, Poll};
 
-use serde::Serialize;
 use serde::de::DeserializeOwned;
-use serde_json::value::{RawValue, to_raw_value};
+use serde_json::value::RawValue;
 use serde_json::{Value, json};
 use tower::Service;
 use tower_lsp::LspService;
@@ -45,8 +44,8 @@ pub fn snapshot() -> Option<Snapshot> {
 
 /// Puts down the running request's result as text, to be sent in place of what its
 /// handler returns; see [`super::outbox`].
-pub fn write(result: &impl Serialize) -> serde_json::Result<()> {
-    let text = to_raw_value(result)?;
+pub fn write(result: Result<Box<RawValue>, ()>) -> Result<(), Error> {
+    let text = result.map_err(|()| Error::internal_error())?;
     // Outside a request there is nobody to send it to.
     let _ = DESK.try_with(|desk| desk.written.replace(Some(text)));
     Ok(())
@@ -62,6 +61,8 @@ pub struct InOrder {
 pub enum Taken {
     /// It is dealt with; requests have their answer.
     Done(Option<Reply>),
+    /// The next message may only be taken once this is answered.
+    First(Answer),
     Going(Answer),
     /// The session is over.
     Exit,
@@ -81,6 +82,7 @@ impl InOrder {
 
     fn receive(&mut self, request: Request) -> Taken {
         let (method, id, mut params) = request.into_parts();
+        let mut first = false;
         match (method.as_ref(), &id) {
             ("initialize", Some(_)) => {
                 // The library reads only an empty value, so that nothing odd in a
@@ -88,6 +90,7 @@ impl InOrder {
                 let said = params.unwrap_or_default();
                 self.session.start(Settings::read(&said), roots(&said));
                 params = Some(json!({ "capabilities": {} }));
+                first = true;
             }
             ("initialized", _) => params = Some(json!({})),
             ("shutdown", Some(_)) => {
@@ -128,7 +131,8 @@ impl InOrder {
                 _ => Reply::Library(response),
             })
         });
-        Taken::Going(Answer { id, answering: Box::pin(answering) })
+        let answer = Answer { id, answering: Box::pin(answering) };
+        if first { Taken::First(answer) } else { Taken::Going(answer) }
     }
 
     fn snapshot(&self, params: &Value) -> Option<Snapshot> {

@@ -11,6 +11,9 @@ use std::time::Duration;
 use tokio::io::{AsyncRead, AsyncWrite, ReadBuf};
 use tokio::sync::mpsc::{UnboundedReceiver, unbounded_channel};
 
+/// How long the process may last after the end of its input.
+const LONGEST_GOODBYE: Duration = Duration::from_secs(10);
+
 /// Standard input, read by a thread of its own.
 pub struct Input {
     chunks: UnboundedReceiver<Vec<u8>>,
@@ -34,6 +37,11 @@ impl Input {
                     Err(_) => break,
                 }
             }
+            drop(sender);
+            // The client has left. One that keeps our output open and reads none of it
+            // would hold the writer, and the process with it, for ever.
+            std::thread::sleep(LONGEST_GOODBYE);
+            std::process::exit(1);
         })?;
         Ok(Self { chunks, chunk: Vec::new(), given: 0 })
     }
