@@ -36,6 +36,14 @@ fn findings_as_junit() {
     insta::assert_snapshot!(session(&files, &["check", "--output", "junit"]));
 }
 
+#[test]
+fn a_missed_expectation_is_a_failure() {
+    let text = RINSE.replace("[NH3] < 20 mg/L as N", "[NH3] < 2 mg/L as N");
+    insta::assert_snapshot!(session(&[("rinse.lyate", &text)], &["check"]));
+    let arguments = ["check", "--output", "junit"];
+    insta::assert_snapshot!(session(&[("rinse.lyate", &text)], &arguments));
+}
+
 /// Exit codes by the mildest finding asked about.
 #[test]
 fn fail_on_decides_the_exit_code() {
