@@ -164,9 +164,14 @@ fn a_held_ph_solves_and_the_amount_closes_the_charge() {
 }
 
 /// Holds the value that a species has in a solved state and forgets the total of one of
-/// its components: gives the state back, if `charge` is not to be noticed only one of
-/// the states that are possible.
-fn hold_solved(system: &System, answer: &Answer, i: usize, by_concentration: bool) -> System {
+/// its components: that state is one of those possible, and the amount given is what it
+/// takes of the held phase.
+fn hold_solved(
+    system: &System,
+    answer: &Answer,
+    i: usize,
+    by_concentration: bool,
+) -> (System, f64) {
     let species = &system.species[i];
     let mut held = system.clone();
     let component = species.row.iter().map(|e| e.0).find(|j| *j != 0).unwrap_or(0);
@@ -196,15 +201,18 @@ fn hold_solved(system: &System, answer: &Answer, i: usize, by_concentration: boo
         concentration_of: by_concentration.then_some((species.charge, species.ion_size)),
         supply,
     });
-    held
+    (held, amount)
 }
 
 fn held_species(name: &'static str, problems: u64, charged: bool) {
     let mut survey = Survey::new(name);
     let mut other = 0;
     for seed in 0..count(problems) {
-        let mut system = chemistry(seed);
         let random = &mut Random::new(!seed);
+        // Ions take a walk over the pH each: smaller problems.
+        let components = 2 + random.below(5);
+        let mut system =
+            if charged { chemistry_like(random, components, 18) } else { chemistry(seed) };
         if random.chance(0.5) {
             system.activity = DAVIES;
         }
@@ -222,17 +230,21 @@ fn held_species(name: &'static str, problems: u64, charged: bool) {
             continue;
         }
         let i = candidates[random.below(candidates.len())];
-        let held = hold_solved(&system, &answer, i, random.chance(0.5));
-        if let Some(found) = survey.take(seed, run(&held)) {
-            let same = (found.ln_components[0] - answer.ln_components[0]).abs() < 1e-6;
-            let least = |a: &Answer| a.amounts.iter().map(|n| n.abs()).sum::<f64>();
-            if !same && (!charged || least(&found) > least(&answer).max(1e-3)) {
-                other += 1;
+        let (held, amount) = hold_solved(&system, &answer, i, random.chance(0.5));
+        if let Some(found) = survey.take(seed, run(&held))
+            && (found.ln_components[0] - answer.ln_components[0]).abs() > 1e-6
+        {
+            other += 1;
+            // Of several states the one that takes least is given.
+            if charged && found.amounts[0].abs() > amount.abs() * (1.0 + 1e-6) {
+                survey.fail(seed, format!("takes {}, not {amount}", found.amounts[0]));
             }
         }
     }
     println!("{name}: another state than the one it was made from in {other}");
-    survey.finish(0);
+    // An ion held where the activity model is far past its range can have states out of
+    // reach; no other problem may fail.
+    survey.finish(if charged { count(problems) as usize / 300 } else { 0 });
 }
 
 #[test]
@@ -242,7 +254,7 @@ fn a_held_neutral_species_solves() {
 
 #[test]
 fn a_held_ion_solves() {
-    held_species("held ion", 60, true);
+    held_species("held ion", 40, true);
 }
 
 /// Whether amounts, none negative, give the totals: some choice of as many independent

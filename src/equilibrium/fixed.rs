@@ -18,6 +18,9 @@ pub(super) fn amounts(search: &Search) -> Vec<f64> {
         return vec![0.0; count];
     }
     let mut missing = DVector::zeros(slots.len());
+    // Rows by the size of their terms, so that what a small row says of an amount is not
+    // drowned in the rounding of a large one.
+    let mut sizes = vec![1.0; slots.len()];
     for (r, &slot) in slots.iter().enumerate() {
         let mut sum = Sum::default();
         for (&species, c) in search.at.species.iter().zip(&search.point.concentrations) {
@@ -26,9 +29,13 @@ pub(super) fn amounts(search: &Search) -> Vec<f64> {
             }
         }
         sum.add_product(frame.total(slot).value(), -1.0);
-        missing[r] = sum.value();
+        if sum.size > 0.0 {
+            sizes[r] = sum.size;
+        }
+        missing[r] = sum.value() / sizes[r];
     }
-    let supply = DMatrix::from_fn(slots.len(), count, |r, k| frame.supplied(k, slots[r]));
+    let supply =
+        DMatrix::from_fn(slots.len(), count, |r, k| frame.supplied(k, slots[r]) / sizes[r]);
     // Frames are only made of independent supplies.
     LU::new(supply).solve_mut(&mut missing);
     missing.as_slice().to_vec()

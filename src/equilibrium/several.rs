@@ -8,12 +8,11 @@
 use std::sync::atomic::AtomicBool;
 
 use super::frame::Frame;
+use super::scan::by_ionic_strength;
+use super::skew;
 use super::solve::{needs_activity, solve};
 use super::system::{Answer, Failure, IonicStrength, System};
-use super::{root, skew};
 
-/// Ionic strengths looked at, mol per litre or kilogram, so many to a decade.
-const LOOK: (f64, f64, f64) = (1e-8, 1e2, 8.0);
 /// States closer than this in ln I, or in pH, are the same.
 const SAME: f64 = 1e-6;
 
@@ -49,55 +48,25 @@ pub fn other_states(
             if !(steep && computed && needs_activity(system)) {
                 return Ok(Vec::new());
             }
-            by_ionic_strength(system, answer, cancel).or_else(passed)
+            let states = by_ionic_strength(system, Some(answer), cancel).or_else(passed)?;
+            let mut others = Vec::new();
+            for near in states.iter().filter(|state| other_strength(state, answer)) {
+                // From there the joint iteration stays with the state it is nearest to.
+                let state = match solve(system, Some(near), cancel) {
+                    Ok(state) => state,
+                    Err(Failure::Cancelled) => return Err(Failure::Cancelled),
+                    Err(_) => continue,
+                };
+                if other_strength(&state, answer) {
+                    others.push(state);
+                }
+            }
+            Ok(others)
         }
         Err(failure) => passed(failure),
     }
 }
 
-fn by_ionic_strength(
-    system: &System,
-    answer: &Answer,
-    cancel: &AtomicBool,
-) -> Result<Vec<Answer>, Failure> {
-    let mut given = system.clone();
-    let mut last = answer.clone();
-    // ln of the ionic strength that comes out over the one that was put in.
-    let mut excess = |ln: f64| -> Result<f64, Failure> {
-        given.ionic_strength = IonicStrength::Given(ln.exp());
-        last = solve(&given, Some(&last), cancel)?;
-        let terms = system.species.iter().zip(&last.concentrations);
-        let out: f64 = terms.map(|(s, c)| 0.5 * f64::from(s.charge).powi(2) * c).sum();
-        Ok(out.ln() - ln)
-    };
-    let steps = ((LOOK.1 / LOOK.0).log10() * LOOK.2) as u32;
-    let mut marks: Vec<root::Mark> = Vec::new();
-    for step in 0..=steps {
-        let ln = LOOK.0.ln() + f64::from(step) * std::f64::consts::LN_10 / LOOK.2;
-        match excess(ln) {
-            Ok(value) => marks.push((ln, value)),
-            Err(Failure::Cancelled) => return Err(Failure::Cancelled),
-            Err(_) => {}
-        }
-    }
-    let mut found = Vec::new();
-    for pair in marks.windows(2) {
-        if pair[0].1 * pair[1].1 < 0.0 {
-            let ln = root::narrow(&mut excess, pair[0], pair[1], 1e-9)?;
-            if (ln - answer.ionic_strength.ln()).abs() > SAME {
-                found.push(ln);
-            }
-        }
-    }
-    let mut states = Vec::new();
-    for ln in found {
-        given.ionic_strength = IonicStrength::Given(ln.exp());
-        let near = solve(&given, Some(answer), cancel)?;
-        // From there the joint iteration stays with the state that it is nearest to.
-        let state = solve(system, Some(&near), cancel)?;
-        if (state.ionic_strength.ln() - answer.ionic_strength.ln()).abs() > SAME {
-            states.push(state);
-        }
-    }
-    Ok(states)
+fn other_strength(state: &Answer, answer: &Answer) -> bool {
+    (state.ionic_strength.ln() - answer.ionic_strength.ln()).abs() > SAME
 }

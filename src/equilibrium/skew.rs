@@ -10,12 +10,14 @@ use std::sync::atomic::AtomicBool;
 
 use num_rational::Rational64;
 
+use super::plane;
 use super::root::{Mark, narrow};
-use super::solve::solve;
-use super::system::{Answer, Failure, Fixed, System};
+use super::sensitivity::Sensitivity;
+use super::solve::{TRUSTED, needs_activity, solve};
+use super::system::{Answer, Failure, Fixed, IonicStrength, System};
 
-/// The pH that are looked through, and the distance between looks.
-const LOOK: (f64, f64, f64) = (-3.0, 18.0, 0.5);
+/// The pH that are looked through, and in how many steps.
+const LOOK: (f64, f64, u32) = (-3.0, 18.0, 42);
 const LN_10: f64 = std::f64::consts::LN_10;
 
 /// Solves a system whose held phases supply something else than their own rows.
@@ -47,20 +49,48 @@ pub(super) fn states(
         concentration_of: None,
         supply: row,
     });
-    let marks = outer.look()?;
-    let mut found = Vec::new();
-    for pair in marks.windows(2) {
-        if pair[0].1 == 0.0 || pair[0].1 * pair[1].1 < 0.0 {
-            found.push(outer.settle(pair[0], pair[1])?);
+    let mut least = f64::INFINITY;
+    let mut all: Vec<Answer> = Vec::new();
+    // Where the sign changes at a jump, an activity model having gone over from one of its
+    // states to another, there is no answer; but there may be one coming from the other
+    // side.
+    for upwards in [true, false] {
+        let marks = outer.look(upwards)?;
+        let mut found = outer.changes(&marks)?;
+        let looked = found.len();
+        finish(&mut found, system, outer.iterations);
+        let jumps = looked > found.len() || marks.len() <= LOOK.2 as usize;
+        all.extend(found);
+        least = marks.iter().fold(least, |least, mark| least.min(mark.1.abs()));
+        if !jumps {
+            return Ok((distinct(all), outer.failure(least)));
         }
     }
-    for answer in &mut found {
+    // A state may lie on a branch that no walk over the pH comes to.
+    if needs_activity(system) && system.ionic_strength == IonicStrength::Computed {
+        let mut found = plane::states(&outer.held, cancel)?;
+        finish(&mut found, system, outer.iterations);
+        all.extend(found);
+    }
+    Ok((distinct(all), outer.failure(least)))
+}
+
+/// Takes the held pH out of states again, and those away that do not close without it.
+fn finish(states: &mut Vec<Answer>, system: &System, iterations: u32) {
+    for answer in states.iter_mut() {
         answer.amounts.truncate(system.fixed.len());
         answer.residual = super::fixed::residual(system, &answer.concentrations, &answer.amounts);
-        answer.iterations = outer.iterations;
+        answer.iterations = iterations;
     }
-    let least = marks.iter().fold(f64::INFINITY, |least, mark| least.min(mark.1.abs()));
-    Ok((found, Failure::NotConverged { residual: least, iterations: outer.iterations }))
+    states.retain(|answer| answer.residual <= TRUSTED);
+}
+
+/// By rising pH, each once.
+fn distinct(mut states: Vec<Answer>) -> Vec<Answer> {
+    let ln_h = |state: &Answer| state.ln_components.first().copied().unwrap_or(0.0);
+    states.sort_by(|a, b| ln_h(b).total_cmp(&ln_h(a)));
+    states.dedup_by(|a, b| (ln_h(a) - ln_h(b)).abs() < 1e-7);
+    states
 }
 
 struct Outer<'a> {
@@ -84,55 +114,73 @@ impl Outer<'_> {
         Ok(missing)
     }
 
-    /// The protons missing at one pH after another, and where they come nearest to
-    /// nothing without changing sign, a look whether they do in between.
-    fn look(&mut self) -> Result<Vec<Mark>, Failure> {
-        let mut marks: Vec<Mark> = Vec::new();
-        let mut ph = LOOK.0;
-        while ph <= LOOK.1 {
+    fn failure(&self, residual: f64) -> Failure {
+        Failure::NotConverged { residual, iterations: self.iterations }
+    }
+
+    /// The states at the changes of sign between marks.
+    fn changes(&mut self, marks: &[Mark]) -> Result<Vec<Answer>, Failure> {
+        let mut found = Vec::new();
+        for pair in marks.windows(2) {
+            if pair[0].1 == 0.0 || pair[0].1 * pair[1].1 < 0.0 {
+                match self.settle(pair[0], pair[1]) {
+                    Err(Failure::NotConverged { .. }) => {}
+                    other => found.push(other?),
+                }
+            }
+        }
+        Ok(found)
+    }
+
+    /// The protons missing at one pH after another; and between two where they first grow
+    /// less and then more, a look whether they change sign twice on the way.
+    fn look(&mut self, upwards: bool) -> Result<Vec<Mark>, Failure> {
+        let mut marks: Vec<(Mark, f64)> = Vec::new();
+        for n in 0..=LOOK.2 {
+            let n = if upwards { n } else { LOOK.2 - n };
+            let ph = LOOK.0 + (LOOK.1 - LOOK.0) * f64::from(n) / f64::from(LOOK.2);
             match self.missing(ph) {
-                Ok(missing) => marks.push((ph, missing)),
+                Ok(missing) => marks.push(((ph, missing), self.slope())),
                 // No state at this pH: nothing to pass through either.
                 Err(Failure::NotConverged { .. }) => {}
                 Err(other) => return Err(other),
             }
-            ph += LOOK.2;
         }
-        let dips: Vec<[Mark; 3]> = marks
-            .windows(3)
-            .filter(|m| {
-                let (low, at, high) = (m[0].1, m[1].1, m[2].1);
-                at * low > 0.0 && at * high > 0.0 && at.abs() < low.abs().min(high.abs())
-            })
-            .map(|m| [m[0], m[1], m[2]])
-            .collect();
-        for [low, at, high] in dips {
-            if let Some(other_side) = self.dip(low, at, high)? {
-                marks.push(other_side);
+        marks.sort_by(|a, b| a.0.0.total_cmp(&b.0.0));
+        let mut all: Vec<Mark> = marks.iter().map(|mark| mark.0).collect();
+        for pair in marks.windows(2) {
+            let [(low, down), (high, up)] = [pair[0], pair[1]];
+            if low.1 * high.1 > 0.0 && low.1 * down < 0.0 && low.1 * up > 0.0 {
+                all.extend(self.dip(low, high)?);
             }
         }
-        marks.sort_by(|a, b| a.0.total_cmp(&b.0));
-        Ok(marks)
+        all.sort_by(|a, b| a.0.total_cmp(&b.0));
+        Ok(all)
     }
 
-    /// Between three marks of one sign, the middle one the least, a place of the other
-    /// sign if there is one.
-    fn dip(&mut self, low: Mark, at: Mark, high: Mark) -> Result<Option<Mark>, Failure> {
-        let (mut low, mut at, mut high) = (low.0, at, high.0);
+    /// The change of the missing protons by the pH, at the last state.
+    fn slope(&self) -> f64 {
+        let proton = self.held.fixed.len() - 1;
+        self.last
+            .as_ref()
+            .and_then(|state| Sensitivity::new(&self.held, state)?.by_fixed(proton))
+            .map_or(f64::NAN, |response| -LN_10 * response.amounts[proton])
+    }
+
+    /// A place of the other sign between two marks of one sign that the function leaves
+    /// towards nothing, if there is one: by halves towards its turning point.
+    fn dip(&mut self, low: Mark, high: Mark) -> Result<Option<Mark>, Failure> {
+        let (mut from, mut to) = (low.0, high.0);
         for _ in 0..40 {
-            // Into the wider of the two halves, by the golden section.
-            let wide_above = high - at.0 > at.0 - low;
-            let next = at.0 + 0.381_966 * if wide_above { high - at.0 } else { low - at.0 };
-            let missing = self.missing(next)?;
-            if missing * at.1 <= 0.0 {
-                return Ok(Some((next, missing)));
+            let ph = 0.5 * (from + to);
+            let missing = match self.missing(ph) {
+                Err(Failure::NotConverged { .. }) => return Ok(None),
+                other => other?,
+            };
+            if missing * low.1 <= 0.0 {
+                return Ok(Some((ph, missing)));
             }
-            if missing.abs() < at.1.abs() {
-                *(if wide_above { &mut low } else { &mut high }) = at.0;
-                at = (next, missing);
-            } else {
-                *(if wide_above { &mut high } else { &mut low }) = next;
-            }
+            *(if self.slope() * low.1 < 0.0 { &mut from } else { &mut to }) = ph;
         }
         Ok(None)
     }

@@ -12,7 +12,7 @@ use super::system::{Answer, Failure, IonicStrength, System};
 use crate::chemistry::activity::ActivityKind;
 
 /// An answer whose rows close no better than this is not given.
-const TRUSTED: f64 = 1e-9;
+pub(super) const TRUSTED: f64 = 1e-9;
 
 /// Finds the state in which every row of the system closes.
 ///
