@@ -12,15 +12,17 @@ use crate::problem::reaction::STANDARD;
 use crate::problem::scope::{PROTON, WATER};
 
 /// A problem with its numbers and its answer.
-#[derive(Debug)]
+#[derive(Clone, Debug)]
 pub struct Solved {
     pub system: System,
     pub answer: Answer,
+    /// The pH of other states that meet the same equations; none for most problems.
+    pub others: Vec<f64>,
 }
 
 impl Solved {
     pub fn ph(&self) -> f64 {
-        -self.answer.ln_components[PROTON] / LN_10
+        self.answer.ph()
     }
 
     /// ln activity of a species of the scope: for a gas, of its pressure in atm; for a

@@ -45,7 +45,8 @@ pub fn other_states(
         Ok(_) => {
             let steep = system.species.iter().any(|s| s.charge.abs() >= 3);
             let computed = system.ionic_strength == IonicStrength::Computed;
-            if !(steep && computed && needs_activity(system)) {
+            let strong = strongest(system) > STEEP_FROM || !system.fixed.is_empty();
+            if !(steep && computed && strong && needs_activity(system)) {
                 return Ok(Vec::new());
             }
             let states = by_ionic_strength(system, Some(answer), cancel).or_else(passed)?;
@@ -65,6 +66,24 @@ pub fn other_states(
         }
         Err(failure) => passed(failure),
     }
+}
+
+/// Below this ionic strength, mol per litre or kilogram, coefficients fall all the way and
+/// no second state was ever met.
+const STEEP_FROM: f64 = 0.1;
+
+/// The ionic strength if every component were in its most highly charged species.
+fn strongest(system: &System) -> f64 {
+    let mut most = vec![0.0_f64; system.totals.len()];
+    for species in &system.species {
+        let squared = f64::from(species.charge).powi(2);
+        for &(component, _) in &species.row {
+            most[component] = most[component].max(squared);
+        }
+    }
+    // The proton's total is a balance of the others and says nothing of amounts.
+    let sum: f64 = most.iter().zip(&system.totals).skip(1).map(|(z2, t)| z2 * t.abs()).sum();
+    0.5 * sum
 }
 
 fn other_strength(state: &Answer, answer: &Answer) -> bool {

@@ -74,6 +74,13 @@ pub struct Answer {
     pub iterations: u32,
 }
 
+impl Answer {
+    /// −log10 of the activity of the proton, which is component 0.
+    pub fn ph(&self) -> f64 {
+        self.ln_components.first().map_or(f64::NAN, |ln| -ln / std::f64::consts::LN_10)
+    }
+}
+
 #[derive(Clone, Debug, PartialEq)]
 pub enum Failure {
     /// No state meets this component's row: proven, not merely not found.

@@ -38,7 +38,7 @@ pub struct CaseResolver<'a> {
 /// Resolves the statements in force. `merging` are the defects found while merging.
 pub fn resolve(statements: &[Written], merging: Vec<Defect>, scope: Arc<Scope>) -> Problem {
     let mut case = CaseResolver {
-        resolver: Resolver::new(scope.groups.clone()),
+        resolver: Resolver::within(scope.clone()),
         scope: &scope,
         statements,
         kelvin: STANDARD,

@@ -139,6 +139,9 @@ pub struct InForce<'a> {
     /// Statements that repeat a single-valued subject in their section, and do not count.
     pub left_out: Vec<Written<'a>>,
     pub defects: Vec<Defect>,
+    /// Whether a case brings in or takes away a total, a reagent or a held value, where it
+    /// does not only change how much of it there is.
+    pub other_sources: bool,
 }
 
 /// Merges the base with a case. Statements of one section that repeat a single-valued
@@ -166,9 +169,11 @@ pub fn in_force<'a>(base: &'a Section, case: Option<&'a Section>) -> InForce<'a>
             replaced.insert(removed_key(&without.value), false);
         }
     }
-    base.kept.retain(|(key, _)| match key.as_ref().and_then(|key| replaced.get_mut(key)) {
+    let mut from_nothing = false;
+    base.kept.retain(|(key, written)| match key.as_ref().and_then(|key| replaced.get_mut(key)) {
         Some(met) => {
             *met = true;
+            from_nothing |= is_nothing(written.statement());
             false
         }
         None => true,
@@ -183,11 +188,26 @@ pub fn in_force<'a>(base: &'a Section, case: Option<&'a Section>) -> InForce<'a>
             found.defects.push(Defect { at, kind: DefectKind::NothingToRemove });
         }
     }
+    let is_source = |key: &Key| matches!(key, Key::Total(_) | Key::Add(_) | Key::Hold(_));
+    found.other_sources = from_nothing
+        || replaced.iter().any(|(key, met)| is_source(key) && !met)
+        || varied.kept.iter().any(|(_, written)| {
+            matches!(written.statement(), Statement::Without(_)) || is_nothing(written.statement())
+        });
     let varied = varied.into_force();
     found.statements.extend(varied.statements);
     found.left_out.extend(varied.left_out);
     found.defects.extend(varied.defects);
     found
+}
+
+/// Whether it says that there is none of something.
+fn is_nothing(statement: &Statement) -> bool {
+    match statement {
+        Statement::Total { value, .. } => value.number.value == 0.0,
+        Statement::Add { amount, .. } => amount.number.value == 0.0,
+        _ => false,
+    }
 }
 
 /// The statements of one section, by what they speak of.
@@ -201,7 +221,7 @@ impl<'a> Sorted<'a> {
         let statements = self.kept.into_iter().map(|(_, written)| written).collect();
         let (left_out, defects) =
             self.repeated.into_iter().map(|(_, written, defect)| (written, defect)).unzip();
-        InForce { statements, left_out, defects }
+        InForce { statements, left_out, defects, other_sources: false }
     }
 }
 

@@ -9,7 +9,10 @@ use num_traits::{CheckedAdd, CheckedMul, Zero};
 use super::defect::{Conserved, Defect, DefectKind};
 use super::effective::Written;
 use super::reaction::{Origin, Participant, Reaction};
-use crate::chemistry::formula::{Atom, Formula, FormulaProblemKind, GroupProblem, Groups};
+use super::scope::Scope;
+use crate::chemistry::formula::{
+    Atom, Formula, FormulaProblem, FormulaProblemKind, GroupProblem, Groups,
+};
 use crate::text::span::{Place, Span};
 use crate::text::tree::{self, Fraction, Member, Name, Statement};
 
@@ -18,15 +21,17 @@ use crate::text::tree::{self, Fraction, Member, Name, Statement};
 pub struct Resolver {
     pub groups: Groups,
     pub defects: Vec<Defect>,
-    formulas: HashMap<String, Result<Arc<Formula>, crate::chemistry::formula::FormulaProblem>>,
+    formulas: HashMap<String, Result<Arc<Formula>, FormulaProblem>>,
+    scope: Option<Arc<Scope>>,
 }
 
 /// Coefficients past this are a slip of the pen, and keep exact numbers from growing.
 pub const LARGEST_COEFFICIENT: i64 = 1000;
 
 impl Resolver {
-    pub fn new(groups: Groups) -> Self {
-        Self { groups, ..Self::default() }
+    /// With what a scope already knows: its groups, and its species by name.
+    pub fn within(scope: Arc<Scope>) -> Self {
+        Self { groups: scope.groups.clone(), scope: Some(scope), ..Self::default() }
     }
 
     pub fn report(&mut self, at: Place, kind: DefectKind) {
@@ -96,10 +101,13 @@ impl Resolver {
         self.look_up(text).ok()
     }
 
-    fn look_up(
-        &mut self,
-        text: &str,
-    ) -> Result<Arc<Formula>, crate::chemistry::formula::FormulaProblem> {
+    fn look_up(&mut self, text: &str) -> Result<Arc<Formula>, FormulaProblem> {
+        // Most names are those of species in scope, spelt as they are.
+        if let Some(scope) = &self.scope
+            && let Some(s) = scope.find(text)
+        {
+            return Ok(scope.species[s].clone());
+        }
         if let Some(known) = self.formulas.get(text) {
             return known.clone();
         }

@@ -11,7 +11,7 @@ use std::sync::atomic::{AtomicBool, Ordering};
 use super::finding::{Finding, LocatedFinding, Severity};
 use super::outcome::Outcome;
 use super::statements::case_repeated;
-use crate::equilibrium::system::Answer;
+use crate::equilibrium::quantities::Solved;
 use crate::problem::defect::DefectKind;
 use crate::problem::effective::{Written, in_force};
 use crate::problem::files::Files;
@@ -94,10 +94,10 @@ pub fn check(
     let mut outcomes: Vec<Option<Arc<Outcome>>> =
         keys.iter().map(|key| kept.get(key).map(|outcome| (*outcome).clone())).collect();
     let todo: Vec<usize> = (0..outcomes.len()).filter(|&i| outcomes[i].is_none()).collect();
-    let near = |index: usize| -> Option<&Answer> {
+    let near = |index: usize| -> Option<&Solved> {
         let previous = previous?;
         let outcome = previous.outcomes.get(index).or(previous.outcomes.first())?;
-        Some(&outcome.solved()?.answer)
+        outcome.solved()
     };
     let work = |index: usize| -> Option<Outcome> {
         if around.cancel.load(Ordering::Relaxed) {

@@ -5,6 +5,7 @@ use crate::balance::recipe::Recipe;
 use crate::balance::written::{Side, Verdict, WrittenTerm, WrittenWhat, compare};
 use crate::balance::{BalanceKind, Part};
 use crate::problem::model::{self, BalanceKindResolved, Problem, WrittenBalance};
+use crate::text::span;
 
 /// A written balance, by its index in the problem, and what it was found to be.
 #[derive(Debug)]
@@ -14,9 +15,20 @@ pub struct Compared {
 }
 
 /// Compares every balance whose terms could all be read. `brought` is what each held value
-/// brought, where that is known.
-pub fn compared(problem: &Problem, brought: Option<&[f64]>) -> Vec<Compared> {
-    if problem.balances.is_empty() {
+/// brought, where that is known. `same_sources` says that this is a case with the base's
+/// reactions and sources, so that only plain amounts in a balance of the base can differ.
+pub fn compared(problem: &Problem, brought: Option<&[f64]>, same_sources: bool) -> Vec<Compared> {
+    let is_new = |balance: &WrittenBalance| {
+        !same_sources
+            || balance.at.section == span::Part::Case
+            || balance
+                .left
+                .iter()
+                .chain(&balance.right)
+                .any(|term| matches!(term.what, model::WrittenWhat::Amount { .. }))
+    };
+    let wanted = |balance: &WrittenBalance| balance.complete && is_new(balance);
+    if !problem.balances.iter().any(wanted) {
         return Vec::new();
     }
     let stoichiometry = &problem.scope.stoichiometry;
@@ -25,14 +37,14 @@ pub fn compared(problem: &Problem, brought: Option<&[f64]>) -> Vec<Compared> {
     let condition = problem
         .balances
         .iter()
-        .any(about_protons)
+        .any(|balance| wanted(balance) && about_protons(balance))
         .then(|| proton_condition(stoichiometry, &recipe, &[]).ok())
         .flatten();
     problem
         .balances
         .iter()
         .enumerate()
-        .filter(|(_, balance)| balance.complete)
+        .filter(|(_, balance)| wanted(balance))
         .filter_map(|(index, balance)| {
             let kind = kind(balance.kind);
             let terms = terms(balance);

@@ -9,8 +9,9 @@ use super::context::Context;
 use super::finding::Finding;
 use crate::equilibrium::build::system;
 use crate::equilibrium::quantities::Solved;
+use crate::equilibrium::several::other_states;
 use crate::equilibrium::solve::solve;
-use crate::equilibrium::system::{Answer, Failure};
+use crate::equilibrium::system::{Answer, Failure, System};
 use crate::equilibrium::weighed::{Balances, balances};
 use crate::problem::case::resolve;
 use crate::problem::effective::InForce;
@@ -59,7 +60,7 @@ impl Outcome {
         in_force: &InForce,
         scope: Arc<Scope>,
         inherited: bool,
-        near: Option<&Answer>,
+        near: Option<&Solved>,
         cancel: &AtomicBool,
     ) -> Option<Outcome> {
         let problem = resolve(&in_force.statements, in_force.defects.clone(), scope);
@@ -68,9 +69,8 @@ impl Outcome {
         } else if problem.blocked {
             State::NotWellPosed
         } else {
-            let system = system(&problem);
-            match solve(&system, near, cancel) {
-                Ok(answer) => State::Solved(Solved { system, answer }),
+            match answer(system(&problem), near, cancel) {
+                Ok(solved) => State::Solved(solved),
                 Err(Failure::Cancelled) => return None,
                 Err(failure) => State::Failed(failure),
             }
@@ -79,7 +79,8 @@ impl Outcome {
             State::Solved(solved) => Some(solved.answer.amounts.as_slice()),
             _ => None,
         };
-        let compared = compared(&problem, brought);
+        let same_sources = inherited && !in_force.other_sources;
+        let compared = compared(&problem, brought, same_sources);
         let mut findings = Vec::new();
         let context = Context::new(in_force, &problem, &state, &compared, inherited);
         for rule in rules() {
@@ -87,4 +88,25 @@ impl Outcome {
         }
         Some(Outcome { problem, state, compared, findings, balances: OnceLock::new() })
     }
+}
+
+/// The answer to a system. One that is near gives it at once where it is the same system,
+/// and else a place to start from.
+fn answer(system: System, near: Option<&Solved>, cancel: &AtomicBool) -> Result<Solved, Failure> {
+    if let Some(near) = near.filter(|near| near.system == system) {
+        return Ok(near.clone());
+    }
+    // Only an answer over the same components and species is a place to start from.
+    let start = near.filter(|near| {
+        let rows =
+            |system: &System| (system.totals.len(), system.species.len(), system.fixed.len());
+        rows(&near.system) == rows(&system)
+    });
+    let answer = solve(&system, start.map(|near| &near.answer), cancel)?;
+    let others = match other_states(&system, &answer, cancel) {
+        Ok(others) => others.iter().map(Answer::ph).collect(),
+        Err(Failure::Cancelled) => return Err(Failure::Cancelled),
+        Err(_) => Vec::new(),
+    };
+    Ok(Solved { system, answer, others })
 }

@@ -11,5 +11,6 @@ family! {
     nothing_left_free,
     held_twice,
     cannot_be_held,
+    more_than_one_answer,
     not_solved,
 }
