@@ -254,7 +254,7 @@ fn a_held_neutral_species_solves() {
 
 #[test]
 fn a_held_ion_solves() {
-    held_species("held ion", 40, true);
+    held_species("held ion", 15, true);
 }
 
 /// Whether amounts, none negative, give the totals: some choice of as many independent

@@ -21,15 +21,15 @@ fn run(system: &System, start: Option<&Answer>) -> Answer {
 fn check(
     what: &str,
     system: &System,
+    answer: &Answer,
     response: &Response,
     step: f64,
     change: impl Fn(&mut System, f64),
 ) {
-    let answer = run(system, None);
     let moved = |by: f64| {
         let mut moved = system.clone();
         change(&mut moved, by);
-        run(&moved, Some(&answer))
+        run(&moved, Some(answer))
     };
     let (up, down) = (moved(step), moved(-step));
     // Differences of logarithms are good to about 1e-13 / step, and to step².
@@ -69,7 +69,7 @@ fn derivatives_are_the_differences_of_solves() {
         if random.chance(0.3) {
             hold_ph(&mut system, random.uniform(3.0, 11.0));
         }
-        if random.chance(0.15) {
+        if seed % 20 == 7 {
             // An ion by its concentration, with a counter-ion as it comes.
             let i = 2 + random.below(components - 1);
             let held = system.species[i].clone();
@@ -96,24 +96,26 @@ fn derivatives_are_the_differences_of_solves() {
         let Some(sensitivity) = Sensitivity::new(&system, &answer) else {
             panic!("{seed}: no sensitivity");
         };
-        for l in 0..system.totals.len() {
+        // Each solve with a held ion is a walk over the pH: only some of them.
+        let few = seed % 20 == 7;
+        for l in 0..if few { 1 } else { system.totals.len() } {
             let Some(response) = sensitivity.by_total(l) else { continue };
             let largest = response.ln_components.iter().fold(0.0f64, |m, v| m.max(v.abs()));
             let step = 1e-5 / largest.max(1.0);
-            check(&format!("{seed}, total {l}"), &system, &response, step, |s, by| {
+            check(&format!("{seed}, total {l}"), &system, &answer, &response, step, |s, by| {
                 s.totals[l] += by;
             });
         }
-        for _ in 0..3 {
+        for _ in 0..if few { 1 } else { 3 } {
             let i = random.below(system.species.len());
             let Some(response) = sensitivity.by_ln_k(i) else { panic!("{seed}") };
-            check(&format!("{seed}, ln k {i}"), &system, &response, 1e-5, |s, by| {
+            check(&format!("{seed}, ln k {i}"), &system, &answer, &response, 1e-5, |s, by| {
                 s.species[i].ln_k += by;
             });
         }
-        for k in 0..system.fixed.len() {
+        for k in (0..system.fixed.len()).rev().take(if few { 1 } else { 2 }) {
             let Some(response) = sensitivity.by_fixed(k) else { panic!("{seed}") };
-            check(&format!("{seed}, held {k}"), &system, &response, 1e-5, |s, by| {
+            check(&format!("{seed}, held {k}"), &system, &answer, &response, 1e-5, |s, by| {
                 s.fixed[k].ln_value += by;
             });
         }

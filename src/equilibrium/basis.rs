@@ -88,6 +88,14 @@ impl<'a> Basis<'a> {
         }
     }
 
+    /// Every coefficient of a line that is not zero, with its slot.
+    pub fn each(&self, line: usize, take: impl FnMut(usize, f64)) {
+        match &self.numbers {
+            Numbers::Small(table) => table.each(line, take),
+            Numbers::Large(table) => table.each(line, take),
+        }
+    }
+
     /// The coefficient times [`Self::denominator`]: whole, so that sums over it can be
     /// made without rounding.
     pub fn numerator(&self, line: usize, slot: usize) -> f64 {

@@ -30,12 +30,9 @@ impl Coordinates {
         let system = frame.system;
         let slots: Vec<usize> =
             (0..frame.slots.len()).filter(|&s| frame.slots[s] == Slot::Free).collect();
-        let held: Vec<(usize, usize)> = (0..frame.slots.len())
-            .filter_map(|s| match frame.slots[s] {
-                Slot::Held(k) => Some((s, k)),
-                Slot::Free | Slot::Empty => None,
-            })
-            .collect();
+        // Of each slot, which free one it is.
+        let mut place = vec![0; frame.slots.len()];
+        slots.iter().enumerate().for_each(|(j, &slot)| place[slot] = j);
         let offsets: Vec<f64> = slots.iter().map(|&s| frame.offset(s)).collect();
         let species: Vec<usize> = (0..system.species.len()).filter(|&i| frame.present[i]).collect();
         let mut out = Self {
@@ -52,32 +49,28 @@ impl Coordinates {
         for (i, &line) in out.species.iter().enumerate() {
             out.starts.push(out.entries.len() as u32);
             let mut constant = system.species[line].ln_k;
-            for (j, &slot) in out.slots.iter().enumerate() {
-                if frame.basis.is_zero(line, slot) {
-                    continue;
+            frame.basis.each(line, |slot, value| match frame.slots[slot] {
+                Slot::Free => {
+                    let j = place[slot];
+                    constant -= value * offsets[j];
+                    out.entries.push((j as u32, value));
+                    if value > 0.0 {
+                        out.signs[j].0 = true;
+                    } else {
+                        out.signs[j].1 = true;
+                    }
+                    if frame.basis.line(slot) == line {
+                        out.basis_species[j] = Some(i);
+                    }
                 }
-                let value = frame.basis.value(line, slot);
-                constant -= value * offsets[j];
-                out.entries.push((j as u32, value));
-                if value > 0.0 {
-                    out.signs[j].0 = true;
-                } else {
-                    out.signs[j].1 = true;
+                Slot::Held(k) => {
+                    constant += value * system.fixed[k].ln_value;
+                    if system.fixed[k].concentration_of.is_some() {
+                        out.held.push((i, k, value));
+                    }
                 }
-                if frame.basis.line(slot) == line {
-                    out.basis_species[j] = Some(i);
-                }
-            }
-            for &(slot, k) in &held {
-                if frame.basis.is_zero(line, slot) {
-                    continue;
-                }
-                let value = frame.basis.value(line, slot);
-                constant += value * system.fixed[k].ln_value;
-                if system.fixed[k].concentration_of.is_some() {
-                    out.held.push((i, k, value));
-                }
-            }
+                Slot::Empty => {}
+            });
             out.constants.push(constant);
         }
         out.starts.push(out.entries.len() as u32);

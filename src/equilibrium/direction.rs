@@ -9,6 +9,9 @@ use super::point::Point;
 /// `J[j][l] = ∂ ln(P_j/N_j)/∂u_l`.
 pub(super) fn log_jacobian(at: &Coordinates, point: &Point, out: &mut DMatrix<f64>) {
     out.fill(0.0);
+    let height = out.nrows();
+    // Column after column.
+    let entries = out.as_mut_slice();
     for i in 0..at.species.len() {
         let c = point.concentrations[i];
         let row = at.row(i);
@@ -17,7 +20,7 @@ pub(super) fn log_jacobian(at: &Coordinates, point: &Point, out: &mut DMatrix<f6
             let side = if value > 0.0 { point.positive[j] } else { point.negative[j] };
             let weight = c * value / side;
             for &(l, other) in row {
-                out[(j, l as usize)] += weight * other;
+                entries[l as usize * height + j] += weight * other;
             }
         }
     }

@@ -83,6 +83,19 @@ impl<I: Exact> Table<I> {
         if self.denominator.is_one() { entry } else { entry / self.denominator.approximate() }
     }
 
+    /// Every coefficient of a row that is not zero, with its slot.
+    pub fn each(&self, row: usize, mut take: impl FnMut(usize, f64)) {
+        let whole = self.denominator.is_one();
+        let denominator = self.denominator.approximate();
+        let row = &self.entries[row * self.width..(row + 1) * self.width];
+        for (slot, entry) in row.iter().enumerate() {
+            if !entry.is_zero() {
+                let entry = entry.approximate();
+                take(slot, if whole { entry } else { entry / denominator });
+            }
+        }
+    }
+
     /// The coefficient times [`Self::denominator`].
     pub fn numerator(&self, row: usize, slot: usize) -> f64 {
         self.entries[row * self.width + slot].approximate()

@@ -17,7 +17,7 @@ const FULL_STEPS: u32 = 40;
 /// The longest step of any unknown in the joint iteration.
 const LONGEST: f64 = 3.0;
 /// Ionic strengths looked at, mol per litre or kilogram.
-const RANGE: (f64, f64) = (1e-14, 1e6);
+const RANGE: (f64, f64) = (1e-14, 1e2);
 
 /// Closes all rows with activity coefficients at the ionic strength that comes out.
 /// With ions of charge three and more there can be several such states; this finds the

@@ -21,7 +21,7 @@ const NEAR: f64 = 1e-2;
 /// let one fall without end.
 const LONGEST: f64 = 100.0;
 const HYBRID_STEPS: u32 = 100;
-const CONVEX_STEPS: u32 = 2000;
+const CONVEX_STEPS: u32 = 500;
 /// How often a convex step is doubled while it still goes straight down.
 const STRETCHES: u32 = 12;
 

@@ -13,7 +13,7 @@ use super::system::{Answer, Failure, IonicStrength, System};
 const LN_10: f64 = std::f64::consts::LN_10;
 const PH: (f64, f64, usize) = (-3.0, 18.0, 42);
 /// Decades of the ionic strength, mol per litre or kilogram.
-const LOG_I: (f64, f64, usize) = (-8.0, 2.0, 50);
+const LOG_I: (f64, f64, usize) = (-8.0, 1.0, 45);
 /// A Newton search may leave its cell by so many times its size.
 const ASTRAY: f64 = 2.0;
 

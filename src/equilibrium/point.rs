@@ -8,6 +8,7 @@ use super::coordinates::Coordinates;
 const LN_MOST: f64 = 300.0;
 /// Below this ln c is taken as this, so that no row comes to nothing.
 const LN_LEAST: f64 = -690.0;
+const LEAST: f64 = 2.2e-300;
 
 #[derive(Clone, Debug, Default)]
 pub(super) struct Point {
@@ -49,7 +50,8 @@ impl Point {
         self.negative.clear();
         self.negative.extend(at.totals.iter().map(|t| t.max(0.0) * scale));
         for i in 0..n {
-            let c = (self.concentrations[i] - self.ln_scale).max(LN_LEAST).exp();
+            let ln_c = self.concentrations[i] - self.ln_scale;
+            let c = if ln_c > LN_LEAST { ln_c.exp() } else { LEAST };
             self.concentrations[i] = c;
             for &(j, value) in at.row(i) {
                 if value > 0.0 {

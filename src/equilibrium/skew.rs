@@ -59,7 +59,8 @@ pub(super) fn states(
         let mut found = outer.changes(&marks)?;
         let looked = found.len();
         finish(&mut found, system, outer.iterations);
-        let jumps = looked > found.len() || marks.len() <= LOOK.2 as usize;
+        let whole = marks.len() > LOOK.2 as usize;
+        let jumps = looked > found.len() || (found.is_empty() && !whole);
         all.extend(found);
         least = marks.iter().fold(least, |least, mark| least.min(mark.1.abs()));
         if !jumps {
