@@ -13,6 +13,7 @@ use crate::chemistry::activity::ActivityModel;
 /// An exact row over the components: (index, coefficient), by rising index, no zeros.
 pub type Row = Vec<(usize, Rational64)>;
 
+/// Component numbers in rows must be below `totals.len()`.
 #[derive(Clone, Debug, PartialEq)]
 pub struct System {
     /// Dissolved species, free components among them (coefficient one on themselves).
@@ -44,7 +45,7 @@ pub struct Fixed {
     /// The value of `Σ row · x`, ln constant of the phase already taken off.
     pub ln_value: f64,
     /// Where a concentration and not an activity is held: the species' charge and ion
-    /// size, so that ln γ is taken off too.
+    /// size. Then `Σ row · x` is `ln_value` plus ln γ of that ion.
     pub concentration_of: Option<(i32, f64)>,
     /// What one mole of it brings to each component's row. Equal to `row` but for a
     /// charged species, whose charge the proton's row must not gain.
@@ -61,7 +62,8 @@ pub enum IonicStrength {
 /// The solved state.
 #[derive(Clone, Debug, PartialEq)]
 pub struct Answer {
-    /// ln activity of each component; minus infinity where it is absent.
+    /// ln activity of each component; minus infinity where it is absent, or where no
+    /// species that is present tells it (the electron when nothing is oxidised).
     pub ln_components: Vec<f64>,
     /// Of each species, mol per litre or kilogram.
     pub concentrations: Vec<f64>,
@@ -69,7 +71,7 @@ pub struct Answer {
     pub ionic_strength: f64,
     /// Of each fixed phase: what it brought (positive) or took away.
     pub amounts: Vec<f64>,
-    /// Worst row residual over the sum of the row's absolute terms.
+    /// Worst row residual over the sum of the row's absolute terms, in the rows as given.
     pub residual: f64,
     pub iterations: u32,
 }

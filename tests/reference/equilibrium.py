@@ -20,7 +20,7 @@ the constants. Where they come from:
 * ammines and cadmium and lead chlorides: D. Harvey, Analytical Chemistry 2.1, appendix
   16.12, read
 * carbonate pairs of calcium: L. N. Plummer, E. Busenberg, Geochim. Cosmochim. Acta 46,
-  1011 (1982), read; other pairs from memory
+  1011 (1982), read; all other complexes from memory
 * EDTA: the usual set for an ionic strength of 0.1, from memory
 * water: pKw 13.995, IAPWS R11-07(2019), rounded
 The totals are ours.
