@@ -16,8 +16,9 @@ use crate::problem::scope::{PROTON, WATER};
 pub struct Solved {
     pub system: System,
     pub answer: Answer,
-    /// The pH of other states that meet the same equations; none for most problems.
-    pub others: Vec<f64>,
+    /// pH and ionic strength of other states that meet the same equations; none for most
+    /// problems.
+    pub others: Vec<(f64, f64)>,
 }
 
 impl Solved {

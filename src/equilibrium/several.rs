@@ -45,8 +45,8 @@ pub fn other_states(
         Ok(_) => {
             let steep = system.species.iter().any(|s| s.charge.abs() >= 3);
             let computed = system.ionic_strength == IonicStrength::Computed;
-            let strong = strongest(system) > STEEP_FROM || !system.fixed.is_empty();
-            if !(steep && computed && strong && needs_activity(system)) {
+            let steep = steepness(system) > STEEP || steep && !system.fixed.is_empty();
+            if !(steep && computed && needs_activity(system)) {
                 return Ok(Vec::new());
             }
             let states = by_ionic_strength(system, Some(answer), cancel).or_else(passed)?;
@@ -68,22 +68,26 @@ pub fn other_states(
     }
 }
 
-/// Below this ionic strength, mol per litre or kilogram, coefficients fall all the way and
-/// no second state was ever met.
-const STEEP_FROM: f64 = 0.1;
+/// With less than this no second state is looked for. For one to be, ln γ of an ion of
+/// charge z must fall about as fast as ln I rises, `½ A ln 10 · z² √I ≥ 1`, by the ionic
+/// strength that such ions make themselves; this is a third of that.
+const STEEP: f64 = 1.0;
 
-/// The ionic strength if every component were in its most highly charged species.
-fn strongest(system: &System) -> f64 {
-    let mut most = vec![0.0_f64; system.totals.len()];
+/// The greatest `z⁴ · I` over charges of three and above, I being the ionic strength if all
+/// components that can be in such ions were.
+fn steepness(system: &System) -> f64 {
+    let mut most = vec![0_i32; system.totals.len()];
     for species in &system.species {
-        let squared = f64::from(species.charge).powi(2);
-        for &(component, _) in &species.row {
-            most[component] = most[component].max(squared);
+        let charge = species.charge.saturating_abs();
+        for &(component, _) in species.row.iter().filter(|_| charge >= 3) {
+            most[component] = most[component].max(charge);
         }
     }
+    let squared = |z: i32| f64::from(z).powi(2);
     // The proton's total is a balance of the others and says nothing of amounts.
-    let sum: f64 = most.iter().zip(&system.totals).skip(1).map(|(z2, t)| z2 * t.abs()).sum();
-    0.5 * sum
+    let strength: f64 =
+        most.iter().zip(&system.totals).skip(1).map(|(&z, t)| 0.5 * squared(z) * t.abs()).sum();
+    most.iter().skip(1).map(|&z| squared(z).powi(2) * strength).fold(0.0, f64::max)
 }
 
 fn other_strength(state: &Answer, answer: &Answer) -> bool {

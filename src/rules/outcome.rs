@@ -11,7 +11,7 @@ use crate::equilibrium::build::system;
 use crate::equilibrium::quantities::Solved;
 use crate::equilibrium::several::other_states;
 use crate::equilibrium::solve::solve;
-use crate::equilibrium::system::{Answer, Failure, System};
+use crate::equilibrium::system::{Failure, System};
 use crate::equilibrium::weighed::{Balances, balances};
 use crate::problem::case::resolve;
 use crate::problem::effective::InForce;
@@ -32,7 +32,7 @@ pub struct Outcome {
 /// What became of the equations.
 #[derive(Debug)]
 pub enum State {
-    Solved(Solved),
+    Solved(Box<Solved>),
     /// The file states no amounts: definitions alone.
     NothingStated,
     /// Something found wrong has to be put right first.
@@ -70,7 +70,7 @@ impl Outcome {
             State::NotWellPosed
         } else {
             match answer(system(&problem), near, cancel) {
-                Ok(solved) => State::Solved(solved),
+                Ok(solved) => State::Solved(Box::new(solved)),
                 Err(Failure::Cancelled) => return None,
                 Err(failure) => State::Failed(failure),
             }
@@ -103,10 +103,14 @@ fn answer(system: System, near: Option<&Solved>, cancel: &AtomicBool) -> Result<
         rows(&near.system) == rows(&system)
     });
     let answer = solve(&system, start.map(|near| &near.answer), cancel)?;
-    let others = match other_states(&system, &answer, cancel) {
-        Ok(others) => others.iter().map(Answer::ph).collect(),
+    let others: Vec<(f64, f64)> = match other_states(&system, &answer, cancel) {
+        Ok(others) => others.iter().map(|other| (other.ph(), other.ionic_strength)).collect(),
         Err(Failure::Cancelled) => return Err(Failure::Cancelled),
         Err(_) => Vec::new(),
     };
+    // Where there are several, the one shown must not hang on what was shown before.
+    if start.is_some() && !others.is_empty() {
+        return self::answer(system, None, cancel);
+    }
     Ok(Solved { system, answer, others })
 }

@@ -12,24 +12,25 @@
 //! Before:
 //!
 //! ```lyate
-//! component Al^3+, SO4^2-
-//! reaction HSO4- <=> SO4^2- + H+, pKa = 1.99, source "site table, row 3"
-//! total Al^3+  = 2 mol/L
-//! hold {SO4^2-} = 0.02
+//! component Zr^4+, Fe(CN)6^4-
+//! reaction Zr^4+ + Fe(CN)6^4- <=> ZrFe(CN)6, log beta = 6.2, source "site table, row 30"
+//! total Zr^4+      = 30 mmol/L
+//! total Fe(CN)6^4- = 30 mmol/L
 //! ```
 //!
 //! After:
 //!
 //! ```lyate
-//! component Al^3+, SO4^2-
-//! reaction HSO4- <=> SO4^2- + H+, pKa = 1.99, source "site table, row 3"
-//! total Al^3+  = 2 mmol/L
-//! total SO4^2- = 3 mmol/L
+//! component Zr^4+, Fe(CN)6^4-
+//! reaction Zr^4+ + Fe(CN)6^4- <=> ZrFe(CN)6, log beta = 6.2, source "site table, row 30"
+//! ionic strength 0.1 mol/L
+//! total Zr^4+      = 30 mmol/L
+//! total Fe(CN)6^4- = 30 mmol/L
 //! ```
 
 use crate::rules::catalogue::rule;
 use crate::rules::context::Context;
-use crate::rules::figures::decimals;
+use crate::rules::figures::{concentration, decimals};
 use crate::rules::finding::Finding;
 use crate::rules::words::list;
 use crate::text::span::Place;
@@ -39,10 +40,14 @@ rule!("more-than-one-answer", Warning, "more_than_one_answer.rs", find);
 fn find(context: &Context, found: &mut Vec<Finding<Place>>) {
     let Some(solved) = context.solved().filter(|solved| !solved.others.is_empty()) else { return };
     let Some(at) = context.anchor() else { return };
-    let others: Vec<String> = solved.others.iter().map(|ph| decimals(*ph, 3)).collect();
+    let scale = context.problem.scale;
+    let words = |ph: f64, ionic_strength: f64| {
+        format!("pH {} at I {}", decimals(ph, 3), concentration(ionic_strength, scale))
+    };
+    let others: Vec<String> = solved.others.iter().map(|&(ph, i)| words(ph, i)).collect();
     let message = format!(
-        "these equations have more than one answer: pH {}, shown here, and pH {}",
-        decimals(solved.ph(), 3),
+        "these equations have more than one answer: {}, shown here, and {}",
+        words(solved.ph(), solved.answer.ionic_strength),
         list(&others, "and"),
     );
     let help = "state what tells them apart, such as the measured pH or the ionic strength";
