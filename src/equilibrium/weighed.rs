@@ -1,6 +1,7 @@
 //! The implied balances of a solved problem, term by term: what each term amounts to,
 //! which of them the answer rests on, and what dropping one does to the pH.
 
+use std::sync::OnceLock;
 use std::sync::atomic::AtomicBool;
 
 use num_rational::Rational64;
@@ -10,19 +11,40 @@ use super::dominance::{self, Decides, DominanceTerm, TermWeight, dominance};
 use super::quantities::Solved;
 use crate::balance::charge::charge_balance;
 use crate::balance::mass::mass_balance;
-use crate::balance::proton::{ProtonCondition, proton_condition};
+use crate::balance::proton::proton_condition;
 use crate::balance::recipe::Recipe;
 use crate::balance::written::TermOf;
 use crate::balance::{Balance, BalanceKind};
 use crate::problem::model::Problem;
 
-/// All balances of a solved problem.
+/// The balances of a solved problem, each weighed when it is first asked for.
 #[derive(Debug)]
 pub struct Balances {
+    recipe: Recipe,
     /// Charge, then each component's, then the protons'.
-    pub all: Vec<Weighed>,
-    /// How the proton condition follows; none where its numbers outgrow 64 bits.
-    pub protons: Option<ProtonCondition>,
+    implied: Vec<(Balance, OnceLock<Option<Weighed>>)>,
+}
+
+impl Balances {
+    pub fn new(problem: &Problem, solved: &Solved) -> Balances {
+        let stoichiometry = &problem.scope.stoichiometry;
+        let recipe = Recipe::of(problem, Some(&solved.answer.amounts));
+        let protons = proton_condition(stoichiometry, &recipe, &[]).ok();
+        let components = 1..stoichiometry.components.len();
+        let implied = std::iter::once(charge_balance(stoichiometry))
+            .chain(components.map(|j| mass_balance(stoichiometry, j)))
+            .chain(protons.map(|condition| condition.balance))
+            .map(|balance| (balance, OnceLock::new()))
+            .collect();
+        Balances { recipe, implied }
+    }
+
+    /// The balance of a kind; none where states near the answer cannot be solved, or where
+    /// there is no such balance.
+    pub fn of(&self, kind: BalanceKind, solved: &Solved) -> Option<&Weighed> {
+        let (balance, weight) = self.implied.iter().find(|(balance, _)| balance.kind == kind)?;
+        weight.get_or_init(|| weighed(solved, &self.recipe, balance)).as_ref()
+    }
 }
 
 #[derive(Debug)]
@@ -53,20 +75,6 @@ impl Weighed {
         let size: f64 = terms.map(|term| term.weight.value.abs()).sum();
         self.error().abs() <= 1e-9 * size
     }
-}
-
-/// Weighs every balance. Balances whose states near the answer cannot be solved are left
-/// out.
-pub fn balances(problem: &Problem, solved: &Solved) -> Balances {
-    let stoichiometry = &problem.scope.stoichiometry;
-    let recipe = Recipe::of(problem, Some(&solved.answer.amounts));
-    let protons = proton_condition(stoichiometry, &recipe, &[]).ok();
-    let components = 1..stoichiometry.components.len();
-    let implied = std::iter::once(charge_balance(stoichiometry))
-        .chain(components.map(|j| mass_balance(stoichiometry, j)))
-        .chain(protons.iter().map(|condition| condition.balance.clone()));
-    let all = implied.filter_map(|balance| weighed(solved, &recipe, &balance)).collect();
-    Balances { all, protons }
 }
 
 fn weighed(solved: &Solved, recipe: &Recipe, balance: &Balance) -> Option<Weighed> {

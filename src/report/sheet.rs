@@ -150,8 +150,7 @@ impl<'a> Ledger<'a> {
     /// Marks the terms that the balance rests on at the answer. Where that cannot be told,
     /// none is marked.
     fn weigh(&self, sheet: &mut Sheet) {
-        let Some(balances) = self.outcome.balances() else { return };
-        let Some(weighed) = balances.all.iter().find(|b| b.kind == sheet.kind) else { return };
+        let Some(weighed) = self.outcome.balance(sheet.kind) else { return };
         for (side, weights) in
             [(&mut sheet.left, &weighed.left), (&mut sheet.right, &weighed.right)]
         {

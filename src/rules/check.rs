@@ -191,6 +191,8 @@ fn run<T: Send>(todo: &[usize], work: &(impl Fn(usize) -> T + Sync)) -> Vec<(usi
     if todo.len() < WORTH_THREADS || cores < 2 {
         return todo.iter().map(|&index| (index, work(index))).collect();
     }
+    // Small enough that no thread is left with much more than another.
+    let share = (todo.len() / (8 * cores)).clamp(1, 16);
     let next = Mutex::new(todo.iter().copied());
     let done = Mutex::new(Vec::with_capacity(todo.len()));
     std::thread::scope(|scope| {
@@ -199,7 +201,7 @@ fn run<T: Send>(todo: &[usize], work: &(impl Fn(usize) -> T + Sync)) -> Vec<(usi
                 loop {
                     let taken: Vec<usize> = {
                         let mut next = next.lock().unwrap_or_else(|e| e.into_inner());
-                        next.by_ref().take(WORTH_THREADS).collect()
+                        next.by_ref().take(share).collect()
                     };
                     if taken.is_empty() {
                         return;

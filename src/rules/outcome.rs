@@ -7,12 +7,13 @@ use super::catalogue::rules;
 use super::compared::{Compared, compared};
 use super::context::Context;
 use super::finding::Finding;
+use crate::balance::BalanceKind;
 use crate::equilibrium::build::system;
 use crate::equilibrium::quantities::Solved;
 use crate::equilibrium::several::other_states;
 use crate::equilibrium::solve::solve;
 use crate::equilibrium::system::{Failure, System};
-use crate::equilibrium::weighed::{Balances, balances};
+use crate::equilibrium::weighed::{Balances, Weighed};
 use crate::problem::case::resolve;
 use crate::problem::effective::InForce;
 use crate::problem::model::Problem;
@@ -48,10 +49,10 @@ impl Outcome {
         }
     }
 
-    /// The implied balances, term by term; none where there is no answer.
-    pub fn balances(&self) -> Option<&Balances> {
+    /// The implied balance of a kind, term by term; none where there is no answer.
+    pub fn balance(&self, kind: BalanceKind) -> Option<&Weighed> {
         let solved = self.solved()?;
-        Some(self.balances.get_or_init(|| balances(&self.problem, solved)))
+        self.balances.get_or_init(|| Balances::new(&self.problem, solved)).of(kind, solved)
     }
 
     /// Takes the statements in force through all rooms. `near` is an answer to start from;

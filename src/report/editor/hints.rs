@@ -117,7 +117,7 @@ fn written_balance(
 ) -> Option<Hint> {
     let problem = &outcome.problem;
     let written = &problem.balances[index];
-    let implied = outcome.balances()?.all.iter().find(|b| b.kind == kind(written.kind))?;
+    let implied = outcome.balance(kind(written.kind))?;
     let verdict = outcome.compared.iter().find(|compared| compared.balance == index);
     let is_wrong =
         verdict.is_some_and(|compared| matches!(compared.verdict, Verdict::Wrong { .. }));
