@@ -56,6 +56,12 @@ fn benches(criterion: &mut Criterion) {
         group.bench_function(BenchmarkId::new("after an edit", lines), |bench| {
             bench.iter(|| black_box(checked(&edited, &imports, Some(&first))));
         });
+        // The temperature of the base changes: every case that has none of its own is new,
+        // and every case is looked at again.
+        let warmer = text.replacen("temperature 18 °C", "temperature 18.5 °C", 1);
+        group.bench_function(BenchmarkId::new("after an edit of the base", lines), |bench| {
+            bench.iter(|| black_box(checked(&warmer, &imports, Some(&first))));
+        });
     }
     group.finish();
 }
