@@ -13,6 +13,7 @@ use super::sparse::{Row, add_scaled};
 use super::split::{Split, split};
 use crate::chemistry::formula::Formula;
 use crate::text::parse::KEYWORDS;
+use crate::text::span::Place;
 use crate::text::tree::{Member, Name, Quantity, Statement};
 
 /// Reads `total` and `add`.
@@ -94,7 +95,11 @@ fn add(
     written: &Written,
     (name, amount, giving): (&Name, &Quantity, Option<&[Member]>),
 ) -> Option<()> {
-    let formula = case.resolver.formula(written, name)?;
+    let known = case.scope.reagents.get(&name.value).filter(|_| giving.is_none());
+    let formula = match &known {
+        Some((formula, _)) => formula.clone(),
+        None => case.resolver.formula(written, name)?,
+    };
     let at = written.place(name.span);
     if formula.charge != 0 {
         let charge = i64::from(formula.charge);
@@ -106,36 +111,42 @@ fn add(
     if !case.not_negative(written, amount) {
         return None;
     }
-    let pieces = match giving {
-        Some(members) => given(case, written, &formula, members),
-        None => match split(&formula, case.scope) {
-            Split::Into(pieces) => Some(pieces),
-            Split::NotUnique => {
-                let kind = DefectKind::ReagentNotUnique { name: formula.name.clone() };
-                case.resolver.report(at, kind);
-                None
-            }
-            Split::Foreign(element) => {
-                let kind = DefectKind::ReagentHoldsForeign { name: formula.name.clone(), element };
-                case.resolver.report(at, kind);
-                None
-            }
-            Split::Impossible => {
-                let kind = DefectKind::ReagentNotMade { name: formula.name.clone() };
-                case.resolver.report(at, kind);
-                None
-            }
-        },
+    let (row, giving) = match (known, giving) {
+        (Some((_, row)), _) => (row, None),
+        (None, Some(members)) => {
+            let pieces = given(case, written, &formula, members)?;
+            (row_over_components(case, &pieces)?, Some(forms(case, &pieces)))
+        }
+        (None, None) => {
+            let pieces = taken_apart(case, at, &formula)?;
+            let row = row_over_components(case, &pieces)?;
+            case.scope.reagents.keep(&name.value, &formula, &row);
+            (row, None)
+        }
     };
-    let pieces = pieces?;
-    let row = row_over_components(case, &pieces)?;
     if let Some(known) = problem.reagents.iter_mut().find(|r| r.formula.name == formula.name) {
         known.amount += read.value;
         return Some(());
     }
-    let giving = giving.is_some().then(|| forms(case, &pieces));
     problem.reagents.push(Reagent { formula, at, amount: read.value, row, giving });
     Some(())
+}
+
+/// A reagent as species; a defect where it is not to be had from those in scope.
+fn taken_apart(
+    case: &mut CaseResolver,
+    at: Place,
+    formula: &Formula,
+) -> Option<Vec<(usize, Rational64)>> {
+    let name = formula.name.clone();
+    let kind = match split(formula, case.scope) {
+        Split::Into(pieces) => return Some(pieces),
+        Split::NotUnique => DefectKind::ReagentNotUnique { name },
+        Split::Foreign(element) => DefectKind::ReagentHoldsForeign { name, element },
+        Split::Impossible => DefectKind::ReagentNotMade { name },
+    };
+    case.resolver.report(at, kind);
+    None
 }
 
 /// What `giving` names, once it adds up to the reagent.

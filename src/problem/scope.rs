@@ -16,6 +16,7 @@ use super::effective::Written;
 use super::import::{Definitions, add_new};
 use super::reaction::{Constant, LogK, Origin, Participant, Reaction};
 use super::resolve::Resolver;
+use super::split::Reagents;
 use super::stoichiometry::{SpeciesRow, Stoichiometry};
 use crate::chemistry::formula::{Formula, Groups, Phase};
 use crate::text::span::{Place, Span};
@@ -42,6 +43,7 @@ pub struct Scope {
     pub dissolved: Vec<usize>,
     pub stoichiometry: Stoichiometry,
     pub defects: Vec<Defect>,
+    pub(super) reagents: Reagents,
     /// Files that were read for it.
     pub files: Vec<PathBuf>,
 }
@@ -250,6 +252,7 @@ impl Builder {
             balanced,
             dissolved,
             stoichiometry,
+            reagents: Reagents::default(),
             files,
         }
     }

@@ -1,13 +1,40 @@
 //! A reagent over the components of a problem, and where the elements alone do not tell,
 //! over the fewest species that make it.
 
+use std::collections::HashMap;
+use std::sync::{Arc, Mutex, PoisonError};
+
 use num_rational::Rational64;
 use num_traits::{One, Signed, Zero};
 
 use super::reagent::{SplitProblem, split_over_components};
 use super::scope::{PROTON, Scope, WATER};
+use super::sparse::Row;
 use crate::chemistry::element::Element;
 use crate::chemistry::formula::{Atom, Formula};
+
+/// Reagents that were split over a scope already, by their names as written: cases of one
+/// problem put in the same ones.
+#[derive(Debug, Default)]
+pub struct Reagents {
+    known: Mutex<HashMap<String, (Arc<Formula>, Row)>>,
+}
+
+/// So many are kept; a file with more has each one split again.
+const KEPT: usize = 4096;
+
+impl Reagents {
+    pub fn get(&self, written: &str) -> Option<(Arc<Formula>, Row)> {
+        self.known.lock().unwrap_or_else(PoisonError::into_inner).get(written).cloned()
+    }
+
+    pub fn keep(&self, written: &str, formula: &Arc<Formula>, row: &Row) {
+        let mut known = self.known.lock().unwrap_or_else(PoisonError::into_inner);
+        if known.len() < KEPT {
+            known.insert(written.to_owned(), (formula.clone(), row.clone()));
+        }
+    }
+}
 
 /// What a reagent is made of, as species of the scope with exact counts.
 pub enum Split {
