@@ -181,7 +181,8 @@ fn scope_key(statements: &[Written], uses: &UseResults) -> u64 {
 
 fn hash_section(section: &Section, hasher: &mut DefaultHasher) {
     for placed in &section.statements {
-        placed.parsed.hash.hash(hasher);
+        // A stray indent is a problem of the same text in another place.
+        (placed.parsed.hash, placed.parsed.problems.len()).hash(hasher);
     }
 }
 
