@@ -129,13 +129,26 @@ impl Recipe {
             Part::Added(reagent) => self.reagents.get(reagent).map(|reagent| reagent.amount),
             Part::Held(held) => self.held.get(held)?.amount,
             Part::Total(component) => match self.totals.get(component).copied().flatten() {
-                Some(total) => Some(total),
+                // A held gas adds to what was given, or takes from it.
+                Some(total) => Some(total + self.exchanged(component)?),
                 None => match self.sources(component).as_slice() {
                     [(Part::Total(_), _)] => None,
                     sources => self.sum(sources),
                 },
             },
         }
+    }
+
+    /// What held values brought of a component, mol per litre or kilogram; none where that is
+    /// not known.
+    fn exchanged(&self, component: usize) -> Option<f64> {
+        let mut sum = 0.0;
+        for held in &self.held {
+            if let Some((_, n)) = held.brings.iter().find(|(column, _)| *column == component) {
+                sum += n.to_f64()? * held.amount?;
+            }
+        }
+        Some(sum)
     }
 
     /// The sum of parts; none where one is not known.

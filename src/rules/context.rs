@@ -5,7 +5,7 @@ use super::outcome::State;
 use crate::equilibrium::quantities::Solved;
 use crate::problem::defect::Defect;
 use crate::problem::effective::{InForce, Written};
-use crate::problem::model::Problem;
+use crate::problem::model::{Held, HeldWhat, Problem};
 use crate::text::problem::SyntaxProblem;
 use crate::text::span::{Part, Place, Span};
 
@@ -93,6 +93,17 @@ impl<'a> Context<'a> {
     pub fn anchor(&self) -> Option<Place> {
         let title = self.problem.title_at;
         title.or_else(|| self.statements.first().map(|written| written.whole()))
+    }
+
+    /// A held concentration or activity of an ion, which has more than one state or none more
+    /// often than other equations do.
+    pub fn held_ion(&self) -> Option<&'a Held> {
+        self.problem.held.iter().find(|held| match held.what {
+            HeldWhat::Activity { species, .. } | HeldWhat::Concentration { species, .. } => {
+                self.problem.scope.species[species].charge != 0
+            }
+            _ => false,
+        })
     }
 
     /// The place just after a place.

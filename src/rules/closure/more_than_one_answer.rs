@@ -39,7 +39,9 @@ rule!("more-than-one-answer", Warning, "more_than_one_answer.rs", find);
 
 fn find(context: &Context, found: &mut Vec<Finding<Place>>) {
     let Some(solved) = context.solved().filter(|solved| !solved.others.is_empty()) else { return };
-    let Some(at) = context.anchor() else { return };
+    let Some(at) = context.held_ion().map(|held| held.at).or_else(|| context.anchor()) else {
+        return;
+    };
     let scale = context.problem.scale;
     let words = |ph: f64, ionic_strength: f64| {
         format!("pH {} at I {}", decimals(ph, 3), concentration(ionic_strength, scale))

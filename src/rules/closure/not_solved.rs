@@ -102,6 +102,11 @@ fn dependent(
 }
 
 fn not_converged(context: &Context, residual: f64, iterations: u32) -> Option<Finding<Place>> {
+    if let Some(held) = context.held_ion() {
+        let message = format!("no pH between −3 and 18 gives `{}` the value it is held at", held.words);
+        let help = "the totals or reagents do not allow it; hold less of it, or give its total";
+        return Some(RULE.at(held.at, message).with_help(help));
+    }
     let at = context.problem.activity_at.or_else(|| context.anchor())?;
     let message = format!(
         "no answer was found: after {iterations} steps the balances are still open by {}",
