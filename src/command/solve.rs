@@ -1,9 +1,6 @@
 //! `lyate solve`: the answer for a file and each of its cases.
 
-use std::path::PathBuf;
-
-use super::chosen::{chosen, readable};
-use super::library::Checker;
+use super::chosen::Asked;
 use super::reply::{Complaint, Reply};
 use super::terminal::style;
 use crate::report::answer::{answer, conditions, overview};
@@ -29,14 +26,8 @@ Exit code:
   2  not run: wrong usage, or a file that cannot be read"
 )]
 pub struct Arguments {
-    /// The problem file
-    file: PathBuf,
-    /// Only the case of this title
-    #[arg(long, value_name = "NAME")]
-    case: Option<String>,
-    /// The folder that imports may not leave
-    #[arg(long, value_name = "FOLDER")]
-    root: Option<PathBuf>,
+    #[command(flatten)]
+    asked: Asked,
     /// How to tell the answer
     #[arg(long, value_name = "FORM", value_enum, default_value_t = Form::Text)]
     output: Form,
@@ -51,9 +42,8 @@ enum Form {
 }
 
 pub fn run(arguments: &Arguments) -> Result<Reply, Complaint> {
-    let file = Checker::new(arguments.root.as_ref())?.check(&arguments.file);
-    readable(&file)?;
-    let problems = chosen(&file, arguments.case.as_deref())?;
+    let file = arguments.asked.check()?;
+    let problems = arguments.asked.problems(&file)?;
     let good = !problems.is_empty() && problems.iter().all(is_good);
     let style = style();
     let (text, remark) = match arguments.output {
