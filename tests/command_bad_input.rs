@@ -193,3 +193,14 @@ fn a_reader_that_goes_away() {
     assert_eq!(String::from_utf8_lossy(&output.stderr), "");
     assert_eq!(output.status.code(), Some(1));
 }
+
+#[test]
+fn a_place_far_along_a_line_is_told_by_its_real_column() {
+    let text = format!("component Na+\ntotal{}Na+ = 1 mmolL\n", " ".repeat(700));
+    let folder = folder(&[]);
+    std::fs::write(folder.path().join("input.lyate"), text).unwrap();
+    let output = run_within(folder.path(), &["check"], LIMIT);
+    let column = "total".len() + 700 + "Na+ = 1 ".len() + 1;
+    let text = stdout(&output);
+    assert!(text.contains(&format!("input.lyate:2:{column}\n")), "{text}");
+}

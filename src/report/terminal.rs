@@ -62,7 +62,7 @@ pub fn likewise(
     }
     let mut groups: Vec<Group> = vec![group];
     groups.extend(finding.fixes.iter().map(|fix| fix_group(fix, source)));
-    renderer(style).render(&groups)
+    window.with_column(renderer(style).render(&groups), source, &finding.at)
 }
 
 /// What other cases say, a few of them in full.
@@ -121,7 +121,8 @@ pub fn notes(findings: &[&LocatedFinding], source: &Source, style: Style) -> Str
             let mark = AnnotationKind::Primary.span(at);
             group = group.element(window.snippet(source).annotation(mark));
         }
-        text += &renderer(style).short_message(true).render(&[group]);
+        let line = renderer(style).short_message(true).render(&[group]);
+        text += &window.with_column(line, source, &note.at);
         text.push('\n');
     }
     text
@@ -194,6 +195,21 @@ impl<'a> Window<'a> {
 
     fn snippet<T: Clone>(&self, source: &'a Source) -> Snippet<'a, T> {
         Snippet::source(self.text).line_start(self.line).path(source.name.as_str())
+    }
+
+    /// A rendered text with the column of a finding told by its whole line, also where the
+    /// window starts inside the line and the renderer could only count from there.
+    fn with_column(&self, rendered: String, source: &Source, at: &Range<usize>) -> String {
+        let region = source.region(at);
+        let Some(inside) = self.inside(at).filter(|_| region.line == self.line) else {
+            return rendered;
+        };
+        let shown = self.text[..inside.start].chars().count() + 1;
+        if shown == region.column {
+            return rendered;
+        }
+        let place = |column: usize| format!("{}:{}:{column}", source.name, region.line);
+        rendered.replacen(&place(shown), &place(region.column), 1)
     }
 
     /// The range as seen from the window; none where it starts outside.
