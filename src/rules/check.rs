@@ -196,24 +196,27 @@ fn run<T: Send>(todo: &[usize], work: &(impl Fn(usize) -> T + Sync)) -> Vec<(usi
     let share = (todo.len() / (8 * cores)).clamp(1, 16);
     let next = Mutex::new(todo.iter().copied());
     let done = Mutex::new(Vec::with_capacity(todo.len()));
-    std::thread::scope(|scope| {
-        for _ in 0..cores.min(todo.len()) {
-            scope.spawn(|| {
-                loop {
-                    let taken: Vec<usize> = {
-                        let mut next = next.lock().unwrap_or_else(|e| e.into_inner());
-                        next.by_ref().take(share).collect()
-                    };
-                    if taken.is_empty() {
-                        return;
-                    }
-                    for index in taken {
-                        let result = work(index);
-                        done.lock().unwrap_or_else(|e| e.into_inner()).push((index, result));
-                    }
-                }
-            });
+    let help = || {
+        loop {
+            let taken: Vec<usize> = {
+                let mut next = next.lock().unwrap_or_else(|e| e.into_inner());
+                next.by_ref().take(share).collect()
+            };
+            if taken.is_empty() {
+                return;
+            }
+            for index in taken {
+                let result = work(index);
+                done.lock().unwrap_or_else(|e| e.into_inner()).push((index, result));
+            }
         }
+    };
+    // This thread works too, and has begun before another is there.
+    std::thread::scope(|scope| {
+        for _ in 1..cores.min(todo.len()) {
+            scope.spawn(help);
+        }
+        help();
     });
     done.into_inner().unwrap_or_else(|e| e.into_inner())
 }
