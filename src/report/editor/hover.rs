@@ -66,6 +66,9 @@ fn statement_at(checked: &Checked, offset: usize) -> Option<(usize, usize, &Plac
     Some((section, index, &checked.document.sections[section].statements[index]))
 }
 
+/// So many reactions of one species are told.
+const SHOWN_REACTIONS: usize = 4;
+
 /// Name, charge, molar mass; amount, share and constants where it is solved.
 fn species(outcome: &Outcome, name: &str) -> Option<String> {
     let problem = &outcome.problem;
@@ -107,7 +110,13 @@ fn species(outcome: &Outcome, name: &str) -> Option<String> {
     if let Some(s) = scope.find(name)
         && let Some(made) = &scope.belonging.made[s]
     {
-        for &(r, _) in made.combination.iter().take(4) {
+        // A component is made by no reaction: those that it takes part in say what it does.
+        let of_itself = scope.reactions_in_use().filter(|(_, reaction)| {
+            made.combination.is_empty()
+                && reaction.participants.iter().any(|p| p.formula.name == name)
+        });
+        let making = made.combination.iter().map(|&(r, _)| r);
+        for r in making.chain(of_itself.map(|(r, _)| r)).take(SHOWN_REACTIONS) {
             let reaction = &scope.reactions[r];
             lines.push(format!("`{}`: {}", reaction.equation, constant(problem, r, reaction)));
             lines.push(whence(reaction));
