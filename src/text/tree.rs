@@ -53,9 +53,12 @@ pub struct Parsed {
 }
 
 impl Parsed {
-    /// Whether all of it was read: a stray indent alone takes nothing from its meaning.
+    /// Whether all of it was read: a stray indent takes nothing from its meaning, nor does a
+    /// plus without its spaces, which is taken apart.
     pub fn is_read_whole(&self) -> bool {
-        self.problems.iter().all(|problem| problem.kind == SyntaxProblemKind::StrayIndent)
+        use SyntaxProblemKind::{NoSpaceRoundPlus, StrayIndent};
+        let harmless = |kind: &_| matches!(kind, StrayIndent | NoSpaceRoundPlus { .. });
+        self.problems.iter().all(|problem| harmless(&problem.kind))
     }
 }
 
