@@ -44,7 +44,7 @@ pub struct Checked {
 }
 
 /// More sections than this to work on are shared among threads.
-const WORTH_THREADS: usize = 8;
+const WORTH_THREADS: usize = 32;
 
 /// Checks a document. What the previous check found is kept where nothing that it rests on
 /// has changed. None when cancelled.
