@@ -7,7 +7,7 @@ use std::sync::atomic::{AtomicBool, AtomicUsize, Ordering};
 use ignore::WalkBuilder;
 
 use super::reply::Complaint;
-use crate::problem::files::{Disk, Files, ReadProblem};
+use crate::problem::files::{Disk, Files, ReadProblem, system_words};
 use crate::problem::import::Imports;
 use crate::report::source::{FileReport, Reading, Source};
 use crate::rules::check::{Surroundings, check};
@@ -82,7 +82,7 @@ fn reason(error: &std::io::Error) -> String {
     match error.kind() {
         std::io::ErrorKind::NotFound => "there is no such file or folder".into(),
         std::io::ErrorKind::PermissionDenied => "it may not be read".into(),
-        _ => error.to_string().split(" (os error").next().unwrap_or_default().to_lowercase(),
+        _ => system_words(error),
     }
 }
 

@@ -6,7 +6,7 @@
 use std::f64::consts::LN_10;
 
 use num_rational::Rational64;
-use num_traits::{One, ToPrimitive};
+use num_traits::One;
 
 use super::system::{Fixed, IonicStrength, Row, Species, System};
 use crate::chemistry::activity::{ActivityKind, ActivityModel};
@@ -53,14 +53,7 @@ pub fn system(problem: &Problem) -> System {
 /// one that does not belong.
 pub fn ln_formation(problem: &Problem, species: usize) -> f64 {
     let made = problem.scope.belonging.made[species].as_ref();
-    made.map_or(0.0, |made| {
-        LN_10
-            * made
-                .combination
-                .iter()
-                .map(|&(r, by)| by.to_f64().unwrap_or(0.0) * problem.log_k[r])
-                .sum::<f64>()
-    })
+    made.map_or(0.0, |made| LN_10 * made.log_beta(|r| problem.log_k[r]))
 }
 
 fn fixed(problem: &Problem, held: &Held) -> Option<Fixed> {

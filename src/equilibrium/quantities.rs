@@ -174,15 +174,9 @@ fn zero_levels(problem: &Problem) -> Vec<f64> {
             .iter()
             .find(|&&(j, _)| j == PROTON)
             .map_or(0.0, |p| p.1.to_f64().unwrap_or(0.0));
-        let ln_k: f64 = scope.belonging.made[s].as_ref().map_or(0.0, |made| {
-            made.combination
-                .iter()
-                .map(|&(r, by)| {
-                    let log_k = scope.reactions[r].log_k(STANDARD).map_or(0.0, |(k, _)| k);
-                    by.to_f64().unwrap_or(0.0) * log_k * LN_10
-                })
-                .sum()
-        });
+        let log_k = |r: usize| scope.reactions[r].log_k(STANDARD).map_or(0.0, |(k, _)| k);
+        let made = scope.belonging.made[s].as_ref();
+        let ln_k = made.map_or(0.0, |made| LN_10 * made.log_beta(log_k));
         let height = ln_k + protons * ln_h;
         if height > best[j].0 {
             best[j] = (height, protons);

@@ -5,7 +5,7 @@
 use std::collections::HashMap;
 
 use num_rational::Rational64;
-use num_traits::{One, Zero};
+use num_traits::{One, ToPrimitive, Zero};
 
 use super::sparse::{Row, add_scaled, coefficient, scale};
 
@@ -19,6 +19,18 @@ pub struct Equation {
 pub struct Made {
     pub row: Row,
     pub combination: Row,
+}
+
+impl Made {
+    /// log10 of the formation constant from the components, by log10 K of each reaction.
+    pub fn log_beta(&self, log_k: impl Fn(usize) -> f64) -> f64 {
+        combined(&self.combination, log_k)
+    }
+}
+
+/// `Σ combination_r · log K_r`.
+pub fn combined(combination: &Row, log_k: impl Fn(usize) -> f64) -> f64 {
+    combination.iter().map(|&(r, by)| by.to_f64().unwrap_or(0.0) * log_k(r)).sum()
 }
 
 #[derive(Debug, Default)]
@@ -197,8 +209,7 @@ impl Work<'_> {
         let open = |r: usize| !self.done[r];
         let mut inside: Vec<bool> = (0..self.equations.len()).map(open).collect();
         let mut holders: HashMap<usize, usize> = HashMap::new();
-        for (r, equation) in self.equations.iter().enumerate().filter(|(r, _)| inside[*r]) {
-            let _ = r;
+        for (equation, _) in self.equations.iter().zip(&inside).filter(|(_, inside)| **inside) {
             for &(s, _) in &equation.participants {
                 if self.found.made[s].is_none() {
                     *holders.entry(s).or_default() += 1;

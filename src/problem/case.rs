@@ -6,6 +6,7 @@ use std::sync::Arc;
 use num_traits::ToPrimitive;
 
 use super::amounts;
+use super::belong::combined;
 use super::charge_reading;
 use super::defect::{Defect, DefectKind, Expected};
 use super::effective::Written;
@@ -184,9 +185,9 @@ fn constants(case: &mut CaseResolver, problem: &mut Problem) {
             .filter_map(|&(r, n)| Some((scope.reactions[r].origin.own()?, n)))
             .max_by_key(|&(at, _)| at);
         let Some((at, share)) = own else { continue };
-        let number = |n: num_rational::Rational64| n.to_f64().unwrap_or(0.0);
-        let sum: f64 = combination.iter().map(|&(r, n)| number(n) * problem.log_k[r]).sum();
-        case.resolver.report(at, DefectKind::Follows { by: sum / number(share) });
+        let sum = combined(combination, |r| problem.log_k[r]);
+        let by = sum / share.to_f64().unwrap_or(0.0);
+        case.resolver.report(at, DefectKind::Follows { by });
     }
 }
 

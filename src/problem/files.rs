@@ -47,13 +47,13 @@ fn missing(error: &io::Error) -> ReadProblem {
     ReadProblem::Missing(match error.kind() {
         io::ErrorKind::NotFound => "there is no such file".into(),
         io::ErrorKind::PermissionDenied => "it may not be read".into(),
-        _ => {
-            // "Too many levels of symbolic links (os error 40)" without its number.
-            let words = error.to_string();
-            let words = words.split(" (os error").next().unwrap_or_default().to_lowercase();
-            format!("the system says: {words}")
-        }
+        _ => format!("the system says: {}", system_words(error)),
     })
+}
+
+/// "Too many levels of symbolic links (os error 40)" without its number.
+pub fn system_words(error: &io::Error) -> String {
+    error.to_string().split(" (os error").next().unwrap_or_default().to_lowercase()
 }
 
 /// The folder that imports may not leave: the first of `given` that holds the file, else the

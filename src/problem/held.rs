@@ -94,15 +94,9 @@ fn what(
             let poh = case.plain(written, value)?;
             let hydroxide = case.scope.find("OH-")?;
             let made = case.scope.belonging.made[hydroxide].as_ref()?;
-            let log_k: f64 = made
-                .combination
-                .iter()
-                .map(|&(r, n)| {
-                    let log_k =
-                        case.scope.reactions[r].log_k(case.kelvin).map_or(0.0, |(log_k, _)| log_k);
-                    num_traits::ToPrimitive::to_f64(&n).unwrap_or(0.0) * log_k
-                })
-                .sum();
+            let log_k = made.log_beta(|r| {
+                case.scope.reactions[r].log_k(case.kelvin).map_or(0.0, |(log_k, _)| log_k)
+            });
             (!coefficient(&made.row, PROTON).is_zero()).then_some(HeldWhat::Ph(-log_k - poh))
         }
         Subject::Pe => {

@@ -10,9 +10,7 @@ use super::defect::{Conserved, Defect, DefectKind};
 use super::effective::Written;
 use super::reaction::{Origin, Participant, Reaction};
 use super::scope::Scope;
-use crate::chemistry::formula::{
-    Atom, Formula, FormulaProblem, FormulaProblemKind, GroupProblem, Groups,
-};
+use crate::chemistry::formula::{Atom, Formula, FormulaProblem, GroupProblem, Groups};
 use crate::text::span::{Place, Span};
 use crate::text::tree::{self, Fraction, Member, Name, Statement};
 
@@ -278,9 +276,4 @@ pub fn equation(participants: &[Participant]) -> String {
         terms.join(" + ")
     };
     format!("{} <=> {}", side(true), side(false))
-}
-
-/// Whether a formula problem is the deep nesting that has a rule of its own.
-pub fn is_nesting(kind: &FormulaProblemKind) -> bool {
-    matches!(kind, FormulaProblemKind::NestingTooDeep { .. })
 }

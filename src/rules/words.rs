@@ -26,10 +26,3 @@ pub fn names<S: AsRef<str>>(names: &[S], last: &str) -> String {
     let quoted: Vec<String> = names.iter().map(|name| format!("`{}`", name.as_ref())).collect();
     list(&quoted, last)
 }
-
-/// A temperature given in kelvin, in degrees Celsius with no more digits than it has.
-pub fn celsius(kelvin: f64) -> String {
-    let degrees = ((kelvin - 273.15) * 100.0).round() / 100.0;
-    // Adding zero takes the sign from minus zero.
-    format!("{} °C", degrees + 0.0).replace('-', "−")
-}

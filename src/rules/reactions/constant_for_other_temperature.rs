@@ -25,7 +25,8 @@ use crate::problem::defect::DefectKind;
 use crate::rules::catalogue::rule;
 use crate::rules::context::Context;
 use crate::rules::finding::Finding;
-use crate::rules::words::{celsius, list};
+use crate::rules::figures::celsius;
+use crate::rules::words::list;
 use crate::text::span::Place;
 
 rule!("constant-for-other-temperature", Warning, "constant_for_other_temperature.rs", find);

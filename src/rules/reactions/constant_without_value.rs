@@ -23,7 +23,7 @@ use crate::problem::defect::DefectKind;
 use crate::rules::catalogue::rule;
 use crate::rules::context::Context;
 use crate::rules::finding::Finding;
-use crate::rules::words::celsius;
+use crate::rules::figures::celsius;
 use crate::text::span::Place;
 
 rule!("constant-without-value", Error, "constant_without_value.rs", find);

@@ -26,7 +26,7 @@ use crate::problem::reaction::LogK;
 use crate::rules::catalogue::rule;
 use crate::rules::context::Context;
 use crate::rules::finding::Finding;
-use crate::rules::words::celsius;
+use crate::rules::figures::celsius;
 use crate::text::span::Place;
 use crate::text::tree::{ConstantKind, ConstantValue, Quantity};
 
