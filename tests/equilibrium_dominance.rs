@@ -46,6 +46,7 @@ fn ammonia(caustic: f64) -> System {
         ],
         totals: vec![2.0 * 0.012 - caustic, 0.024, caustic, 0.012],
         fixed: Vec::new(),
+        candidates: Vec::new(),
         activity: DAVIES,
         ionic_strength: IonicStrength::Computed,
     }

@@ -31,6 +31,7 @@ fn system(species: Vec<Species>, totals: &[f64]) -> System {
         species,
         totals: totals.to_vec(),
         fixed: Vec::new(),
+        candidates: Vec::new(),
         activity: IDEAL,
         ionic_strength: IonicStrength::Computed,
     }

@@ -57,6 +57,7 @@ fn system(problem: &Problem) -> System {
         species: species.collect(),
         totals: problem.totals.clone(),
         fixed: Vec::new(),
+        candidates: Vec::new(),
         activity: ActivityModel { kind, a: 0.5098, b: 0.3284 },
         ionic_strength: IonicStrength::Computed,
     }

@@ -325,6 +325,7 @@ fn what_has_no_answer_is_proven_so_and_everything_else_is_solved() {
                 .collect(),
             totals: totals.iter().map(|t| *t as f64 * 0.125).collect(),
             fixed: Vec::new(),
+            candidates: Vec::new(),
             activity: equilibrium_support::IDEAL,
             ionic_strength: IonicStrength::Computed,
         };
@@ -351,6 +352,7 @@ fn dependent_rows_and_held_values_are_named() {
         species: vec![acid(&[(0, 1)], 0.0), acid(&[(0, -1)], -14.0), acid(&[(1, 1), (2, 1)], 3.0)],
         totals: vec![0.0, 0.01, 0.01],
         fixed: Vec::new(),
+        candidates: Vec::new(),
         activity: equilibrium_support::IDEAL,
         ionic_strength: IonicStrength::Computed,
     };

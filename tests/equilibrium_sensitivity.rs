@@ -138,6 +138,7 @@ fn two_buffers() -> System {
         ],
         totals: vec![0.012, 0.02, 0.005],
         fixed: Vec::new(),
+        candidates: Vec::new(),
         activity: IDEAL,
         ionic_strength: IonicStrength::Computed,
     }

@@ -123,6 +123,7 @@ fn ions_of_high_charge_can_have_several_states() {
                     ],
                     totals: vec![0.0, total, total],
                     fixed: Vec::new(),
+                    candidates: Vec::new(),
                     activity: DAVIES,
                     ionic_strength: IonicStrength::Computed,
                 };

@@ -87,6 +87,10 @@ pub fn proton_condition(
 
     let mut candidates: Vec<(Row, i32, Reference)> = Vec::new();
     for (index, held) in recipe.held.iter().enumerate() {
+        // A solid that did not form is no form of anything.
+        if held.only_takes && held.amount == Some(0.0) {
+            continue;
+        }
         let reference = Reference { form: ReferenceForm::Held(index), reason: Reason::Held };
         candidates.push((moiety_row(&held.brings), held.charge, reference));
     }

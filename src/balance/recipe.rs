@@ -6,7 +6,7 @@ use num_traits::ToPrimitive;
 use super::Part;
 use super::split::split_into_species;
 use crate::problem::exact::Exact;
-use crate::problem::model::{self, AmountSource, HeldWhat, Problem};
+use crate::problem::model::{self, AmountSource, HeldWhat, Presence, Problem, Solid};
 use crate::problem::scope::PROTON;
 
 impl Held {
@@ -25,7 +25,17 @@ impl Held {
                 held.releases.map(component).unwrap_or_default()
             }
         };
-        Held { brings, charge, amount }
+        Held { brings, charge, amount, only_takes: false }
+    }
+
+    fn of_solid(problem: &Problem, solid: &Solid, amount: Option<f64>) -> Held {
+        let made = problem.scope.belonging.made[solid.species].as_ref();
+        Held {
+            brings: made.map(|made| made.row.clone()).unwrap_or_default(),
+            charge: 0,
+            amount,
+            only_takes: solid.presence == Presence::Forms,
+        }
     }
 }
 
@@ -39,6 +49,7 @@ pub struct Recipe {
     pub reagents: Vec<Reagent>,
     /// Of each component: its total where one was given, mol per litre or kilogram.
     pub totals: Vec<Option<f64>>,
+    /// Held values, and behind them the solids.
     pub held: Vec<Held>,
 }
 
@@ -60,10 +71,13 @@ pub struct Held {
     pub charge: i32,
     /// What it brought, once that is known.
     pub amount: Option<f64>,
+    /// A solid that may form: it takes away, and nothing has it for a source.
+    pub only_takes: bool,
 }
 
 impl Recipe {
-    /// What a problem puts in. `brought` is what each held value brought, once solved.
+    /// What a problem puts in. `brought` is what each held value and each solid brought, once
+    /// solved.
     pub fn of(problem: &Problem, brought: Option<&[f64]>) -> Recipe {
         let stoichiometry = &problem.scope.stoichiometry;
         let reagents = problem.reagents.iter().map(|reagent| Reagent {
@@ -82,11 +96,15 @@ impl Recipe {
         if let Some(proton) = recipe.totals.first_mut() {
             *proton = None;
         }
-        for (index, held) in problem.held.iter().enumerate() {
-            let amount = brought.and_then(|brought| brought.get(index)).copied();
-            let held = Held::of(problem, held, amount);
-            // What only a held gas brings has that for its source.
-            for &(j, _) in &held.brings {
+        let mut brought = (0..).map(|index| brought?.get(index).copied());
+        let mut amount = || brought.next().flatten();
+        let held = problem.held.iter().map(|held| Held::of(problem, held, amount()));
+        let mut phases: Vec<Held> = held.collect();
+        let solids = problem.solids.iter().map(|solid| Held::of_solid(problem, solid, amount()));
+        phases.extend(solids);
+        for held in phases {
+            // What only a held gas or a solid in excess brings has that for its source.
+            for &(j, _) in held.brings.iter().filter(|_| !held.only_takes) {
                 if problem.amounts[j].source == AmountSource::Nothing {
                     recipe.totals[j] = None;
                 }
@@ -94,7 +112,9 @@ impl Recipe {
             recipe.held.push(held);
         }
         for (j, amount) in problem.amounts.iter().enumerate().skip(1) {
-            let brings = |held: &Held| held.brings.iter().any(|(column, _)| *column == j);
+            let brings = |held: &Held| {
+                !held.only_takes && held.brings.iter().any(|(column, _)| *column == j)
+            };
             // Listed and never brought in: absent.
             if amount.source == AmountSource::Nothing && !recipe.held.iter().any(brings) {
                 recipe.totals[j] = Some(0.0);

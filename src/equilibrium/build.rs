@@ -1,17 +1,18 @@
 //! From a resolved problem to the numbers that the solver takes.
 //!
-//! Components and fixed phases keep the order that the problem has them in; species are
-//! the rows of its stoichiometry.
+//! Components and held values keep the order that the problem has them in, solids in excess
+//! stand behind the held values, and those that may form are the candidates, each in the
+//! order written; species are the rows of its stoichiometry.
 
 use std::f64::consts::LN_10;
 
 use num_rational::Rational64;
 use num_traits::One;
 
-use super::system::{Fixed, IonicStrength, Row, Species, System};
+use super::system::{Candidate, Fixed, IonicStrength, Row, Species, System};
 use crate::chemistry::activity::{ActivityKind, ActivityModel};
 use crate::chemistry::ion_size::ion_size;
-use crate::problem::model::{Held, HeldWhat, Problem};
+use crate::problem::model::{Held, HeldWhat, Presence, Problem, Solid};
 use crate::problem::scope::PROTON;
 
 pub fn system(problem: &Problem) -> System {
@@ -37,10 +38,19 @@ pub fn system(problem: &Problem) -> System {
     totals[PROTON] = -(1..totals.len())
         .map(|j| f64::from(scope.components[j].formula.charge) * totals[j])
         .sum::<f64>();
+    let held = problem.held.iter().filter_map(|held| fixed(problem, held));
+    let excess = problem.solids_that_are(Presence::Excess).filter_map(|solid| {
+        let Candidate { row, ln_value } = candidate(problem, solid)?;
+        Some(Fixed { supply: row.clone(), row, ln_value, concentration_of: None })
+    });
     System {
         species,
         totals,
-        fixed: problem.held.iter().filter_map(|held| fixed(problem, held)).collect(),
+        fixed: held.chain(excess).collect(),
+        candidates: problem
+            .solids_that_are(Presence::Forms)
+            .filter_map(|solid| candidate(problem, solid))
+            .collect(),
         activity: ActivityModel::new(problem.activity, problem.kelvin),
         ionic_strength: match problem.ionic_strength {
             Some(value) => IonicStrength::Given(value),
@@ -54,6 +64,13 @@ pub fn system(problem: &Problem) -> System {
 pub fn ln_formation(problem: &Problem, species: usize) -> f64 {
     let made = problem.scope.belonging.made[species].as_ref();
     made.map_or(0.0, |made| LN_10 * made.log_beta(|r| problem.log_k[r]))
+}
+
+/// A solid with activity one.
+fn candidate(problem: &Problem, solid: &Solid) -> Option<Candidate> {
+    let made = problem.scope.belonging.made[solid.species].as_ref()?;
+    let ln_value = -ln_formation(problem, solid.species);
+    Some(Candidate { row: made.row.clone(), ln_value })
 }
 
 fn fixed(problem: &Problem, held: &Held) -> Option<Fixed> {

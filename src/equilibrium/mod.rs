@@ -14,6 +14,7 @@ mod frame;
 mod ionic;
 mod line;
 mod newton;
+pub mod phases;
 mod plane;
 mod point;
 pub mod quantities;

@@ -7,15 +7,19 @@ use num_traits::ToPrimitive;
 use super::build::ln_formation;
 use super::sensitivity;
 use super::system::{Answer, System};
-use crate::problem::model::{Problem, Sought, WrittenBalance, WrittenTerm, WrittenWhat};
+use crate::problem::model::{Presence, Problem, Sought, WrittenBalance, WrittenTerm, WrittenWhat};
 use crate::problem::reaction::STANDARD;
 use crate::problem::scope::{PROTON, WATER};
 
 /// A problem with its numbers and its answer.
 #[derive(Clone, Debug)]
 pub struct Solved {
+    /// The system that `answer` is one to: the solids that formed stand behind its held phases.
     pub system: System,
     pub answer: Answer,
+    /// Of each solid that may form, where it stands among the held phases; none where it did
+    /// not.
+    pub formed: Vec<Option<usize>>,
     /// pH and ionic strength of other states that meet the same equations; none for most
     /// problems.
     pub others: Vec<(f64, f64)>,
@@ -41,9 +45,88 @@ impl Solved {
         Some(ln_formation(problem, species) + sum)
     }
 
+    /// How many of the held phases are as the problem states them.
+    fn stated(&self) -> usize {
+        self.system.fixed.len() - self.formed.iter().flatten().count()
+    }
+
+    /// The system as it was asked, without the solids that formed.
+    pub fn asked(&self) -> System {
+        let mut asked = self.system.clone();
+        asked.fixed.truncate(self.stated());
+        asked
+    }
+
+    /// Whether this is the answer to a system.
+    pub fn answers(&self, system: &System) -> bool {
+        let own = &self.system;
+        let System { species, totals, fixed, candidates, activity, ionic_strength } = system;
+        own.species == *species
+            && own.totals == *totals
+            && own.fixed.get(..self.stated()) == Some(fixed)
+            && own.candidates == *candidates
+            && own.activity == *activity
+            && own.ionic_strength == *ionic_strength
+    }
+
+    /// Whether a system has the same components, species and phases, whatever their numbers.
+    pub fn is_shaped_like(&self, system: &System) -> bool {
+        let shape = |system: &System, fixed: usize| {
+            (system.totals.len(), system.species.len(), fixed, system.candidates.len())
+        };
+        shape(&self.system, self.stated()) == shape(system, system.fixed.len())
+    }
+
+    /// What each held value and then each solid of the problem brought, mol per litre or
+    /// kilogram; below zero where it took away.
+    pub fn brought(&self, problem: &Problem) -> Vec<f64> {
+        let at = |k: usize| self.answer.amounts.get(k).copied().unwrap_or(0.0);
+        let held = 0..problem.held.len();
+        let mut excess = held.end;
+        let mut candidate = 0;
+        let solids = problem.solids.iter().map(|solid| match solid.presence {
+            Presence::Excess => {
+                excess += 1;
+                at(excess - 1)
+            }
+            Presence::Forms => {
+                candidate += 1;
+                self.formed.get(candidate - 1).copied().flatten().map_or(0.0, at)
+            }
+        });
+        held.map(at).chain(solids).collect()
+    }
+
+    /// mol per litre or kilogram of a solid that formed, or in excess grew; below zero where
+    /// it dissolved. None where the problem states nothing of this species.
+    pub fn precipitated(&self, problem: &Problem, species: usize) -> Option<f64> {
+        let index = problem.solids.iter().position(|solid| solid.species == species)?;
+        let amount = *self.brought(problem).get(problem.held.len() + index)?;
+        Some(if amount == 0.0 { 0.0 } else { -amount })
+    }
+
+    /// mol per litre or kilogram of a component in the solids that formed.
+    pub fn solid_total(&self, component: usize) -> f64 {
+        self.formed
+            .iter()
+            .flatten()
+            .map(|&k| {
+                let row = &self.system.fixed[k].row;
+                let share = row.iter().find(|&&(j, _)| j == component);
+                -share.map_or(0.0, |(_, n)| n.to_f64().unwrap_or(0.0)) * self.answer.amounts[k]
+            })
+            .sum()
+    }
+
     /// mol per litre or kilogram of a component over all dissolved species.
-    pub fn total(&self, component: usize) -> f64 {
+    pub fn dissolved(&self, component: usize) -> f64 {
         self.shares(component).map(|(_, share)| share).sum()
+    }
+
+    /// mol per litre or kilogram of a component over all dissolved species and the solids
+    /// that formed.
+    pub fn total(&self, component: usize) -> f64 {
+        self.dissolved(component) + self.solid_total(component)
     }
 
     /// What each dissolved species holds of a component, by row of the stoichiometry.
@@ -62,7 +145,7 @@ impl Solved {
                 .map(|term| {
                     let value = match term.what {
                         WrittenWhat::Species(row) => self.answer.concentrations[row],
-                        WrittenWhat::Total(component) => self.total(component),
+                        WrittenWhat::Total(component) => self.dissolved(component),
                         WrittenWhat::Added(reagent) => problem.reagents[reagent].amount,
                         WrittenWhat::Amount { value, .. } => value,
                     };
@@ -138,11 +221,12 @@ impl Solved {
                 self.ln_activity(problem, species)?.exp()
             }
             Sought::SaturationIndex(species) => self.ln_activity(problem, species)? / LN_10,
+            Sought::Precipitated(species) => self.precipitated(problem, species)?,
             Sought::Total(component) => self.total(component),
             Sought::Fraction { species, component } => {
                 let row = problem.scope.row_of(species)?;
                 let (_, share) = self.shares(component).find(|&(i, _)| i == row)?;
-                share / self.total(component)
+                share / self.dissolved(component)
             }
             Sought::Alkalinity => self.alkalinity(problem),
             Sought::IonicStrength => self.answer.ionic_strength,

@@ -20,6 +20,8 @@ const SAME: f64 = 1e-6;
 /// then. A search over a fixed grid: two states that lie closer to one another than its
 /// meshes (an eighth of a decade of ionic strength, half a unit of pH) can be missed.
 ///
+/// Of an assemblage with solids, those states are given that keep to its solids.
+///
 /// # Errors
 /// [`Failure::Cancelled`]. States that cannot be solved are passed over.
 pub fn other_states(

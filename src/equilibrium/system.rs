@@ -23,6 +23,9 @@ pub struct System {
     /// it may have either sign.
     pub totals: Vec<f64>,
     pub fixed: Vec<Fixed>,
+    /// Solids that form if they would be supersaturated. [`super::solve::solve`] takes no
+    /// notice of them; [`super::phases::equilibrate`] finds which are there.
+    pub candidates: Vec<Candidate>,
     pub activity: ActivityModel,
     pub ionic_strength: IonicStrength,
 }
@@ -50,6 +53,15 @@ pub struct Fixed {
     /// What one mole of it brings to each component's row. Equal to `row` but for a
     /// charged species, whose charge the proton's row must not gain.
     pub supply: Row,
+}
+
+/// A solid that is there only where the solution would be supersaturated without it.
+#[derive(Clone, Debug, PartialEq)]
+pub struct Candidate {
+    /// What it is made of; a mole of it that forms takes this away.
+    pub row: Row,
+    /// The value of `Σ row · x` at saturation: less the ln of its formation constant.
+    pub ln_value: f64,
 }
 
 #[derive(Clone, Copy, Debug, PartialEq)]
@@ -92,6 +104,12 @@ pub enum Failure {
     /// Two rows or held values that depend on one another.
     Dependent {
         components: Vec<usize>,
+        fixed: Vec<usize>,
+    },
+    /// This candidate stays supersaturated however much of it forms: the held phases, by
+    /// their index, make up for whatever it takes.
+    Endless {
+        candidate: usize,
         fixed: Vec<usize>,
     },
     NotConverged {

@@ -6,7 +6,7 @@ use num_traits::ToPrimitive;
 
 use super::quantities::Solved;
 use super::sensitivity::Sensitivity;
-use crate::problem::model::{HeldWhat, Problem};
+use crate::problem::model::{HeldWhat, Presence, Problem};
 
 /// One standard uncertainty of the pH, the constants taken as independent of one another.
 /// None where no constant in use states one, where the pH is held, or where the answer has
@@ -42,6 +42,15 @@ pub fn ph_uncertainty(problem: &Problem, solved: &Solved) -> Option<f64> {
         if let Some(response) = sensitivity.by_fixed(index) {
             // The constant is taken off the value.
             slopes.push((species, -response.ph()));
+        }
+    }
+    let excess = problem.solids_that_are(Presence::Excess).enumerate();
+    let excess = excess.map(|(k, solid)| (problem.held.len() + k, solid));
+    let formed = problem.solids_that_are(Presence::Forms).zip(&solved.formed);
+    let formed = formed.filter_map(|(solid, at)| Some(((*at)?, solid)));
+    for (index, solid) in excess.chain(formed) {
+        if let Some(response) = sensitivity.by_fixed(index) {
+            slopes.push((solid.species, -response.ph()));
         }
     }
     let variance: f64 = stated

@@ -28,7 +28,7 @@ pub struct Balances {
 impl Balances {
     pub fn new(problem: &Problem, solved: &Solved) -> Balances {
         let stoichiometry = &problem.scope.stoichiometry;
-        let recipe = Recipe::of(problem, Some(&solved.answer.amounts));
+        let recipe = Recipe::of(problem, Some(&solved.brought(problem)));
         let protons = proton_condition(stoichiometry, &recipe, &[]).ok();
         let components = 1..stoichiometry.components.len();
         let implied = std::iter::once(charge_balance(stoichiometry))

@@ -6,7 +6,7 @@ use num_traits::{Signed, ToPrimitive};
 use super::case::CaseResolver;
 use super::defect::{DefectKind, Expected};
 use super::effective::Written;
-use super::model::{Amount, AmountSource, Problem, Reagent};
+use super::model::{Amount, AmountSource, HeldWhat, Presence, Problem, Reagent};
 use super::resolve::differences;
 use super::scope::PROTON;
 use super::sparse::{Row, add_scaled};
@@ -211,7 +211,7 @@ pub fn close(case: &mut CaseResolver, problem: &mut Problem) {
         let Some(at) = component.at else { continue };
         // A held gas, or another phase of unknown amount, may bring it; so may a statement
         // that could not be read, and has its own finding.
-        if supplied_by_gas(case, problem, j) || unread {
+        if supplied_by_phase(case, problem, j) || unread {
             continue;
         }
         let name = component.formula.name.clone();
@@ -244,12 +244,16 @@ fn may_be_negative(case: &CaseResolver, component: usize) -> bool {
         .any(|species| species.row.iter().any(|&(j, n)| j == component && n.is_negative()))
 }
 
-fn supplied_by_gas(case: &CaseResolver, problem: &Problem, component: usize) -> bool {
-    problem.held.iter().any(|held| match held.what {
-        super::model::HeldWhat::Pressure { species, .. } => case.scope.belonging.made[species]
-            .as_ref()
-            .is_some_and(|made| made.row.iter().any(|&(j, _)| j == component)),
-        _ => false,
+/// Whether a held gas or a solid in excess holds the component.
+fn supplied_by_phase(case: &CaseResolver, problem: &Problem, component: usize) -> bool {
+    let gases = problem.held.iter().filter_map(|held| match held.what {
+        HeldWhat::Pressure { species, .. } => Some(species),
+        _ => None,
+    });
+    let solids = problem.solids_that_are(Presence::Excess).map(|solid| solid.species);
+    gases.chain(solids).any(|species| {
+        let made = case.scope.belonging.made[species].as_ref();
+        made.is_some_and(|made| made.row.iter().any(|&(j, _)| j == component))
     })
 }
 
@@ -268,7 +272,11 @@ fn is_spoken_of(case: &CaseResolver, component: &str) -> bool {
         };
         if matches!(
             written.statement(),
-            Statement::Hold { .. } | Statement::Expect { .. } | Statement::Balance { .. }
+            Statement::Hold { .. }
+                | Statement::Expect { .. }
+                | Statement::Balance { .. }
+                | Statement::Precipitate { .. }
+                | Statement::Saturate { .. }
         ) {
             written.statement().each_formula(&mut look);
         }

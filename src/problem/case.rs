@@ -16,6 +16,7 @@ use super::model::Problem;
 use super::reaction::{LogK, Origin, STANDARD, TemperatureIssue};
 use super::resolve::Resolver;
 use super::scope::Scope;
+use super::solids;
 use super::written;
 use crate::chemistry::activity::ActivityKind;
 use crate::chemistry::formula::Formula;
@@ -61,6 +62,7 @@ pub fn resolve(statements: &[Written], merging: Vec<Defect>, scope: Arc<Scope>) 
         amounts: Vec::new(),
         reagents: Vec::new(),
         held: Vec::new(),
+        solids: Vec::new(),
         balances: Vec::new(),
         expectations: Vec::new(),
         log_k: Vec::new(),
@@ -72,9 +74,10 @@ pub fn resolve(statements: &[Written], merging: Vec<Defect>, scope: Arc<Scope>) 
     constants(&mut case, &mut problem);
     amounts::read(&mut case, &mut problem);
     held::read(&mut case, &mut problem);
+    solids::read(&mut case, &mut problem);
     amounts::close(&mut case, &mut problem);
     problem.balances = written::read(&mut case, &problem);
-    problem.expectations = expect::read(&mut case);
+    problem.expectations = expect::read(&mut case, &problem);
     // A case has only its own to add to what the base was told.
     let is_case = statements.iter().any(|written| written.part == Part::Case);
     for written in statements.iter().filter(|w| !is_case || w.part == Part::Case) {
@@ -84,8 +87,6 @@ pub fn resolve(statements: &[Written], merging: Vec<Defect>, scope: Arc<Scope>) 
     }
     for written in statements {
         let unsupported = match written.statement() {
-            Statement::Precipitate { .. } => "precipitate",
-            Statement::Saturate { .. } => "saturate with",
             Statement::Curve { .. } => "curve",
             Statement::Hold { by: Some(_), .. } => "hold … by",
             _ => continue,
@@ -272,6 +273,8 @@ fn states_a_problem(statement: &Statement) -> bool {
             | Statement::Total { .. }
             | Statement::Add { .. }
             | Statement::Hold { .. }
+            | Statement::Precipitate { .. }
+            | Statement::Saturate { .. }
             | Statement::Expect { .. }
             | Statement::Balance { .. }
     )

@@ -220,6 +220,15 @@ pub enum DefectKind {
         subject: String,
         other: Place,
     },
+    /// Two statements of one solid: that it may form, or is in excess.
+    SolidTwice {
+        name: String,
+        other: Place,
+    },
+    /// `precipitated X` of a solid that is neither to form nor in excess.
+    SolidNotStated {
+        name: String,
+    },
     /// A quantity that is an outcome and can only be expected.
     CannotBeHeld {
         subject: String,

@@ -51,8 +51,8 @@ pub enum Key {
     Reaction(Vec<String>),
     Balance(String),
     Expect(String),
-    Precipitate(String),
-    Saturate(String),
+    /// What is said of a solid: it may form, or is in excess.
+    Solid(String),
     Group(String),
     Curve,
 }
@@ -68,8 +68,9 @@ pub fn key(statement: &Statement) -> Option<Key> {
         Statement::Hold { subject, .. } => Key::Hold(subject_key(subject)),
         Statement::Balance { kind, .. } => Key::Balance(balance_key(kind)),
         Statement::Expect { subject, .. } => Key::Expect(subject_key(subject)),
-        Statement::Precipitate { solid } => Key::Precipitate(canonical(solid)),
-        Statement::Saturate { solid } => Key::Saturate(canonical(solid)),
+        Statement::Precipitate { solid } | Statement::Saturate { solid } => {
+            Key::Solid(canonical(solid))
+        }
         Statement::Group { symbol, .. } => Key::Group(symbol.value.clone()),
         Statement::Curve { .. } => Key::Curve,
         Statement::Reaction(reaction) => {
@@ -102,6 +103,7 @@ pub fn subject_key(subject: &Subject) -> String {
         Subject::IonicStrength => "ionic strength".into(),
         Subject::BufferCapacity => "buffer capacity".into(),
         Subject::SaturationIndex(name) => format!("saturation index {}", canonical(name)),
+        Subject::Precipitated(name) => format!("precipitated {}", canonical(name)),
         Subject::Dose(name) => format!("dose {}", canonical(name)),
         Subject::ChargeImbalance => "charge imbalance".into(),
     }
@@ -122,8 +124,7 @@ fn removed_key(without: &Without) -> Key {
         Without::Total(name) => Key::Total(canonical(name)),
         Without::Add(name) => Key::Add(canonical(name)),
         Without::Balance(kind) => Key::Balance(balance_key(kind)),
-        Without::Precipitate(name) => Key::Precipitate(canonical(name)),
-        Without::Saturate(name) => Key::Saturate(canonical(name)),
+        Without::Precipitate(name) | Without::Saturate(name) => Key::Solid(canonical(name)),
         Without::IonicStrength => Key::IonicStrength,
     }
 }
@@ -139,7 +140,7 @@ pub struct InForce<'a> {
     /// Statements that repeat a single-valued subject in their section, and do not count.
     pub left_out: Vec<Written<'a>>,
     pub defects: Vec<Defect>,
-    /// Whether a case brings in or takes away a total, a reagent or a held value, where it
+    /// Whether a case brings in or takes away a total, a reagent, a solid or a held value, where it
     /// does not only change how much of it there is.
     pub other_sources: bool,
 }
@@ -189,7 +190,9 @@ pub fn in_force<'a>(base: &'a Section, case: Option<&'a Section>) -> InForce<'a>
         }
     }
     let is_source = |key: &Key| matches!(key, Key::Total(_) | Key::Add(_) | Key::Hold(_));
+    // Whether a solid forms or is in excess is another source in either direction.
     found.other_sources = from_nothing
+        || replaced.keys().any(|key| matches!(key, Key::Solid(_)))
         || replaced.iter().any(|(key, met)| is_source(key) && !met)
         || varied.kept.iter().any(|(_, written)| {
             matches!(written.statement(), Statement::Without(_)) || is_nothing(written.statement())
@@ -254,6 +257,7 @@ fn repeated(key: &Key, other: Place) -> DefectKind {
         Key::Total(name) => DefectKind::TotalTwice { name: name.clone(), other },
         Key::Hold(subject) => DefectKind::HeldTwice { subject: subject.clone(), other },
         Key::Reaction(_) => DefectKind::ReactionRepeated { other },
+        Key::Solid(name) => DefectKind::SolidTwice { name: name.clone(), other },
         Key::Group(symbol) => DefectKind::GroupRepeated { symbol: symbol.clone(), other },
         _ => DefectKind::StatementRepeated { other },
     }

@@ -3,21 +3,21 @@
 use super::case::CaseResolver;
 use super::defect::{DefectKind, Expected};
 use super::effective::{Written, subject_key};
-use super::model::{Expectation, Limit, ShownUnit, Sought};
+use super::model::{Expectation, Limit, Problem, ShownUnit, Sought};
 use super::quantity::Read;
 use crate::chemistry::formula::{Formula, Phase};
 use crate::text::span::Spanned;
 use crate::text::tree::{Name, Quantity, Relation, Statement, Subject};
 
-pub fn read(case: &mut CaseResolver) -> Vec<Expectation> {
+pub fn read(case: &mut CaseResolver, problem: &Problem) -> Vec<Expectation> {
     let mut expectations = Vec::new();
     for written in case.statements {
         let Statement::Expect { subject, relation, source } = written.statement() else {
             continue;
         };
-        let Some(mut sought) = sought(case, written, subject) else { continue };
+        let Some(mut sought) = sought(case, problem, written, subject) else { continue };
         let formula = match sought {
-            Sought::Concentration(species) => Some(case.scope.species[species].clone()),
+            Sought::Concentration(species) | Sought::Precipitated(species) => Some(case.scope.species[species].clone()),
             Sought::Total(component) => Some(case.scope.components[component].formula.clone()),
             _ => None,
         };
@@ -77,6 +77,7 @@ fn takes(sought: Sought) -> Expected {
         | Sought::Activity(_)
         | Sought::SaturationIndex(_) => Expected::Plain,
         Sought::Concentration(_)
+        | Sought::Precipitated(_)
         | Sought::Total(_)
         | Sought::IonicStrength
         | Sought::BufferCapacity => Expected::Concentration,
@@ -104,6 +105,7 @@ fn read_as(
 
 fn sought(
     case: &mut CaseResolver,
+    problem: &Problem,
     written: &Written,
     subject: &Spanned<Subject>,
 ) -> Option<Sought> {
@@ -146,6 +148,17 @@ fn sought(
         Subject::SaturationIndex(name) => {
             let is_solid = |phase: &Phase| matches!(phase, Phase::Solid(_));
             Sought::SaturationIndex(in_phase(case, written, name, is_solid, "a solid")?)
+        }
+        Subject::Precipitated(name) => {
+            let is_solid = |phase: &Phase| matches!(phase, Phase::Solid(_));
+            let species = in_phase(case, written, name, is_solid, "a solid")?;
+            if !problem.solids.iter().any(|solid| solid.species == species) {
+                let name_text = case.scope.species[species].name.clone();
+                let kind = DefectKind::SolidNotStated { name: name_text };
+                case.resolver.report(written.place(name.span), kind);
+                return None;
+            }
+            Sought::Precipitated(species)
         }
         Subject::Total(name) => Sought::Total(case.component(written, name)?),
         Subject::Fraction(name) => {

@@ -141,6 +141,7 @@ fn what(
         | Subject::IonicStrength
         | Subject::BufferCapacity
         | Subject::SaturationIndex(_)
+        | Subject::Precipitated(_)
         | Subject::Dose(_)
         | Subject::ChargeImbalance => {
             let words = subject_key(subject);

@@ -22,6 +22,7 @@ pub mod reagent;
 pub mod resolve;
 pub mod scope;
 pub mod sets;
+mod solids;
 pub mod sparse;
 mod split;
 pub mod stoichiometry;

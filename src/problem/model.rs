@@ -28,6 +28,7 @@ pub struct Problem {
     pub amounts: Vec<Amount>,
     pub reagents: Vec<Reagent>,
     pub held: Vec<Held>,
+    pub solids: Vec<Solid>,
     pub balances: Vec<WrittenBalance>,
     pub expectations: Vec<Expectation>,
     /// log10 K of each reaction of the scope at `kelvin`; zero where it is not in use.
@@ -81,6 +82,24 @@ pub struct Held {
     pub what: HeldWhat,
     /// The component whose total it makes unknown; none for pH, pe and gases.
     pub releases: Option<usize>,
+}
+
+/// A solid that the water is in touch with, or may come to be.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub struct Solid {
+    /// Its name, in `precipitate` or `saturate with`.
+    pub at: Place,
+    /// A species of the scope.
+    pub species: usize,
+    pub presence: Presence,
+}
+
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub enum Presence {
+    /// It forms where the water is supersaturated, and is not there else.
+    Forms,
+    /// There is more of it than can dissolve.
+    Excess,
 }
 
 #[derive(Clone, Copy, Debug, PartialEq)]
@@ -191,6 +210,8 @@ pub enum Sought {
     Activity(usize),
     Pressure(usize),
     SaturationIndex(usize),
+    /// What formed of a solid of the problem, less what dissolved of it.
+    Precipitated(usize),
     /// A component of the scope.
     Total(usize),
     /// A species' share of its component.
@@ -208,6 +229,16 @@ pub enum Sought {
 }
 
 impl Problem {
+    /// The solids of one presence, in the order written: those in excess stand behind the
+    /// held values among the solver's held phases, those that may form are its candidates.
+    pub fn solids_that_are(&self, presence: Presence) -> impl Iterator<Item = &Solid> {
+        self.solids.iter().filter(move |solid| solid.presence == presence)
+    }
+
+    pub fn solid_name(&self, solid: &Solid) -> &str {
+        &self.scope.species[solid.species].name
+    }
+
     /// The name of a row of the stoichiometry.
     pub fn row_name(&self, row: usize) -> &str {
         &self.scope.stoichiometry.species[row].name

@@ -29,10 +29,20 @@ pub fn term_words(problem: &Problem, what: TermOf, coefficient: Rational64) -> S
             format!("added {}", problem.reagents[reagent].formula.name)
         }
         TermOf::Constant(Part::Held(held)) => {
-            format!("brought by {} held", problem.held[held].words)
+            held_words(problem, held)
         }
     };
     if coefficient == Rational64::one() { name } else { format!("{coefficient} {name}") }
+}
+
+/// What a held value or, behind those, a solid brought: `brought by CO2(g) held`.
+pub fn held_words(problem: &Problem, index: usize) -> String {
+    let solid = || problem.solids.get(index.checked_sub(problem.held.len())?);
+    match (problem.held.get(index), solid()) {
+        (Some(held), _) => format!("brought by {} held", held.words),
+        (None, Some(solid)) => format!("brought by {}", problem.solid_name(solid)),
+        (None, None) => "brought by what is held".into(),
+    }
 }
 
 /// One side as a sum; `0` where it is empty.

@@ -81,8 +81,8 @@ pub struct Ledger<'a> {
 impl<'a> Ledger<'a> {
     pub fn new(outcome: &'a Outcome) -> Ledger<'a> {
         let problem = &outcome.problem;
-        let brought = outcome.solved().map(|solved| solved.answer.amounts.as_slice());
-        Ledger { outcome, problem, recipe: Recipe::of(problem, brought) }
+        let brought = outcome.solved().map(|solved| solved.brought(problem));
+        Ledger { outcome, problem, recipe: Recipe::of(problem, brought.as_deref()) }
     }
 
     pub fn charge(&self) -> Sheet {

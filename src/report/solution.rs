@@ -144,7 +144,7 @@ pub fn status(state: &State) -> &'static str {
     match state {
         State::Solved(_) => "solved",
         State::NothingStated | State::NotWellPosed => "not-well-posed",
-        State::Failed(Failure::Infeasible { .. }) => "no-solution",
+        State::Failed(Failure::Infeasible { .. } | Failure::Endless { .. }) => "no-solution",
         State::Failed(Failure::Dependent { .. }) => "not-well-posed",
         State::Failed(Failure::NotConverged { .. } | Failure::Cancelled) => "not-converged",
     }

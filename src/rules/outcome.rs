@@ -9,9 +9,9 @@ use super::context::Context;
 use super::finding::Finding;
 use crate::balance::BalanceKind;
 use crate::equilibrium::build::system;
+use crate::equilibrium::phases::{Assemblage, Near, equilibrate, is_settled};
 use crate::equilibrium::quantities::Solved;
 use crate::equilibrium::several::other_states;
-use crate::equilibrium::solve::solve;
 use crate::equilibrium::system::{Failure, System};
 use crate::equilibrium::weighed::{Balances, Weighed};
 use crate::problem::case::resolve;
@@ -77,11 +77,11 @@ impl Outcome {
             }
         };
         let brought = match &state {
-            State::Solved(solved) => Some(solved.answer.amounts.as_slice()),
+            State::Solved(solved) => Some(solved.brought(&problem)),
             _ => None,
         };
         let same_sources = inherited && !in_force.other_sources;
-        let compared = compared(&problem, brought, same_sources);
+        let compared = compared(&problem, brought.as_deref(), same_sources);
         let mut findings = Vec::new();
         let context = Context::new(in_force, &problem, &state, &compared, inherited);
         for rule in rules() {
@@ -94,24 +94,26 @@ impl Outcome {
 /// The answer to a system. One that is near gives it at once where it is the same system,
 /// and else a place to start from.
 fn answer(system: System, near: Option<&Solved>, cancel: &AtomicBool) -> Result<Solved, Failure> {
-    if let Some(near) = near.filter(|near| near.system == system) {
+    if let Some(near) = near.filter(|near| near.answers(&system)) {
         return Ok(near.clone());
     }
     // Only an answer over the same components and species is a place to start from.
-    let start = near.filter(|near| {
-        let rows =
-            |system: &System| (system.totals.len(), system.species.len(), system.fixed.len());
-        rows(&near.system) == rows(&system)
-    });
-    let answer = solve(&system, start.map(|near| &near.answer), cancel)?;
+    let start = near.filter(|near| near.is_shaped_like(&system));
+    let start = start.map(|near| Near { answer: &near.answer, formed: &near.formed });
+    let is_near = start.is_some();
+    let Assemblage { system, answer, formed } = equilibrate(system, start, cancel)?;
     let others: Vec<(f64, f64)> = match other_states(&system, &answer, cancel) {
-        Ok(others) => others.iter().map(|other| (other.ph(), other.ionic_strength)).collect(),
+        Ok(others) => others
+            .iter()
+            .filter(|other| is_settled(&system, &formed, other))
+            .map(|other| (other.ph(), other.ionic_strength)).collect(),
         Err(Failure::Cancelled) => return Err(Failure::Cancelled),
         Err(_) => Vec::new(),
     };
     // Where there are several, the one shown must not hang on what was shown before.
-    if start.is_some() && !others.is_empty() {
-        return self::answer(system, None, cancel);
+    let solved = Solved { system, answer, formed, others };
+    if is_near && !solved.others.is_empty() {
+        return self::answer(solved.asked(), None, cancel);
     }
-    Ok(Solved { system, answer, others })
+    Ok(solved)
 }

@@ -73,6 +73,7 @@ fn subject<'a>(subject: &'a Subject, call: &mut dyn FnMut(&'a Name)) {
         | Subject::Total(name)
         | Subject::Fraction(name)
         | Subject::SaturationIndex(name)
+        | Subject::Precipitated(name)
         | Subject::Dose(name) => call(name),
         Subject::Ph
         | Subject::Poh

@@ -245,6 +245,7 @@ impl Display for Subject {
             Subject::Alkalinity => f.write_str("alkalinity"),
             Subject::IonicStrength => f.write_str("ionic strength"),
             Subject::BufferCapacity => f.write_str("buffer capacity"),
+            Subject::Precipitated(solid) => write!(f, "precipitated {}", solid.value),
             Subject::SaturationIndex(solid) => write!(f, "saturation index {}", solid.value),
             Subject::Dose(reagent) => write!(f, "dose {}", reagent.value),
             Subject::ChargeImbalance => f.write_str("charge imbalance"),

@@ -301,6 +301,7 @@ pub enum Subject {
     IonicStrength,
     BufferCapacity,
     SaturationIndex(Name),
+    Precipitated(Name),
     Dose(Name),
     ChargeImbalance,
 }

@@ -142,6 +142,7 @@ pub fn chemistry_like(random: &mut Random, components: usize, most_species: usiz
         species: list,
         totals,
         fixed: Vec::new(),
+        candidates: Vec::new(),
         activity: IDEAL,
         ionic_strength: IonicStrength::Computed,
     }
@@ -196,6 +197,7 @@ pub fn adversarial(random: &mut Random, components: usize, count: usize) -> (Sys
         species: list,
         totals,
         fixed: Vec::new(),
+        candidates: Vec::new(),
         activity: IDEAL,
         ionic_strength: IonicStrength::Computed,
     };

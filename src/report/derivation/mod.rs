@@ -102,9 +102,14 @@ fn protons(
         ReferenceForm::Species(row) => {
             (problem.row_name(row).to_owned(), problem.scope.stoichiometry.species[row].charge)
         }
-        ReferenceForm::Held(held) => problem.held.get(held).map_or_else(Default::default, |held| {
-            (held.words.clone(), charge_of(problem, held.what))
-        }),
+        ReferenceForm::Held(index) => match problem.held.get(index) {
+            Some(held) => (held.words.clone(), charge_of(problem, held.what)),
+            None => {
+                let solid = problem.solids.get(index - problem.held.len());
+                let name = solid.map(|solid| problem.solid_name(solid).to_owned());
+                (name.unwrap_or_default(), 0)
+            }
+        },
     };
     // A held form is always a reference, so nothing else can take its place.
     let replaces = |other: &&proton::Alternative| {

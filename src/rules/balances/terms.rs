@@ -125,8 +125,13 @@ pub fn term_text(problem: &Problem, term: TermOf, coefficient: Rational64) -> Op
 pub fn term_words(problem: &Problem, term: TermOf, coefficient: Rational64) -> String {
     term_text(problem, term, coefficient).unwrap_or_else(|| match term {
         TermOf::Constant(Part::Held(k)) => {
-            let held = problem.held.get(k).map_or("what is held", |held| held.words.as_str());
-            counted(coefficient, &format!("the amount that {held} brings"))
+            let solid = || problem.solids.get(k.checked_sub(problem.held.len())?);
+            let what = match (problem.held.get(k), solid()) {
+                (Some(held), _) => held.words.as_str(),
+                (None, Some(solid)) => problem.solid_name(solid),
+                (None, None) => "what is held",
+            };
+            counted(coefficient, &format!("the amount that {what} brings"))
         }
         _ => "a term".to_owned(),
     })

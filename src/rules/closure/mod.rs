@@ -13,4 +13,9 @@ family! {
     cannot_be_held,
     more_than_one_answer,
     not_solved,
+    too_many_phases,
+    forms_without_end,
+    solid_stated_twice,
+    solid_not_stated,
+    solid_cannot_form,
 }

@@ -28,6 +28,7 @@
 //! ```
 
 use super::remaining::remaining;
+use super::too_many_phases::excess;
 use crate::equilibrium::system::Failure;
 use crate::rules::catalogue::rule;
 use crate::rules::context::Context;
@@ -47,11 +48,17 @@ fn find(context: &Context, found: &mut Vec<Finding<Place>>) {
     }
     found.extend(match failure {
         Failure::Infeasible { component } => infeasible(context, *component),
+        Failure::Dependent { fixed, .. }
+            if fixed.iter().any(|&k| excess(context.problem, k).is_some()) =>
+        {
+            None
+        }
         Failure::Dependent { components, fixed } => dependent(context, components, fixed),
         Failure::NotConverged { residual, iterations } => {
             not_converged(context, *residual, *iterations)
         }
-        Failure::Cancelled => None,
+        // Those have rules of their own.
+        Failure::Endless { .. } | Failure::Cancelled => None,
     });
 }
 

@@ -41,9 +41,10 @@ pub fn remaining(context: &Context) -> Option<Remaining> {
             } else {
                 return None;
             };
-            let charge = charge_at(&solved.system, at);
+            let charge = charge_at(&solved.asked(), at);
             Some(Remaining { closes_at: Some(ph), at, charge })
         }
+        State::Failed(Failure::Endless { .. }) => None,
         State::Failed(failure) => {
             let proven = *failure == Failure::Infeasible { component: PROTON };
             let system = system(context.problem);

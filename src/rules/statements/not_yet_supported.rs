@@ -1,23 +1,26 @@
 //! A statement is part of the language, and this edition cannot solve it yet.
 //!
-//! `precipitate`, `saturate with`, `hold … by` and `curve` are read and checked for
-//! their writing; solving them comes with a later edition. An amount that such a
+//! `hold … by` and `curve` are read and checked for their writing; solving them comes with a later edition. An amount that such a
 //! statement would decide makes the answer another one, so the problem is not solved
 //! while it stands there.
 //!
 //! Before:
 //!
 //! ```lyate
-//! component Ca^2+, CO3^2-
-//! precipitate CaCO3(s)
+//! use aqueous
+//! component NH3, Na+, Cl-
+//! add NH4Cl 10 mmol/L
+//! hold pH = 9.5 by NaOH
 //! ```
 //!
 //! After:
 //!
 //! ```lyate
-//! component Ca^2+, CO3^2-
-//! reaction CaCO3(s) <=> Ca^2+ + CO3^2-, pKsp = 8.48, source "site table, row 9"
-//! expect saturation index CaCO3(s) < 0
+//! use aqueous
+//! component NH3, Na+, Cl-
+//! add NH4Cl 10 mmol/L
+//! add NaOH   6 mmol/L
+//! expect pH = 9.5 ± 0.1
 //! ```
 
 use crate::problem::defect::DefectKind;
@@ -40,13 +43,6 @@ fn find(context: &Context, found: &mut Vec<Finding<Place>>) {
 /// What can be done meanwhile.
 fn instead(what: &str) -> &'static str {
     match what {
-        "precipitate" => {
-            "`expect saturation index CaCO3(s) < 0` says whether the solid would form"
-        }
-        "saturate with" => {
-            "hold the ion that the solid sets, as in `hold {Ca^2+} = 1e-4`, \
-             and look at the saturation index"
-        }
         "curve" => "write a case for each value that matters",
         _ => "try doses with `add`, one in each case, and state the target with `expect`",
     }

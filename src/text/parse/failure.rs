@@ -177,7 +177,17 @@ impl Failure {
         let words: &[&str] = if self.expects(Expect::Clause) {
             &CLAUSES
         } else if self.expects(Expect::Subject) {
-            &["alkalinity", "ionic", "buffer", "saturation", "fraction", "charge", "total", "dose"]
+            &[
+                "alkalinity",
+                "ionic",
+                "buffer",
+                "saturation",
+                "precipitated",
+                "fraction",
+                "charge",
+                "total",
+                "dose",
+            ]
         } else if self.expects(Expect::Kind) {
             &["charge", "protons"]
         } else {

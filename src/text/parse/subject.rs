@@ -56,6 +56,7 @@ fn subject<'s>() -> impl Rule<'s, Spanned<Subject>> {
         of("total", Subject::Total),
         of("fraction", Subject::Fraction),
         of("dose", Subject::Dose),
+        of("precipitated", Subject::Precipitated),
         two("ionic", "strength", Expect::Strength, Subject::IonicStrength),
         two("buffer", "capacity", Expect::Capacity, Subject::BufferCapacity),
         two("charge", "imbalance", Expect::Imbalance, Subject::ChargeImbalance),
