@@ -1,6 +1,8 @@
 //! Random equilibrium problems from a seed, for the robustness tests and the benchmark.
 #![allow(dead_code)] // each test uses its own part
 
+pub mod solids;
+
 use lyate::chemistry::activity::{ActivityKind, ActivityModel};
 use lyate::equilibrium::system::{Fixed, IonicStrength, Row, Species, System};
 use num_rational::Rational64;
