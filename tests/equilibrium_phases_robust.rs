@@ -7,8 +7,9 @@ mod equilibrium_support;
 use std::sync::atomic::AtomicBool;
 
 use equilibrium_support::solids::{add_candidates, hold_phase, saturation_index};
-use equilibrium_support::{DAVIES, Random, chemistry_like, hold_ph};
+use equilibrium_support::{DAVIES, IDEAL, Random, chemistry_like, hold_ph};
 use lyate::equilibrium::phases::{Assemblage, Near, equilibrate};
+use lyate::equilibrium::solve::solve;
 use lyate::equilibrium::system::{Failure, System};
 
 /// How many problems of a family: `short`, or so much of the long form.
@@ -62,11 +63,23 @@ fn fault(asked: &System, state: &Assemblage) -> Option<String> {
     None
 }
 
+/// Whether what is held makes more ions than Davies' equation has a state for: a gas held
+/// over a caustic can ask for 10^20 mol/L, which only ideal ions can be.
+fn is_past_model(system: &System) -> bool {
+    let mut ideal = system.clone();
+    ideal.activity = IDEAL;
+    ideal.candidates.clear();
+    let answer = solve(&ideal, None, &AtomicBool::new(false));
+    !system.fixed.is_empty() && answer.is_ok_and(|answer| answer.ionic_strength > 100.0)
+}
+
 struct Survey {
     name: &'static str,
     formed: Vec<usize>,
     iterations: Vec<u32>,
     more_than_components: usize,
+    /// More ions than the activity model has a state for.
+    past_model: usize,
     /// Proven to have no answer: no state, or one that never comes to rest.
     infeasible: usize,
     endless: usize,
@@ -81,6 +94,7 @@ impl Survey {
             formed,
             iterations,
             more_than_components: 0,
+            past_model: 0,
             infeasible: 0,
             endless: 0,
             failures,
@@ -100,6 +114,7 @@ impl Survey {
             }
             Err(Failure::Infeasible { .. }) => self.infeasible += 1,
             Err(Failure::Endless { .. }) => self.endless += 1,
+            Err(Failure::NotConverged { .. }) if is_past_model(system) => self.past_model += 1,
             Err(other) => self.failures.push(format!("{} {seed}: {other:?}", self.name)),
         }
     }
@@ -112,12 +127,13 @@ impl Survey {
         let at = |list: &[u32], q: f64| list[((list.len() - 1) as f64 * q) as usize];
         println!(
             "{}: {} solved ({} with more solids than components), {} infeasible, {} endless, \
-             {} failed; solids formed median {}, most {}; iterations median {}, 99 % {}, worst {}",
+             {} past the model, {} failed; solids formed median {}, most {}; iterations median {}, 99 % {}, worst {}",
             self.name,
             self.iterations.len(),
             self.more_than_components,
             self.infeasible,
             self.endless,
+            self.past_model,
             self.failures.len(),
             self.formed[self.formed.len() / 2],
             self.formed[self.formed.len() - 1],
@@ -129,7 +145,7 @@ impl Survey {
         assert!(self.more_than_components > 0);
         let shown = self.failures.iter().take(20).cloned().collect::<Vec<_>>().join("\n");
         assert!(self.failures.is_empty(), "{shown}");
-        assert!(provable || self.infeasible + self.endless == 0, "{}: not solved", self.name);
+        assert!(provable || self.infeasible + self.endless + self.past_model == 0, "{}: not solved", self.name);
     }
 }
 

@@ -16,9 +16,11 @@ use std::sync::atomic::AtomicBool;
 use num_rational::Rational64;
 use num_traits::{Signed, ToPrimitive};
 
-use super::solve::solve;
-use super::system::{Answer, Candidate, Failure, Fixed, System};
+use super::solve::{needs_activity, solve};
+use super::system::{Answer, Candidate, Failure, Fixed, IonicStrength, System};
 use crate::problem::elimination::{Solution, express};
+
+mod strength;
 
 /// A solid is supersaturated above this ln of ion product over solubility product: what
 /// rounding leaves of an exponent of a few hundred stays below it.
@@ -66,8 +68,7 @@ pub fn equilibrate(
     }
     let mut search = Assembling::new(&system);
     if let Some(near) = near.filter(|near| near.formed.len() == system.candidates.len()) {
-        let formed = |&c: &usize| near.formed[c].is_some();
-        search.there = (0..system.candidates.len()).filter(formed).collect();
+        search.there = present(near.formed);
         search.last = Some(near.answer.clone());
         match search.settle(cancel) {
             Ok(()) if !search.is_tied() => return search.finish(),
@@ -76,8 +77,22 @@ pub fn equilibrate(
             _ => search = Assembling::new(&system),
         }
     }
+    match search.settle(cancel) {
+        Err(Failure::NotConverged { .. })
+            if needs_activity(&system) && system.ionic_strength == IonicStrength::Computed => {}
+        result => return result.and_then(|()| search.finish()),
+    }
+    let near = strength::near_own_strength(&system, cancel)?;
+    let mut search = Assembling::new(&system);
+    search.there = present(&near.formed);
+    search.last = Some(near.answer);
     search.settle(cancel)?;
     search.finish()
+}
+
+/// The candidates that are there.
+fn present(formed: &[Option<usize>]) -> Vec<usize> {
+    (0..formed.len()).filter(|&c| formed[c].is_some()).collect()
 }
 
 /// Whether another answer to an assemblage's system is a state of what was asked for too:
@@ -164,8 +179,11 @@ impl<'a> Assembling<'a> {
         self.system.fixed.truncate(self.asked.fixed.len());
         let held = self.there.iter().map(|&c| held(&self.asked.candidates[c]));
         self.system.fixed.extend(held);
-        let mut result = solve(&self.system, self.last.as_ref(), cancel);
-        if self.last.is_some() && matches!(result, Err(Failure::NotConverged { .. })) {
+        // With activity coefficients a set can have more than one state; the one that a circle
+        // came by is not the one to go on from.
+        let start = self.last.as_ref().filter(|_| !self.careful);
+        let mut result = solve(&self.system, start, cancel);
+        if start.is_some() && matches!(result, Err(Failure::NotConverged { .. })) {
             result = solve(&self.system, None, cancel);
         }
         if let Ok(answer) = &mut result {

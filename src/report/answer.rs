@@ -2,9 +2,10 @@
 
 use super::expectation::{asked, value_words, verdict};
 use super::figures::{
-    celsius, concentration, decimals, log10_of_exp, percent, scale_unit, scientific, significant,
+    celsius, concentration, decimals, percent, scale_unit, scientific, significant,
 };
 use super::sheet::{Entry, Ledger, Sheet};
+use super::solids;
 use super::solution::in_phase;
 use super::source::{Source, Stated};
 use super::style::{Paint, Style};
@@ -34,9 +35,9 @@ pub fn answer(
     for (title, body) in [
         ("Dissolved", species(problem, solved, style)),
         ("Components", components(problem, solved, style)),
-        ("Put in and held", put_in(problem, style)),
+        ("Put in and held", put_in(problem, solved, style)),
         ("Gases", gases(problem, solved, style)),
-        ("Solids", solids(problem, solved, style)),
+        ("Solids", solids::table(problem, solved, style)),
         ("Charge balance", sheet(&ledger.charge(), problem.scale, style)),
         ("Proton condition", protons(&ledger, problem, style)),
         ("Expectations", expectations(source, checked, stated, solved, style)),
@@ -112,7 +113,7 @@ fn species(problem: &Problem, solved: &Solved, style: Style) -> String {
     let rows = &scope.stoichiometry.species;
     let component = |row: usize| rows[row].row.iter().map(|&(j, _)| j).find(|&j| j != PROTON);
     let share = |row: usize, j: usize| {
-        let total = solved.total(j);
+        let total = solved.dissolved(j);
         let held = solved.shares(j).find(|&(i, _)| i == row).map(|(_, share)| share);
         held.filter(|_| total > 0.0).map(|held| held / total)
     };
@@ -149,15 +150,24 @@ fn components(problem: &Problem, solved: &Solved, style: Style) -> String {
     let mut table = Table::new(&[
         ("component", Side::Left),
         ("total", Side::Right),
+        ("dissolved", Side::Right),
+        ("in solids", Side::Right),
         ("free", Side::Right),
         ("", Side::Left),
     ]);
     for (j, component) in problem.scope.components.iter().enumerate().skip(PROTON + 1) {
         let free = problem.scope.row_of(component.species);
         let free = free.map(|row| scientific(solved.answer.concentrations[row], 4));
+        // Told apart only where something formed that holds it.
+        let (dissolved, in_solids) = match solved.solid_total(j) {
+            0.0 => Default::default(),
+            amount => (scientific(solved.dissolved(j), 4), scientific(amount, 4)),
+        };
         table.row([
             component.formula.name.as_str().into(),
             scientific(solved.total(j), 4).into(),
+            dissolved.into(),
+            in_solids.into(),
             free.unwrap_or_default().into(),
             component.title.clone().unwrap_or_default().into(),
         ]);
@@ -165,20 +175,28 @@ fn components(problem: &Problem, solved: &Solved, style: Style) -> String {
     table.render(style)
 }
 
-fn put_in(problem: &Problem, style: Style) -> String {
-    let mut table = Table::new(&[("", Side::Left), ("", Side::Left)]);
+fn put_in(problem: &Problem, solved: &Solved, style: Style) -> String {
+    let mut table = Table::new(&[("", Side::Left), ("", Side::Left), ("", Side::Left)]);
     for reagent in &problem.reagents {
         let amount = concentration(reagent.amount, problem.scale);
-        table.row([reagent.formula.name.as_str().into(), amount.into()]);
+        table.row([reagent.formula.name.as_str().into(), amount.into(), Cell::default()]);
     }
-    for held in &problem.held {
+    for (held, &brought) in problem.held.iter().zip(&solved.brought(problem)) {
         let value = match held.what {
             HeldWhat::Ph(value) | HeldWhat::Pe(value) => decimals(value, 3),
             HeldWhat::Pressure { atm, .. } => format!("{} atm", significant(atm, 3)),
             HeldWhat::Activity { value, .. } => significant(value, 4),
             HeldWhat::Concentration { value, .. } => concentration(value, problem.scale),
         };
-        table.row([held.words.as_str().into(), format!("{value}, held").into()]);
+        let exchanged = match held.what {
+            HeldWhat::Pressure { .. } => {
+                let way = if brought < 0.0 { "given off" } else { "taken up" };
+                format!("{} {way}", concentration(brought.abs(), problem.scale))
+            }
+            _ => String::new(),
+        };
+        let exchanged = Cell::painted(Paint::Faint, exchanged);
+        table.row([held.words.as_str().into(), format!("{value}, held").into(), exchanged]);
     }
     table.render(style)
 }
@@ -190,25 +208,6 @@ fn gases(problem: &Problem, solved: &Solved, style: Style) -> String {
             let name = problem.scope.species[s].name.as_str();
             table.row([name.into(), scientific(atm, 4).into()]);
         }
-    }
-    if table.is_empty() { String::new() } else { table.render(style) }
-}
-
-fn solids(problem: &Problem, solved: &Solved, style: Style) -> String {
-    let mut table =
-        Table::new(&[("solid", Side::Left), ("saturation index", Side::Right), ("", Side::Left)]);
-    for s in in_phase(problem, |phase| matches!(phase, Phase::Solid(_))) {
-        let Some(ln_saturation) = solved.ln_activity(problem, s) else { continue };
-        let index = log10_of_exp(ln_saturation);
-        let (value, remark) = if !index.is_finite() {
-            (String::new(), Cell::from("one of its parts is absent"))
-        } else if index > 0.005 {
-            let words = "supersaturated: it may precipitate";
-            (decimals(index, 2), Cell::painted(Paint::Doubtful, words))
-        } else {
-            (decimals(index, 2), Cell::default())
-        };
-        table.row([problem.scope.species[s].name.as_str().into(), value.into(), remark]);
     }
     if table.is_empty() { String::new() } else { table.render(style) }
 }

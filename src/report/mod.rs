@@ -11,6 +11,7 @@ pub mod page;
 pub mod sarif;
 pub mod sheet;
 pub mod sheet_json;
+pub mod solids;
 pub mod solution;
 pub mod source;
 pub mod style;

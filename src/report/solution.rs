@@ -180,7 +180,7 @@ fn answer<'a>(
             .map(|s| Solid {
                 name: &problem.scope.species[s].name,
                 saturation_index: value(Sought::SaturationIndex(s)),
-                precipitated: 0.0,
+                precipitated: solved.precipitated(problem, s).unwrap_or(0.0),
             })
             .collect(),
         gases: in_phase(problem, |phase| *phase == Phase::Gas)
@@ -248,7 +248,7 @@ fn components<'a>(problem: &'a Problem, solved: &Solved) -> Vec<Component<'a>> {
     let listed = scope.components.iter().enumerate().skip(PROTON + 1);
     listed
         .map(|(j, component)| {
-            let total = solved.total(j);
+            let dissolved = solved.dissolved(j);
             let brought = solved.system.fixed.iter().zip(&solved.answer.amounts);
             let brought: f64 = brought
                 .flat_map(|(fixed, &amount)| {
@@ -258,11 +258,11 @@ fn components<'a>(problem: &'a Problem, solved: &Solved) -> Vec<Component<'a>> {
                 .sum();
             Component {
                 name: &component.formula.name,
-                total,
+                total: solved.total(j),
                 free_concentration: scope
                     .row_of(component.species)
                     .and_then(|row| solved.answer.concentrations.get(row).copied()),
-                balance_error: total - solved.system.totals[j] - brought,
+                balance_error: dissolved - solved.system.totals[j] - brought,
             }
         })
         .collect()

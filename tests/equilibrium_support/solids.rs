@@ -18,8 +18,31 @@ fn ln_product(system: &System, entries: &[(usize, i64)]) -> f64 {
         .sum()
 }
 
-/// A row of a solid: two or three components, or one with hydroxide, sometimes with protons.
-fn solid_row(random: &mut Random, components: usize) -> Vec<(usize, i64)> {
+/// The charges of the components, from the species that they are themselves.
+fn charges(system: &System) -> Vec<i64> {
+    let mut charges = vec![1; system.totals.len()];
+    for species in &system.species {
+        if let [(j, n)] = species.row[..]
+            && n == Rational64::from_integer(1)
+        {
+            charges[j] = i64::from(species.charge);
+        }
+    }
+    charges
+}
+
+/// Makes a row neutral with protons, or hydroxide.
+fn neutral(entries: &mut Vec<(usize, i64)>, charges: &[i64]) {
+    let charge: i64 = entries.iter().map(|&(j, n)| charges[j] * n).sum();
+    if charge != 0 {
+        entries.push((0, -charge));
+    }
+}
+
+/// A row of a solid: one to three components, and protons or hydroxide where those leave a
+/// charge.
+fn solid_row(random: &mut Random, charges: &[i64]) -> Vec<(usize, i64)> {
+    let components = charges.len();
     let one = 1 + random.below(components - 1);
     let mut entries = vec![(one, random.between(1, 3))];
     for _ in 0..random.below(3) {
@@ -28,19 +51,14 @@ fn solid_row(random: &mut Random, components: usize) -> Vec<(usize, i64)> {
             entries.push((other, random.between(1, 3)));
         }
     }
-    if entries.len() == 1 || random.chance(0.3) {
-        let protons = random.between(-4, 2);
-        if protons != 0 {
-            entries.push((0, protons));
-        }
-    }
+    neutral(&mut entries, charges);
     entries
 }
 
 /// Puts so many candidates to a system: from far undersaturated to supersaturated by decades,
 /// one in five the same matter as another or the sum of two others.
 pub fn add_candidates(random: &mut Random, system: &mut System, count: usize) {
-    let components = system.totals.len();
+    let charges = charges(system);
     let mut rows: Vec<Vec<(usize, i64)>> = Vec::new();
     while rows.len() < count {
         let entries = if rows.len() > 1 && random.chance(0.1) {
@@ -57,7 +75,7 @@ pub fn add_candidates(random: &mut Random, system: &mut System, count: usize) {
             sum.retain(|e| e.1 != 0);
             sum
         } else {
-            solid_row(random, components)
+            solid_row(random, &charges)
         };
         if entries.is_empty() {
             continue;
@@ -69,10 +87,11 @@ pub fn add_candidates(random: &mut Random, system: &mut System, count: usize) {
     }
 }
 
-/// Holds a gas of one component and some protons, or a solid in excess.
+/// Holds a gas of one component, made neutral with protons or hydroxide.
 pub fn hold_phase(random: &mut Random, system: &mut System) {
     let component = 1 + random.below(system.totals.len() - 1);
-    let entries = [(component, 1), (0, random.between(-2, 2))];
+    let mut entries = vec![(component, 1)];
+    neutral(&mut entries, &charges(system));
     let ln_value = ln_product(system, &entries) + random.uniform(-3.0, 3.0) * LN_10;
     let row = row(&entries);
     system.fixed.push(Fixed { supply: row.clone(), row, ln_value, concentration_of: None });

@@ -1,5 +1,6 @@
 //! Hints: the pH at the problem's name, the dominating form at each component, whether
-//! each balance closes and what it rests on, the value at each expectation.
+//! each balance closes and what it rests on, the value at each expectation, what became of
+//! each solid.
 
 use std::ops::Range;
 
@@ -10,6 +11,7 @@ use crate::report::balance;
 use crate::report::expectation::value_words;
 use crate::report::figures::{concentration, decimals, percent, significant};
 use crate::report::inline::Hint;
+use crate::report::solids::fate_words;
 use crate::rules::check::Checked;
 use crate::rules::compared::kind;
 use crate::rules::outcome::Outcome;
@@ -103,6 +105,16 @@ fn statement(
             let at = problem.balances.iter().position(|balance| here(&balance.at));
             let offset = placed.start + first_line(&placed.parsed.text);
             hints.extend(at.and_then(|at| written_balance(outcome, solved, at, offset)));
+        }
+        Statement::Precipitate { solid: name } | Statement::Saturate { solid: name } => {
+            if let Some(solid) = problem.solids.iter().find(|solid| here(&solid.at)) {
+                let amount = solved.precipitated(problem, solid.species).unwrap_or(0.0);
+                hints.push(Hint {
+                    offset: placed.start + name.span.end as usize,
+                    text: fate_words(problem, solved, solid),
+                    tooltip: Some(concentration(amount.abs(), problem.scale)),
+                });
+            }
         }
         _ => {}
     }

@@ -11,6 +11,7 @@ use crate::report::figures::{
     celsius, charge, concentration, decimals, log10_of_exp, percent, significant,
 };
 use crate::report::inline::Hover;
+use crate::report::solids::fate_words;
 use crate::rules::check::Checked;
 use crate::rules::outcome::Outcome;
 use crate::text::span::{Part, Span};
@@ -98,8 +99,13 @@ fn species(outcome: &Outcome, name: &str) -> Option<String> {
         (Some(s), Some(solved)) if scope.belongs(s) => {
             lines.extend(state(problem, solved, s));
             if let Some(j) = component.filter(|&j| j != PROTON) {
-                let total = concentration(solved.total(j), problem.scale);
+                let total = concentration(solved.dissolved(j), problem.scale);
                 lines.push(format!("total over all its forms: {total}"));
+                let in_solids = solved.solid_total(j);
+                if in_solids != 0.0 {
+                    let amount = concentration(in_solids, problem.scale);
+                    lines.push(format!("in solids that formed: {amount}"));
+                }
             }
         }
         (Some(s), _) if !scope.belongs(s) => {
@@ -135,7 +141,11 @@ fn state(problem: &Problem, solved: &Solved, s: usize) -> Vec<String> {
             vec![format!("pressure in equilibrium: {} atm", significant(ln_activity.exp(), 3))]
         }
         Phase::Solid(_) => {
-            vec![format!("saturation index: {}", decimals(log10_of_exp(ln_activity), 2))]
+            let index = decimals(log10_of_exp(ln_activity), 2);
+            let mut lines = vec![format!("saturation index: {index}")];
+            let stated = problem.solids.iter().find(|solid| solid.species == s);
+            lines.extend(stated.map(|solid| fate_words(problem, solved, solid)));
+            lines
         }
         _ => {
             let Some(row) = scope.row_of(s) else { return Vec::new() };
@@ -148,7 +158,7 @@ fn state(problem: &Problem, solved: &Solved, s: usize) -> Vec<String> {
             let mut lines = vec![words];
             let shares = scope.stoichiometry.species[row].row.iter().map(|&(j, _)| j);
             for j in shares.filter(|&j| j != PROTON) {
-                let total = solved.total(j);
+                let total = solved.dissolved(j);
                 if let Some((_, share)) = solved.shares(j).find(|&(i, _)| i == row)
                     && total > 0.0
                 {
