@@ -7,6 +7,7 @@ use balance_common::{System, carbonate, r, sump};
 use lyate::balance::Part;
 use lyate::balance::charge::charge_balance;
 use lyate::balance::mass::mass_balance;
+use lyate::balance::recipe::Recipe;
 use lyate::balance::proton::{ProtonCondition, Reason, ReferenceForm, proton_condition};
 use num_rational::Rational64;
 use proptest::prelude::*;
@@ -27,7 +28,7 @@ fn check_derivation(system: &System, condition: &ProtonCondition) {
         sum[species] += z * condition.charge_factor;
     }
     for (component, factor) in &condition.mass_factors {
-        for (species, n) in mass_balance(&system.stoichiometry, *component).terms {
+        for (species, n) in mass_balance(&system.stoichiometry, &Recipe::default(), *component).terms {
             sum[species] -= n * factor;
         }
     }
@@ -43,7 +44,7 @@ fn check_derivation(system: &System, condition: &ProtonCondition) {
 fn balances_of_the_sump() {
     let system = sump();
     let balance =
-        |name: &str| system.show(&mass_balance(&system.stoichiometry, system.component(name)));
+        |name: &str| system.show(&mass_balance(&system.stoichiometry, &Recipe::default(), system.component(name)));
     assert_eq!(balance("NH3"), "[NH3] + [NH4+] = total NH3");
     assert_eq!(
         system.show(&charge_balance(&system.stoichiometry)),

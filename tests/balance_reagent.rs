@@ -2,6 +2,7 @@
 //! counting atoms.
 
 use lyate::balance::mass::mass_balance;
+use lyate::balance::recipe::Recipe;
 use lyate::chemistry::element::Element;
 use lyate::chemistry::formula::{Atom, Formula, Groups};
 use lyate::problem::elimination::{Solution, SparseRow, express, rank};
@@ -131,7 +132,7 @@ proptest! {
             stoichiometry.species.push(SpeciesRow { name: format!("S{index}"), charge, row });
         }
         let masses: Vec<Vec<(usize, Rational64)>> =
-            (0..6).map(|c| mass_balance(&stoichiometry, c).terms).collect();
+            (0..6).map(|c| mass_balance(&stoichiometry, &Recipe::default(), c).terms).collect();
         let masses: Vec<SparseRow> = masses.iter().map(Vec::as_slice).collect();
         let counted: Vec<SparseRow> = atoms.values().map(Vec::as_slice).collect();
         for row in &counted {

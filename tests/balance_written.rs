@@ -7,6 +7,7 @@ use balance_common::{System, carbonate, r, sump};
 use lyate::balance::Balance;
 use lyate::balance::charge::charge_balance;
 use lyate::balance::mass::mass_balance;
+use lyate::balance::recipe::Recipe;
 use lyate::balance::proton::proton_condition;
 use lyate::balance::written::{
     Difference, Made, Side, TermOf, Verdict, WrittenTerm, WrittenWhat, compare,
@@ -366,7 +367,7 @@ proptest! {
         let condition = proton_condition(&system.stoichiometry, &system.recipe, &chosen).unwrap();
         let mut balances = vec![("protons", condition.balance.clone()), ("charge", charge_balance(&system.stoichiometry))];
         for (component, name) in system.stoichiometry.components.iter().enumerate().skip(1) {
-            balances.push((name, mass_balance(&system.stoichiometry, component)));
+            balances.push((name, mass_balance(&system.stoichiometry, &Recipe::default(), component)));
         }
         let (of, balance) = which.get(&balances);
         let of = if which.index(2) == 0 { "protons" } else { of };

@@ -219,6 +219,7 @@ fn every_word_of_the_parser_stands_in_the_grammar_and_in_the_reference() {
         "capacity",
         "saturation",
         "index",
+        "precipitated",
         "dose",
         "imbalance",
         "over",

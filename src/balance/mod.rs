@@ -28,6 +28,8 @@ pub enum Part {
     Added(usize),
     /// What a held phase or species brought.
     Held(usize),
+    /// What formed of a solid.
+    Precipitated(usize),
 }
 
 /// `Σ coefficient · [species] = Σ coefficient · part`, by rising index, no zeros.

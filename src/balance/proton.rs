@@ -87,10 +87,6 @@ pub fn proton_condition(
 
     let mut candidates: Vec<(Row, i32, Reference)> = Vec::new();
     for (index, held) in recipe.held.iter().enumerate() {
-        // A solid that did not form is no form of anything.
-        if held.only_takes && held.amount == Some(0.0) {
-            continue;
-        }
         let reference = Reference { form: ReferenceForm::Held(index), reason: Reason::Held };
         candidates.push((moiety_row(&held.brings), held.charge, reference));
     }
@@ -179,6 +175,9 @@ fn combine<E: Exact>(
     let mut totals = Vec::new();
     for (index, lambda) in exact.iter().enumerate() {
         totals.push((Part::Total(index + 1), E::zero().minus(lambda)?));
+        for (part, n) in recipe.precipitated_in(index + 1) {
+            totals.push((part, lambda.times(&E::of(n)?)?));
+        }
     }
     let parts = recipe.written_out(&totals)?;
     let mut parts: Vec<(Part, Rational64)> =

@@ -17,26 +17,23 @@ impl Held {
         let (brings, charge) = match held.what {
             HeldWhat::Ph(_) => component(PROTON),
             HeldWhat::Pe(_) => scope.component("e-").map(component).unwrap_or_default(),
-            HeldWhat::Pressure { species, .. } => {
-                let made = scope.belonging.made[species].as_ref();
-                (made.map(|made| made.row.clone()).unwrap_or_default(), 0)
-            }
+            HeldWhat::Pressure { species, .. } => (row_of(problem, species), 0),
             HeldWhat::Activity { .. } | HeldWhat::Concentration { .. } => {
                 held.releases.map(component).unwrap_or_default()
             }
         };
-        Held { brings, charge, amount, only_takes: false }
+        Held { brings, charge, amount }
     }
 
     fn of_solid(problem: &Problem, solid: &Solid, amount: Option<f64>) -> Held {
-        let made = problem.scope.belonging.made[solid.species].as_ref();
-        Held {
-            brings: made.map(|made| made.row.clone()).unwrap_or_default(),
-            charge: 0,
-            amount,
-            only_takes: solid.presence == Presence::Forms,
-        }
+        Held { brings: row_of(problem, solid.species), charge: 0, amount }
     }
+}
+
+/// What a species of the scope is made of.
+fn row_of(problem: &Problem, species: usize) -> Row {
+    let made = problem.scope.belonging.made[species].as_ref();
+    made.map(|made| made.row.clone()).unwrap_or_default()
 }
 
 /// A row over the components: (index, coefficient), by rising index, no zeros.
@@ -49,8 +46,9 @@ pub struct Recipe {
     pub reagents: Vec<Reagent>,
     /// Of each component: its total where one was given, mol per litre or kilogram.
     pub totals: Vec<Option<f64>>,
-    /// Held values, and behind them the solids.
+    /// Held values, and behind them the solids in excess.
     pub held: Vec<Held>,
+    pub precipitates: Vec<Precipitate>,
 }
 
 #[derive(Clone, Debug, Default, PartialEq)]
@@ -71,13 +69,20 @@ pub struct Held {
     pub charge: i32,
     /// What it brought, once that is known.
     pub amount: Option<f64>,
-    /// A solid that may form: it takes away, and nothing has it for a source.
-    pub only_takes: bool,
+}
+
+/// A solid that may form.
+#[derive(Clone, Debug, Default, PartialEq)]
+pub struct Precipitate {
+    /// What one mole of it holds of each component.
+    pub holds: Row,
+    /// What formed, mol per litre or kilogram, once that is known.
+    pub amount: Option<f64>,
 }
 
 impl Recipe {
-    /// What a problem puts in. `brought` is what each held value and each solid brought, once
-    /// solved.
+    /// What a problem puts in. `brought` is what each held value, each solid in excess and each
+    /// that may form brought, once solved.
     pub fn of(problem: &Problem, brought: Option<&[f64]>) -> Recipe {
         let stoichiometry = &problem.scope.stoichiometry;
         let reagents = problem.reagents.iter().map(|reagent| Reagent {
@@ -92,7 +97,7 @@ impl Recipe {
             AmountSource::Nothing | AmountSource::Reagents | AmountSource::Held(_) => None,
         });
         let mut recipe =
-            Recipe { reagents: reagents.collect(), totals: totals.collect(), held: Vec::new() };
+            Recipe { reagents: reagents.collect(), totals: totals.collect(), ..Recipe::default() };
         if let Some(proton) = recipe.totals.first_mut() {
             *proton = None;
         }
@@ -100,11 +105,19 @@ impl Recipe {
         let mut amount = || brought.next().flatten();
         let held = problem.held.iter().map(|held| Held::of(problem, held, amount()));
         let mut phases: Vec<Held> = held.collect();
-        let solids = problem.solids.iter().map(|solid| Held::of_solid(problem, solid, amount()));
-        phases.extend(solids);
+        let excess = problem.solids_that_are(Presence::Excess);
+        phases.extend(excess.map(|solid| Held::of_solid(problem, solid, amount())));
+        recipe.precipitates = problem
+            .solids_that_are(Presence::Forms)
+            .map(|solid| {
+                let holds = row_of(problem, solid.species);
+                // A plain zero where nothing formed.
+                Precipitate { holds, amount: amount().map(|brought| 0.0 - brought) }
+            })
+            .collect();
         for held in phases {
             // What only a held gas or a solid in excess brings has that for its source.
-            for &(j, _) in held.brings.iter().filter(|_| !held.only_takes) {
+            for &(j, _) in &held.brings {
                 if problem.amounts[j].source == AmountSource::Nothing {
                     recipe.totals[j] = None;
                 }
@@ -112,9 +125,7 @@ impl Recipe {
             recipe.held.push(held);
         }
         for (j, amount) in problem.amounts.iter().enumerate().skip(1) {
-            let brings = |held: &Held| {
-                !held.only_takes && held.brings.iter().any(|(column, _)| *column == j)
-            };
+            let brings = |held: &Held| held.brings.iter().any(|(column, _)| *column == j);
             // Listed and never brought in: absent.
             if amount.source == AmountSource::Nothing && !recipe.held.iter().any(brings) {
                 recipe.totals[j] = Some(0.0);
@@ -143,11 +154,23 @@ impl Recipe {
         if found.is_empty() { vec![(Part::Total(component), Rational64::from(1))] } else { found }
     }
 
+    /// How often each solid that may form holds a component.
+    pub fn precipitated_in(
+        &self,
+        component: usize,
+    ) -> impl Iterator<Item = (Part, Rational64)> + '_ {
+        self.precipitates.iter().enumerate().filter_map(move |(index, solid)| {
+            let (_, n) = solid.holds.iter().find(|(column, _)| *column == component)?;
+            Some((Part::Precipitated(index), *n))
+        })
+    }
+
     /// The amount of a part, mol per litre or kilogram; none where it is not known.
     pub fn value(&self, part: Part) -> Option<f64> {
         match part {
             Part::Added(reagent) => self.reagents.get(reagent).map(|reagent| reagent.amount),
             Part::Held(held) => self.held.get(held)?.amount,
+            Part::Precipitated(solid) => self.precipitates.get(solid)?.amount,
             Part::Total(component) => match self.totals.get(component).copied().flatten() {
                 // A held gas adds to what was given, or takes from it.
                 Some(total) => Some(total + self.exchanged(component)?),

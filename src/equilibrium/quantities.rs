@@ -77,32 +77,26 @@ impl Solved {
         shape(&self.system, self.stated()) == shape(system, system.fixed.len())
     }
 
-    /// What each held value and then each solid of the problem brought, mol per litre or
-    /// kilogram; below zero where it took away.
-    pub fn brought(&self, problem: &Problem) -> Vec<f64> {
+    /// What each held value, each solid in excess and then each solid that may form brought,
+    /// mol per litre or kilogram; below zero where it took away.
+    pub fn brought(&self) -> Vec<f64> {
         let at = |k: usize| self.answer.amounts.get(k).copied().unwrap_or(0.0);
-        let held = 0..problem.held.len();
-        let mut excess = held.end;
-        let mut candidate = 0;
-        let solids = problem.solids.iter().map(|solid| match solid.presence {
-            Presence::Excess => {
-                excess += 1;
-                at(excess - 1)
-            }
-            Presence::Forms => {
-                candidate += 1;
-                self.formed.get(candidate - 1).copied().flatten().map_or(0.0, at)
-            }
-        });
-        held.map(at).chain(solids).collect()
+        let formed = self.formed.iter().map(|place| place.map_or(0.0, at));
+        (0..self.stated()).map(at).chain(formed).collect()
     }
 
     /// mol per litre or kilogram of a solid that formed, or in excess grew; below zero where
     /// it dissolved. None where the problem states nothing of this species.
     pub fn precipitated(&self, problem: &Problem, species: usize) -> Option<f64> {
-        let index = problem.solids.iter().position(|solid| solid.species == species)?;
-        let amount = *self.brought(problem).get(problem.held.len() + index)?;
-        Some(if amount == 0.0 { 0.0 } else { -amount })
+        let at = |presence: Presence| {
+            problem.solids_that_are(presence).position(|solid| solid.species == species)
+        };
+        let index = match at(Presence::Excess) {
+            Some(k) => problem.held.len() + k,
+            None => self.stated() + at(Presence::Forms)?,
+        };
+        // A plain zero where nothing formed.
+        self.brought().get(index).map(|brought| 0.0 - brought)
     }
 
     /// mol per litre or kilogram of a component in the solids that formed.
@@ -145,7 +139,11 @@ impl Solved {
                 .map(|term| {
                     let value = match term.what {
                         WrittenWhat::Species(row) => self.answer.concentrations[row],
-                        WrittenWhat::Total(component) => self.dissolved(component),
+                        WrittenWhat::Total(component) => self.total(component),
+                        WrittenWhat::Precipitated(candidate) => {
+                            let place = self.formed.get(candidate).copied().flatten();
+                            place.map_or(0.0, |k| -self.answer.amounts[k])
+                        }
                         WrittenWhat::Added(reagent) => problem.reagents[reagent].amount,
                         WrittenWhat::Amount { value, .. } => value,
                     };

@@ -28,11 +28,11 @@ pub struct Balances {
 impl Balances {
     pub fn new(problem: &Problem, solved: &Solved) -> Balances {
         let stoichiometry = &problem.scope.stoichiometry;
-        let recipe = Recipe::of(problem, Some(&solved.brought(problem)));
+        let recipe = Recipe::of(problem, Some(&solved.brought()));
         let protons = proton_condition(stoichiometry, &recipe, &[]).ok();
         let components = 1..stoichiometry.components.len();
         let implied = std::iter::once(charge_balance(stoichiometry))
-            .chain(components.map(|j| mass_balance(stoichiometry, j)))
+            .chain(components.map(|j| mass_balance(stoichiometry, &recipe, j)))
             .chain(protons.map(|condition| condition.balance))
             .map(|balance| (balance, OnceLock::new()))
             .collect();

@@ -164,6 +164,8 @@ pub enum WrittenWhat {
     Total(usize),
     /// A reagent of the problem.
     Added(usize),
+    /// A solid that may form, by its place among those.
+    Precipitated(usize),
     /// mol per litre or kilogram, with half a unit of its last written digit.
     Amount { value: f64, half_digit: f64 },
 }
@@ -233,6 +235,17 @@ impl Problem {
     /// held values among the solver's held phases, those that may form are its candidates.
     pub fn solids_that_are(&self, presence: Presence) -> impl Iterator<Item = &Solid> {
         self.solids.iter().filter(move |solid| solid.presence == presence)
+    }
+
+    /// The solid in excess that is held phase `k` of the solver.
+    pub fn excess(&self, k: usize) -> Option<&Solid> {
+        self.solids_that_are(Presence::Excess).nth(k.checked_sub(self.held.len())?)
+    }
+
+    /// The name of a solid that may form, by its place among those.
+    pub fn precipitate_name(&self, candidate: usize) -> &str {
+        let solid = self.solids_that_are(Presence::Forms).nth(candidate);
+        solid.map_or("a solid", |solid| self.solid_name(solid))
     }
 
     pub fn solid_name(&self, solid: &Solid) -> &str {

@@ -5,7 +5,9 @@ use num_rational::Rational64;
 use super::case::CaseResolver;
 use super::defect::{DefectKind, Expected};
 use super::effective::Written;
-use super::model::{BalanceKindResolved, Problem, WrittenBalance, WrittenTerm, WrittenWhat};
+use super::model::{
+    BalanceKindResolved, Presence, Problem, WrittenBalance, WrittenTerm, WrittenWhat,
+};
 use super::resolve::small_fraction;
 use crate::chemistry::formula::canonical;
 use crate::text::tree::{BalanceKind, Statement, Term, TermKind, Without};
@@ -49,6 +51,15 @@ fn is_taken_out(case: &CaseResolver, reagent: &str) -> bool {
     case.statements.iter().any(|written| match written.statement() {
         Statement::Without(without) => {
             matches!(&without.value, Without::Add(name) if canonical(name) == reagent)
+        }
+        _ => false,
+    })
+}
+
+fn is_let_go(case: &CaseResolver, solid: &str) -> bool {
+    case.statements.iter().any(|written| match written.statement() {
+        Statement::Without(without) => {
+            matches!(&without.value, Without::Precipitate(name) if canonical(name) == solid)
         }
         _ => false,
     })
@@ -102,6 +113,25 @@ fn term(
                 }
                 None => {
                     let kind = DefectKind::NotAdded { name: formula.name.clone() };
+                    case.resolver.report(written.place(name.span), kind);
+                    return None;
+                }
+            }
+        }
+        TermKind::Precipitated(name) => {
+            let species = case.species(written, name)?;
+            let known = problem
+                .solids_that_are(Presence::Forms)
+                .position(|solid| solid.species == species);
+            match known {
+                Some(candidate) => WrittenWhat::Precipitated(candidate),
+                // Taken out by this case: none of it forms.
+                None if is_let_go(case, &case.scope.species[species].name) => {
+                    WrittenWhat::Amount { value: 0.0, half_digit: 0.0 }
+                }
+                None => {
+                    let name_text = case.scope.species[species].name.clone();
+                    let kind = DefectKind::SolidNotStated { name: name_text };
                     case.resolver.report(written.place(name.span), kind);
                     return None;
                 }

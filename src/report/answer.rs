@@ -181,7 +181,7 @@ fn put_in(problem: &Problem, solved: &Solved, style: Style) -> String {
         let amount = concentration(reagent.amount, problem.scale);
         table.row([reagent.formula.name.as_str().into(), amount.into(), Cell::default()]);
     }
-    for (held, &brought) in problem.held.iter().zip(&solved.brought(problem)) {
+    for (held, &brought) in problem.held.iter().zip(&solved.answer.amounts) {
         let value = match held.what {
             HeldWhat::Ph(value) | HeldWhat::Pe(value) => decimals(value, 3),
             HeldWhat::Pressure { atm, .. } => format!("{} atm", significant(atm, 3)),

@@ -31,13 +31,16 @@ pub fn term_words(problem: &Problem, what: TermOf, coefficient: Rational64) -> S
         TermOf::Constant(Part::Held(held)) => {
             held_words(problem, held)
         }
+        TermOf::Constant(Part::Precipitated(solid)) => {
+            format!("precipitated {}", problem.precipitate_name(solid))
+        }
     };
     if coefficient == Rational64::one() { name } else { format!("{coefficient} {name}") }
 }
 
 /// What a held value or, behind those, a solid brought: `brought by CO2(g) held`.
 pub fn held_words(problem: &Problem, index: usize) -> String {
-    let solid = || problem.solids.get(index.checked_sub(problem.held.len())?);
+    let solid = || problem.excess(index);
     match (problem.held.get(index), solid()) {
         (Some(held), _) => format!("brought by {} held", held.words),
         (None, Some(solid)) => format!("brought by {}", problem.solid_name(solid)),

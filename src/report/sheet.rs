@@ -81,7 +81,7 @@ pub struct Ledger<'a> {
 impl<'a> Ledger<'a> {
     pub fn new(outcome: &'a Outcome) -> Ledger<'a> {
         let problem = &outcome.problem;
-        let brought = outcome.solved().map(|solved| solved.brought(problem));
+        let brought = outcome.solved().map(|solved| solved.brought());
         Ledger { outcome, problem, recipe: Recipe::of(problem, brought.as_deref()) }
     }
 
@@ -96,7 +96,7 @@ impl<'a> Ledger<'a> {
         let stoichiometry = &self.problem.scope.stoichiometry;
         let components = 1..stoichiometry.components.len();
         let mut sheets: Vec<Sheet> =
-            components.map(|j| self.sheet(&mass_balance(stoichiometry, j))).collect();
+            components.map(|j| self.sheet(&mass_balance(stoichiometry, &self.recipe, j))).collect();
         sheets.iter_mut().for_each(|sheet| self.weigh(sheet));
         sheets
     }

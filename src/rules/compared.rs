@@ -4,7 +4,7 @@ use crate::balance::proton::proton_condition;
 use crate::balance::recipe::Recipe;
 use crate::balance::written::{Side, Verdict, WrittenTerm, WrittenWhat, compare};
 use crate::balance::{BalanceKind, Part};
-use crate::problem::model::{self, BalanceKindResolved, Problem, WrittenBalance};
+use crate::problem::model::{self, BalanceKindResolved, Presence, Problem, WrittenBalance};
 use crate::text::span;
 
 /// A written balance, by its index in the problem, and what it was found to be.
@@ -15,11 +15,14 @@ pub struct Compared {
 }
 
 /// Compares every balance whose terms could all be read. `brought` is what each held value
-/// brought, where that is known. `same_sources` says that this is a case with the base's
+/// and each solid brought, where that is known. `same_sources` says that this is a case with the base's
 /// reactions and sources, so that only plain amounts in a balance of the base can differ.
 pub fn compared(problem: &Problem, brought: Option<&[f64]>, same_sources: bool) -> Vec<Compared> {
+    // What forms in one case does not in another.
+    let forms = problem.solids_that_are(Presence::Forms).next().is_some();
     let is_new = |balance: &WrittenBalance| {
         !same_sources
+            || forms
             || balance.at.section == span::Part::Case
             || balance
                 .left
@@ -75,6 +78,9 @@ fn terms(balance: &WrittenBalance) -> Vec<WrittenTerm> {
                     model::WrittenWhat::Species(row) => WrittenWhat::Species(row),
                     model::WrittenWhat::Total(j) => WrittenWhat::Constant(Part::Total(j)),
                     model::WrittenWhat::Added(r) => WrittenWhat::Constant(Part::Added(r)),
+                    model::WrittenWhat::Precipitated(k) => {
+                        WrittenWhat::Constant(Part::Precipitated(k))
+                    }
                     model::WrittenWhat::Amount { value, half_digit } => {
                         WrittenWhat::Amount { value, half_digit }
                     }

@@ -77,7 +77,7 @@ impl Outcome {
             }
         };
         let brought = match &state {
-            State::Solved(solved) => Some(solved.brought(&problem)),
+            State::Solved(solved) => Some(solved.brought()),
             _ => None,
         };
         let same_sources = inherited && !in_force.other_sources;

@@ -93,7 +93,10 @@ fn balance<'a>(kind: &'a BalanceKind, call: &mut dyn FnMut(&'a Name)) {
 
 fn term<'a>(term: &'a Term, call: &mut dyn FnMut(&'a Name)) {
     match &term.what {
-        TermKind::Concentration(name) | TermKind::Total(name) | TermKind::Added(name) => call(name),
+        TermKind::Concentration(name)
+        | TermKind::Total(name)
+        | TermKind::Added(name)
+        | TermKind::Precipitated(name) => call(name),
         TermKind::Amount(_) => {}
     }
 }

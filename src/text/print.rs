@@ -141,6 +141,7 @@ fn terms(f: &mut Formatter<'_>, terms: &[Term]) -> fmt::Result {
             TermKind::Concentration(species) => write!(f, "[{}]", species.value)?,
             TermKind::Total(component) => write!(f, "total {}", component.value)?,
             TermKind::Added(reagent) => write!(f, "added {}", reagent.value)?,
+            TermKind::Precipitated(solid) => write!(f, "precipitated {}", solid.value)?,
             TermKind::Amount(amount) => amount.fmt(f)?,
         }
     }

@@ -281,6 +281,8 @@ pub enum TermKind {
     Total(Name),
     /// `added NaOH`
     Added(Name),
+    /// `precipitated CaCO3(s)`
+    Precipitated(Name),
     /// `9 mmol/L`, or `0`
     Amount(Quantity),
 }

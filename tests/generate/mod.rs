@@ -131,6 +131,7 @@ fn terms() -> BoxedStrategy<Vec<Term>> {
             formula().prop_map(TermKind::Concentration),
             formula().prop_map(TermKind::Total),
             formula().prop_map(TermKind::Added),
+            formula().prop_map(TermKind::Precipitated),
         ],
     );
     let amount = quantity(false).prop_map(|amount| (None, TermKind::Amount(amount)));
@@ -165,6 +166,7 @@ fn subject() -> BoxedStrategy<Subject> {
         formula().prop_map(Subject::Total),
         formula().prop_map(Subject::Fraction),
         formula().prop_map(Subject::SaturationIndex),
+        formula().prop_map(Subject::Precipitated),
         formula().prop_map(Subject::Dose),
     ]
     .boxed()

@@ -20,6 +20,8 @@ pub(super) struct Constants<'a, E> {
     amounts: Vec<(usize, f64, f64, f64)>,
     /// One total of each component written out.
     totals: Vec<Sum<E>>,
+    /// The same less what formed of the solids that hold it.
+    implied: Vec<Sum<E>>,
 }
 
 impl<'a, E: Exact> Constants<'a, E> {
@@ -43,11 +45,22 @@ impl<'a, E: Exact> Constants<'a, E> {
                 _ => {}
             }
         }
+        // What did not form, or may not have, may be left out.
+        let is_written = |part: Part| terms.iter().any(|(_, _, out)| out.iter().any(|o| o.0 == part));
         let mut totals = Vec::new();
+        let mut implied = Vec::new();
         for component in 0..components {
-            totals.push(recipe.written_out(&[(Part::Total(component), one.clone())])?);
+            let total = recipe.written_out(&[(Part::Total(component), one.clone())])?;
+            let mut less = total.clone();
+            for (part, n) in recipe.precipitated_in(component) {
+                if recipe.value(part).is_some_and(|n| n != 0.0) || is_written(part) {
+                    subtract(&mut less, &vec![(part, E::of(n)?)], &one)?;
+                }
+            }
+            totals.push(total);
+            implied.push(less);
         }
-        Some(Constants { recipe, written, terms, amounts, totals })
+        Some(Constants { recipe, written, terms, amounts, totals, implied })
     }
 
     /// How often the total of a component is written, or all that it comes from.
@@ -67,7 +80,7 @@ impl<'a, E: Exact> Constants<'a, E> {
         let mut missing: Sum<E> = Vec::new();
         for (component, factor) in fit.masses.iter().enumerate() {
             if !factor.is_zero() {
-                subtract(&mut missing, self.totals.get(component)?, factor)?;
+                subtract(&mut missing, self.implied.get(component)?, factor)?;
             }
         }
         for (_, count, out) in &self.terms {

@@ -94,9 +94,13 @@ fn sum(entries: &[Entry]) -> String {
     sum
 }
 
-/// `[\ce{NH4+}]`, `T_{\ce{NH3}}`, `C_{\ce{NaOH}}`.
+/// `[\ce{NH4+}]`, `T_{\ce{NH3}}`, `C_{\ce{NaOH}}`, `S_{\ce{CaCO3(s)}}`.
 fn symbol(entry: &Entry) -> String {
-    let name = entry.words.trim_start_matches("total ").trim_start_matches("added ");
+    let name = entry
+        .words
+        .trim_start_matches("total ")
+        .trim_start_matches("added ")
+        .trim_start_matches("precipitated ");
     match entry.what {
         TermOf::Species(_) => {
             let name = name.strip_prefix('[').and_then(|name| name.strip_suffix(']'));
@@ -104,6 +108,7 @@ fn symbol(entry: &Entry) -> String {
         }
         TermOf::Constant(Part::Total(_)) => format!("T_{{{}}}", ce(name)),
         TermOf::Constant(Part::Added(_)) => format!("C_{{{}}}", ce(name)),
+        TermOf::Constant(Part::Precipitated(_)) => format!("S_{{{}}}", ce(name)),
         TermOf::Constant(Part::Held(_)) => {
             let name = name.trim_start_matches("brought by ").trim_end_matches(" held");
             format!("X_{{{}}}", ce(name.trim_matches(['[', ']', '{', '}'])))

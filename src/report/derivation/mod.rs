@@ -105,8 +105,7 @@ fn protons(
         ReferenceForm::Held(index) => match problem.held.get(index) {
             Some(held) => (held.words.clone(), charge_of(problem, held.what)),
             None => {
-                let solid = problem.solids.get(index - problem.held.len());
-                let name = solid.map(|solid| problem.solid_name(solid).to_owned());
+                let name = problem.excess(index).map(|solid| problem.solid_name(solid).to_owned());
                 (name.unwrap_or_default(), 0)
             }
         },

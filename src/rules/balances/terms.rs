@@ -116,6 +116,9 @@ pub fn term_text(problem: &Problem, term: TermOf, coefficient: Rational64) -> Op
         TermOf::Constant(Part::Added(r)) => {
             format!("added {}", problem.reagents.get(r)?.formula.name)
         }
+        TermOf::Constant(Part::Precipitated(solid)) => {
+            format!("precipitated {}", problem.precipitate_name(solid))
+        }
         TermOf::Constant(Part::Held(_)) => return None,
     };
     Some(counted(coefficient, &what))
@@ -125,8 +128,7 @@ pub fn term_text(problem: &Problem, term: TermOf, coefficient: Rational64) -> Op
 pub fn term_words(problem: &Problem, term: TermOf, coefficient: Rational64) -> String {
     term_text(problem, term, coefficient).unwrap_or_else(|| match term {
         TermOf::Constant(Part::Held(k)) => {
-            let solid = || problem.solids.get(k.checked_sub(problem.held.len())?);
-            let what = match (problem.held.get(k), solid()) {
+            let what = match (problem.held.get(k), problem.excess(k)) {
                 (Some(held), _) => held.words.as_str(),
                 (None, Some(solid)) => problem.solid_name(solid),
                 (None, None) => "what is held",

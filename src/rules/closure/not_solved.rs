@@ -28,7 +28,6 @@
 //! ```
 
 use super::remaining::remaining;
-use super::too_many_phases::excess;
 use crate::equilibrium::system::Failure;
 use crate::rules::catalogue::rule;
 use crate::rules::context::Context;
@@ -49,7 +48,7 @@ fn find(context: &Context, found: &mut Vec<Finding<Place>>) {
     found.extend(match failure {
         Failure::Infeasible { component } => infeasible(context, *component),
         Failure::Dependent { fixed, .. }
-            if fixed.iter().any(|&k| excess(context.problem, k).is_some()) =>
+            if fixed.iter().any(|&k| context.problem.excess(k).is_some()) =>
         {
             None
         }

@@ -34,7 +34,7 @@
 
 use crate::equilibrium::build::ln_formation;
 use crate::equilibrium::system::Failure;
-use crate::problem::model::{Presence, Problem, Solid};
+use crate::problem::model::{Problem, Solid};
 use crate::rules::catalogue::rule;
 use crate::rules::context::Context;
 use crate::rules::finding::Finding;
@@ -47,13 +47,13 @@ rule!("too-many-phases", Error, "too_many_phases.rs", find);
 fn find(context: &Context, found: &mut Vec<Finding<Place>>) {
     let State::Failed(Failure::Dependent { fixed, .. }) = context.state else { return };
     let problem = context.problem;
-    let Some(last) = fixed.iter().rev().find_map(|&k| excess(problem, k)) else { return };
+    let Some(last) = fixed.iter().rev().find_map(|&k| problem.excess(k)) else { return };
     let others: Vec<(Place, String)> =
         fixed.iter().filter_map(|&k| words(problem, k)).filter(|(at, _)| *at != last.at).collect();
     let name = problem.solid_name(last);
     let twins: Vec<&Solid> = fixed
         .iter()
-        .filter_map(|&k| excess(problem, k))
+        .filter_map(|&k| problem.excess(k))
         .filter(|solid| solid.at != last.at && is_same_matter(problem, last, solid))
         .collect();
     let finding = if let (true, [twin]) = (others.len() == 1, &twins[..]) {
@@ -87,15 +87,10 @@ fn find(context: &Context, found: &mut Vec<Finding<Place>>) {
     found.push(others.iter().fold(finding, note));
 }
 
-/// The solid in excess that is held phase `k`.
-pub fn excess(problem: &Problem, k: usize) -> Option<&Solid> {
-    problem.solids_that_are(Presence::Excess).nth(k.checked_sub(problem.held.len())?)
-}
-
 /// A held phase, and where it stands.
 pub fn words(problem: &Problem, k: usize) -> Option<(Place, String)> {
     let held = problem.held.get(k).map(|held| (held.at, held.words.clone()));
-    held.or_else(|| excess(problem, k).map(|solid| (solid.at, problem.solid_name(solid).to_owned())))
+    held.or_else(|| problem.excess(k).map(|solid| (solid.at, problem.solid_name(solid).to_owned())))
 }
 
 fn is_same_matter(problem: &Problem, one: &Solid, two: &Solid) -> bool {

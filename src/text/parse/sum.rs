@@ -148,8 +148,13 @@ pub(super) fn terms<'s>() -> impl Rule<'s, Vec<Term>> {
         word("total", Expect::Nothing).ignore_then(name(Expect::Formula)).map(TermKind::Total);
     let added =
         word("added", Expect::Nothing).ignore_then(name(Expect::Formula)).map(TermKind::Added);
-    let counted =
-        fraction().labelled(Expect::Nothing).or_not().then(choice((species, total, added)));
+    let precipitated = word("precipitated", Expect::Nothing)
+        .ignore_then(name(Expect::Formula))
+        .map(TermKind::Precipitated);
+    let counted = fraction()
+        .labelled(Expect::Nothing)
+        .or_not()
+        .then(choice((species, total, added, precipitated)));
     let amount = unsigned_quantity().map(|amount| (None, TermKind::Amount(amount)));
     let term = choice((counted, amount))
         .labelled(Expect::Term)
