@@ -7,8 +7,8 @@ use balance_common::{System, carbonate, r, sump};
 use lyate::balance::Part;
 use lyate::balance::charge::charge_balance;
 use lyate::balance::mass::mass_balance;
-use lyate::balance::recipe::Recipe;
 use lyate::balance::proton::{ProtonCondition, Reason, ReferenceForm, proton_condition};
+use lyate::balance::recipe::Recipe;
 use num_rational::Rational64;
 use proptest::prelude::*;
 
@@ -28,7 +28,9 @@ fn check_derivation(system: &System, condition: &ProtonCondition) {
         sum[species] += z * condition.charge_factor;
     }
     for (component, factor) in &condition.mass_factors {
-        for (species, n) in mass_balance(&system.stoichiometry, &Recipe::default(), *component).terms {
+        for (species, n) in
+            mass_balance(&system.stoichiometry, &Recipe::default(), *component).terms
+        {
             sum[species] -= n * factor;
         }
     }
@@ -43,8 +45,13 @@ fn check_derivation(system: &System, condition: &ProtonCondition) {
 #[test]
 fn balances_of_the_sump() {
     let system = sump();
-    let balance =
-        |name: &str| system.show(&mass_balance(&system.stoichiometry, &Recipe::default(), system.component(name)));
+    let balance = |name: &str| {
+        system.show(&mass_balance(
+            &system.stoichiometry,
+            &Recipe::default(),
+            system.component(name),
+        ))
+    };
     assert_eq!(balance("NH3"), "[NH3] + [NH4+] = total NH3");
     assert_eq!(
         system.show(&charge_balance(&system.stoichiometry)),

@@ -7,8 +7,8 @@ use balance_common::{System, carbonate, r, sump};
 use lyate::balance::Balance;
 use lyate::balance::charge::charge_balance;
 use lyate::balance::mass::mass_balance;
-use lyate::balance::recipe::Recipe;
 use lyate::balance::proton::proton_condition;
+use lyate::balance::recipe::Recipe;
 use lyate::balance::written::{
     Difference, Made, Side, TermOf, Verdict, WrittenTerm, WrittenWhat, compare,
 };

@@ -173,10 +173,7 @@ fn what_held_phases_keep_supersaturated_forms_without_end() {
     excess(&mut system, &[(1, 1)], -2.0);
     excess(&mut system, &[(2, 1)], -3.0);
     candidate(&mut system, &[(1, 1), (2, 1)], -7.0);
-    assert_eq!(
-        run(&system).unwrap_err(),
-        Failure::Endless { candidate: 0, fixed: vec![0, 1] }
-    );
+    assert_eq!(run(&system).unwrap_err(), Failure::Endless { candidate: 0, fixed: vec![0, 1] });
     // Where both may be used up, one is.
     let mut system = water(&[(0, 0.5), (0, 0.2)]);
     candidate(&mut system, &[(1, 1)], -2.0);

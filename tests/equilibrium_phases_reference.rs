@@ -126,9 +126,8 @@ fn solids_form_as_every_set_tried_in_many_digits_says() {
     let file: File = serde_json::from_str(text).expect("the reference file is JSON");
     assert!(file.problems.iter().filter(|p| !p.davies).count() >= 30);
     assert!(file.problems.iter().filter(|p| p.davies).count() >= 15);
-    let some = |n: usize| {
-        file.problems.iter().any(|p| p.answer.formed.iter().flatten().count() == n)
-    };
+    let some =
+        |n: usize| file.problems.iter().any(|p| p.answer.formed.iter().flatten().count() == n);
     assert!(some(0) && some(1) && some(2) && some(3));
     for problem in &file.problems {
         match equilibrate(system(problem), None, &AtomicBool::new(false)) {

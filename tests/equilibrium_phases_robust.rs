@@ -102,8 +102,7 @@ impl Survey {
     }
 
     fn take(&mut self, seed: u64, system: &System, result: Result<Assemblage, Failure>) {
-        self.more_than_components +=
-            usize::from(system.candidates.len() > system.totals.len());
+        self.more_than_components += usize::from(system.candidates.len() > system.totals.len());
         match result {
             Ok(state) => {
                 self.formed.push(state.formed.iter().flatten().count());
@@ -145,7 +144,11 @@ impl Survey {
         assert!(self.more_than_components > 0);
         let shown = self.failures.iter().take(20).cloned().collect::<Vec<_>>().join("\n");
         assert!(self.failures.is_empty(), "{shown}");
-        assert!(provable || self.infeasible + self.endless + self.past_model == 0, "{}: not solved", self.name);
+        assert!(
+            provable || self.infeasible + self.endless + self.past_model == 0,
+            "{}: not solved",
+            self.name
+        );
     }
 }
 

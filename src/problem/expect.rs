@@ -17,7 +17,9 @@ pub fn read(case: &mut CaseResolver, problem: &Problem) -> Vec<Expectation> {
         };
         let Some(mut sought) = sought(case, problem, written, subject) else { continue };
         let formula = match sought {
-            Sought::Concentration(species) | Sought::Precipitated(species) => Some(case.scope.species[species].clone()),
+            Sought::Concentration(species) | Sought::Precipitated(species) => {
+                Some(case.scope.species[species].clone())
+            }
             Sought::Total(component) => Some(case.scope.components[component].formula.clone()),
             _ => None,
         };

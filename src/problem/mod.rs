@@ -15,6 +15,7 @@ mod expect;
 pub mod files;
 mod held;
 pub mod import;
+mod missing;
 pub mod model;
 pub mod quantity;
 pub mod reaction;

@@ -120,9 +120,8 @@ fn term(
         }
         TermKind::Precipitated(name) => {
             let species = case.species(written, name)?;
-            let known = problem
-                .solids_that_are(Presence::Forms)
-                .position(|solid| solid.species == species);
+            let known =
+                problem.solids_that_are(Presence::Forms).position(|solid| solid.species == species);
             match known {
                 Some(candidate) => WrittenWhat::Precipitated(candidate),
                 // Taken out by this case: none of it forms.

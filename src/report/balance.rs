@@ -28,9 +28,7 @@ pub fn term_words(problem: &Problem, what: TermOf, coefficient: Rational64) -> S
         TermOf::Constant(Part::Added(reagent)) => {
             format!("added {}", problem.reagents[reagent].formula.name)
         }
-        TermOf::Constant(Part::Held(held)) => {
-            held_words(problem, held)
-        }
+        TermOf::Constant(Part::Held(held)) => held_words(problem, held),
         TermOf::Constant(Part::Precipitated(solid)) => {
             format!("precipitated {}", problem.precipitate_name(solid))
         }

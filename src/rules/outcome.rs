@@ -106,7 +106,8 @@ fn answer(system: System, near: Option<&Solved>, cancel: &AtomicBool) -> Result<
         Ok(others) => others
             .iter()
             .filter(|other| is_settled(&system, &formed, other))
-            .map(|other| (other.ph(), other.ionic_strength)).collect(),
+            .map(|other| (other.ph(), other.ionic_strength))
+            .collect(),
         Err(Failure::Cancelled) => return Err(Failure::Cancelled),
         Err(_) => Vec::new(),
     };

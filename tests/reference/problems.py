@@ -28,7 +28,7 @@ def met(text, problem):
     """Whether an expectation is met, and the value found."""
     text = re.sub(r',\s*source\s+"[^"]*"', "", text)
     subject, relation, right = re.match(r"expect (.*?) (=|<=|>=|<|>|between) (.*)$", text).groups()
-    species = re.sub(r"[\[\]{}]|^(fraction|total|saturation index) ", "", subject)
+    species = re.sub(r"[\[\]{}]|^(fraction|total|saturation index|precipitated) ", "", subject)
     amount = lambda t: quantity(t, species, problem.groups, subject == "alkalinity")
     value = problem.value(subject, "%" in right)
     if relation == "between":
@@ -47,14 +47,18 @@ def closes(text, problem):
     sides, charges = [], {}
     for side, sign in zip(body.split(" = "), (1, -1)):
         total = mp.mpf(0)
-        for coefficient, term in re.findall(r"(\d+(?:/\d+)?)?\s*(\[[^\]]+\]|total \S+|added \S+)", side):
+        for coefficient, term in re.findall(r"(\d+(?:/\d+)?)?\s*(\[[^\]]+\]|total \S+|added \S+|precipitated \S+)", side):
             factor = Fraction(coefficient or 1)
             if term[0] == "[":
                 total += exact(factor) * problem.amounts[term[1:-1]]
                 charges[term[1:-1]] = sign * factor
             else:
                 word, name = term.split()
-                total += exact(factor) * (problem.total(name) if word == "total" else problem.added[name])
+                total += exact(factor) * (
+                    problem.total(name) if word == "total"
+                    else problem.added[name] if word == "added"
+                    else problem.formed.get(name, 0)
+                )
         sides.append(total)
     if kind == "charge":
         ions = {s: z for s, z in problem.charge.items() if z and s in problem.dissolved}

@@ -142,7 +142,7 @@ def gather(path):
 
 
 SUBJECT = re.compile(
-    r"(temperature|activity|ionic strength(?= \d)|total \S+|add \S+|hold .*?(?= =)|balance \S+"
+    r"(temperature|activity|ionic strength(?= \d)|total \S+|add \S+|hold .*?(?= =)|balance \S+|precipitate \S+|saturate with \S+"
     r"|expect .*?(?= (?:=|<=|>=|<|>|between) ))"
 )
 

@@ -192,8 +192,8 @@ def state(problem, solids):
     """The state with these solids there, none negative or not; none where they depend."""
     none = [mp.mpf(0)] * len(problem["species"])
     found = None
-    # Solid after solid, each from the state before it.
-    for size in range(len(solids) + 1):
+    # Those in excess, then solid after solid, each from the state before it.
+    for size in range(len(problem["excess"]), len(solids) + 1):
         found = with_solids(problem, solids[:size], none, found and found[0])
         if found is None:
             return None

@@ -1,7 +1,9 @@
 """Solves one problem for problems.py: mass balances and charge balance in the
 logarithms of the free activities, found in floating point and polished by Newton's
-method in 40-digit arithmetic. It shares nothing with the program."""
+method in 40-digit arithmetic. Of solids that may form every set is tried, and exactly one
+must leave none negative and none supersaturated. It shares nothing with the program."""
 
+import itertools
 import math
 import re
 from fractions import Fraction
@@ -37,6 +39,27 @@ def water(temperature):
     return _iapws._Kw(density, t), a, b
 
 
+def annulled(rows, columns):
+    """Combinations of the columns that each row annuls, a basis of them, in fractions."""
+    lines = [[Fraction(row.get(c, 0)) for c in columns] for row in rows]
+    pivots = []
+    for i in range(len(lines)):
+        pivot = next((j for j in range(len(columns)) if lines[i][j] != 0), None)
+        assert pivot is not None, "solids that depend on one another"
+        lines[i] = [a / lines[i][pivot] for a in lines[i]]
+        for other in range(len(lines)):
+            if other != i:
+                factor = lines[other][pivot]
+                lines[other] = [a - factor * b for a, b in zip(lines[other], lines[i])]
+        pivots.append(pivot)
+    out = []
+    for free in (j for j in range(len(columns)) if j not in pivots):
+        vector = {columns[free]: Fraction(1)}
+        vector |= {columns[p]: -line[free] for line, p in zip(lines, pivots) if line[free]}
+        out.append(vector)
+    return out
+
+
 class Problem:
     """One variant of a file, its numbers read and its species found."""
 
@@ -49,6 +72,7 @@ class Problem:
         ]
         self.temperature, self.model, self.fixed_ionic = mp.mpf("298.15"), "davies", None
         self.totals, self.added, self.holds = {}, {}, {}
+        self.candidates, self.excess = [], []
         self.expects = [t for t in lines if t.startswith("expect ")]
         self.balances = [t for t in lines if t.startswith("balance ")]
         for text in lines:
@@ -57,6 +81,7 @@ class Problem:
         self.pkw, self.a, self.b = water(self.temperature)
         self._find_species(reactions)
         self._split_reagents()
+        self.present = []
         self._hold()
 
     def _read(self, text):
@@ -73,6 +98,10 @@ class Problem:
         elif word == "add":
             name, value = re.match(r"add (\S+)\s+(.*)", text).groups()
             self.added[name] = self.added.get(name, 0) + quantity(value, name, self.groups)
+        elif word == "precipitate":
+            self.candidates.append(text.split()[1])
+        elif word == "saturate":
+            self.excess.append(text.split()[2])
         elif word == "hold":
             name, value = re.match(r"hold (.*?) = (.*)", text).groups()
             self.holds[name] = value
@@ -133,10 +162,17 @@ class Problem:
             main = [c for c in row if c != "H+" and (what.endswith("(g)") or c not in self.totals)]
             assert len(main) == 1, what
             self.released.add(main[0])
-        present = [c for c in self.components if c in self.released or self.totals[c] != 0]
+        solids = [*self.excess, *self.present]
+        self.held += [(self.rows[s][0], -self.rows[s][1], None) for s in solids]
+        brought = {c for s in self.excess for c in self.rows[s][0]}
+        present = [c for c in self.components
+                   if c in self.released or c in brought or self.totals.get(c, 0) != 0]
         self.unknowns = ["H+", *present]
         self.absent = set(self.components) - set(present)
         self.species = [s for s in self.dissolved if not self.absent & set(self.rows[s][0])]
+        # Combinations of the mass balances that no solid takes part in.
+        kept = [c for c in present if c not in self.released]
+        self.balances_kept = annulled([self.rows[s][0] for s in solids], kept)
 
     # -------------------------------------------------------------- equations
 
@@ -170,10 +206,11 @@ class Problem:
             out = [self._difference([(self.charge[s], amounts[s]) for s in self.species], 0, lib)]
         else:
             out = [x[0] + cast(held_ph)]
-        for component in self.unknowns[1:]:
-            if component not in self.released:
-                terms = [(cast(exact(self.rows[s][0].get(component, Fraction(0)))), amounts[s]) for s in self.species]
-                out.append(self._difference(terms, cast(self.totals[component]), lib))
+        for combination in self.balances_kept:
+            share = lambda row: cast(exact(sum(k * row.get(c, 0) for c, k in combination.items()) + Fraction(0)))
+            terms = [(share(self.rows[s][0]), amounts[s]) for s in self.species]
+            total = sum(cast(exact(k) * self.totals.get(c, 0)) for c, k in combination.items())
+            out.append(self._difference(terms, total, lib))
         for row, value, ion in self.held:
             gamma = self.log_gamma(ion, ionic, lib) if ion else 0
             out.append(power(row) - cast(value) - gamma)
@@ -190,6 +227,46 @@ class Problem:
     # ----------------------------------------------------------------- answer
 
     def solve(self):
+        right = []
+        possible = [c for c in self.candidates if not set(self.rows[c][0]) & self.absent]
+        for size in range(len(possible) + 1):
+            for chosen in itertools.combinations(possible, size):
+                self.present = list(chosen)
+                try:
+                    self._hold()
+                    self._solve()
+                except (AssertionError, ArithmeticError, ZeroDivisionError):
+                    if not possible:
+                        raise
+                    continue
+                formed = self._formed()
+                rest = [c for c in possible if c not in chosen]
+                if all(formed[c] > 0 for c in chosen) and all(self.activity(c) < 1 for c in rest):
+                    right.append(chosen)
+        assert len(right) == 1, ("sets of solids that are right", right)
+        self.present = list(right[0])
+        self._hold()
+        self._solve()
+        self.formed = self._formed()
+        return self
+
+    def _formed(self):
+        """What formed of each solid that is there; below zero where it dissolved."""
+        solids = [*self.excess, *self.present]
+        if not solids:
+            return {}
+        rows = [c for c in self.unknowns[1:] if c not in self.released]
+        matrix = mp.matrix(len(rows), len(solids))
+        missing = mp.matrix(len(rows), 1)
+        for i, component in enumerate(rows):
+            missing[i] = self.totals.get(component, 0) - self.dissolved_total(component)
+            for k, solid in enumerate(solids):
+                matrix[i, k] = exact(self.rows[solid][0].get(component, Fraction(0)))
+        found = mp.lu_solve(matrix.T * matrix, matrix.T * missing)
+        assert mp.norm(matrix * found - missing) < mp.mpf("1e-25"), "does not close"
+        return dict(zip(solids, found))
+
+    def _solve(self):
         best = None
         for ph in (7, 4, 10, 2, 12.5, 5.5, 8.5):
             start = [-float(self.held_ph if self.held_ph is not None else ph)]
@@ -212,7 +289,6 @@ class Problem:
         self.ph = -self.x[0]
         self.amounts = {s: amounts.get(s, mp.mpf(0)) for s in self.dissolved}
         self.ionic = sum(self.charge[s] ** 2 * v for s, v in self.amounts.items()) / 2
-        return self
 
     def polish(self, x, held_ph=None):
         n, step = len(x), mp.mpf("1e-18")
@@ -237,6 +313,10 @@ class Problem:
         return mp.mpf(10) ** (log_k + sum(exact(k) * logs[c] for c, k in row.items()))
 
     def total(self, component):
+        formed = sum(exact(self.rows[s][0].get(component, Fraction(0))) * self.formed[s] for s in self.present)
+        return self.dissolved_total(component) + formed
+
+    def dissolved_total(self, component):
         return sum(exact(self.rows[s][0].get(component, Fraction(0))) * v for s, v in self.amounts.items())
 
     def buffer_capacity(self):
@@ -268,10 +348,12 @@ class Problem:
             return self.activity(subject[1:-1])
         if subject.endswith("(g)") and not word:
             return self.activity(subject)
+        if word == "precipitated":
+            return self.formed.get(name, mp.mpf(0))
         if word == "saturation index":
             return mp.log10(self.activity(name))
         if word == "total":
             return self.total(name)
         assert word == "fraction", subject
         (component, share), = [(c, k) for c, k in self.rows[name][0].items() if c != "H+"]
-        return self.amounts[name] * exact(share) / self.total(component)
+        return self.amounts[name] * exact(share) / self.dissolved_total(component)

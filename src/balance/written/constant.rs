@@ -46,7 +46,8 @@ impl<'a, E: Exact> Constants<'a, E> {
             }
         }
         // What did not form, or may not have, may be left out.
-        let is_written = |part: Part| terms.iter().any(|(_, _, out)| out.iter().any(|o| o.0 == part));
+        let is_written =
+            |part: Part| terms.iter().any(|(_, _, out)| out.iter().any(|o| o.0 == part));
         let mut totals = Vec::new();
         let mut implied = Vec::new();
         for component in 0..components {

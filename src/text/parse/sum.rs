@@ -151,10 +151,12 @@ pub(super) fn terms<'s>() -> impl Rule<'s, Vec<Term>> {
     let precipitated = word("precipitated", Expect::Nothing)
         .ignore_then(name(Expect::Formula))
         .map(TermKind::Precipitated);
-    let counted = fraction()
-        .labelled(Expect::Nothing)
-        .or_not()
-        .then(choice((species, total, added, precipitated)));
+    let counted = fraction().labelled(Expect::Nothing).or_not().then(choice((
+        species,
+        total,
+        added,
+        precipitated,
+    )));
     let amount = unsigned_quantity().map(|amount| (None, TermKind::Amount(amount)));
     let term = choice((counted, amount))
         .labelled(Expect::Term)
