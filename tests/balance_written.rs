@@ -104,6 +104,7 @@ fn wrong(system: &System, of: &str, text: &str) -> Vec<String> {
         }
         TermOf::Constant(Part::Added(r)) => format!("added {}", system.reagents[*r]),
         TermOf::Constant(Part::Held(h)) => format!("held {}", system.held[*h]),
+        TermOf::Constant(Part::Precipitated(k)) => format!("precipitated {k}"),
     };
     differences
         .iter()

@@ -47,6 +47,8 @@ const PIECES: &[&str] = &[
     "case \"typed\"\n    add NaOH 1 mmol/L\n",
     "balance charge\n    [H+] = [OH-]\n",
     "component Cl-\n",
+    "precipitate CaCO3(s)\n",
+    "saturate with Mg(OH)2(s)\n",
     "    ",
     "without expect pH\n",
 ];

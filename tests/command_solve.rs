@@ -38,6 +38,41 @@ expect charge imbalance between -5 % and 5 %
     insta::assert_snapshot!(session(&[("tank.lyate", text)], &arguments));
 }
 
+/// One solid forms, one stays away, one is not asked about; and one is there in excess.
+#[test]
+fn solids_that_form_and_dissolve() {
+    let text = "\
+# Lime dosing by invented figures.
+problem \"Softener, second stage\"
+use aqueous
+component CO3^2-, Ca^2+, Mg^2+, Na+, Cl-
+reaction CaCO3(s) <=> Ca^2+ + CO3^2-, pKsp = 8.48, source \"plant constants\"
+reaction Mg(OH)2(s) <=> Mg^2+ + 2 OH-, pKsp = 11.15, source \"plant constants\"
+reaction MgCO3·3H2O(s) <=> Mg^2+ + CO3^2- + 3 H2O, pKsp = 4.67, source \"plant constants\"
+add CaCl2 1.5 mmol/L
+add MgCl2 0.3 mmol/L
+add NaHCO3 3 mmol/L
+add NaOH 1.5 mmol/L
+precipitate CaCO3(s)
+precipitate Mg(OH)2(s)
+balance Ca^2+
+    [Ca^2+] + precipitated CaCO3(s) = added CaCl2
+expect precipitated CaCO3(s) > 100 mg/L
+
+case \"marble filter\"
+    add CaCl2 0.1 mmol/L
+    saturate with CaCO3(s)
+    without balance Ca^2+
+    hold CO2(g) = 0.01 atm
+    expect precipitated CaCO3(s) < 0 mg/L
+";
+    insta::assert_snapshot!(session(&[("softener.lyate", text)], &["solve", "softener.lyate"]));
+    let arguments = ["solve", "softener.lyate", "--case", "marble filter", "--output", "json"];
+    insta::assert_snapshot!(session(&[("softener.lyate", text)], &arguments));
+    let arguments = ["derive", "softener.lyate", "--output", "latex"];
+    insta::assert_snapshot!(session(&[("softener.lyate", text)], &arguments));
+}
+
 #[test]
 fn what_cannot_be_solved_says_why() {
     insta::assert_snapshot!(session(

@@ -109,6 +109,7 @@ impl System {
                 Part::Total(c) => format!("total {}", self.stoichiometry.components[*c]),
                 Part::Added(r) => format!("added {}", self.reagents[*r]),
                 Part::Held(h) => format!("held {}", self.held[*h]),
+                Part::Precipitated(k) => format!("precipitated {k}"),
             };
             push(*coefficient, text, false);
         }
