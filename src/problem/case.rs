@@ -89,6 +89,9 @@ pub fn resolve(statements: &[Written], merging: Vec<Defect>, scope: Arc<Scope>) 
         let unsupported = match written.statement() {
             Statement::Curve { .. } => "curve",
             Statement::Hold { by: Some(_), .. } => "hold … by",
+            Statement::Blend { .. } => "blend",
+            Statement::Add { stock: Some(_), .. } => "add … of",
+            Statement::Expect { confidence: Some(_), .. } => "confidence",
             _ => continue,
         };
         let at = written.whole();
@@ -272,6 +275,7 @@ fn states_a_problem(statement: &Statement) -> bool {
         Statement::Component { .. }
             | Statement::Total { .. }
             | Statement::Add { .. }
+            | Statement::Blend { .. }
             | Statement::Hold { .. }
             | Statement::Precipitate { .. }
             | Statement::Saturate { .. }

@@ -55,6 +55,7 @@ pub enum Key {
     Solid(String),
     Group(String),
     Curve,
+    Blend,
 }
 
 pub fn key(statement: &Statement) -> Option<Key> {
@@ -73,6 +74,7 @@ pub fn key(statement: &Statement) -> Option<Key> {
         }
         Statement::Group { symbol, .. } => Key::Group(symbol.value.clone()),
         Statement::Curve { .. } => Key::Curve,
+        Statement::Blend { .. } => Key::Blend,
         Statement::Reaction(reaction) => {
             let mut names: Vec<_> =
                 reaction.left.iter().chain(&reaction.right).map(|m| canonical(&m.name)).collect();
@@ -126,6 +128,7 @@ fn removed_key(without: &Without) -> Key {
         Without::Balance(kind) => Key::Balance(balance_key(kind)),
         Without::Precipitate(name) | Without::Saturate(name) => Key::Solid(canonical(name)),
         Without::IonicStrength => Key::IonicStrength,
+        Without::Blend => Key::Blend,
     }
 }
 
@@ -189,7 +192,8 @@ pub fn in_force<'a>(base: &'a Section, case: Option<&'a Section>) -> InForce<'a>
             found.defects.push(Defect { at, kind: DefectKind::NothingToRemove });
         }
     }
-    let is_source = |key: &Key| matches!(key, Key::Total(_) | Key::Add(_) | Key::Hold(_));
+    let is_source =
+        |key: &Key| matches!(key, Key::Total(_) | Key::Add(_) | Key::Hold(_) | Key::Blend);
     // Whether a solid forms or is in excess is another source in either direction.
     found.other_sources = from_nothing
         || replaced.keys().any(|key| matches!(key, Key::Solid(_)))
