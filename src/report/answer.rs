@@ -56,6 +56,7 @@ pub fn conditions(problem: &Problem) -> String {
         ActivityKind::ExtendedDebyeHuckel => "extended Debye–Hückel activities",
         ActivityKind::Guntelberg => "Güntelberg activities",
         ActivityKind::Davies => "Davies activities",
+        ActivityKind::Pitzer => "Pitzer activities",
     };
     format!("{}, {activities}", celsius(problem.kelvin))
 }
