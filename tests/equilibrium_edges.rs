@@ -240,7 +240,13 @@ fn coefficients_past_machine_words_do_no_harm() {
     let denominators = [(1, 999_999_937), (1, 999_999_929), (1, 999_999_893)];
     for (n, d) in denominators {
         let coefficient = Rational64::new(n, d);
-        list.push(Species { row: vec![(2, coefficient)], ln_k: -9.0, water: 0.0, charge: 0, ion_size: 0.0 });
+        list.push(Species {
+            row: vec![(2, coefficient)],
+            ln_k: -9.0,
+            water: 0.0,
+            charge: 0,
+            ion_size: 0.0,
+        });
     }
     let answer = solved(&system(list, &[0.0, 0.01, 0.02]));
     assert!(answer.residual < 1e-12, "{}", answer.residual);

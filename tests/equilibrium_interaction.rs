@@ -168,8 +168,7 @@ fn water(random: &mut Random) -> System {
     }
     let charges: Vec<i64> = std::iter::once(1).chain(ions.iter().map(|ion| ion.0)).collect();
     let mut names = vec!["H+", "OH-"];
-    let mut list =
-        vec![species(&[(0, 1)], 0.0, &charges), species(&[(0, -1)], -13.995, &charges)];
+    let mut list = vec![species(&[(0, 1)], 0.0, &charges), species(&[(0, -1)], -13.995, &charges)];
     list[1].water = 1.0;
     for (j, ion) in ions.iter().enumerate() {
         names.push(ion.1);
@@ -193,9 +192,8 @@ fn water(random: &mut Random) -> System {
         *total = 10f64.powf(random.uniform(-5.0, 0.5));
     }
     // Most charges carried by other ions, some by strong acid or base.
-    let charge = |totals: &[f64]| -> f64 {
-        (1..totals.len()).map(|j| charges[j] as f64 * totals[j]).sum()
-    };
+    let charge =
+        |totals: &[f64]| -> f64 { (1..totals.len()).map(|j| charges[j] as f64 * totals[j]).sum() };
     if random.chance(0.7) {
         let left = charge(&totals);
         let j = 1 + random.below(ions.len());
@@ -279,7 +277,7 @@ impl Survey {
 #[test]
 fn waters_and_brines_solve() {
     let mut survey = Survey::new("waters and brines");
-    for seed in 0..count(300) {
+    for seed in 0..count(100) {
         let system = water(&mut Random::new(seed));
         survey.take(seed, &system, run(&system, None));
     }
@@ -289,7 +287,7 @@ fn waters_and_brines_solve() {
 #[test]
 fn a_near_answer_leads_to_the_same_state() {
     let mut survey = Survey::new("from a near answer");
-    for seed in 0..count(100) {
+    for seed in 0..count(30) {
         let random = &mut Random::new(seed);
         let system = water(random);
         let mut near = system.clone();
@@ -309,7 +307,7 @@ fn a_near_answer_leads_to_the_same_state() {
 #[test]
 fn held_values_solve() {
     let mut survey = Survey::new("held values");
-    for seed in 0..count(100) {
+    for seed in 0..count(45) {
         let random = &mut Random::new(seed);
         let mut system = water(random);
         let Ok(free) = run(&system, None) else { continue };
@@ -374,7 +372,7 @@ fn chemistry_like_problems_solve() {
         (-1, &["Cl-", "HSO4-", "HCO3-", "NO3-", "F-", "Br-", "ClO4-", "CH3COO-", "H2PO4-"][..]),
         (-2, &["SO4^2-", "CO3^2-"][..]),
     ];
-    for seed in 0..count(200) {
+    for seed in 0..count(50) {
         let random = &mut Random::new(seed);
         let components = 2 + random.below(7);
         let most = 5 + random.below(36);
@@ -474,7 +472,7 @@ fn compare(
 #[test]
 fn derivatives_are_the_differences_of_solves() {
     let mut compared = 0;
-    for seed in 0..40 {
+    for seed in 0..16 {
         let random = &mut Random::new(seed);
         let mut system = water(random);
         match seed % 4 {
@@ -531,5 +529,5 @@ fn derivatives_are_the_differences_of_solves() {
             });
         }
     }
-    assert!(compared > 25, "{compared}");
+    assert!(compared > 10, "{compared}");
 }

@@ -174,7 +174,13 @@ fn a_ph_that_cannot_move_has_no_buffer_capacity() {
     for entries in [&[(2, 1)][..], &[(0, 1), (2, 1)]] {
         let held = row(entries);
         let supply = held.clone();
-        system.fixed.push(Fixed { row: held, ln_value: -10.0, water: 0.0, concentration_of: None, supply });
+        system.fixed.push(Fixed {
+            row: held,
+            ln_value: -10.0,
+            water: 0.0,
+            concentration_of: None,
+            supply,
+        });
     }
     let answer = run(&system, None);
     assert_eq!(buffer_capacity(&system, &answer), None);

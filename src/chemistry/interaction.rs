@@ -96,13 +96,8 @@ impl Interaction {
             }
         }
         let at = |name: &str| places.get(name).map_or(&[][..], Vec::as_slice);
-        let mut out = Self {
-            a_phi,
-            charges,
-            pairs: Vec::new(),
-            thirds: Vec::new(),
-            triples: Vec::new(),
-        };
+        let mut out =
+            Self { a_phi, charges, pairs: Vec::new(), thirds: Vec::new(), triples: Vec::new() };
         for binary in binaries() {
             for &c in at(binary.ions.0) {
                 for &a in at(binary.ions.1) {
@@ -303,6 +298,15 @@ pub fn known(formula: &Formula) -> Option<&'static str> {
 pub fn binary(one: &Formula, other: &Formula) -> Option<&'static Binary> {
     let (one, other) = (known(one)?, known(other)?);
     binaries().find(|b| b.ions == (one, other) || b.ions == (other, one))
+}
+
+/// Whether a species is one cation and one anion put together, nothing added or lost.
+pub fn is_pair(pair: &Formula, cation: &Formula, anion: &Formula) -> bool {
+    let of = |formula: &Formula, atom| formula.atoms.get(atom).copied().unwrap_or_default();
+    let both = || cation.atoms.keys().chain(anion.atoms.keys());
+    pair.charge == cation.charge.saturating_add(anion.charge)
+        && both().all(|atom| pair.atoms.contains_key(atom))
+        && pair.atoms.iter().all(|(atom, n)| of(cation, atom) + of(anion, atom) == *n)
 }
 
 /// By charge.

@@ -128,15 +128,13 @@ fn fixed(problem: &Problem, held: &Held) -> Option<Fixed> {
             concentration_of: None,
             supply: supply(problem, held.releases?),
         },
-        HeldWhat::Concentration { species, value } => {
-            Fixed {
-                row: row_of(species)?,
-                ln_value: value.ln() - ln_formation(problem, species),
-                water: water_taken(problem, species),
-                concentration_of: Some(scope.row_of(species)?),
-                supply: supply(problem, held.releases?),
-            }
-        }
+        HeldWhat::Concentration { species, value } => Fixed {
+            row: row_of(species)?,
+            ln_value: value.ln() - ln_formation(problem, species),
+            water: water_taken(problem, species),
+            concentration_of: Some(scope.row_of(species)?),
+            supply: supply(problem, held.releases?),
+        },
     })
 }
 

@@ -129,7 +129,8 @@ fn against(search: &Search, now: &Coefficients) -> Vec<f64> {
 
 /// How far the rows and the coefficients are from closing.
 fn open(search: &Search, residue: &[f64]) -> f64 {
-    let most = residue.iter().fold(0.0f64, |most, r| if r.is_nan() { 1.0 } else { most.max(r.abs()) });
+    let most =
+        residue.iter().fold(0.0f64, |most, r| if r.is_nan() { 1.0 } else { most.max(r.abs()) });
     if search.point.ln_scale != 0.0 {
         return 1.0;
     }

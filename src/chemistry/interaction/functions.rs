@@ -77,11 +77,7 @@ fn integral(x: f64) -> [f64; 3] {
     let d = 4.0 + q;
     let p = C[1] + C[3] * power;
     let rise = C[3] * C[3] * power;
-    [
-        x / d,
-        x / d + x * q * p / (d * d),
-        x * q * (p - p * p + rise + 2.0 * q * p * p / d) / (d * d),
-    ]
+    [x / d, x / d + x * q * p / (d * d), x * q * (p - p * p + rise + 2.0 * q * p * p / d) / (d * d)]
 }
 
 #[cfg(test)]
@@ -113,7 +109,8 @@ mod tests {
     /// ln y, which converges fast here.
     #[test]
     fn the_closed_form_is_near_the_integral() {
-        for (x, within) in [(0.5, 0.003), (2.0, 0.003), (5.0, 0.003), (10.0, 0.003), (20.0, 0.003)] {
+        for (x, within) in [(0.5, 0.003), (2.0, 0.003), (5.0, 0.003), (10.0, 0.003), (20.0, 0.003)]
+        {
             let steps = 4000;
             let (low, high) = (1e-8f64.ln(), 60f64.ln());
             let width = (high - low) / f64::from(steps);

@@ -27,7 +27,7 @@
 
 use crate::chemistry::activity::ActivityKind;
 use crate::chemistry::formula::Formula;
-use crate::chemistry::interaction::binary;
+use crate::chemistry::interaction::{binary, is_pair};
 use crate::problem::scope::{PROTON, Scope};
 use crate::rules::catalogue::rule;
 use crate::rules::context::Context;
@@ -62,15 +62,6 @@ fn pairs(scope: &Scope) -> Vec<String> {
     let formulas: Vec<&Formula> =
         scope.dissolved.iter().map(|&s| scope.species[s].as_ref()).collect();
     let proton = scope.species[PROTON].as_ref();
-    let made_of = |pair: &Formula, cation: &Formula, anion: &Formula| {
-        let sum = |atom: &_| {
-            let of = |f: &Formula| f.atoms.get(atom).copied().unwrap_or_default();
-            of(cation) + of(anion)
-        };
-        pair.charge == cation.charge + anion.charge
-            && pair.atoms.iter().all(|(atom, n)| sum(atom) == *n)
-            && cation.atoms.keys().chain(anion.atoms.keys()).all(|a| pair.atoms.contains_key(a))
-    };
     let cations = || formulas.iter().filter(|f| f.charge > 0 && f.name != proton.name);
     let anions = || formulas.iter().filter(|f| f.charge < 0);
     formulas
@@ -78,7 +69,7 @@ fn pairs(scope: &Scope) -> Vec<String> {
         .filter(|pair| {
             cations().any(|cation| {
                 anions().any(|anion| {
-                    made_of(pair, cation, anion) && binary(cation, anion).is_some()
+                    is_pair(pair, cation, anion) && binary(cation, anion).is_some()
                 })
             })
         })

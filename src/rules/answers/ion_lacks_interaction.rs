@@ -4,6 +4,9 @@
 //! Here stand only those that give back published activity coefficients. An ion without any
 //! keeps the long-range term alone, and a pair without any adds nothing of its own.
 //!
+//! Some pairs have none because an ion pair stands for them: Mg^2+ and Ca^2+ with CO3^2-, and
+//! Mg^2+ with OH-. They are not told of where the file has the reaction of that pair.
+//!
 //! In dilute water that hardly matters. In a brine the activity coefficient of such an ion can
 //! be wrong by half, and with it whatever the ion takes part in. Told are ions that hold a
 //! hundredth of the ionic strength or of a component, and pairs in which the other ion holds a
@@ -30,7 +33,7 @@
 
 use crate::chemistry::activity::ActivityKind;
 use crate::chemistry::formula::Formula;
-use crate::chemistry::interaction::{binary, known};
+use crate::chemistry::interaction::{binary, is_pair, known};
 use crate::equilibrium::quantities::Solved;
 use crate::problem::model::Problem;
 use crate::problem::scope::PROTON;
@@ -83,6 +86,7 @@ fn missing(problem: &Problem, solved: &Solved) -> Vec<String> {
                 unlike && once && other.share >= MET && known(other.formula).is_some()
             })
             .filter(|other| binary(ion.formula, other.formula).is_none())
+            .filter(|other| !associate(problem, ion.formula, other.formula))
             .map(|other| other.formula.name.clone())
             .collect();
         if !others.is_empty() {
@@ -90,6 +94,12 @@ fn missing(problem: &Problem, solved: &Solved) -> Vec<String> {
         }
     }
     words
+}
+
+/// Whether the attraction of two ions is told by an ion pair in place of parameters.
+fn associate(problem: &Problem, one: &Formula, other: &Formula) -> bool {
+    let scope = &problem.scope;
+    scope.dissolved.iter().any(|&s| is_pair(&scope.species[s], one, other))
 }
 
 struct Ion<'a> {

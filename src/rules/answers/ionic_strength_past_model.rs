@@ -68,7 +68,7 @@ fn find(context: &Context, found: &mut Vec<Finding<Place>>) {
     );
     let mut finding = RULE.at(at, message);
     let past_all = (!pitzer && reaches(problem, solved)).then_some(ActivityKind::Pitzer);
-    match next(value).or(past_all) {
+    match next(value, pitzer).or(past_all) {
         Some(next) => {
             let name = next.name();
             if problem.activity_at == Some(at) {
@@ -86,10 +86,12 @@ fn find(context: &Context, found: &mut Vec<Finding<Place>>) {
     found.push(finding);
 }
 
-/// The model of the least range that still reaches this ionic strength.
-fn next(ionic_strength: f64) -> Option<ActivityKind> {
+/// The model of the least range that still reaches this ionic strength; beside Pitzer's
+/// method Davies is the only one to turn to.
+fn next(ionic_strength: f64, pitzer: bool) -> Option<ActivityKind> {
     [ActivityKind::ExtendedDebyeHuckel, ActivityKind::Davies]
         .into_iter()
+        .filter(|kind| !pitzer || *kind == ActivityKind::Davies)
         .find(|kind| kind.range_limit().is_some_and(|limit| ionic_strength <= limit * TOUCHES))
 }
 
