@@ -88,6 +88,9 @@ pub fn resolve(statements: &[Written], merging: Vec<Defect>, scope: Arc<Scope>) 
             Statement::Saturate { .. } => "saturate with",
             Statement::Curve { .. } => "curve",
             Statement::Hold { by: Some(_), .. } => "hold … by",
+            Statement::Blend { .. } => "blend",
+            Statement::Add { stock: Some(_), .. } => "add … of",
+            Statement::Expect { confidence: Some(_), .. } => "confidence",
             _ => continue,
         };
         let at = written.whole();
@@ -271,6 +274,7 @@ fn states_a_problem(statement: &Statement) -> bool {
         Statement::Component { .. }
             | Statement::Total { .. }
             | Statement::Add { .. }
+            | Statement::Blend { .. }
             | Statement::Hold { .. }
             | Statement::Expect { .. }
             | Statement::Balance { .. }
