@@ -119,7 +119,8 @@ fn names_and_ranges() {
     assert_eq!(ActivityKind::nearest("Davis"), Some(ActivityKind::Davies));
     assert_eq!(ActivityKind::nearest("Debye–Hückel"), Some(ActivityKind::DebyeHuckel));
     assert_eq!(ActivityKind::nearest("debye hueckel"), Some(ActivityKind::DebyeHuckel));
-    assert_eq!(ActivityKind::nearest("pitzer"), None);
+    assert_eq!(ActivityKind::nearest("Pitzer equations"), None);
+    assert_eq!(ActivityKind::nearest("pitser"), Some(ActivityKind::Pitzer));
     assert_eq!(ActivityKind::Davies.range_limit(), Some(0.5));
     assert_eq!(ActivityKind::Ideal.range_limit(), None);
 }

@@ -5,8 +5,8 @@ mod equilibrium_support;
 
 use std::sync::atomic::AtomicBool;
 
-use equilibrium_support::{DAVIES, IDEAL, LN_10, hold_ph, row, species};
-use lyate::chemistry::activity::ActivityModel;
+use equilibrium_support::{DAVIES, IDEAL, LN_10, by_ionic_strength, hold_ph, row, species};
+use lyate::chemistry::activity::ActivityKind;
 use lyate::equilibrium::sensitivity::Sensitivity;
 use lyate::equilibrium::solve::solve;
 use lyate::equilibrium::system::{Answer, Failure, Fixed, IonicStrength, Species, System};
@@ -86,6 +86,7 @@ fn a_component_without_a_total_takes_its_species_along() {
     held.fixed.push(Fixed {
         row: gas.clone(),
         ln_value: 1e-3f64.ln(),
+        water: 0.0,
         concentration_of: None,
         supply: gas,
     });
@@ -199,11 +200,12 @@ fn fractional_coefficients_are_exact() {
     // B is half a component: the total is in halves.
     let mut list = water(&charges);
     list.push(species(&[(1, 1)], 0.0, &charges));
-    list.push(Species { row: vec![(1, half)], ln_k: 2.0, charge: 0, ion_size: 0.0 });
+    list.push(Species { row: vec![(1, half)], ln_k: 2.0, water: 0.0, charge: 0, ion_size: 0.0 });
     list.push(Species {
         row: vec![(0, Rational64::new(1, 3)), (1, Rational64::new(-1, 6))],
         ln_k: -3.0,
         charge: 0,
+        water: 0.0,
         ion_size: 0.0,
     });
     let mut problem = system(list, &[0.001, 0.05]);
@@ -216,6 +218,7 @@ fn fractional_coefficients_are_exact() {
     problem.fixed.push(Fixed {
         row: vec![(1, half)],
         ln_value: -4.0,
+        water: 0.0,
         concentration_of: None,
         supply: vec![(1, half)],
     });
@@ -238,7 +241,13 @@ fn coefficients_past_machine_words_do_no_harm() {
     let denominators = [(1, 999_999_937), (1, 999_999_929), (1, 999_999_893)];
     for (n, d) in denominators {
         let coefficient = Rational64::new(n, d);
-        list.push(Species { row: vec![(2, coefficient)], ln_k: -9.0, charge: 0, ion_size: 0.0 });
+        list.push(Species {
+            row: vec![(2, coefficient)],
+            ln_k: -9.0,
+            water: 0.0,
+            charge: 0,
+            ion_size: 0.0,
+        });
     }
     let answer = solved(&system(list, &[0.0, 0.01, 0.02]));
     assert!(answer.residual < 1e-12, "{}", answer.residual);
@@ -249,6 +258,7 @@ fn coefficients_past_machine_words_do_no_harm() {
         row: row(&[(1, i64::MAX), (0, extreme)]),
         ln_k: 0.0,
         charge: 0,
+        water: 0.0,
         ion_size: 0.0,
     });
     // Whatever comes out, it comes out.
@@ -273,7 +283,7 @@ fn numbers_that_are_none_fail_and_nothing_more() {
     let charges = [1, 0];
     for bad in [f64::NAN, f64::INFINITY, f64::NEG_INFINITY, 1e308, -1e308, 5e-324] {
         for place in 0..4 {
-            for activity in [IDEAL, DAVIES, ActivityModel { a: f64::NAN, ..DAVIES }] {
+            for activity in [IDEAL, DAVIES, by_ionic_strength(ActivityKind::Davies, f64::NAN)] {
                 let mut list = water(&charges);
                 list.push(species(&[(1, 1)], 0.0, &charges));
                 list.push(species(&[(1, 2), (0, 1)], 5.0, &charges));
@@ -318,6 +328,7 @@ fn everything_held_leaves_only_amounts() {
     problem.fixed.push(Fixed {
         row: held.clone(),
         ln_value: 0.5f64.ln(),
+        water: 0.0,
         concentration_of: None,
         supply: held,
     });

@@ -50,6 +50,7 @@ fn system(problem: &Problem) -> System {
         row: member.row.iter().map(|(j, n)| (*j, Rational64::from_integer(*n))).collect(),
         ln_k: member.log_k * LN_10,
         charge: member.charge,
+        water: 0.0,
         ion_size: 0.0,
     });
     let kind = if problem.davies { ActivityKind::Davies } else { ActivityKind::Ideal };
@@ -58,7 +59,7 @@ fn system(problem: &Problem) -> System {
         totals: problem.totals.clone(),
         fixed: Vec::new(),
         candidates: Vec::new(),
-        activity: ActivityModel { kind, a: 0.5098, b: 0.3284 },
+        activity: ActivityModel { kind, a: 0.5098, b: 0.3284 }.into(),
         ionic_strength: IonicStrength::Computed,
     }
 }

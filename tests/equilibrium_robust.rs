@@ -198,7 +198,8 @@ fn hold_solved(
     held.fixed.push(Fixed {
         row: species.row.clone(),
         ln_value: ln_c - species.ln_k + if by_concentration { 0.0 } else { ln_gamma },
-        concentration_of: by_concentration.then_some((species.charge, species.ion_size)),
+        water: 0.0,
+        concentration_of: by_concentration.then_some(i),
         supply,
     });
     (held, amount)
@@ -370,6 +371,7 @@ fn dependent_rows_and_held_values_are_named() {
         held.fixed.push(Fixed {
             row: held_row.clone(),
             ln_value: -10.0,
+            water: 0.0,
             concentration_of: None,
             supply: held_row,
         });

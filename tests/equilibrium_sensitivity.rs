@@ -79,7 +79,8 @@ fn derivatives_are_the_differences_of_solves() {
             system.fixed.push(Fixed {
                 row: held.row,
                 ln_value,
-                concentration_of: Some((held.charge, held.ion_size)),
+                water: 0.0,
+                concentration_of: Some(i),
                 supply: row(&[(0, -i64::from(held.charge)), (j, 1)]),
             });
         }
@@ -174,7 +175,13 @@ fn a_ph_that_cannot_move_has_no_buffer_capacity() {
     for entries in [&[(2, 1)][..], &[(0, 1), (2, 1)]] {
         let held = row(entries);
         let supply = held.clone();
-        system.fixed.push(Fixed { row: held, ln_value: -10.0, concentration_of: None, supply });
+        system.fixed.push(Fixed {
+            row: held,
+            ln_value: -10.0,
+            water: 0.0,
+            concentration_of: None,
+            supply,
+        });
     }
     let answer = run(&system, None);
     assert_eq!(buffer_capacity(&system, &answer), None);

@@ -30,7 +30,8 @@ fn phosphate(sodium: f64, held: f64) -> System {
         fixed: vec![Fixed {
             row: row(&[(0, 1), (1, 1)]),
             ln_value: held.ln() - 12.35 * LN_10,
-            concentration_of: Some((-2, 4.0)),
+            water: 0.0,
+            concentration_of: Some(3),
             // With counter-ions that the charge balance does not see: z of HPO4^2- off.
             supply: row(&[(0, 3), (1, 1)]),
         }],

@@ -1,6 +1,7 @@
-//! Activity models: the activity coefficient of an ion from the ionic strength.
+//! Activity models: their names and ranges, and the activity coefficient of an ion from
+//! the ionic strength.
 
-use super::water;
+use super::{interaction, water};
 
 /// A model with the Debye–Hückel constants of its temperature built in.
 #[derive(Clone, Copy, Debug, PartialEq)]
@@ -19,15 +20,18 @@ pub enum ActivityKind {
     Guntelberg,
     #[default]
     Davies,
+    /// Ion interactions: see [`interaction`].
+    Pitzer,
 }
 
 impl ActivityKind {
-    pub const ALL: [ActivityKind; 5] = [
+    pub const ALL: [ActivityKind; 6] = [
         ActivityKind::Ideal,
         ActivityKind::DebyeHuckel,
         ActivityKind::ExtendedDebyeHuckel,
         ActivityKind::Guntelberg,
         ActivityKind::Davies,
+        ActivityKind::Pitzer,
     ];
 
     /// As it is written in a problem file.
@@ -38,6 +42,7 @@ impl ActivityKind {
             ActivityKind::ExtendedDebyeHuckel => "extended-debye-huckel",
             ActivityKind::Guntelberg => "guntelberg",
             ActivityKind::Davies => "davies",
+            ActivityKind::Pitzer => "pitzer",
         }
     }
 
@@ -68,6 +73,7 @@ impl ActivityKind {
             ActivityKind::DebyeHuckel => Some(0.005),
             ActivityKind::ExtendedDebyeHuckel | ActivityKind::Guntelberg => Some(0.1),
             ActivityKind::Davies => Some(0.5),
+            ActivityKind::Pitzer => Some(interaction::REACH),
         }
     }
 }
@@ -81,7 +87,8 @@ impl ActivityModel {
     /// ln γ of an ion and its derivative by the ionic strength.
     ///
     /// `ion_size` in ångström counts for the extended model alone. Neutral species have
-    /// γ = 1. Ionic strength in mol/kg, or mol/L where the file is per litre.
+    /// γ = 1. Ionic strength in mol/kg, or mol/L where the file is per litre. Of Pitzer's
+    /// method it is the long-range term, which alone an ion without parameters has.
     pub fn ln_gamma(&self, charge: i32, ion_size: f64, ionic_strength: f64) -> (f64, f64) {
         let z2 = f64::from(charge).powi(2);
         if z2 == 0.0 || self.kind == ActivityKind::Ideal {
@@ -101,6 +108,12 @@ impl ActivityModel {
             }
             ActivityKind::Davies => {
                 (root / (1.0 + root) - 0.3 * i, (1.0 + root).powi(-2) - 0.6 * root)
+            }
+            ActivityKind::Pitzer => {
+                // Aφ is a third of A.
+                let d = 1.0 + 1.2 * root;
+                let f = (root / d + d.ln() / 0.6) / 3.0;
+                (f, (d.powi(-2) + 2.0 / d) / 3.0)
             }
         };
         (scale * f, scale * df / (2.0 * root))

@@ -4,6 +4,7 @@ pub mod activity;
 pub mod constant;
 pub mod element;
 pub mod formula;
+pub mod interaction;
 pub mod ion_size;
 pub mod quantity;
 pub mod unit;

@@ -5,15 +5,17 @@
 //! order written; species are the rows of its stoichiometry.
 
 use std::f64::consts::LN_10;
+use std::sync::Arc;
 
 use num_rational::Rational64;
-use num_traits::One;
+use num_traits::{One, ToPrimitive};
 
-use super::system::{Candidate, Fixed, IonicStrength, Row, Species, System};
+use super::system::{Activity, Candidate, Fixed, IonicStrength, Row, Species, System};
 use crate::chemistry::activity::{ActivityKind, ActivityModel};
+use crate::chemistry::interaction::Interaction;
 use crate::chemistry::ion_size::ion_size;
 use crate::problem::model::{Held, HeldWhat, Presence, Problem, Solid};
-use crate::problem::scope::PROTON;
+use crate::problem::scope::{PROTON, WATER};
 
 pub fn system(problem: &Problem) -> System {
     let scope = &problem.scope;
@@ -25,6 +27,7 @@ pub fn system(problem: &Problem) -> System {
         .map(|(row, &s)| Species {
             row: row.row.clone(),
             ln_k: ln_formation(problem, s),
+            water: water_taken(problem, s),
             charge: row.charge,
             // The table is only asked where the model takes sizes.
             ion_size: match problem.activity {
@@ -51,12 +54,40 @@ pub fn system(problem: &Problem) -> System {
             .solids_that_are(Presence::Forms)
             .filter_map(|solid| candidate(problem, solid))
             .collect(),
-        activity: ActivityModel::new(problem.activity, problem.kelvin),
+        activity: activity(problem),
         ionic_strength: match problem.ionic_strength {
             Some(value) => IonicStrength::Given(value),
             None => IonicStrength::Computed,
         },
     }
+}
+
+fn activity(problem: &Problem) -> Activity {
+    match problem.activity {
+        ActivityKind::Pitzer => {
+            let species = &problem.scope.species;
+            let dissolved = problem.scope.dissolved.iter().map(|&s| species[s].as_ref());
+            Activity::ByComposition(Arc::new(Interaction::new(dissolved, problem.kelvin)))
+        }
+        kind => ActivityModel::new(kind, problem.kelvin).into(),
+    }
+}
+
+/// Molecules of water that the formation of a species from the components takes up; zero
+/// where the model leaves the activity of water at one.
+pub fn water_taken(problem: &Problem, species: usize) -> f64 {
+    if problem.activity != ActivityKind::Pitzer {
+        return 0.0;
+    }
+    let scope = &problem.scope;
+    let Some(made) = scope.belonging.made[species].as_ref() else { return 0.0 };
+    let water = &scope.species[WATER];
+    let of_reaction = |r: usize| -> Rational64 {
+        let participants = scope.reactions[r].participants.iter();
+        participants.filter(|p| p.formula == *water).map(|p| p.coefficient).sum()
+    };
+    let sum: Rational64 = made.combination.iter().map(|&(r, by)| -by * of_reaction(r)).sum();
+    sum.to_f64().unwrap_or(0.0)
 }
 
 /// ln of the formation constant of a species of the scope from the components; zero for
@@ -83,6 +114,7 @@ fn fixed(problem: &Problem, held: &Held) -> Option<Fixed> {
         HeldWhat::Ph(ph) => Fixed {
             row: single(PROTON),
             ln_value: -ph * LN_10,
+            water: 0.0,
             concentration_of: None,
             supply: single(PROTON),
         },
@@ -91,6 +123,7 @@ fn fixed(problem: &Problem, held: &Held) -> Option<Fixed> {
             Fixed {
                 row: single(electron),
                 ln_value: -pe * LN_10,
+                water: 0.0,
                 concentration_of: None,
                 supply: supply(problem, electron),
             }
@@ -99,6 +132,7 @@ fn fixed(problem: &Problem, held: &Held) -> Option<Fixed> {
             let row = row_of(species)?;
             Fixed {
                 ln_value: atm.ln() - ln_formation(problem, species),
+                water: water_taken(problem, species),
                 concentration_of: None,
                 supply: row.clone(),
                 row,
@@ -107,18 +141,17 @@ fn fixed(problem: &Problem, held: &Held) -> Option<Fixed> {
         HeldWhat::Activity { species, value } => Fixed {
             row: row_of(species)?,
             ln_value: value.ln() - ln_formation(problem, species),
+            water: water_taken(problem, species),
             concentration_of: None,
             supply: supply(problem, held.releases?),
         },
-        HeldWhat::Concentration { species, value } => {
-            let formula = &scope.species[species];
-            Fixed {
-                row: row_of(species)?,
-                ln_value: value.ln() - ln_formation(problem, species),
-                concentration_of: Some((formula.charge, ion_size(formula).angstrom)),
-                supply: supply(problem, held.releases?),
-            }
-        }
+        HeldWhat::Concentration { species, value } => Fixed {
+            row: row_of(species)?,
+            ln_value: value.ln() - ln_formation(problem, species),
+            water: water_taken(problem, species),
+            concentration_of: Some(scope.row_of(species)?),
+            supply: supply(problem, held.releases?),
+        },
     })
 }
 

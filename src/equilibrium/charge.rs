@@ -18,6 +18,7 @@ pub fn imbalance_at(system: &System, ph: f64, cancel: &AtomicBool) -> Result<f64
     held.fixed.push(Fixed {
         row: proton.clone(),
         ln_value: -ph * LN_10,
+        water: 0.0,
         concentration_of: None,
         supply: proton,
     });

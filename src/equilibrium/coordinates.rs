@@ -1,8 +1,8 @@
 //! The balances over one basis, as sparse rows of `f64`.
 //!
-//! Unknowns are `u_j`, the ln activity of the line in each free slot. A present species
-//! has `ln c_i = constant_i + Σ_j α_ij u_j + shift_i`, the shift holding activity
-//! coefficients only; and every free slot has the row `Σ_i α_ij c_i = total_j`.
+//! Unknowns are `u_j`, the ln activity of the line in each free slot, that of water taken
+//! as one. A present species has `ln c_i = constant_i + Σ_j α_ij u_j + shift_i`, the shift
+//! holding activity coefficients and the activity of water only; and every free slot has the row `Σ_i α_ij c_i = total_j`.
 
 use super::frame::{Frame, Slot};
 
@@ -19,7 +19,8 @@ pub(super) struct Coordinates {
     pub totals: Vec<f64>,
     /// Whether any present species has a positive, and a negative, coefficient.
     pub signs: Vec<(bool, bool)>,
-    /// Coefficients of phases held by concentration: (present species, phase, α).
+    /// Coefficients of held phases that move with activity coefficients or with the
+    /// activity of water: (present species, phase, α).
     pub held: Vec<(usize, usize, f64)>,
     /// For each free slot, the present species that stands in it.
     pub basis_species: Vec<Option<usize>>,
@@ -65,7 +66,8 @@ impl Coordinates {
                 }
                 Slot::Held(k) => {
                     constant += value * system.fixed[k].ln_value;
-                    if system.fixed[k].concentration_of.is_some() {
+                    let fixed = &system.fixed[k];
+                    if fixed.concentration_of.is_some() || fixed.water != 0.0 {
                         out.held.push((i, k, value));
                     }
                 }

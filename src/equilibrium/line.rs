@@ -53,7 +53,13 @@ impl<'a> Line<'a> {
                     return None;
                 }
                 let supply = row.clone();
-                system.fixed.push(Fixed { row, ln_value: 0.0, concentration_of: None, supply });
+                system.fixed.push(Fixed {
+                    row,
+                    ln_value: 0.0,
+                    water: 0.0,
+                    concentration_of: None,
+                    supply,
+                });
                 Way::Ph
             }
             Decides::Component(component) => {

@@ -4,6 +4,7 @@
 mod basis;
 pub mod build;
 pub mod charge;
+mod composition;
 mod coordinates;
 mod direction;
 pub mod dominance;

@@ -4,7 +4,7 @@ use std::f64::consts::LN_10;
 
 use num_traits::ToPrimitive;
 
-use super::build::ln_formation;
+use super::build::{ln_formation, water_taken};
 use super::sensitivity;
 use super::system::{Answer, System};
 use crate::problem::model::{Presence, Problem, Sought, WrittenBalance, WrittenTerm, WrittenWhat};
@@ -35,14 +35,17 @@ impl Solved {
     pub fn ln_activity(&self, problem: &Problem, species: usize) -> Option<f64> {
         let made = problem.scope.belonging.made[species].as_ref()?;
         if species == WATER {
-            return Some(0.0);
+            return Some(self.answer.ln_water);
         }
         let sum: f64 = made
             .row
             .iter()
             .map(|&(j, n)| n.to_f64().unwrap_or(0.0) * self.answer.ln_components[j])
             .sum();
-        Some(ln_formation(problem, species) + sum)
+        let ln_water = self.answer.ln_water;
+        // Most models leave it at one.
+        let water = if ln_water == 0.0 { 0.0 } else { water_taken(problem, species) * ln_water };
+        Some(ln_formation(problem, species) + sum + water)
     }
 
     /// How many of the held phases are as the problem states them.

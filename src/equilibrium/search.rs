@@ -4,8 +4,8 @@
 use super::coordinates::Coordinates;
 use super::frame::{Frame, Slot};
 use super::point::Point;
-use super::system::{Answer, Failure, System};
-use crate::chemistry::activity::ActivityKind;
+use super::system::{Activity, Answer, Failure, Species, System};
+use crate::chemistry::interaction::Coefficients;
 
 pub(super) struct Search<'a> {
     pub frame: Frame<'a>,
@@ -16,6 +16,8 @@ pub(super) struct Search<'a> {
     /// The ionic strength that activity coefficients are taken at; none while all are
     /// one.
     pub ionic_strength: Option<f64>,
+    /// What a model by composition gave last; none with any other.
+    pub taken: Option<Coefficients>,
     /// ln γ of each present species, and its derivative by ln I.
     pub gammas: Vec<(f64, f64)>,
     /// What activity coefficients add to ln c of each present species (its own, and
@@ -48,6 +50,7 @@ impl<'a> Search<'a> {
             point,
             trial: Point::default(),
             ionic_strength: None,
+            taken: None,
             gammas: Vec::new(),
             shifts: Vec::new(),
             shift_slopes: Vec::new(),
@@ -73,23 +76,43 @@ impl<'a> Search<'a> {
         let u = at.slots.iter().map(|&slot| {
             let line = frame.basis.line(slot);
             let ln_gamma = answer.ln_gammas.get(line).copied().unwrap_or(0.0);
-            answer.concentrations.get(line).map_or(0.0, |c| c.ln()) + ln_gamma
+            let ln_water = system.species.get(line).map_or(0.0, |s| s.water * answer.ln_water);
+            answer.concentrations.get(line).map_or(0.0, |c| c.ln()) + ln_gamma - ln_water
         });
         let point = Point { u: u.collect(), ..Point::default() };
         let mut search = Self::from_parts(frame, at, point);
-        if system.activity.kind != ActivityKind::Ideal {
-            search.set_ionic_strength(answer.ionic_strength);
-        }
+        search.take_from(answer);
         search.evaluate();
         Ok(search)
     }
 
-    /// The derivative of ln γ by ln I for a phase held by concentration.
-    pub fn held_slope(&self, k: usize) -> f64 {
+    /// Takes activity coefficients as an answer has them. The point is not evaluated.
+    pub fn take_from(&mut self, answer: &Answer) {
         let system = self.system();
-        match (system.fixed[k].concentration_of, self.ionic_strength) {
-            (Some((charge, size)), Some(i)) => system.activity.ln_gamma(charge, size, i).1 * i,
-            _ => 0.0,
+        match &system.activity {
+            Activity::ByComposition(_) => {
+                if answer.ln_gammas.len() == system.species.len() {
+                    let ln_gamma = answer.ln_gammas.clone();
+                    self.take(Coefficients { ln_gamma, ln_water: answer.ln_water });
+                }
+            }
+            activity if activity.is_ideal() => {}
+            Activity::ByIonicStrength(_) => self.set_ionic_strength(answer.ionic_strength),
+        }
+    }
+
+    /// ln γ of a phase held by concentration, zero for others, and its derivative by ln I.
+    pub fn held_gamma(&self, k: usize) -> (f64, f64) {
+        let system = self.system();
+        let Some(i) = system.fixed[k].concentration_of else { return (0.0, 0.0) };
+        match (&system.activity, self.ionic_strength, &self.taken) {
+            (Activity::ByIonicStrength(model), Some(ionic_strength), _) => {
+                let Species { charge, ion_size, .. } = system.species[i];
+                let (ln, by_i) = model.ln_gamma(charge, ion_size, ionic_strength);
+                (ln, by_i * ionic_strength)
+            }
+            (Activity::ByComposition(_), _, Some(taken)) => (taken.ln_gamma[i], 0.0),
+            _ => (0.0, 0.0),
         }
     }
 
@@ -105,27 +128,53 @@ impl<'a> Search<'a> {
     pub fn set_ionic_strength(&mut self, ionic_strength: f64) {
         self.ionic_strength = Some(ionic_strength);
         let system = self.frame.system;
-        let ln_gamma = |charge, size| {
-            let (ln, by_i) = system.activity.ln_gamma(charge, size, ionic_strength);
-            (ln, by_i * ionic_strength)
-        };
+        let Some(model) = system.activity.by_ionic_strength() else { return };
         self.gammas.clear();
         self.shifts.clear();
         self.shift_slopes.clear();
         for &i in &self.at.species {
             let species = &system.species[i];
-            let (ln, slope) = ln_gamma(species.charge, species.ion_size);
+            let (ln, by_i) = model.ln_gamma(species.charge, species.ion_size, ionic_strength);
+            let slope = by_i * ionic_strength;
             self.gammas.push((ln, slope));
             self.shifts.push(-ln);
             self.shift_slopes.push(-slope);
         }
-        for &(i, k, value) in &self.at.held {
-            if let Some((charge, size)) = system.fixed[k].concentration_of {
-                let (ln, slope) = ln_gamma(charge, size);
-                self.shifts[i] += value * ln;
-                self.shift_slopes[i] += value * slope;
-            }
+        for n in 0..self.at.held.len() {
+            let (i, k, value) = self.at.held[n];
+            let (ln, slope) = self.held_gamma(k);
+            self.shifts[i] += value * ln;
+            self.shift_slopes[i] += value * slope;
         }
+    }
+
+    /// Takes activity coefficients, one for each species of the system, and the activity of
+    /// water. The point is not evaluated.
+    pub fn take(&mut self, taken: Coefficients) {
+        let system = self.frame.system;
+        self.gammas.clear();
+        self.shifts.clear();
+        for &i in &self.at.species {
+            let ln = taken.ln_gamma[i];
+            self.gammas.push((ln, 0.0));
+            self.shifts.push(system.species[i].water * taken.ln_water - ln);
+        }
+        for &(i, k, value) in &self.at.held {
+            let fixed = &system.fixed[k];
+            let ln_gamma = fixed.concentration_of.map_or(0.0, |s| taken.ln_gamma[s]);
+            self.shifts[i] += value * (ln_gamma - fixed.water * taken.ln_water);
+        }
+        self.taken = Some(taken);
+    }
+
+    /// ln activity of water.
+    pub fn ln_water(&self) -> f64 {
+        self.taken.as_ref().map_or(0.0, |taken| taken.ln_water)
+    }
+
+    /// What the activity of water adds to ln activity of a species of the system.
+    fn ln_of_water(&self, species: usize) -> f64 {
+        self.system().species[species].water * self.ln_water()
     }
 
     pub fn ln_gamma(&self, i: usize) -> f64 {
@@ -167,7 +216,7 @@ impl<'a> Search<'a> {
     fn carry_over(&mut self) -> Result<(), Failure> {
         let mut known = vec![0.0; self.system().species.len()];
         for (i, &species) in self.at.species.iter().enumerate() {
-            known[species] = self.ln_activity(i);
+            known[species] = self.ln_activity(i) - self.ln_of_water(species);
         }
         let mut old = vec![0.0; self.frame.slots.len()];
         for (j, &slot) in self.at.slots.iter().enumerate() {
@@ -181,6 +230,9 @@ impl<'a> Search<'a> {
         }
         if let Some(ionic_strength) = self.ionic_strength {
             self.set_ionic_strength(ionic_strength);
+        }
+        if let Some(taken) = self.taken.take() {
+            self.take(taken);
         }
         self.evaluate();
         Ok(())
@@ -221,13 +273,7 @@ impl<'a> Search<'a> {
                 Slot::Empty => f64::NEG_INFINITY,
                 Slot::Held(k) => {
                     let fixed = &system.fixed[*k];
-                    let ln_gamma = match (fixed.concentration_of, self.ionic_strength) {
-                        (Some((charge, size)), Some(i)) => {
-                            system.activity.ln_gamma(charge, size, i).0
-                        }
-                        _ => 0.0,
-                    };
-                    fixed.ln_value + ln_gamma
+                    fixed.ln_value + self.held_gamma(*k).0 - fixed.water * self.ln_water()
                 }
             })
             .collect();
@@ -275,6 +321,7 @@ impl<'a> Search<'a> {
             ln_components: self.ln_components(),
             concentrations,
             ln_gammas,
+            ln_water: self.ln_water(),
             ionic_strength,
             amounts,
             residual,

@@ -2,15 +2,19 @@
 //! and held value, activity coefficients moving along.
 //!
 //! One matrix holds all of it. Its unknowns are `Σ row · x` of each free slot of the
-//! dominance basis, ln I where that is computed, and the amounts of the held phases; its
-//! equations are the rows of all slots that are not empty, and that of I.
+//! dominance basis, ln I where coefficients are taken at it, and the amounts of the held
+//! phases; its equations are the rows of all slots that are not empty, and that of I. Where
+//! coefficients depend on the whole composition, no unknown is added: what they give back
+//! is worked into how each ln c answers.
 
 use nalgebra::{DMatrix, DVector, Dyn, LU};
 
+use super::composition::{Feedback, entries, held_response};
 use super::frame::Slot;
 use super::search::Search;
 use super::solve::needs_activity;
-use super::system::{Answer, IonicStrength, System};
+use super::system::{Activity, Answer, IonicStrength, System};
+use crate::chemistry::interaction::Slopes;
 
 const LN_10: f64 = std::f64::consts::LN_10;
 
@@ -43,6 +47,15 @@ pub struct Sensitivity<'a> {
     /// The slots whose rows are equations: free ones, then held ones.
     slots: Vec<usize>,
     moving: bool,
+    by_composition: Option<ByComposition>,
+}
+
+/// How ln c answers where coefficients depend on all of it.
+struct ByComposition {
+    feedback: Feedback,
+    slopes: Slopes,
+    /// Of each present species by each free slot.
+    answered: DMatrix<f64>,
 }
 
 impl<'a> Sensitivity<'a> {
@@ -53,7 +66,16 @@ impl<'a> Sensitivity<'a> {
             return None;
         }
         let search = Search::at_answer(system, answer).ok()?;
+        let by_composition = match &system.activity {
+            Activity::ByIonicStrength(_) => None,
+            Activity::ByComposition(_) => {
+                let (feedback, slopes) = Feedback::at(&search)?;
+                let answered = feedback.solve(&entries(&search))?;
+                Some(ByComposition { feedback, slopes, answered })
+            }
+        };
         let moving = needs_activity(system)
+            && by_composition.is_none()
             && system.ionic_strength == IonicStrength::Computed
             && answer.ionic_strength > 0.0;
         let frame = &search.frame;
@@ -75,8 +97,17 @@ impl<'a> Sensitivity<'a> {
                     continue;
                 }
                 weights[r] += c * value * value;
-                for &(l, other) in search.at.row(i) {
-                    matrix[(r, l as usize)] += c * value * other;
+                match &by_composition {
+                    None => {
+                        for &(l, other) in search.at.row(i) {
+                            matrix[(r, l as usize)] += c * value * other;
+                        }
+                    }
+                    Some(by) => {
+                        for l in 0..free {
+                            matrix[(r, l)] += c * value * by.answered[(i, l)];
+                        }
+                    }
                 }
                 if moving {
                     matrix[(r, free)] += c * value * search.shift_slopes[i];
@@ -116,7 +147,15 @@ impl<'a> Sensitivity<'a> {
         }
         let factors = LU::new(matrix);
         let solvable = size == 0 || factors.is_invertible();
-        solvable.then_some(Self { search, factors, row_scales, column_scales, slots, moving })
+        solvable.then_some(Self {
+            search,
+            factors,
+            row_scales,
+            column_scales,
+            slots,
+            moving,
+            by_composition,
+        })
     }
 
     /// By the total of a component, others as they are; per mol per litre or kilogram.
@@ -130,54 +169,54 @@ impl<'a> Sensitivity<'a> {
         }
         let scale = frame.basis.scale(component);
         let rows = self.slots.iter().map(|&s| frame.basis.value(line, s) * scale);
-        self.respond(rows.collect(), 0.0, |_| 0.0, |_| 0.0)
+        self.respond(rows.collect(), vec![0.0; self.search.at.species.len()], |_| 0.0)
     }
 
     /// By ln of the formation constant of a species; zero where it is absent.
     pub fn by_ln_k(&self, species: usize) -> Option<Response> {
-        let Some(i) = self.search.at.species.iter().position(|&s| s == species) else {
-            return self.respond(vec![0.0; self.slots.len()], 0.0, |_| 0.0, |_| 0.0);
-        };
-        let c = self.search.point.concentrations[i];
-        let basis = &self.search.frame.basis;
-        let rows = self.slots.iter().map(|&s| -c * basis.value(species, s));
-        let charge = f64::from(self.search.system().species[species].charge);
-        let direct = |n: usize| if n == i { 1.0 } else { 0.0 };
-        self.respond(rows.collect(), -0.5 * charge * charge * c, direct, |_| 0.0)
+        let mut direct = vec![0.0; self.search.at.species.len()];
+        if let Some(i) = self.search.at.species.iter().position(|&s| s == species) {
+            direct[i] = 1.0;
+        }
+        self.respond(vec![0.0; self.slots.len()], direct, |_| 0.0)
     }
 
     /// By the value of a held phase, `ln_value` of [`super::system::Fixed`].
     pub fn by_fixed(&self, phase: usize) -> Option<Response> {
         let (frame, at) = (&self.search.frame, &self.search.at);
         let slot = frame.slots.iter().position(|s| *s == Slot::Held(phase))?;
-        let share = |i: usize| frame.basis.value(at.species[i], slot);
-        let mut rows = vec![0.0; self.slots.len()];
-        let mut ions = 0.0;
-        for (i, &species) in at.species.iter().enumerate() {
-            let moved = self.search.point.concentrations[i] * share(i);
-            if moved == 0.0 {
-                continue;
-            }
-            let charge = f64::from(self.search.system().species[species].charge);
-            ions -= 0.5 * charge * charge * moved;
-            for (row, &s) in rows.iter_mut().zip(&self.slots) {
-                *row -= moved * frame.basis.value(species, s);
-            }
-        }
-        self.respond(rows, ions, share, |s| if s == slot { 1.0 } else { 0.0 })
+        let direct = at.species.iter().map(|&species| frame.basis.value(species, slot)).collect();
+        let own = |s| if s == slot { 1.0 } else { 0.0 };
+        self.respond(vec![0.0; self.slots.len()], direct, own)
     }
 
-    /// Solves for right-hand sides of the rows and of I. `direct` is what the ln
-    /// concentration of each present species gains with all unknowns as they are, and
+    /// Solves for right-hand sides of the rows. `direct` is what the ln concentration of
+    /// each present species gains with all unknowns and coefficients as they are, and
     /// `slot` what `Σ row · x` of a slot that is not free gains.
     fn respond(
         &self,
-        rows: Vec<f64>,
-        ions: f64,
-        direct: impl Fn(usize) -> f64,
+        mut rows: Vec<f64>,
+        mut direct: Vec<f64>,
         slot: impl Fn(usize) -> f64,
     ) -> Option<Response> {
         let search = &self.search;
+        let pushed = direct.iter().any(|d| *d != 0.0);
+        if let Some(by) = self.by_composition.as_ref().filter(|_| pushed) {
+            let column = DMatrix::from_column_slice(direct.len(), 1, &direct);
+            direct.copy_from_slice(by.feedback.solve(&column)?.as_slice());
+        }
+        let mut ions = 0.0;
+        for (i, &species) in search.at.species.iter().enumerate() {
+            let moved = search.point.concentrations[i] * direct[i];
+            if moved == 0.0 {
+                continue;
+            }
+            let charge = f64::from(search.system().species[species].charge);
+            ions -= 0.5 * charge * charge * moved;
+            for (row, &s) in rows.iter_mut().zip(&self.slots) {
+                *row -= moved * search.frame.basis.value(species, s);
+            }
+        }
         let system = search.system();
         let free = search.at.slots.len();
         let mut side = DVector::from_vec(rows);
@@ -196,17 +235,45 @@ impl<'a> Sensitivity<'a> {
         if side.iter().any(|v| !v.is_finite()) {
             return None;
         }
-        let ln_i = if self.moving { side[free] } else { 0.0 };
+        let mut ln_i = if self.moving { side[free] } else { 0.0 };
+        let mut present = direct;
+        for (i, ln_c) in present.iter_mut().enumerate() {
+            match &self.by_composition {
+                None => {
+                    for &(j, value) in search.at.row(i) {
+                        *ln_c += value * side[j as usize];
+                    }
+                }
+                Some(by) => {
+                    for j in 0..free {
+                        *ln_c += by.answered[(i, j)] * side[j];
+                    }
+                }
+            }
+            if self.moving {
+                *ln_c += search.shift_slopes[i] * ln_i;
+            }
+        }
         let mut moves: Vec<f64> = (0..search.frame.slots.len()).map(&slot).collect();
         for (j, &s) in search.at.slots.iter().enumerate() {
             moves[s] = side[j];
         }
-        if self.moving {
-            for (s, kind) in search.frame.slots.iter().enumerate() {
-                if let Slot::Held(k) = kind {
-                    moves[s] += search.held_slope(*k) * ln_i;
-                }
+        for (s, kind) in search.frame.slots.iter().enumerate() {
+            if let Slot::Held(k) = kind {
+                moves[s] += match &self.by_composition {
+                    None => search.held_gamma(*k).1 * ln_i,
+                    Some(by) => held_response(search, &by.slopes, *k, &present),
+                };
             }
+        }
+        if self.by_composition.is_some() {
+            let (mut sum, mut change) = (0.0, 0.0);
+            for (i, &species) in search.at.species.iter().enumerate() {
+                let charge = f64::from(system.species[species].charge);
+                sum += charge * charge * search.point.concentrations[i];
+                change += charge * charge * search.point.concentrations[i] * present[i];
+            }
+            ln_i = if sum > 0.0 { change / sum } else { 0.0 };
         }
         let basis = &search.frame.basis;
         let ln_components = (0..basis.width())
@@ -218,14 +285,7 @@ impl<'a> Sensitivity<'a> {
             })
             .collect();
         let mut ln_concentrations = vec![0.0; system.species.len()];
-        for (i, &species) in search.at.species.iter().enumerate() {
-            let mut ln_c = direct(i);
-            for &(j, value) in search.at.row(i) {
-                ln_c += value * side[j as usize];
-            }
-            if self.moving {
-                ln_c += search.shift_slopes[i] * ln_i;
-            }
+        for (&species, ln_c) in search.at.species.iter().zip(present) {
             ln_concentrations[species] = ln_c;
         }
         let amounts = side.as_slice()[free + usize::from(self.moving)..].to_vec();

@@ -48,7 +48,9 @@ pub fn other_states(
             let steep = system.species.iter().any(|s| s.charge.abs() >= 3);
             let computed = system.ionic_strength == IonicStrength::Computed;
             let steep = steepness(system) > STEEP || steep && !system.fixed.is_empty();
-            if !(steep && computed && needs_activity(system)) {
+            // Of a model by composition the ionic strength alone gives no state to look at.
+            let one_unknown = system.activity.by_ionic_strength().is_some();
+            if !(steep && computed && one_unknown && needs_activity(system)) {
                 return Ok(Vec::new());
             }
             let states = by_ionic_strength(system, Some(answer), cancel).or_else(passed)?;

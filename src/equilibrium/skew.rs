@@ -46,6 +46,7 @@ pub(super) fn states(
     outer.held.fixed.push(Fixed {
         row: row.clone(),
         ln_value: 0.0,
+        water: 0.0,
         concentration_of: None,
         supply: row,
     });
@@ -68,7 +69,8 @@ pub(super) fn states(
         }
     }
     // A state may lie on a branch that no walk over the pH comes to.
-    if needs_activity(system) && system.ionic_strength == IonicStrength::Computed {
+    let one_unknown = needs_activity(system) && system.activity.by_ionic_strength().is_some();
+    if one_unknown && system.ionic_strength == IonicStrength::Computed {
         let mut found = plane::states(&outer.held, cancel)?;
         finish(&mut found, system, outer.iterations);
         all.extend(found);

@@ -2,14 +2,14 @@
 
 use std::sync::atomic::AtomicBool;
 
+use super::composition;
 use super::frame::Frame;
 use super::ionic;
 use super::newton::CLOSED;
 use super::search::Search;
 use super::skew::solve_skew;
 use super::start::{first_guess, sweep, warm_guess};
-use super::system::{Answer, Failure, IonicStrength, System};
-use crate::chemistry::activity::ActivityKind;
+use super::system::{Activity, Answer, Failure, IonicStrength, System};
 
 /// An answer whose rows close no better than this is not given.
 pub(super) const TRUSTED: f64 = 1e-9;
@@ -36,10 +36,8 @@ pub fn solve(
     let mut search = match start {
         Some(answer) => {
             let mut search = Search::new(frame, |j| warm_guess(system, answer, j))?;
-            if needs_activity(system) {
-                search.set_ionic_strength(answer.ionic_strength);
-                search.evaluate();
-            }
+            search.take_from(answer);
+            search.evaluate();
             search
         }
         None => {
@@ -51,6 +49,9 @@ pub fn solve(
     search.rebase()?;
     match system.ionic_strength {
         _ if !needs_activity(system) => search.converge(CLOSED, cancel)?,
+        _ if matches!(system.activity, Activity::ByComposition(_)) => {
+            composition::converge(&mut search, start.is_some(), cancel)?;
+        }
         IonicStrength::Given(ionic_strength) => {
             search.set_ionic_strength(ionic_strength);
             search.evaluate();
@@ -70,5 +71,5 @@ pub fn solve(
 
 /// Whether any activity coefficient can differ from one.
 pub(super) fn needs_activity(system: &System) -> bool {
-    system.activity.kind != ActivityKind::Ideal
+    !system.activity.is_ideal()
 }

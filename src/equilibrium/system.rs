@@ -6,9 +6,12 @@
 //! amounts of the fixed phases. The row of the proton holds the charge balance:
 //! its total is `−Σ z_j total_j` over the other components.
 
+use std::sync::Arc;
+
 use num_rational::Rational64;
 
-use crate::chemistry::activity::ActivityModel;
+use crate::chemistry::activity::{ActivityKind, ActivityModel};
+use crate::chemistry::interaction::Interaction;
 
 /// An exact row over the components: (index, coefficient), by rising index, no zeros.
 pub type Row = Vec<(usize, Rational64)>;
@@ -26,16 +29,49 @@ pub struct System {
     /// Solids that form if they would be supersaturated. [`super::solve::solve`] takes no
     /// notice of them; [`super::phases::equilibrate`] finds which are there.
     pub candidates: Vec<Candidate>,
-    pub activity: ActivityModel,
+    pub activity: Activity,
     pub ionic_strength: IonicStrength,
+}
+
+/// What activity coefficients are taken from.
+#[derive(Clone, Debug, PartialEq)]
+pub enum Activity {
+    /// The ionic strength alone; water has activity one.
+    ByIonicStrength(ActivityModel),
+    /// The molality of every species, in the order of [`System::species`]; the activity of
+    /// water comes with it. A given ionic strength has no say.
+    ByComposition(Arc<Interaction>),
+}
+
+impl Activity {
+    /// Whether all coefficients are one.
+    pub fn is_ideal(&self) -> bool {
+        matches!(self, Activity::ByIonicStrength(model) if model.kind == ActivityKind::Ideal)
+    }
+
+    /// The model, where the ionic strength is all that it asks for.
+    pub fn by_ionic_strength(&self) -> Option<&ActivityModel> {
+        match self {
+            Activity::ByIonicStrength(model) => Some(model),
+            Activity::ByComposition(_) => None,
+        }
+    }
+}
+
+impl From<ActivityModel> for Activity {
+    fn from(model: ActivityModel) -> Self {
+        Activity::ByIonicStrength(model)
+    }
 }
 
 #[derive(Clone, Debug, PartialEq)]
 pub struct Species {
     pub row: Row,
-    /// Natural logarithm of the formation constant from the components, activity of
-    /// water one.
+    /// Natural logarithm of the formation constant from the components and water.
     pub ln_k: f64,
+    /// Molecules of water that its formation takes up, less those set free. Counts where
+    /// the activity of water is not one.
+    pub water: f64,
     pub charge: i32,
     /// Ion size for the extended Debye–Hückel model, in ångström.
     pub ion_size: f64,
@@ -47,9 +83,11 @@ pub struct Fixed {
     pub row: Row,
     /// The value of `Σ row · x`, ln constant of the phase already taken off.
     pub ln_value: f64,
-    /// Where a concentration and not an activity is held: the species' charge and ion
-    /// size. Then `Σ row · x` is `ln_value` plus ln γ of that ion.
-    pub concentration_of: Option<(i32, f64)>,
+    /// As [`Species::water`]: `Σ row · x` is less by so many ln activity of water.
+    pub water: f64,
+    /// Where a concentration and not an activity is held: the species. Then `Σ row · x` is
+    /// `ln_value` plus its ln γ.
+    pub concentration_of: Option<usize>,
     /// What one mole of it brings to each component's row. Equal to `row` but for a
     /// charged species, whose charge the proton's row must not gain.
     pub supply: Row,
@@ -80,6 +118,8 @@ pub struct Answer {
     /// Of each species, mol per litre or kilogram.
     pub concentrations: Vec<f64>,
     pub ln_gammas: Vec<f64>,
+    /// ln activity of water; zero where the model leaves it at one.
+    pub ln_water: f64,
     pub ionic_strength: f64,
     /// Of each fixed phase: what it brought (positive) or took away.
     pub amounts: Vec<f64>,

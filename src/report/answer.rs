@@ -57,6 +57,7 @@ pub fn conditions(problem: &Problem) -> String {
         ActivityKind::ExtendedDebyeHuckel => "extended Debye–Hückel activities",
         ActivityKind::Guntelberg => "Güntelberg activities",
         ActivityKind::Davies => "Davies activities",
+        ActivityKind::Pitzer => "Pitzer activities, to at most 6 mol/kg",
     };
     format!("{}, {activities}", celsius(problem.kelvin))
 }
@@ -79,6 +80,9 @@ fn main_figures(problem: &Problem, solved: &Solved, style: Style) -> String {
     }
     let given = if problem.ionic_strength.is_some() { "given" } else { "" };
     row("ionic strength", concentration(solved.answer.ionic_strength, problem.scale), given);
+    if solved.answer.ln_water != 0.0 {
+        row("activity of water", decimals(solved.answer.ln_water.exp(), 4), "");
+    }
     let per = match problem.scale {
         Scale::PerLitre => "L",
         Scale::PerKilogram => "kg",

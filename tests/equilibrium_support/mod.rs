@@ -4,7 +4,7 @@
 pub mod solids;
 
 use lyate::chemistry::activity::{ActivityKind, ActivityModel};
-use lyate::equilibrium::system::{Fixed, IonicStrength, Row, Species, System};
+use lyate::equilibrium::system::{Activity, Fixed, IonicStrength, Row, Species, System};
 use num_rational::Rational64;
 
 pub const LN_10: f64 = std::f64::consts::LN_10;
@@ -43,9 +43,12 @@ impl Random {
 }
 
 /// Davies at 25 °C.
-pub const DAVIES: ActivityModel =
-    ActivityModel { kind: ActivityKind::Davies, a: 0.5098, b: 0.3284 };
-pub const IDEAL: ActivityModel = ActivityModel { kind: ActivityKind::Ideal, a: 0.5098, b: 0.3284 };
+pub const DAVIES: Activity = by_ionic_strength(ActivityKind::Davies, 0.5098);
+pub const IDEAL: Activity = by_ionic_strength(ActivityKind::Ideal, 0.5098);
+
+pub const fn by_ionic_strength(kind: ActivityKind, a: f64) -> Activity {
+    Activity::ByIonicStrength(ActivityModel { kind, a, b: 0.3284 })
+}
 
 pub fn row(entries: &[(usize, i64)]) -> Row {
     let mut entries: Vec<(usize, i64)> = entries.iter().copied().filter(|e| e.1 != 0).collect();
@@ -55,7 +58,13 @@ pub fn row(entries: &[(usize, i64)]) -> Row {
 
 pub fn species(entries: &[(usize, i64)], log_k: f64, charges: &[i64]) -> Species {
     let charge: i64 = entries.iter().map(|(j, n)| charges[*j] * n).sum();
-    Species { row: row(entries), ln_k: log_k * LN_10, charge: charge as i32, ion_size: 4.0 }
+    Species {
+        row: row(entries),
+        ln_k: log_k * LN_10,
+        water: 0.0,
+        charge: charge as i32,
+        ion_size: 4.0,
+    }
 }
 
 /// Like chemistry: acids, metals, their hydrolysis and complexes, counter-ions, totals
@@ -211,6 +220,7 @@ pub fn hold_ph(system: &mut System, ph: f64) {
     system.fixed.push(Fixed {
         row: row(&[(0, 1)]),
         ln_value: -ph * LN_10,
+        water: 0.0,
         concentration_of: None,
         supply: row(&[(0, 1)]),
     });

@@ -2,6 +2,7 @@
 
 use num_traits::ToPrimitive;
 
+use crate::chemistry::activity::ActivityKind;
 use crate::chemistry::formula::{Phase, canonical};
 use crate::equilibrium::quantities::Solved;
 use crate::problem::model::Problem;
@@ -35,6 +36,12 @@ pub fn hover(checked: &Checked, offset: usize) -> Option<Hover> {
     {
         return Some(Hover { range: range(name.span), markdown });
     }
+    if let Statement::Activity { model } = &placed.parsed.statement
+        && model.span.start <= inside
+        && let Some(kind) = ActivityKind::from_name(&model.value)
+    {
+        return Some(Hover { range: range(model.span), markdown: activity(kind) });
+    }
     if let Statement::Reaction(tree) = &placed.parsed.statement
         && tree.equation.start <= inside
     {
@@ -65,6 +72,32 @@ fn statement_at(checked: &Checked, offset: usize) -> Option<(usize, usize, &Plac
     let (section, index) = piece.statement?;
     let (section, index) = (section as usize, index as usize);
     Some((section, index, &checked.document.sections[section].statements[index]))
+}
+
+/// What an activity model is, and how far it reaches.
+fn activity(kind: ActivityKind) -> String {
+    let what = match kind {
+        ActivityKind::Ideal => "all activity coefficients are one",
+        ActivityKind::DebyeHuckel => "the limiting law of Debye and Hückel",
+        ActivityKind::ExtendedDebyeHuckel => "Debye and Hückel, with the sizes of Kielland's table",
+        ActivityKind::Guntelberg => "Güntelberg's form, one for all ions",
+        ActivityKind::Davies => "Davies' form, one for all ions",
+        ActivityKind::Pitzer => {
+            "Pitzer's ion interactions at 25 °C, from the amount of each ion; the activity of \
+             water comes with them"
+        }
+    };
+    let reach = match (kind, kind.range_limit()) {
+        (_, None) => "no ionic strength of its own; for very dilute water, or with constants that \
+                      were measured in the medium"
+            .to_owned(),
+        (ActivityKind::Pitzer, Some(limit)) => format!(
+            "up to an ionic strength of {limit} mol/kg at most, less for some salts, between 15 \
+             and 35 °C"
+        ),
+        (_, Some(limit)) => format!("up to an ionic strength of {limit} mol/kg"),
+    };
+    format!("**{}** · {what}\n\n{reach}", kind.name())
 }
 
 /// So many reactions of one species are told.

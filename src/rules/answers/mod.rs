@@ -4,7 +4,11 @@ use super::catalogue::family;
 
 family! {
     "Answers":
+    association_counted_twice,
     expectation_not_met,
+    ion_lacks_interaction,
+    ionic_strength_not_used,
     ionic_strength_past_model,
+    litre_taken_as_kilogram,
     temperature_past_model,
 }

@@ -1,8 +1,11 @@
-//! The temperature lies outside the range of water's own properties.
+//! The temperature lies outside the range of a model.
 //!
 //! The ion product of water, its density and its permittivity, from which the activity
 //! coefficients come, are taken from published equations between 0 and 100 °C. Outside, the
 //! values at the nearer end are used, and the answer is only as good as that.
+//!
+//! The parameters of Pitzer's method hold at 25 °C. They are taken between 15 and 35 °C as
+//! they are; its long-range term moves with the temperature.
 //!
 //! It matters for hot condensate and boiler water, where pKw goes on falling, and for
 //! brines below zero. Use a source made for such conditions there.
@@ -25,7 +28,8 @@
 //! total NH3 = 0.1 mmol/L
 //! ```
 
-use crate::chemistry::water;
+use crate::chemistry::activity::ActivityKind;
+use crate::chemistry::{interaction, water};
 use crate::rules::catalogue::rule;
 use crate::rules::context::Context;
 use crate::rules::figures::celsius;
@@ -38,6 +42,15 @@ fn find(context: &Context, found: &mut Vec<Finding<Place>>) {
     let kelvin = context.problem.kelvin;
     let Some(at) = context.problem.temperature_at else { return };
     if water::in_range(kelvin) {
+        let fits = interaction::TEMPERATURES.contains(&kelvin);
+        if context.problem.activity == ActivityKind::Pitzer && !fits {
+            let message = format!(
+                "{} lies outside the 15 to 35 °C in which `pitzer` takes its parameters, those \
+                 for 25 °C",
+                celsius(kelvin),
+            );
+            found.push(RULE.at(at, message));
+        }
         return;
     }
     let nearer = if kelvin < *water::RANGE.start() {

@@ -1,7 +1,7 @@
 //! An activity model is not known.
 //!
 //! `activity` names the model that gives the activity coefficients of ions: `ideal`,
-//! `debye-huckel`, `extended-debye-huckel`, `guntelberg` or `davies`; `davies` where the
+//! `debye-huckel`, `extended-debye-huckel`, `guntelberg`, `davies` or `pitzer`; `davies` where the
 //! file says nothing. At 0.1 mol/L the models lie some tenths of a pH unit apart, so an
 //! unknown one is not replaced by another.
 //!
