@@ -4,7 +4,7 @@ use chumsky::prelude::*;
 
 use super::basic::{Lexeme, Rule, any_word, clause_end, name, sign, string, to_comma, word};
 use super::failure::{Expect, Failure};
-use super::quantity::{edition, quantity};
+use super::quantity::{count, quantity};
 use super::reaction::{reaction, source};
 use super::subject::{expect, hold, without};
 use super::sum::{members, terms};
@@ -100,7 +100,7 @@ impl<'s> Run<'s, '_> {
 
 fn used<'s>() -> impl Rule<'s, Use> {
     let set = any_word(Expect::Set)
-        .then(edition().or_not())
+        .then(count().or_not())
         .map(|(name, edition)| Use::Set { name, edition });
     let file = string().map(|path| Use::File { path });
     set.or(file.labelled(Expect::Set))
@@ -189,13 +189,17 @@ fn curve<'s>() -> impl Rule<'s, Statement> {
         of("dose", Over::Reagent),
         reagent,
     ));
+    let points = sign(Token::Comma, Expect::Comma)
+        .ignore_then(count())
+        .then_ignore(word("points", Expect::Points));
     word("over", Expect::OverWord)
         .ignore_then(over)
         .then_ignore(word("from", Expect::From))
         .then(quantity())
         .then_ignore(word("to", Expect::To))
         .then(quantity())
-        .map(|((over, from), to)| Statement::Curve { over, from, to })
+        .then(points.or_not())
+        .map(|(((over, from), to), points)| Statement::Curve { over, from, to, points })
 }
 
 /// `, source "…"`, once.
