@@ -14,6 +14,7 @@ mod answers;
 mod balances;
 mod closure;
 mod components;
+mod curves;
 mod files;
 mod formulas;
 mod quantities;
@@ -33,6 +34,7 @@ pub static FAMILIES: &[catalogue::Family] = &[
     closure::FAMILY,
     balances::FAMILY,
     answers::FAMILY,
+    curves::FAMILY,
     files::FAMILY,
     statements::FAMILY,
 ];
