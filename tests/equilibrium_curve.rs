@@ -145,7 +145,8 @@ fn every_point_of_every_problem_is_what_a_cold_start_finds() {
 /// Random waters with the held pH, a total (from nothing on), or acid and base moved.
 #[test]
 fn a_walk_through_random_waters_is_what_cold_starts_find() {
-    let seeds = if std::env::var_os("LYATE_LONG").is_some() { 3000 } else { 60 };
+    let long = std::env::var("LYATE_PROBLEMS").ok().and_then(|n| n.parse::<u64>().ok());
+    let seeds = long.unwrap_or(60);
     let (mut compared, mut kept) = (0, 0);
     for seed in 0..seeds {
         let mut random = Random::new(0xC0 + seed);
