@@ -134,7 +134,7 @@ const fn unit(name: &'static str, dimension: Dimension, factor: f64) -> Unit {
 /// Standard atmosphere, Pa: exact (10th CGPM, 1954). The bar is 10⁵ Pa exactly.
 const ATMOSPHERE: f64 = 101_325.0;
 
-const UNITS: [Unit; 37] = [
+const UNITS: [Unit; 39] = [
     unit("mol/L", D::AmountPerLitre, 1.0),
     unit("mmol/L", D::AmountPerLitre, 1e-3),
     unit("µmol/L", D::AmountPerLitre, 1e-6),
@@ -151,6 +151,8 @@ const UNITS: [Unit; 37] = [
     unit("µg/L", D::MassPerLitre, 1e-6),
     unit("g/m³", D::MassPerLitre, 1e-3),
     unit("mg/m³", D::MassPerLitre, 1e-6),
+    unit("kg/L", D::MassPerLitre, 1e3),
+    unit("g/mL", D::MassPerLitre, 1e3),
     unit("kg/m³", D::MassPerLitre, 1.0),
     unit("g/kg", D::MassPerKilogram, 1.0),
     unit("mg/kg", D::MassPerKilogram, 1e-3),

@@ -26,7 +26,7 @@ pub fn read(case: &mut CaseResolver, problem: &mut Problem) {
                 let read = total(case, problem, written, component, value);
                 case.all_amounts_read &= read.is_some();
             }
-            Statement::Add { reagent, amount, giving } => {
+            Statement::Add { reagent, amount, giving, stock: None } => {
                 let read = add(case, problem, written, (reagent, amount, giving.as_deref()));
                 case.all_amounts_read &= read.is_some();
             }
@@ -60,7 +60,7 @@ pub fn read(case: &mut CaseResolver, problem: &mut Problem) {
 /// Whether a broken statement was to say how much of something there is.
 fn may_be_amount(written: &Written) -> bool {
     let word = written.parsed.text.split_whitespace().next().unwrap_or_default();
-    matches!(word, "total" | "add" | "hold") || !KEYWORDS.contains(&word)
+    matches!(word, "total" | "add" | "hold" | "blend") || !KEYWORDS.contains(&word)
 }
 
 /// None where it could not be read.

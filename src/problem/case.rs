@@ -90,6 +90,9 @@ pub fn resolve(statements: &[Written], merging: Vec<Defect>, scope: Arc<Scope>) 
             Statement::Precipitate { .. } => "precipitate",
             Statement::Saturate { .. } => "saturate with",
             Statement::Hold { by: Some(_), .. } => "hold … by",
+            Statement::Blend { .. } => "blend",
+            Statement::Add { stock: Some(_), .. } => "add … of",
+            Statement::Expect { confidence: Some(_), .. } => "confidence",
             _ => continue,
         };
         let at = written.whole();
@@ -255,6 +258,7 @@ fn states_a_problem(statement: &Statement) -> bool {
         Statement::Component { .. }
             | Statement::Total { .. }
             | Statement::Add { .. }
+            | Statement::Blend { .. }
             | Statement::Hold { .. }
             | Statement::Expect { .. }
             | Statement::Balance { .. }

@@ -239,6 +239,11 @@ fn swept(
     Some(match over {
         Over::Ph => Sweep::Ph,
         Over::Temperature => Sweep::Temperature,
+        Over::Blend(_) => {
+            let kind = DefectKind::NotYetSupported { what: "curve over blend" };
+            case.resolver.report(written.whole(), kind);
+            return None;
+        }
         // One that is not among them has its defect already.
         Over::Reagent(name) => Sweep::Reagent(reagent(case, problem, name)?),
         Over::Total(name) => {

@@ -55,6 +55,7 @@ pub enum Key {
     Saturate(String),
     Group(String),
     Curve(String),
+    Blend,
 }
 
 pub fn key(statement: &Statement) -> Option<Key> {
@@ -72,6 +73,7 @@ pub fn key(statement: &Statement) -> Option<Key> {
         Statement::Saturate { solid } => Key::Saturate(canonical(solid)),
         Statement::Group { symbol, .. } => Key::Group(symbol.value.clone()),
         Statement::Curve { over, .. } => Key::Curve(over_words(&over.value)),
+        Statement::Blend { .. } => Key::Blend,
         Statement::Reaction(reaction) => {
             let mut names: Vec<_> =
                 reaction.left.iter().chain(&reaction.right).map(|m| canonical(&m.name)).collect();
@@ -122,6 +124,7 @@ pub fn over_words(over: &Over) -> String {
         Over::Reagent(name) => canonical(name),
         Over::Total(name) => format!("total {}", canonical(name)),
         Over::Temperature => "temperature".into(),
+        Over::Blend(file) => format!("blend \"{}\"", file.value),
     }
 }
 
@@ -135,6 +138,7 @@ fn removed_key(without: &Without) -> Key {
         Without::Precipitate(name) => Key::Precipitate(canonical(name)),
         Without::Saturate(name) => Key::Saturate(canonical(name)),
         Without::IonicStrength => Key::IonicStrength,
+        Without::Blend => Key::Blend,
     }
 }
 
@@ -198,7 +202,8 @@ pub fn in_force<'a>(base: &'a Section, case: Option<&'a Section>) -> InForce<'a>
             found.defects.push(Defect { at, kind: DefectKind::NothingToRemove });
         }
     }
-    let is_source = |key: &Key| matches!(key, Key::Total(_) | Key::Add(_) | Key::Hold(_));
+    let is_source =
+        |key: &Key| matches!(key, Key::Total(_) | Key::Add(_) | Key::Hold(_) | Key::Blend);
     found.other_sources = from_nothing
         || replaced.iter().any(|(key, met)| is_source(key) && !met)
         || varied.kept.iter().any(|(_, written)| {

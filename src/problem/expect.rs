@@ -12,7 +12,7 @@ use crate::text::tree::{Name, Quantity, Relation, Statement, Subject};
 pub fn read(case: &mut CaseResolver) -> Vec<Expectation> {
     let mut expectations = Vec::new();
     for written in case.statements {
-        let Statement::Expect { subject, relation, source } = written.statement() else {
+        let Statement::Expect { subject, relation, source, .. } = written.statement() else {
             continue;
         };
         let Some(mut sought) = sought(case, written, subject) else { continue };

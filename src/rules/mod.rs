@@ -12,6 +12,7 @@ pub mod words;
 
 mod answers;
 mod balances;
+mod cautions;
 mod closure;
 mod components;
 mod curves;
@@ -35,6 +36,7 @@ pub static FAMILIES: &[catalogue::Family] = &[
     balances::FAMILY,
     answers::FAMILY,
     curves::FAMILY,
+    cautions::FAMILY,
     files::FAMILY,
     statements::FAMILY,
 ];
