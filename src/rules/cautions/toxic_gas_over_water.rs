@@ -71,7 +71,7 @@ fn find(context: &Context, found: &mut Vec<Finding<Place>>) {
             let worst = ends.iter().flatten().filter_map(past).max_by(|a, b| a.0.total_cmp(&b.0));
             // Told once, unless the curve goes past a higher limit than the water itself.
             if let Some((ppm, limit, ph)) = worst.filter(|(_, limit, _)| limit.ppm > *told) {
-                let here = format!("at its end of pH {}", decimals(ph, 2));
+                let here = format!("at pH {} on the curve over {}", decimals(ph, 2), curve.words);
                 found.push(caution(curve.at, &here, gas, ppm, limit));
             }
         }
