@@ -57,6 +57,7 @@ fn system(problem: &Problem) -> System {
     let species = problem.species.iter().map(|member| Species {
         row: row(&member.row),
         ln_k: member.log_k * LN_10,
+        water: 0.0,
         charge: member.charge,
         ion_size: 0.0,
     });
@@ -64,19 +65,21 @@ fn system(problem: &Problem) -> System {
     let held = problem.excess.iter().map(|solid| Fixed {
         row: row(&solid.row),
         ln_value: solid.log_value * LN_10,
+        water: 0.0,
         concentration_of: None,
         supply: row(&solid.row),
     });
-    let candidates = problem
-        .candidates
-        .iter()
-        .map(|solid| Candidate { row: row(&solid.row), ln_value: solid.log_value * LN_10 });
+    let candidates = problem.candidates.iter().map(|solid| Candidate {
+        row: row(&solid.row),
+        ln_value: solid.log_value * LN_10,
+        water: 0.0,
+    });
     System {
         species: species.collect(),
         totals: problem.totals.clone(),
         fixed: held.collect(),
         candidates: candidates.collect(),
-        activity: ActivityModel { kind, a: 0.5098, b: 0.3284 },
+        activity: ActivityModel { kind, a: 0.5098, b: 0.3284 }.into(),
         ionic_strength: IonicStrength::Computed,
     }
 }

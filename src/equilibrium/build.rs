@@ -14,6 +14,7 @@ use super::system::{Activity, Candidate, Fixed, IonicStrength, Row, Species, Sys
 use crate::chemistry::activity::{ActivityKind, ActivityModel};
 use crate::chemistry::interaction::Interaction;
 use crate::chemistry::ion_size::ion_size;
+use crate::problem::curve::Sweep;
 use crate::problem::model::{Held, HeldWhat, Presence, Problem, Solid};
 use crate::problem::scope::{PROTON, WATER};
 
@@ -36,19 +37,16 @@ pub fn system(problem: &Problem) -> System {
             },
         })
         .collect();
-    let mut totals: Vec<f64> =
-        problem.amounts.iter().map(|amount| amount.total.unwrap_or(0.0)).collect();
-    totals[PROTON] = -(1..totals.len())
-        .map(|j| f64::from(scope.components[j].formula.charge) * totals[j])
-        .sum::<f64>();
+    let mut given = vec![0.0; problem.amounts.len()];
+    totals(problem, &mut given);
     let held = problem.held.iter().filter_map(|held| fixed(problem, held));
     let excess = problem.solids_that_are(Presence::Excess).filter_map(|solid| {
-        let Candidate { row, ln_value } = candidate(problem, solid)?;
-        Some(Fixed { supply: row.clone(), row, ln_value, concentration_of: None })
+        let Candidate { row, ln_value, water } = candidate(problem, solid)?;
+        Some(Fixed { supply: row.clone(), row, ln_value, water, concentration_of: None })
     });
     System {
         species,
-        totals,
+        totals: given,
         fixed: held.chain(excess).collect(),
         candidates: problem
             .solids_that_are(Presence::Forms)
@@ -90,6 +88,55 @@ pub fn water_taken(problem: &Problem, species: usize) -> f64 {
     sum.to_f64().unwrap_or(0.0)
 }
 
+/// Brings the numbers of a system up to those of its problem, of which nothing but `moved`
+/// is another than when it was built.
+pub fn renew(system: &mut System, problem: &Problem, moved: Sweep) {
+    let solids = problem.solids.len() - system.candidates.len();
+    if system.fixed.len() != problem.held.len() + solids {
+        *system = self::system(problem);
+        return;
+    }
+    totals(problem, &mut system.totals);
+    if moved == Sweep::Temperature {
+        for (species, &s) in system.species.iter_mut().zip(&problem.scope.dissolved) {
+            species.ln_k = ln_formation(problem, s);
+        }
+        system.activity = activity(problem);
+        let (fixed, solids) = (&mut system.fixed[problem.held.len()..], &problem.solids);
+        let excess = solids.iter().filter(|solid| solid.presence == Presence::Excess);
+        for (fixed, solid) in fixed.iter_mut().zip(excess) {
+            fixed.ln_value = -ln_formation(problem, solid.species);
+        }
+        let forming = solids.iter().filter(|solid| solid.presence == Presence::Forms);
+        for (candidate, solid) in system.candidates.iter_mut().zip(forming) {
+            candidate.ln_value = -ln_formation(problem, solid.species);
+        }
+    }
+    for (fixed, held) in system.fixed.iter_mut().zip(&problem.held) {
+        fixed.ln_value = ln_value(problem, held);
+    }
+}
+
+/// The total of each component, and the charge balance in the place of the proton's.
+fn totals(problem: &Problem, totals: &mut [f64]) {
+    for (total, amount) in totals.iter_mut().zip(&problem.amounts) {
+        *total = amount.total.unwrap_or(0.0);
+    }
+    totals[PROTON] = -(1..totals.len())
+        .map(|j| f64::from(problem.scope.components[j].formula.charge) * totals[j])
+        .sum::<f64>();
+}
+
+/// The value of `Σ row · x` that a held value sets, its activity coefficient left out.
+fn ln_value(problem: &Problem, held: &Held) -> f64 {
+    match held.what {
+        HeldWhat::Ph(value) | HeldWhat::Pe(value) => -value * LN_10,
+        HeldWhat::Pressure { species, atm: value }
+        | HeldWhat::Activity { species, value }
+        | HeldWhat::Concentration { species, value } => value.ln() - ln_formation(problem, species),
+    }
+}
+
 /// ln of the formation constant of a species of the scope from the components; zero for
 /// one that does not belong.
 pub fn ln_formation(problem: &Problem, species: usize) -> f64 {
@@ -101,7 +148,8 @@ pub fn ln_formation(problem: &Problem, species: usize) -> f64 {
 fn candidate(problem: &Problem, solid: &Solid) -> Option<Candidate> {
     let made = problem.scope.belonging.made[solid.species].as_ref()?;
     let ln_value = -ln_formation(problem, solid.species);
-    Some(Candidate { row: made.row.clone(), ln_value })
+    let water = water_taken(problem, solid.species);
+    Some(Candidate { row: made.row.clone(), ln_value, water })
 }
 
 fn fixed(problem: &Problem, held: &Held) -> Option<Fixed> {
@@ -110,49 +158,27 @@ fn fixed(problem: &Problem, held: &Held) -> Option<Fixed> {
         Some(scope.belonging.made[species].as_ref()?.row.clone())
     };
     let single = |j: usize| vec![(j, Rational64::one())];
-    Some(match held.what {
-        HeldWhat::Ph(ph) => Fixed {
-            row: single(PROTON),
-            ln_value: -ph * LN_10,
-            water: 0.0,
-            concentration_of: None,
-            supply: single(PROTON),
-        },
-        HeldWhat::Pe(pe) => {
+    let mut concentration_of = None;
+    let (row, supply) = match held.what {
+        HeldWhat::Ph(_) => (single(PROTON), single(PROTON)),
+        HeldWhat::Pe(_) => {
             let electron = scope.component("e-")?;
-            Fixed {
-                row: single(electron),
-                ln_value: -pe * LN_10,
-                water: 0.0,
-                concentration_of: None,
-                supply: supply(problem, electron),
-            }
+            (single(electron), supply(problem, electron))
         }
-        HeldWhat::Pressure { species, atm } => {
-            let row = row_of(species)?;
-            Fixed {
-                ln_value: atm.ln() - ln_formation(problem, species),
-                water: water_taken(problem, species),
-                concentration_of: None,
-                supply: row.clone(),
-                row,
-            }
+        HeldWhat::Pressure { species, .. } => (row_of(species)?, row_of(species)?),
+        HeldWhat::Activity { species, .. } => (row_of(species)?, supply(problem, held.releases?)),
+        HeldWhat::Concentration { species, .. } => {
+            concentration_of = Some(scope.row_of(species)?);
+            (row_of(species)?, supply(problem, held.releases?))
         }
-        HeldWhat::Activity { species, value } => Fixed {
-            row: row_of(species)?,
-            ln_value: value.ln() - ln_formation(problem, species),
-            water: water_taken(problem, species),
-            concentration_of: None,
-            supply: supply(problem, held.releases?),
-        },
-        HeldWhat::Concentration { species, value } => Fixed {
-            row: row_of(species)?,
-            ln_value: value.ln() - ln_formation(problem, species),
-            water: water_taken(problem, species),
-            concentration_of: Some(scope.row_of(species)?),
-            supply: supply(problem, held.releases?),
-        },
-    })
+    };
+    let water = match held.what {
+        HeldWhat::Ph(_) | HeldWhat::Pe(_) => 0.0,
+        HeldWhat::Pressure { species, .. }
+        | HeldWhat::Activity { species, .. }
+        | HeldWhat::Concentration { species, .. } => water_taken(problem, species),
+    };
+    Some(Fixed { row, ln_value: ln_value(problem, held), water, concentration_of, supply })
 }
 
 /// One mole more of a component's total, with what that means for the charge balance.

@@ -90,6 +90,17 @@ pub fn equilibrate(
     search.finish()
 }
 
+/// The system with those of its candidates that formed behind its held phases.
+pub fn assembled(mut system: System, formed: &[Option<usize>]) -> System {
+    let mut there: Vec<(usize, usize)> =
+        formed.iter().enumerate().filter_map(|(c, place)| Some(((*place)?, c))).collect();
+    there.sort_unstable();
+    let held = there.iter().filter_map(|&(_, c)| Some(held(system.candidates.get(c)?)));
+    let held: Vec<Fixed> = held.collect();
+    system.fixed.extend(held);
+    system
+}
+
 /// The candidates that are there.
 fn present(formed: &[Option<usize>]) -> Vec<usize> {
     (0..formed.len()).filter(|&c| formed[c].is_some()).collect()
@@ -107,7 +118,7 @@ pub fn is_settled(system: &System, formed: &[Option<usize>], answer: &Answer) ->
 /// ln of ion product over solubility product; none where something it is made of is absent,
 /// so that it cannot form.
 fn ln_saturation(candidate: &Candidate, answer: &Answer) -> Option<f64> {
-    let mut ln = -candidate.ln_value;
+    let mut ln = candidate.water * answer.ln_water - candidate.ln_value;
     for (j, n) in &candidate.row {
         let component = *answer.ln_components.get(*j)?;
         if !component.is_finite() {
@@ -332,6 +343,7 @@ fn held(candidate: &Candidate) -> Fixed {
     Fixed {
         row: candidate.row.clone(),
         ln_value: candidate.ln_value,
+        water: candidate.water,
         concentration_of: None,
         supply: candidate.row.clone(),
     }

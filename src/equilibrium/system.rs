@@ -100,6 +100,8 @@ pub struct Candidate {
     pub row: Row,
     /// The value of `Σ row · x` at saturation: less the ln of its formation constant.
     pub ln_value: f64,
+    /// As of [`Fixed`].
+    pub water: f64,
 }
 
 #[derive(Clone, Copy, Debug, PartialEq)]

@@ -1,5 +1,6 @@
 //! An answer as text for a terminal.
 
+use super::curve::Traced;
 use super::expectation::{asked, value_words, verdict};
 use super::figures::{
     celsius, concentration, decimals, percent, scale_unit, scientific, significant,
@@ -26,6 +27,7 @@ pub fn answer(
     checked: &Checked,
     stated: Stated,
     solved: &Solved,
+    curves: &[Traced],
     style: Style,
 ) -> String {
     let problem = &stated.outcome.problem;
@@ -45,6 +47,10 @@ pub fn answer(
         if !body.is_empty() {
             text += &format!("\n{}\n{body}", style.paint(Paint::Heading, title));
         }
+    }
+    for traced in curves {
+        let title = style.paint(Paint::Heading, &traced.title());
+        text += &format!("\n{title}\n{}", traced.text(problem, style));
     }
     text
 }

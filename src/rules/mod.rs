@@ -15,6 +15,7 @@ mod balances;
 mod cautions;
 mod closure;
 mod components;
+mod curves;
 mod files;
 mod formulas;
 mod quantities;
@@ -34,6 +35,7 @@ pub static FAMILIES: &[catalogue::Family] = &[
     closure::FAMILY,
     balances::FAMILY,
     answers::FAMILY,
+    curves::FAMILY,
     cautions::FAMILY,
     files::FAMILY,
     statements::FAMILY,

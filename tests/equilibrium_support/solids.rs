@@ -83,7 +83,7 @@ pub fn add_candidates(random: &mut Random, system: &mut System, count: usize) {
         let saturation = random.uniform(-6.0, 8.0);
         let ln_value = ln_product(system, &entries) - saturation * LN_10;
         rows.push(entries.clone());
-        system.candidates.push(Candidate { row: row(&entries), ln_value });
+        system.candidates.push(Candidate { row: row(&entries), ln_value, water: 0.0 });
     }
 }
 
@@ -94,7 +94,13 @@ pub fn hold_phase(random: &mut Random, system: &mut System) {
     neutral(&mut entries, &charges(system));
     let ln_value = ln_product(system, &entries) + random.uniform(-3.0, 3.0) * LN_10;
     let row = row(&entries);
-    system.fixed.push(Fixed { supply: row.clone(), row, ln_value, concentration_of: None });
+    system.fixed.push(Fixed {
+        supply: row.clone(),
+        row,
+        ln_value,
+        water: 0.0,
+        concentration_of: None,
+    });
 }
 
 /// log10 of ion product over solubility product; none where a component is absent.

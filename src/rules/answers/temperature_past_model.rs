@@ -30,6 +30,7 @@
 
 use crate::chemistry::activity::ActivityKind;
 use crate::chemistry::{interaction, water};
+use crate::problem::curve::Sweep;
 use crate::rules::catalogue::rule;
 use crate::rules::context::Context;
 use crate::rules::figures::celsius;
@@ -39,30 +40,37 @@ use crate::text::span::Place;
 rule!("temperature-past-model", Warning, "temperature_past_model.rs", find);
 
 fn find(context: &Context, found: &mut Vec<Finding<Place>>) {
-    let kelvin = context.problem.kelvin;
-    let Some(at) = context.problem.temperature_at else { return };
+    let problem = context.problem;
+    if let Some(at) = problem.temperature_at {
+        found.extend(past(problem.activity, problem.kelvin).map(|message| RULE.at(at, message)));
+    }
+    let curves = problem.curves.iter().filter(|curve| curve.over == Sweep::Temperature);
+    for curve in curves {
+        let message = past(problem.activity, curve.from).or_else(|| past(problem.activity, curve.to));
+        found.extend(message.map(|message| RULE.at(curve.at, message)));
+    }
+}
+
+fn past(model: ActivityKind, kelvin: f64) -> Option<String> {
     if water::in_range(kelvin) {
-        let fits = interaction::TEMPERATURES.contains(&kelvin);
-        if context.problem.activity == ActivityKind::Pitzer && !fits {
-            let message = format!(
+        let fits = model != ActivityKind::Pitzer || interaction::TEMPERATURES.contains(&kelvin);
+        return (!fits).then(|| {
+            format!(
                 "{} lies outside the 15 to 35 °C in which `pitzer` takes its parameters, those \
                  for 25 °C",
                 celsius(kelvin),
-            );
-            found.push(RULE.at(at, message));
-        }
-        return;
+            )
+        });
     }
     let nearer = if kelvin < *water::RANGE.start() {
         *water::RANGE.start()
     } else {
         *water::RANGE.end()
     };
-    let message = format!(
+    Some(format!(
         "{} lies outside the 0 to 100 °C for which water's own properties are published here; \
          those at {} are used",
         celsius(kelvin),
         celsius(nearer),
-    );
-    found.push(RULE.at(at, message));
+    ))
 }

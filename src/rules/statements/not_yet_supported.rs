@@ -43,7 +43,14 @@ fn find(context: &Context, found: &mut Vec<Finding<Place>>) {
 /// What can be done meanwhile.
 fn instead(what: &str) -> &'static str {
     match what {
-        "curve" => "write a case for each value that matters",
+        "precipitate" => {
+            "`expect saturation index CaCO3(s) < 0` says whether the solid would form"
+        }
+        "saturate with" => {
+            "hold the ion that the solid sets, as in `hold {Ca^2+} = 1e-4`, \
+             and look at the saturation index"
+        }
+        "curve over blend" => "write a case for each share that matters",
         _ => "try doses with `add`, one in each case, and state the target with `expect`",
     }
 }
