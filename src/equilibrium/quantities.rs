@@ -48,10 +48,20 @@ impl Solved {
 
     /// What each dissolved species holds of a component, by row of the stoichiometry.
     pub fn shares(&self, component: usize) -> impl Iterator<Item = (usize, f64)> + '_ {
+        self.counts(component).map(|(i, n)| (i, n * self.answer.concentrations[i]))
+    }
+
+    /// How often each dissolved species holds a component, where it does.
+    fn counts(&self, component: usize) -> impl Iterator<Item = (usize, f64)> + '_ {
         self.system.species.iter().enumerate().filter_map(move |(i, species)| {
             let at = species.row.iter().find(|&&(j, _)| j == component)?;
-            Some((i, at.1.to_f64()? * self.answer.concentrations[i]))
+            Some((i, at.1.to_f64()?))
         })
+    }
+
+    /// The same sum over something else than concentrations, given by row.
+    pub(super) fn total_of(&self, component: usize, of: impl Fn(usize) -> f64) -> f64 {
+        self.counts(component).map(|(i, n)| n * of(i)).sum()
     }
 
     /// Left less right of a written balance at the answer, mol per litre or kilogram.
@@ -75,13 +85,18 @@ impl Solved {
 
     /// Charge of all cations and of all anions, both positive, eq per litre or kilogram.
     pub fn charges(&self) -> (f64, f64) {
+        self.charges_of(|row| self.answer.concentrations[row])
+    }
+
+    /// The same sums over something else than concentrations, given by row.
+    pub(super) fn charges_of(&self, of: impl Fn(usize) -> f64) -> (f64, f64) {
         let mut sums = (0.0, 0.0);
-        for (species, c) in self.system.species.iter().zip(&self.answer.concentrations) {
-            let charge = f64::from(species.charge) * c;
+        for (row, species) in self.system.species.iter().enumerate() {
+            let charge = f64::from(species.charge);
             if charge > 0.0 {
-                sums.0 += charge;
+                sums.0 += charge * of(row);
             } else {
-                sums.1 -= charge;
+                sums.1 -= charge * of(row);
             }
         }
         sums
@@ -98,23 +113,21 @@ impl Solved {
     /// acids of pKa 4.5 and above (25 °C, zero ionic strength), over proton donors. The
     /// zero level of each component is the form that dominates at pH 4.5.
     pub fn alkalinity(&self, problem: &Problem) -> f64 {
+        self.alkalinity_of(problem, |row| self.answer.concentrations[row])
+    }
+
+    /// The same sum over something else than concentrations, given by row.
+    pub(super) fn alkalinity_of(&self, problem: &Problem, of: impl Fn(usize) -> f64) -> f64 {
         let levels = zero_levels(problem);
-        self.system
-            .species
-            .iter()
-            .zip(&self.answer.concentrations)
-            .map(|(species, c)| {
-                let deficit: f64 = species
-                    .row
-                    .iter()
-                    .map(|&(j, n)| {
-                        let n = n.to_f64().unwrap_or(0.0);
-                        if j == PROTON { -n } else { n * levels[j] }
-                    })
-                    .sum();
-                deficit * c
-            })
-            .sum()
+        let rows = self.system.species.iter().enumerate();
+        rows.map(|(row, species)| {
+            let protons = |&(j, n): &(usize, num_rational::Rational64)| {
+                let n = n.to_f64().unwrap_or(0.0);
+                if j == PROTON { -n } else { n * levels[j] }
+            };
+            species.row.iter().map(protons).sum::<f64>() * of(row)
+        })
+        .sum()
     }
 
     /// mol per litre or kilogram of strong base for one unit of pH.

@@ -15,6 +15,7 @@ mod expect;
 pub mod files;
 mod held;
 pub mod import;
+pub mod input;
 pub mod model;
 pub mod quantity;
 pub mod reaction;

@@ -12,7 +12,7 @@ use crate::chemistry::formula::Formula;
 use crate::chemistry::quantity::Scale;
 use crate::text::span::Place;
 
-#[derive(Debug)]
+#[derive(Clone, Debug)]
 pub struct Problem {
     pub title: Option<String>,
     pub title_at: Option<Place>,
@@ -81,6 +81,13 @@ pub struct Held {
     pub what: HeldWhat,
     /// The component whose total it makes unknown; none for pH, pe and gases.
     pub releases: Option<usize>,
+}
+
+impl Held {
+    /// Whether a pH is held by way of the pOH, so that it moves with water's own constant.
+    pub fn is_by_poh(&self) -> bool {
+        matches!(self.what, HeldWhat::Ph(_)) && self.words == "pOH"
+    }
 }
 
 #[derive(Clone, Copy, Debug, PartialEq)]
