@@ -137,42 +137,48 @@ impl<'a> Derivatives<'a> {
 
     /// The derivative of a quantity along a movement of the state.
     pub fn along(&self, sought: Sought, movement: &Movement) -> Option<f64> {
-        let (problem, solved) = (self.problem, self.solved);
+        movement.of(self.problem, self.solved, sought)
+    }
+}
+
+impl Movement {
+    /// The derivative of a quantity of the answer that moves. None where it has none.
+    pub fn of(&self, problem: &Problem, solved: &Solved, sought: Sought) -> Option<f64> {
         let scope = &problem.scope;
         let concentrations = &solved.answer.concentrations;
-        let moved = |row: usize| concentrations[row] * movement.response.ln_concentrations[row];
+        let moved = |row: usize| concentrations[row] * self.response.ln_concentrations[row];
         let value = match sought {
-            Sought::Ph => movement.response.ph(),
-            Sought::Poh => -self.ln_activity(scope.find("OH-")?, movement)? / LN_10,
-            Sought::Pe => -movement.response.ln_components[scope.component("e-")?] / LN_10,
+            Sought::Ph => self.response.ph(),
+            Sought::Poh => -self.ln_activity(problem, scope.find("OH-")?)? / LN_10,
+            Sought::Pe => -self.response.ln_components[scope.component("e-")?] / LN_10,
             Sought::Concentration(species) => moved(scope.row_of(species)?),
             Sought::Activity(species) | Sought::Pressure(species) => {
-                solved.value(problem, sought)? * self.ln_activity(species, movement)?
+                solved.value(problem, sought)? * self.ln_activity(problem, species)?
             }
             Sought::SaturationIndex(species) => {
                 solved.value(problem, sought).filter(|index| index.is_finite())?;
-                self.ln_activity(species, movement)? / LN_10
+                self.ln_activity(problem, species)? / LN_10
             }
             Sought::Total(component) => solved.total_of(component, moved),
             Sought::Fraction { species, component } => {
                 let fraction = solved.value(problem, sought)?;
                 let total = solved.total(component);
                 let of_total = solved.total_of(component, moved);
-                let by_ln = movement.response.ln_concentrations[scope.row_of(species)?];
+                let by_ln = self.response.ln_concentrations[scope.row_of(species)?];
                 fraction * (by_ln - of_total / total)
             }
             Sought::Alkalinity => solved.alkalinity_of(problem, moved),
             Sought::IonicStrength => match solved.system.ionic_strength {
                 // With ideal activities a given one goes nowhere, and the answer's own is told.
                 IonicStrength::Given(_) if needs_activity(&solved.system) => {
-                    movement.push.ionic_strength
+                    self.push.ionic_strength
                 }
                 _ => {
                     let ions = solved.system.species.iter().enumerate();
                     ions.map(|(row, s)| 0.5 * f64::from(s.charge).powi(2) * moved(row)).sum()
                 }
             },
-            Sought::BufferCapacity => self.buffer_capacity(movement)?,
+            Sought::BufferCapacity => self.buffer_capacity(problem, solved)?,
             Sought::ChargeImbalance { equivalents } => {
                 let (cations, anions) = solved.charges();
                 let (up, down) = solved.charges_of(moved);
@@ -188,23 +194,23 @@ impl<'a> Derivatives<'a> {
     }
 
     /// Of ln activity of a species of the scope.
-    fn ln_activity(&self, species: usize, movement: &Movement) -> Option<f64> {
-        let made = self.problem.scope.belonging.made[species].as_ref()?;
+    fn ln_activity(&self, problem: &Problem, species: usize) -> Option<f64> {
+        let made = problem.scope.belonging.made[species].as_ref()?;
         if species == WATER {
             return Some(0.0);
         }
-        let components = &movement.response.ln_components;
+        let components = &self.response.ln_components;
         let sum: f64 =
             made.row.iter().map(|&(j, n)| n.to_f64().unwrap_or(0.0) * components[j]).sum();
-        Some(movement.push.ln_formation[species] + sum)
+        Some(self.push.ln_formation[species] + sum)
     }
 
     /// The buffer capacity is a derivative itself, so this is one of second order: the
     /// central difference of exact capacities at two states on the tangent. How the path
     /// bends counts the same on both sides, so no state has to be solved; what is left is of
     /// the square of [`TANGENT`].
-    fn buffer_capacity(&self, movement: &Movement) -> Option<f64> {
-        let Movement { push, response, .. } = movement;
+    fn buffer_capacity(&self, problem: &Problem, solved: &Solved) -> Option<f64> {
+        let Movement { push, response, .. } = self;
         let logarithms = [
             &response.ln_components,
             &response.ln_concentrations,
@@ -213,7 +219,7 @@ impl<'a> Derivatives<'a> {
             &push.ln_values,
         ];
         let mut largest = push.kelvin.abs().max(response.ln_ionic_strength.abs());
-        if let IonicStrength::Given(value) = self.solved.system.ionic_strength {
+        if let IonicStrength::Given(value) = solved.system.ionic_strength {
             largest = largest.max((push.ionic_strength / value).abs());
         }
         largest = logarithms.into_iter().flatten().fold(largest, |most, ln| most.max(ln.abs()));
@@ -222,8 +228,8 @@ impl<'a> Derivatives<'a> {
         }
         let step = TANGENT / largest;
         let at = |by: f64| {
-            let system = push.moved(self.problem, &self.solved.system, by);
-            let answer = moved_answer(&self.solved.answer, &system, response, by);
+            let system = push.moved(problem, &solved.system, by);
+            let answer = moved_answer(&solved.answer, &system, response, by);
             buffer_capacity(&system, &answer)
         };
         Some((at(step)? - at(-step)?) / (2.0 * step))

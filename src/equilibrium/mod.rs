@@ -4,6 +4,7 @@
 mod basis;
 pub mod build;
 pub mod charge;
+pub mod confidence;
 mod coordinates;
 pub mod derivative;
 mod direction;

@@ -81,14 +81,19 @@ impl Push {
             }
             Input::Temperature => {
                 push.kelvin = 1.0;
-                let by_kelvin: Vec<f64> = (problem.scope.reactions.iter())
+                let slopes: Vec<f64> = (problem.scope.reactions.iter())
                     .map(|reaction| {
                         by_kelvin(problem.kelvin, |kelvin| {
                             reaction.log_k(kelvin).map_or(0.0, |(log_k, _)| log_k)
                         })
                     })
                     .collect();
-                push.constants(problem, |reaction| by_kelvin[reaction]);
+                push.constants(problem, |reaction| slopes[reaction]);
+                // Amounts that the density of water brought onto the file's scale.
+                let by_density = by_kelvin(problem.kelvin, |kelvin| water::density(kelvin).ln());
+                for &(input, amount) in &problem.by_ln_density {
+                    push.add(amount * by_density, &Push::new(problem, system, answer, input)?);
+                }
                 let i = answer.ionic_strength;
                 push.coefficients(system, |charge, size| {
                     by_kelvin_of(problem, |model| model.ln_gamma(charge, size, i).0)

@@ -6,11 +6,13 @@ use num_traits::{Signed, ToPrimitive};
 use super::case::CaseResolver;
 use super::defect::{DefectKind, Expected};
 use super::effective::Written;
+use super::input::Input;
 use super::model::{Amount, AmountSource, Problem, Reagent};
 use super::resolve::differences;
 use super::scope::PROTON;
 use super::sparse::{Row, add_scaled};
 use super::split::{Split, split};
+use super::uncertain::Carries;
 use crate::chemistry::formula::Formula;
 use crate::text::parse::KEYWORDS;
 use crate::text::span::Place;
@@ -85,6 +87,9 @@ fn total(
     }
     problem.amounts[j] =
         Amount { total: Some(read.value), at: Some(at), source: AmountSource::Total };
+    let carries = if formula.is_electron() { Carries::Signed } else { Carries::Positive };
+    let words = format!("total {}", formula.name);
+    case.keep_uncertainty(problem, (written, value), (Input::Total(j), carries), &read, words);
     Some(())
 }
 
@@ -124,11 +129,15 @@ fn add(
             (row, None)
         }
     };
-    if let Some(known) = problem.reagents.iter_mut().find(|r| r.formula.name == formula.name) {
-        known.amount += read.value;
-        return Some(());
+    let known = problem.reagents.iter().position(|r| r.formula.name == formula.name);
+    let index = known.unwrap_or(problem.reagents.len());
+    let words = format!("add {}", formula.name);
+    let carries = (Input::Reagent(index), Carries::Positive);
+    case.keep_uncertainty(problem, (written, amount), carries, &read, words);
+    match known {
+        Some(known) => problem.reagents[known].amount += read.value,
+        None => problem.reagents.push(Reagent { formula, at, amount: read.value, row, giving }),
     }
-    problem.reagents.push(Reagent { formula, at, amount: read.value, row, giving });
     Some(())
 }
 

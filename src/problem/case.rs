@@ -12,10 +12,12 @@ use super::defect::{Defect, DefectKind, Expected};
 use super::effective::Written;
 use super::expect;
 use super::held;
+use super::input::Input;
 use super::model::Problem;
 use super::reaction::{LogK, Origin, STANDARD, TemperatureIssue};
 use super::resolve::Resolver;
 use super::scope::Scope;
+use super::uncertain::{Carries, of_constants};
 use super::written;
 use crate::chemistry::activity::ActivityKind;
 use crate::chemistry::formula::Formula;
@@ -64,6 +66,8 @@ pub fn resolve(statements: &[Written], merging: Vec<Defect>, scope: Arc<Scope>) 
         balances: Vec::new(),
         expectations: Vec::new(),
         log_k: Vec::new(),
+        uncertain: Vec::new(),
+        by_ln_density: Vec::new(),
         defects: Vec::new(),
         states_problem: statements.iter().any(|w| states_a_problem(w.statement())),
         blocked: false,
@@ -73,6 +77,7 @@ pub fn resolve(statements: &[Written], merging: Vec<Defect>, scope: Arc<Scope>) 
     amounts::read(&mut case, &mut problem);
     held::read(&mut case, &mut problem);
     amounts::close(&mut case, &mut problem);
+    problem.uncertain.extend(of_constants(&problem));
     problem.balances = written::read(&mut case, &problem);
     problem.expectations = expect::read(&mut case);
     // A case has only its own to add to what the base was told.
@@ -90,7 +95,6 @@ pub fn resolve(statements: &[Written], merging: Vec<Defect>, scope: Arc<Scope>) 
             Statement::Hold { by: Some(_), .. } => "hold … by",
             Statement::Blend { .. } => "blend",
             Statement::Add { stock: Some(_), .. } => "add … of",
-            Statement::Expect { confidence: Some(_), .. } => "confidence",
             _ => continue,
         };
         let at = written.whole();
@@ -114,9 +118,12 @@ fn conditions(case: &mut CaseResolver, problem: &mut Problem) {
             }
             Statement::Temperature { value } => {
                 problem.temperature_at = Some(written.place(value.span));
-                if let Some(kelvin) = case.temperature(written, value) {
-                    problem.kelvin = kelvin;
-                    case.kelvin = kelvin;
+                if let Some(read) = case.resolver.kelvin_read(written, value) {
+                    problem.kelvin = read.value;
+                    case.kelvin = read.value;
+                    let carries = (Input::Temperature, Carries::Temperature);
+                    let words = "temperature".into();
+                    case.keep_uncertainty(problem, (written, value), carries, &read, words);
                 }
             }
             Statement::Activity { model } => {
@@ -137,8 +144,11 @@ fn conditions(case: &mut CaseResolver, problem: &mut Problem) {
     for written in case.statements {
         if let Statement::IonicStrength { value } = written.statement() {
             let read = case.concentration(written, value, None, Expected::Concentration);
-            problem.ionic_strength =
-                read.filter(|_| case.not_negative(written, value)).map(|read| read.value);
+            let Some(read) = read.filter(|_| case.not_negative(written, value)) else { continue };
+            problem.ionic_strength = Some(read.value);
+            let carries = (Input::IonicStrength, Carries::Positive);
+            let words = "ionic strength".into();
+            case.keep_uncertainty(problem, (written, value), carries, &read, words);
         }
     }
 }

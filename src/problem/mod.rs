@@ -26,4 +26,5 @@ pub mod sets;
 pub mod sparse;
 mod split;
 pub mod stoichiometry;
+pub mod uncertain;
 mod written;

@@ -5,8 +5,10 @@ use std::sync::Arc;
 use num_rational::Rational64;
 
 use super::defect::Defect;
+use super::input::Input;
 use super::scope::Scope;
 use super::sparse::Row;
+use super::uncertain::Uncertain;
 use crate::chemistry::activity::ActivityKind;
 use crate::chemistry::formula::Formula;
 use crate::chemistry::quantity::Scale;
@@ -32,6 +34,11 @@ pub struct Problem {
     pub expectations: Vec<Expectation>,
     /// log10 K of each reaction of the scope at `kelvin`; zero where it is not in use.
     pub log_k: Vec<f64>,
+    /// Every input that carries a `±`.
+    pub uncertain: Vec<Uncertain>,
+    /// Inputs that were converted with the density of water, and their derivatives by its
+    /// logarithm.
+    pub by_ln_density: Vec<(Input, f64)>,
     pub defects: Vec<Defect>,
     /// Whether there is a problem to solve; a file of definitions alone states none.
     pub states_problem: bool,
@@ -165,6 +172,8 @@ pub struct Expectation {
     /// In canonical words, such as `[NH3]`.
     pub words: String,
     pub limit: Limit,
+    /// The probability with which the limit has to hold, where one is asked for.
+    pub confidence: Option<f64>,
     /// The unit as written, with its value in base units; a plain number has none.
     pub unit: Option<ShownUnit>,
     pub source: Option<String>,

@@ -5,16 +5,16 @@
 use num_traits::ToPrimitive;
 use serde::Serialize;
 
-use super::expectation::verdict;
+use super::expectation::{Standing, verdict};
 use super::sheet::{Ledger, Sheet};
 use super::sheet_json::SheetJson;
 use super::source::{FileReport, Source, Stated};
+use super::uncertainty::{self, UncertaintyJson};
 use crate::chemistry::formula::Phase;
 use crate::chemistry::quantity::Scale;
 use crate::chemistry::water;
 use crate::equilibrium::quantities::Solved;
 use crate::equilibrium::system::Failure;
-use crate::equilibrium::uncertainty::ph_uncertainty;
 use crate::problem::model::{Problem, Sought};
 use crate::problem::scope::PROTON;
 use crate::rules::check::{Checked, locate_place};
@@ -60,6 +60,7 @@ struct Answer<'a> {
     doses: Vec<Dose<'a>>,
     balances: Vec<SheetJson>,
     expectations: Vec<Expectation<'a>>,
+    uncertainties: Vec<UncertaintyJson<'a>>,
 }
 
 #[derive(Serialize)]
@@ -112,6 +113,11 @@ struct Expectation<'a> {
     quantity: &'a str,
     #[serde(skip_serializing_if = "Option::is_none")]
     value: Option<f64>,
+    #[serde(skip_serializing_if = "Option::is_none")]
+    standard_uncertainty: Option<f64>,
+    /// That the true value meets it.
+    #[serde(skip_serializing_if = "Option::is_none")]
+    probability: Option<f64>,
     met: bool,
     line: usize,
 }
@@ -169,7 +175,7 @@ fn answer<'a>(
         activity_model: problem.activity.name(),
         scale: super::figures::scale_unit(problem.scale),
         ph: value(Sought::Ph),
-        ph_uncertainty: ph_uncertainty(problem, solved),
+        ph_uncertainty: outcome.ph_uncertainty(),
         ionic_strength: value(Sought::IonicStrength),
         alkalinity: value(Sought::Alkalinity),
         buffer_capacity: value(Sought::BufferCapacity),
@@ -195,17 +201,20 @@ fn answer<'a>(
             .expectations
             .iter()
             .map(|expectation| {
-                let verdict = verdict(problem, solved, expectation);
+                let verdict = verdict(outcome, expectation);
                 Expectation {
                     quantity: &expectation.words,
                     value: finite(verdict.value),
-                    met: verdict.met,
+                    standard_uncertainty: verdict.standard_uncertainty,
+                    probability: verdict.probability,
+                    met: verdict.standing == Standing::Met,
                     line: source
                         .region(&locate_place(&checked.document, section, expectation.at))
                         .line,
                 }
             })
             .collect(),
+        uncertainties: uncertainty::json(source, checked, section, outcome),
     }
 }
 

@@ -11,9 +11,10 @@ use crate::report::figures::{
     celsius, charge, concentration, decimals, log10_of_exp, percent, significant,
 };
 use crate::report::inline::Hover;
+use crate::report::uncertainty;
 use crate::rules::check::Checked;
 use crate::rules::outcome::Outcome;
-use crate::text::span::{Part, Span};
+use crate::text::span::{Part, Place, Span};
 use crate::text::tree::{ConstantKind, Name, Placed, Statement};
 
 /// What is known of the thing at an offset of the file, or just before it.
@@ -49,6 +50,13 @@ pub fn hover(checked: &Checked, offset: usize) -> Option<Hover> {
             let markdown = reaction_words(outcome, r, reaction);
             return Some(Hover { range: range(tree.equation), markdown });
         }
+    }
+    if let Statement::Expect { .. } = &placed.parsed.statement {
+        let part = if section == 0 { Part::Base } else { Part::Case };
+        let here = |at: Place| at.section == part && at.statement as usize == index;
+        let expectation = outcome.problem.expectations.iter().find(|e| here(e.at))?;
+        let markdown = uncertainty::hover(outcome, expectation)?;
+        return Some(Hover { range: range(expectation.at.span), markdown });
     }
     None
 }
