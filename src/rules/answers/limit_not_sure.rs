@@ -56,7 +56,7 @@ fn find(context: &Context, found: &mut Vec<Finding<Place>>) {
         }
         let Some((at, limit_words)) = written(context, expectation) else { continue };
         let relation = match limit {
-            Limit::Within { .. } => "as near to",
+            Limit::Within { .. } => "within",
             Limit::Below { .. } => "below",
             Limit::Above { .. } => "above",
             Limit::Between { .. } => "between",
