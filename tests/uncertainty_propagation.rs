@@ -70,10 +70,14 @@ fn species(problem: &Problem, name: &str) -> usize {
     problem.scope.find(name).unwrap()
 }
 
-/// Holds every quantity named against sampling. `bent` is how far, as a share of itself, the
-/// standard deviation may be off for the curvature that first order leaves out: what was
-/// found with 100,000 samples, and a margin.
-fn agrees(name: &str, text: &str, bent: f64, sought: impl Fn(&Problem) -> Vec<Sought>) {
+/// How far curvature, which first order leaves out, may move a standard deviation, as a share
+/// of it, and a mean, as a share of the standard deviation. With 25,000 samples of these
+/// problems the first was within the error of sampling, and the second up to 0.07 for
+/// concentrations that go as a power of what is uncertain by some percent.
+const BENT: (f64, f64) = (0.02, 0.1);
+
+/// Holds every quantity named against sampling.
+fn agrees(name: &str, text: &str, sought: impl Fn(&Problem) -> Vec<Sought>) {
     let case = Case::new(text);
     let sought = sought(&case.problem);
     let found = sampled(&case, &sought, 20261201);
@@ -83,10 +87,10 @@ fn agrees(name: &str, text: &str, bent: f64, sought: impl Fn(&Problem) -> Vec<So
         let n = samples() as f64;
         // Four standard errors of a mean and of a standard deviation.
         let apart = (deviation / u - 1.0).abs();
-        let allowed = 4.0 / (2.0 * n).sqrt() + bent;
+        let allowed = 4.0 / (2.0 * n).sqrt() + BENT.0;
         assert!(apart <= allowed, "{name}, {sought:?}: {deviation} sampled, {u} propagated");
         let off = (mean - budget.value).abs() / u;
-        let allowed = 4.0 / n.sqrt() + bent;
+        let allowed = 4.0 / n.sqrt() + BENT.1;
         assert!(off <= allowed, "{name}, {sought:?}: mean {mean}, value {}", budget.value);
         if std::env::var_os("LYATE_SAMPLES").is_some() {
             println!("{name}, {sought:?}: deviation off by {apart:.4}, mean by {off:.4} u");
@@ -103,7 +107,7 @@ fn a_dosed_water_agrees_with_sampling() {
          reaction NH4+ <=> NH3 + H+, pKa = 9.25 ± 0.02, enthalpy = 52.1 ± 0.5 kJ/mol, \
          source \"ours\"\n\
          add (NH4)2SO4 12 ± 2 % mmol/L\nadd NaOH 5 ± 0.05 mmol/L\nadd NaOH 4 ± 0.1 mmol/L\n";
-    agrees("dosed, Davies", text, 0.02, |problem| {
+    agrees("dosed, Davies", text, |problem| {
         vec![
             Sought::Ph,
             Sought::Concentration(species(problem, "NH3")),
@@ -119,7 +123,7 @@ fn a_dosed_water_agrees_with_sampling() {
 fn an_open_water_agrees_with_sampling() {
     let text = "use aqueous\ntemperature 12 ± 1 °C\ncomponent CO3^2-, Na+, Cl-\n\
          add NaHCO3 2 ± 0.04 mmol/L\nadd NaCl 5 ± 0.5 mmol/L\nhold CO2(g) = 420 ± 30 µatm\n";
-    agrees("open", text, 0.02, |problem| {
+    agrees("open", text, |problem| {
         vec![
             Sought::Ph,
             Sought::Total(problem.scope.component("CO3^2-").unwrap()),
@@ -138,7 +142,7 @@ fn an_analysis_with_a_measured_ph_agrees_with_sampling() {
          total CO3^2- = 62 ± 2 mg/L as C\ntotal Ca^2+ = 205 ± 5 mg/L as CaCO3\n\
          total Na+ = 62 ± 2 mg/L\ntotal Cl- = 40 ± 2 mg/L\ntotal SO4^2- = 48 ± 2 mg/L\n\
          hold pH = 7.40 ± 0.05\n";
-    agrees("analysis", text, 0.02, |problem| {
+    agrees("analysis", text, |problem| {
         vec![
             Sought::Ph,
             Sought::SaturationIndex(species(problem, "CaCO3(s)")),
@@ -156,7 +160,7 @@ fn a_medium_of_given_strength_agrees_with_sampling() {
          ionic strength 0.08 ± 0.01 mol/L\ncomponent PO4^3-, Na+, F-\n\
          reaction HF <=> F- + H+, K = 6.8e-4 ± 5 %, enthalpy = -13 ± 1 kJ/mol, source \"ours\"\n\
          add H3PO4 20 ± 0.3 mmol/L\nadd HF 2 ± 0.1 mmol/L\nadd NaOH 30 ± 0.3 mmol/L\n";
-    agrees("given ionic strength", text, 0.02, |problem| {
+    agrees("given ionic strength", text, |problem| {
         vec![
             Sought::Ph,
             Sought::Concentration(species(problem, "HPO4^2-")),
@@ -171,7 +175,7 @@ fn a_held_ion_agrees_with_sampling() {
     let text = "use aqueous\ntemperature 40 ± 2 °C\ncomponent F-, Na+, Cl-\n\
          reaction HF <=> F- + H+, pKa = 3.17 ± 0.03, enthalpy = -13 kJ/mol, source \"ours\"\n\
          add NaCl 20 ± 0.4 mmol/L\nadd HCl 2 ± 0.05 mmol/kg\nhold [HF] = 1 ± 0.05 mmol/L\n";
-    agrees("held", text, 0.02, |problem| {
+    agrees("held", text, |problem| {
         vec![Sought::Ph, Sought::Total(problem.scope.component("F-").unwrap())]
     });
 }

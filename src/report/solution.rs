@@ -5,6 +5,7 @@
 use num_traits::ToPrimitive;
 use serde::Serialize;
 
+use super::cautions::{self, CautionJson};
 use super::expectation::{Standing, verdict};
 use super::sheet::{Ledger, Sheet};
 use super::sheet_json::SheetJson;
@@ -61,6 +62,7 @@ struct Answer<'a> {
     balances: Vec<SheetJson>,
     expectations: Vec<Expectation<'a>>,
     uncertainties: Vec<UncertaintyJson<'a>>,
+    cautions: Vec<CautionJson<'a>>,
 }
 
 #[derive(Serialize)]
@@ -215,6 +217,7 @@ fn answer<'a>(
             })
             .collect(),
         uncertainties: uncertainty::json(source, checked, section, outcome),
+        cautions: cautions::json(outcome),
     }
 }
 
