@@ -216,3 +216,32 @@ fn a_dose_that_follows_its_target_keeps_it() {
 fn moved_value(problem: &Problem, sought: Sought) -> f64 {
     solve_again(problem).value(problem, sought).unwrap()
 }
+
+/// Where a file mixes its scales, the density of water converts amounts, and moves with the
+/// temperature: files of three temperatures, read whole.
+#[test]
+fn amounts_converted_by_density_move_with_the_temperature() {
+    let at = |celsius: f64| {
+        Case::new(&format!(
+            "use aqueous\ntemperature {celsius} °C\ncomponent NH3, Na+, Cl-\n\
+             add NaCl 20 mmol/L\nadd NH4Cl 300 mmol/kg\nadd NaOH 40 mmol/kg\nhold pH = 9\n"
+        ))
+    };
+    let (low, case, high) = (at(59.9), at(60.0), at(60.1));
+    let derivatives = Derivatives::new(&case.problem, &case.solved).unwrap();
+    let value = |case: &Case, sought| case.solved.value(&case.problem, sought).unwrap();
+    for sought in quantities(&case.problem) {
+        let difference = (value(&high, sought) - value(&low, sought)) / 0.2;
+        let found = derivatives.of(sought, Input::Temperature).unwrap();
+        let size = value(&case, sought).abs().max(scale(sought));
+        let apart = (found - difference).abs();
+        assert!(
+            apart <= 1e-5 * difference.abs() + 1e-10 * size,
+            "{sought:?}: {found}, {difference}"
+        );
+    }
+    let chloride = Sought::Total(case.problem.scope.component("Cl-").unwrap());
+    let by = derivatives.of(chloride, Input::Temperature).unwrap();
+    // Water thins by 5.2e-4 of itself per kelvin at 60 °C (common tables, recalled).
+    assert!((by / (0.3 * 0.983) + 5.2e-4).abs() < 0.1e-4, "{by}");
+}
