@@ -217,6 +217,45 @@ fn definitions_alone_have_no_answer() {
     assert_eq!(code(&output), 0);
 }
 
+/// Every input with a `±` in each answer, with its share, and a limit that holds too narrowly.
+#[test]
+fn uncertain_answers_and_their_budgets() {
+    let text = "\
+# Feed of an ammonia stripper. Invented figures.
+use aqueous
+component NH3, SO4^2-, Na+
+temperature 18 ± 0.5 °C
+reaction NH4+ <=> NH3 + H+, pKa = 9.25 ± 0.02, enthalpy = 52.1 ± 0.5 kJ/mol, source \"sheet 3\"
+add (NH4)2SO4 12 ± 2 % mmol/L
+add NaOH 5.0 ± 0.05 mmol/L
+add NaOH 4.0 ± 0.1 mmol/L
+expect pH < 9.35, confidence 95 %
+expect [NH3] < 130 mg/L as N
+";
+    let solve = ["solve", "feed.lyate"];
+    insta::assert_snapshot!(session(&[("feed.lyate", text)], &solve));
+    let folder = folder(&[("feed.lyate", text)]);
+    let output = run(folder.path(), &["solve", "feed.lyate", "--output", "json"]);
+    assert_eq!(code(&output), 1);
+    let report: Value = serde_json::from_slice(&output.stdout).unwrap();
+    let solution = &report["solutions"][0];
+    let number = |value: &Value| value.as_f64().unwrap();
+    let ph = &solution["uncertainties"][0];
+    assert_eq!(ph["quantity"], "pH");
+    assert_eq!(number(&ph["standard_uncertainty"]), number(&solution["ph_uncertainty"]));
+    let shares = ph["budget"].as_array().unwrap();
+    let sum: f64 = shares.iter().map(|share| number(&share["percent"])).sum();
+    assert!((sum - 100.0).abs() < 1e-9, "{sum}");
+    let of = |line: u64| shares.iter().find(|share| share["line"] == line).unwrap();
+    // Two lines of one reagent, each by what it was weighed to.
+    let ratio = number(&of(8)["contribution"]) / number(&of(7)["contribution"]);
+    assert!((ratio - 2.0).abs() < 1e-9, "{ratio}");
+    let limit = &solution["expectations"][0];
+    let probability = number(&limit["probability"]);
+    assert!(limit["met"] == false && probability > 0.8 && probability < 0.95, "{limit}");
+    assert_eq!(solution["expectations"][1]["met"], true);
+}
+
 /// The pH is uncertain by what its constants' uncertainties move it, in quadrature.
 #[test]
 fn the_uncertainty_of_the_ph_is_what_constants_move() {

@@ -6,7 +6,7 @@ use super::terminal::style;
 use crate::report::answer::{answer, conditions, overview};
 use crate::report::cautions;
 use crate::report::curve::{Traced, traced};
-use crate::report::expectation::verdict;
+use crate::report::expectation::is_met;
 use crate::report::solution::json;
 use crate::report::source::{FileReport, Stated};
 use crate::report::style::{Paint, Style};
@@ -75,9 +75,8 @@ pub fn run(arguments: &Arguments) -> Result<Reply, Complaint> {
 
 fn is_good(stated: &Stated) -> bool {
     let problem = &stated.outcome.problem;
-    stated.outcome.solved().is_some_and(|solved| {
-        problem.expectations.iter().all(|expectation| verdict(problem, solved, expectation).met)
-    })
+    stated.outcome.solved().is_some()
+        && problem.expectations.iter().all(|expectation| is_met(stated.outcome, expectation))
 }
 
 fn text(file: &FileReport, problems: &[Stated], curves: &[Vec<Traced>], style: Style) -> String {

@@ -52,7 +52,7 @@ pub fn system(problem: &Problem) -> System {
             .solids_that_are(Presence::Forms)
             .filter_map(|solid| candidate(problem, solid))
             .collect(),
-        activity: activity(problem),
+        activity: activity_at(problem, problem.kelvin),
         ionic_strength: match problem.ionic_strength {
             Some(value) => IonicStrength::Given(value),
             None => IonicStrength::Computed,
@@ -60,14 +60,15 @@ pub fn system(problem: &Problem) -> System {
     }
 }
 
-fn activity(problem: &Problem) -> Activity {
+/// The problem's activity model at a temperature.
+pub(super) fn activity_at(problem: &Problem, kelvin: f64) -> Activity {
     match problem.activity {
         ActivityKind::Pitzer => {
             let species = &problem.scope.species;
             let dissolved = problem.scope.dissolved.iter().map(|&s| species[s].as_ref());
-            Activity::ByComposition(Arc::new(Interaction::new(dissolved, problem.kelvin)))
+            Activity::ByComposition(Arc::new(Interaction::new(dissolved, kelvin)))
         }
-        kind => ActivityModel::new(kind, problem.kelvin).into(),
+        kind => ActivityModel::new(kind, kelvin).into(),
     }
 }
 
@@ -101,7 +102,7 @@ pub fn renew(system: &mut System, problem: &Problem, moved: Sweep) {
         for (species, &s) in system.species.iter_mut().zip(&problem.scope.dissolved) {
             species.ln_k = ln_formation(problem, s);
         }
-        system.activity = activity(problem);
+        system.activity = activity_at(problem, problem.kelvin);
         let (fixed, solids) = (&mut system.fixed[problem.held.len()..], &problem.solids);
         let excess = solids.iter().filter(|solid| solid.presence == Presence::Excess);
         for (fixed, solid) in fixed.iter_mut().zip(excess) {

@@ -83,7 +83,11 @@ impl Solved {
     /// What each held value, each solid in excess and then each solid that may form brought,
     /// mol per litre or kilogram; below zero where it took away.
     pub fn brought(&self) -> Vec<f64> {
-        let at = |k: usize| self.answer.amounts.get(k).copied().unwrap_or(0.0);
+        self.brought_of(&self.answer.amounts)
+    }
+
+    fn brought_of(&self, amounts: &[f64]) -> Vec<f64> {
+        let at = |k: usize| amounts.get(k).copied().unwrap_or(0.0);
         let formed = self.formed.iter().map(|place| place.map_or(0.0, at));
         (0..self.stated()).map(at).chain(formed).collect()
     }
@@ -91,6 +95,16 @@ impl Solved {
     /// mol per litre or kilogram of a solid that formed, or in excess grew; below zero where
     /// it dissolved. None where the problem states nothing of this species.
     pub fn precipitated(&self, problem: &Problem, species: usize) -> Option<f64> {
+        self.precipitated_of(problem, species, &self.answer.amounts)
+    }
+
+    /// The same of something else than the amounts of the held phases.
+    pub(super) fn precipitated_of(
+        &self,
+        problem: &Problem,
+        species: usize,
+        amounts: &[f64],
+    ) -> Option<f64> {
         let at = |presence: Presence| {
             problem.solids_that_are(presence).position(|solid| solid.species == species)
         };
@@ -99,18 +113,23 @@ impl Solved {
             None => self.stated() + at(Presence::Forms)?,
         };
         // A plain zero where nothing formed.
-        self.brought().get(index).map(|brought| 0.0 - brought)
+        self.brought_of(amounts).get(index).map(|brought| 0.0 - brought)
     }
 
     /// mol per litre or kilogram of a component in the solids that formed.
     pub fn solid_total(&self, component: usize) -> f64 {
+        self.solid_total_of(component, &self.answer.amounts)
+    }
+
+    /// The same sum over something else than the amounts of the held phases.
+    pub(super) fn solid_total_of(&self, component: usize, amounts: &[f64]) -> f64 {
         self.formed
             .iter()
             .flatten()
             .map(|&k| {
                 let row = &self.system.fixed[k].row;
                 let share = row.iter().find(|&&(j, _)| j == component);
-                -share.map_or(0.0, |(_, n)| n.to_f64().unwrap_or(0.0)) * self.answer.amounts[k]
+                -share.map_or(0.0, |(_, n)| n.to_f64().unwrap_or(0.0)) * amounts[k]
             })
             .sum()
     }
@@ -128,10 +147,20 @@ impl Solved {
 
     /// What each dissolved species holds of a component, by row of the stoichiometry.
     pub fn shares(&self, component: usize) -> impl Iterator<Item = (usize, f64)> + '_ {
+        self.counts(component).map(|(i, n)| (i, n * self.answer.concentrations[i]))
+    }
+
+    /// How often each dissolved species holds a component, where it does.
+    fn counts(&self, component: usize) -> impl Iterator<Item = (usize, f64)> + '_ {
         self.system.species.iter().enumerate().filter_map(move |(i, species)| {
             let at = species.row.iter().find(|&&(j, _)| j == component)?;
-            Some((i, at.1.to_f64()? * self.answer.concentrations[i]))
+            Some((i, at.1.to_f64()?))
         })
+    }
+
+    /// The same sum over something else than concentrations, given by row.
+    pub(super) fn total_of(&self, component: usize, of: impl Fn(usize) -> f64) -> f64 {
+        self.counts(component).map(|(i, n)| n * of(i)).sum()
     }
 
     /// Left less right of a written balance at the answer, mol per litre or kilogram.
@@ -159,13 +188,18 @@ impl Solved {
 
     /// Charge of all cations and of all anions, both positive, eq per litre or kilogram.
     pub fn charges(&self) -> (f64, f64) {
+        self.charges_of(|row| self.answer.concentrations[row])
+    }
+
+    /// The same sums over something else than concentrations, given by row.
+    pub(super) fn charges_of(&self, of: impl Fn(usize) -> f64) -> (f64, f64) {
         let mut sums = (0.0, 0.0);
-        for (species, c) in self.system.species.iter().zip(&self.answer.concentrations) {
-            let charge = f64::from(species.charge) * c;
+        for (row, species) in self.system.species.iter().enumerate() {
+            let charge = f64::from(species.charge);
             if charge > 0.0 {
-                sums.0 += charge;
+                sums.0 += charge * of(row);
             } else {
-                sums.1 -= charge;
+                sums.1 -= charge * of(row);
             }
         }
         sums
@@ -182,23 +216,21 @@ impl Solved {
     /// acids of pKa 4.5 and above (25 °C, zero ionic strength), over proton donors. The
     /// zero level of each component is the form that dominates at pH 4.5.
     pub fn alkalinity(&self, problem: &Problem) -> f64 {
+        self.alkalinity_of(problem, |row| self.answer.concentrations[row])
+    }
+
+    /// The same sum over something else than concentrations, given by row.
+    pub(super) fn alkalinity_of(&self, problem: &Problem, of: impl Fn(usize) -> f64) -> f64 {
         let levels = zero_levels(problem);
-        self.system
-            .species
-            .iter()
-            .zip(&self.answer.concentrations)
-            .map(|(species, c)| {
-                let deficit: f64 = species
-                    .row
-                    .iter()
-                    .map(|&(j, n)| {
-                        let n = n.to_f64().unwrap_or(0.0);
-                        if j == PROTON { -n } else { n * levels[j] }
-                    })
-                    .sum();
-                deficit * c
-            })
-            .sum()
+        let rows = self.system.species.iter().enumerate();
+        rows.map(|(row, species)| {
+            let protons = |&(j, n): &(usize, num_rational::Rational64)| {
+                let n = n.to_f64().unwrap_or(0.0);
+                if j == PROTON { -n } else { n * levels[j] }
+            };
+            species.row.iter().map(protons).sum::<f64>() * of(row)
+        })
+        .sum()
     }
 
     /// mol per litre or kilogram of strong base for one unit of pH.

@@ -1,74 +1,102 @@
-//! How far the pH is uncertain for the uncertainty of the constants, to first order.
+//! How uncertain answers are for the uncertainty of their inputs, and which input brings
+//! how much of it: the law of propagation of the *Guide to the Expression of Uncertainty in
+//! Measurement* (JCGM 100:2008, 5.1.2) with exact sensitivities, to first order and for
+//! independent inputs.
 
-use std::f64::consts::LN_10;
+use std::sync::OnceLock;
 
-use num_traits::ToPrimitive;
-
+use super::derivative::{Derivatives, Movement};
 use super::quantities::Solved;
-use super::sensitivity::Sensitivity;
-use crate::problem::model::{HeldWhat, Presence, Problem};
+use crate::problem::model::{Problem, Sought};
 
-/// One standard uncertainty of the pH, the constants taken as independent of one another.
-/// None where no constant in use states one, where the pH is held, or where the answer has
-/// no derivatives.
-pub fn ph_uncertainty(problem: &Problem, solved: &Solved) -> Option<f64> {
-    let scope = &problem.scope;
-    if problem.held.iter().any(|held| matches!(held.what, HeldWhat::Ph(_))) {
-        return None;
-    }
-    let stated: Vec<(usize, f64)> = scope
-        .reactions_in_use()
-        .filter_map(|(r, reaction)| Some((r, reaction.constant.as_ref()?.uncertainty?)))
-        .filter(|(_, uncertainty)| *uncertainty > 0.0)
-        .collect();
-    if stated.is_empty() {
-        return None;
-    }
-    let sensitivity = Sensitivity::new(&solved.system, &solved.answer)?;
-    // How the pH moves with ln K of each species' and each held phase's formation.
-    let mut slopes: Vec<(usize, f64)> = Vec::new();
-    for (row, &species) in scope.dissolved.iter().enumerate() {
-        if let Some(response) = sensitivity.by_ln_k(row) {
-            slopes.push((species, response.ph()));
+/// How an answer moves with each of its uncertain inputs: found when first asked for, since
+/// few problems carry any.
+#[derive(Debug, Default)]
+pub struct Uncertainties {
+    /// Of each uncertain input of the problem; none where the answer has no two-sided
+    /// derivative by it.
+    movements: OnceLock<Vec<Option<Movement>>>,
+}
+
+/// A quantity with its standard uncertainty, and what that comes from.
+#[derive(Clone, Debug, PartialEq)]
+pub struct Budget {
+    pub value: f64,
+    /// In the unit of the value; zero where no uncertain input moves it.
+    pub standard_uncertainty: f64,
+    /// Largest first; every uncertain input that moves the quantity.
+    pub shares: Vec<Share>,
+    /// Uncertain inputs whose part is not known, and not counted.
+    pub left_out: Vec<usize>,
+}
+
+/// What one input brings to the uncertainty of a quantity.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub struct Share {
+    /// The index of the uncertain input in the problem.
+    pub source: usize,
+    /// What the quantity moves by when the input moves by one standard uncertainty up.
+    pub contribution: f64,
+    /// Of the variance, in percent.
+    pub percent: f64,
+}
+
+impl Uncertainties {
+    /// The budget of a quantity of the answer that these are of. None where nothing is
+    /// uncertain or the quantity has no value.
+    pub fn budget(&self, problem: &Problem, solved: &Solved, sought: Sought) -> Option<Budget> {
+        if problem.uncertain.is_empty() {
+            return None;
         }
-    }
-    for (index, held) in problem.held.iter().enumerate() {
-        let species = match held.what {
-            HeldWhat::Pressure { species, .. }
-            | HeldWhat::Activity { species, .. }
-            | HeldWhat::Concentration { species, .. } => species,
-            HeldWhat::Ph(_) | HeldWhat::Pe(_) => continue,
-        };
-        if let Some(response) = sensitivity.by_fixed(index) {
-            // The constant is taken off the value.
-            slopes.push((species, -response.ph()));
+        let value = solved.value(problem, sought).filter(|value| value.is_finite())?;
+        let rounding = ROUNDING * size(solved, sought, value);
+        let mut shares = Vec::new();
+        let mut left_out = Vec::new();
+        let movements = self.movements.get_or_init(|| movements(problem, solved));
+        for (source, movement) in movements.iter().enumerate() {
+            let slope = movement.as_ref().and_then(|m| m.of(problem, solved, sought));
+            match slope.map(|slope| slope * problem.uncertain[source].standard_uncertainty) {
+                None => left_out.push(source),
+                Some(contribution) if contribution.abs() <= rounding => {}
+                Some(contribution) => shares.push(Share { source, contribution, percent: 0.0 }),
+            }
         }
-    }
-    let excess = problem.solids_that_are(Presence::Excess).enumerate();
-    let excess = excess.map(|(k, solid)| (problem.held.len() + k, solid));
-    let formed = problem.solids_that_are(Presence::Forms).zip(&solved.formed);
-    let formed = formed.filter_map(|(solid, at)| Some(((*at)?, solid)));
-    for (index, solid) in excess.chain(formed) {
-        if let Some(response) = sensitivity.by_fixed(index) {
-            slopes.push((solid.species, -response.ph()));
+        let standard_uncertainty = shares.iter().fold(0.0f64, |u, s| u.hypot(s.contribution));
+        if !standard_uncertainty.is_finite() {
+            return None;
         }
+        for share in &mut shares {
+            share.percent = 100.0 * (share.contribution / standard_uncertainty).powi(2);
+        }
+        shares.sort_by(|a, b| b.percent.total_cmp(&a.percent));
+        Some(Budget { value, standard_uncertainty, shares, left_out })
     }
-    let variance: f64 = stated
-        .iter()
-        .map(|&(r, uncertainty)| {
-            let slope: f64 = slopes
-                .iter()
-                .map(|&(species, slope)| {
-                    let made = scope.belonging.made[species].as_ref();
-                    let times = made.and_then(|made| {
-                        let by = made.combination.iter().find(|(reaction, _)| *reaction == r)?;
-                        by.1.to_f64()
-                    });
-                    times.unwrap_or(0.0) * slope * LN_10
-                })
-                .sum();
-            (slope * uncertainty).powi(2)
-        })
-        .sum();
-    Some(variance.sqrt()).filter(|value| value.is_finite())
+}
+
+/// Below this share of its size, a move of a quantity is the rounding of sums that cancel.
+const ROUNDING: f64 = 1e-12;
+
+/// The size of what a quantity is the sum of.
+fn size(solved: &Solved, sought: Sought, value: f64) -> f64 {
+    let sum = match sought {
+        Sought::Alkalinity | Sought::ChargeImbalance { equivalents: true } => solved.charges().0,
+        Sought::ChargeImbalance { equivalents: false } => 100.0,
+        _ => 0.0,
+    };
+    sum.max(value.abs())
+}
+
+/// Costs one factorisation, and a few solutions for each input.
+fn movements(problem: &Problem, solved: &Solved) -> Vec<Option<Movement>> {
+    let derivatives = Derivatives::new(problem, solved);
+    let mut movements: Vec<Option<Movement>> = Vec::with_capacity(problem.uncertain.len());
+    for (source, uncertain) in problem.uncertain.iter().enumerate() {
+        // Two lines of one reagent move the answer in the same way.
+        let before = problem.uncertain[..source].iter().position(|u| u.input == uncertain.input);
+        movements.push(match before {
+            Some(before) => movements[before].clone(),
+            None => derivatives.as_ref().and_then(|by| by.movement(uncertain.input)),
+        });
+    }
+    movements
 }

@@ -7,11 +7,13 @@ use super::case::CaseResolver;
 use super::curve;
 use super::defect::{DefectKind, Expected};
 use super::effective::Written;
+use super::input::Input;
 use super::model::{Amount, AmountSource, HeldWhat, Presence, Problem, Reagent};
 use super::resolve::differences;
 use super::scope::PROTON;
 use super::sparse::{Row, add_scaled};
 use super::split::{Split, split};
+use super::uncertain::Carries;
 use crate::chemistry::formula::Formula;
 use crate::text::parse::KEYWORDS;
 use crate::text::span::Place;
@@ -87,6 +89,9 @@ fn total(
     }
     problem.amounts[j] =
         Amount { total: Some(read.value), at: Some(at), source: AmountSource::Total };
+    let carries = if formula.is_electron() { Carries::Signed } else { Carries::Positive };
+    let words = format!("total {}", formula.name);
+    case.keep_uncertainty(problem, (written, value), (Input::Total(j), carries), &read, words);
     Some(())
 }
 
@@ -103,9 +108,13 @@ fn add(
     if !case.not_negative(written, amount) {
         return None;
     }
-    let known = problem.reagents.iter_mut().find(|r| r.formula.name == reagent.formula.name);
+    let known = problem.reagents.iter().position(|r| r.formula.name == reagent.formula.name);
+    let index = known.unwrap_or(problem.reagents.len());
+    let words = format!("add {}", reagent.formula.name);
+    let carries = (Input::Reagent(index), Carries::Positive);
+    case.keep_uncertainty(problem, (written, amount), carries, &read, words);
     match known {
-        Some(known) => known.amount += read.value,
+        Some(known) => problem.reagents[known].amount += read.value,
         None => problem.reagents.push(Reagent { amount: read.value, ..reagent }),
     }
     Some(())

@@ -13,11 +13,13 @@ use super::defect::{Defect, DefectKind, Expected};
 use super::effective::Written;
 use super::expect;
 use super::held;
+use super::input::Input;
 use super::model::Problem;
 use super::reaction::{Origin, STANDARD};
 use super::resolve::Resolver;
 use super::scope::Scope;
 use super::solids;
+use super::uncertain::{Carries, of_constants};
 use super::written;
 use crate::chemistry::activity::ActivityKind;
 use crate::chemistry::formula::Formula;
@@ -68,6 +70,8 @@ pub fn resolve(statements: &[Written], merging: Vec<Defect>, scope: Arc<Scope>) 
         expectations: Vec::new(),
         curves: Vec::new(),
         log_k: Vec::new(),
+        uncertain: Vec::new(),
+        by_ln_density: Vec::new(),
         defects: Vec::new(),
         states_problem: statements.iter().any(|w| states_a_problem(w.statement())),
         blocked: false,
@@ -78,6 +82,7 @@ pub fn resolve(statements: &[Written], merging: Vec<Defect>, scope: Arc<Scope>) 
     held::read(&mut case, &mut problem);
     solids::read(&mut case, &mut problem);
     amounts::close(&mut case, &mut problem);
+    problem.uncertain.extend(of_constants(&problem));
     problem.balances = written::read(&mut case, &problem);
     problem.expectations = expect::read(&mut case, &problem);
     problem.curves = curve::read(&mut case, &problem);
@@ -93,7 +98,6 @@ pub fn resolve(statements: &[Written], merging: Vec<Defect>, scope: Arc<Scope>) 
             Statement::Hold { by: Some(_), .. } => "hold … by",
             Statement::Blend { .. } => "blend",
             Statement::Add { stock: Some(_), .. } => "add … of",
-            Statement::Expect { confidence: Some(_), .. } => "confidence",
             _ => continue,
         };
         let at = written.whole();
@@ -117,9 +121,12 @@ fn conditions(case: &mut CaseResolver, problem: &mut Problem) {
             }
             Statement::Temperature { value } => {
                 problem.temperature_at = Some(written.place(value.span));
-                if let Some(read) = case.temperature(written, value) {
+                if let Some(read) = case.resolver.kelvin_read(written, value) {
                     problem.kelvin = read.value;
                     case.kelvin = read.value;
+                    let carries = (Input::Temperature, Carries::Temperature);
+                    let words = "temperature".into();
+                    case.keep_uncertainty(problem, (written, value), carries, &read, words);
                 }
             }
             Statement::Activity { model } => {
@@ -140,8 +147,11 @@ fn conditions(case: &mut CaseResolver, problem: &mut Problem) {
     for written in case.statements {
         if let Statement::IonicStrength { value } = written.statement() {
             let read = case.concentration(written, value, None, Expected::Concentration);
-            problem.ionic_strength =
-                read.filter(|_| case.not_negative(written, value)).map(|read| read.value);
+            let Some(read) = read.filter(|_| case.not_negative(written, value)) else { continue };
+            problem.ionic_strength = Some(read.value);
+            let carries = (Input::IonicStrength, Carries::Positive);
+            let words = "ionic strength".into();
+            case.keep_uncertainty(problem, (written, value), carries, &read, words);
         }
     }
 }

@@ -6,6 +6,7 @@ use super::defect::{DefectKind, Expected};
 use super::effective::Written;
 use super::reaction::{Constant, LogK, Participant, STANDARD};
 use super::resolve::Resolver;
+use super::uncertain::Carries;
 use crate::chemistry::formula::Phase;
 use crate::text::tree::{self, ConstantKind, ConstantValue};
 
@@ -15,6 +16,8 @@ pub struct Terms {
     pub constant: Option<Constant>,
     pub enthalpy: Option<f64>,
     pub heat_capacity: Option<f64>,
+    pub enthalpy_uncertainty: Option<f64>,
+    pub heat_capacity_uncertainty: Option<f64>,
     pub valid: Option<(f64, f64)>,
 }
 
@@ -25,14 +28,25 @@ impl Resolver {
         tree: &tree::Reaction,
         participants: &[Participant],
     ) -> Terms {
-        let mut terms = Terms {
-            enthalpy: tree.enthalpy.as_ref().and_then(|q| self.molar_energy(written, q)),
-            heat_capacity: tree.heat_capacity.as_ref().and_then(|q| self.molar_entropy(written, q)),
-            ..Terms::default()
-        };
+        let mut terms = Terms::default();
+        if let Some(quantity) = &tree.enthalpy
+            && let Some(read) = self.molar_energy(written, quantity)
+        {
+            terms.enthalpy = Some(read.value);
+            terms.enthalpy_uncertainty = self.carried(written, quantity, Carries::Signed, &read);
+        }
+        if let Some(quantity) = &tree.heat_capacity
+            && let Some(read) = self.molar_entropy(written, quantity)
+        {
+            terms.heat_capacity = Some(read.value);
+            let size = self.carried(written, quantity, Carries::Signed, &read);
+            terms.heat_capacity_uncertainty = size;
+        }
         if let Some((low, high)) = &tree.valid {
             let shared = tree::Quantity { unit: high.unit.clone(), ..low.clone() };
             let low = if low.unit.is_none() { &shared } else { low };
+            self.carries_nothing(written, low);
+            self.carries_nothing(written, high);
             terms.valid = self.kelvin(written, low).zip(self.kelvin(written, high));
             if let Some((from, to)) = terms.valid
                 && from > to
@@ -44,7 +58,10 @@ impl Resolver {
             }
         }
         let kelvin = match &tree.at {
-            Some(at) => self.kelvin(written, at).unwrap_or(STANDARD),
+            Some(at) => {
+                self.carries_nothing(written, at);
+                self.kelvin(written, at).unwrap_or(STANDARD)
+            }
             None => STANDARD,
         };
         match &tree.constants[..] {
@@ -90,12 +107,12 @@ impl Resolver {
             ConstantValue::Number(quantity) => quantity,
         };
         let read = self.number(written, value, Expected::Plain)?;
-        let (log_k, uncertainty) = match tree.kind.value {
+        let (log_k, carries) = match tree.kind.value {
             ConstantKind::PKa | ConstantKind::PKsp | ConstantKind::PK => {
-                (-read.value, read.uncertainty)
+                (-read.value, Carries::Logarithm)
             }
             ConstantKind::LogBeta | ConstantKind::LogK | ConstantKind::LogKOfT => {
-                (read.value, read.uncertainty)
+                (read.value, Carries::Logarithm)
             }
             ConstantKind::K => {
                 if read.value <= 0.0 {
@@ -104,8 +121,7 @@ impl Resolver {
                     self.report(at, DefectKind::ImpossibleValue { why });
                     return None;
                 }
-                let relative = read.uncertainty.map(|u| u / read.value / std::f64::consts::LN_10);
-                (read.value.log10(), relative)
+                (read.value.log10(), Carries::Positive)
             }
         };
         if log_k.abs() > LARGEST_LOG_K {
@@ -113,6 +129,11 @@ impl Resolver {
             self.report(written.place(value.span), DefectKind::ImpossibleValue { why });
             return None;
         }
+        let carried = self.carried(written, value, carries, &read);
+        let uncertainty = match carries {
+            Carries::Positive => carried.map(|u| u / read.value / std::f64::consts::LN_10),
+            _ => carried,
+        };
         Some(Constant {
             kind: tree.kind.value,
             value: LogK::At { log_k, kelvin },

@@ -271,7 +271,7 @@ fn end(
 ) -> Option<Read> {
     match sweep {
         Sweep::Ph => case.number(written, value, Expected::Plain),
-        Sweep::Temperature => case.temperature(written, value),
+        Sweep::Temperature => case.resolver.kelvin_read(written, value),
         Sweep::Reagent(reagent) => {
             let formula = problem.reagents[reagent].formula.clone();
             let expected = Expected::Concentration;

@@ -50,6 +50,22 @@ pub enum DefectKind {
     ImpossibleValue {
         why: &'static str,
     },
+    /// `± 0`.
+    UncertaintyOfZero,
+    /// A `±` of more than half of what cannot lie below zero; `share` is that of the value,
+    /// none where the value is zero.
+    UncertaintyTooLarge {
+        share: Option<f64>,
+    },
+    /// A percentage of a logarithm, or of a temperature in °C; `size` is what it comes to.
+    UncertaintyOfLogarithm {
+        temperature: bool,
+        size: f64,
+    },
+    /// A `±` on a quantity that answers do not depend on.
+    UncertaintyNotUsed,
+    /// A confidence that is not above 50 % and below 100 %.
+    ConfidenceOutOfRange,
 
     // Formulas.
     Formula {
@@ -355,6 +371,11 @@ impl DefectKind {
             | Self::DiffersFromSet { .. }
             | Self::BaseReaction { .. }
             | Self::ComponentUnused { .. }
+            | Self::UncertaintyOfZero
+            | Self::UncertaintyTooLarge { .. }
+            | Self::UncertaintyOfLogarithm { .. }
+            | Self::UncertaintyNotUsed
+            | Self::ConfidenceOutOfRange
             | Self::NothingToRemove => false,
             Self::Follows { by } => by.abs() > 0.02,
             Self::NotIndependent { from, .. } => !from.is_empty(),

@@ -5,6 +5,7 @@ use super::defect::{DefectKind, Expected};
 use super::effective::{Written, subject_key};
 use super::model::{Expectation, Limit, Problem, ShownUnit, Sought};
 use super::quantity::{Read, with_unit_of};
+use super::uncertain::Carries;
 use crate::chemistry::formula::{Formula, Phase};
 use crate::text::span::Spanned;
 use crate::text::tree::{Name, Quantity, Relation, Statement, Subject};
@@ -12,7 +13,8 @@ use crate::text::tree::{Name, Quantity, Relation, Statement, Subject};
 pub fn read(case: &mut CaseResolver, problem: &Problem) -> Vec<Expectation> {
     let mut expectations = Vec::new();
     for written in case.statements {
-        let Statement::Expect { subject, relation, source, .. } = written.statement() else {
+        let Statement::Expect { subject, relation, source, confidence } = written.statement()
+        else {
             continue;
         };
         let Some(mut sought) = sought(case, problem, written, subject) else { continue };
@@ -50,6 +52,8 @@ pub fn read(case: &mut CaseResolver, problem: &Problem) -> Vec<Expectation> {
                 .map(|(low, high)| (Limit::Between { low: low.value, high: high.value }, high)),
         };
         let Some((limit, read)) = limit else { continue };
+        look_at_uncertainty(case, written, sought, relation, &read);
+        let confidence = confidence.as_ref().and_then(|q| self::confidence(case, written, q));
         if let Sought::ChargeImbalance { equivalents } = &mut sought {
             *equivalents = read.equivalents;
         }
@@ -58,11 +62,51 @@ pub fn read(case: &mut CaseResolver, problem: &Problem) -> Vec<Expectation> {
             sought,
             words: subject_key(&subject.value),
             limit,
+            confidence,
             unit: read.words.map(|words| ShownUnit { words, factor: read.per_unit }),
             source: source.as_ref().map(|source| source.value.clone()),
         });
     }
     expectations
+}
+
+/// The `±` of a wanted value is its tolerance; a limit has none.
+fn look_at_uncertainty(
+    case: &mut CaseResolver,
+    written: &Written,
+    sought: Sought,
+    relation: &Relation,
+    read: &Read,
+) {
+    let resolver = &mut case.resolver;
+    match relation {
+        Relation::Equal(quantity) => {
+            let logarithm = matches!(
+                sought,
+                Sought::Ph | Sought::Poh | Sought::Pe | Sought::SaturationIndex(_)
+            );
+            resolver.carried(written, quantity, Carries::Tolerance { logarithm }, read);
+        }
+        Relation::Less(quantity)
+        | Relation::LessOrEqual(quantity)
+        | Relation::Greater(quantity)
+        | Relation::GreaterOrEqual(quantity) => resolver.carries_nothing(written, quantity),
+        Relation::Between(low, high) => {
+            resolver.carries_nothing(written, low);
+            resolver.carries_nothing(written, high);
+        }
+    }
+}
+
+/// A probability above a half and below one.
+fn confidence(case: &mut CaseResolver, written: &Written, quantity: &Quantity) -> Option<f64> {
+    let read = case.number(written, quantity, Expected::Share)?;
+    case.resolver.carries_nothing(written, quantity);
+    if read.value > 0.5 && read.value < 1.0 {
+        return Some(read.value);
+    }
+    case.resolver.report(written.place(quantity.span), DefectKind::ConfidenceOutOfRange);
+    None
 }
 
 fn takes(sought: Sought) -> Expected {
@@ -92,7 +136,7 @@ fn read_as(
     formula: Option<&Formula>,
 ) -> Option<Read> {
     match expected {
-        Expected::Pressure => case.pressure_read(written, quantity),
+        Expected::Pressure => case.pressure(written, quantity),
         Expected::Plain | Expected::Share => case.number(written, quantity, expected),
         Expected::Imbalance => case.imbalance(written, quantity),
         _ => case.concentration(written, quantity, formula, expected),

@@ -5,9 +5,12 @@ use num_traits::Zero;
 use super::case::CaseResolver;
 use super::defect::{DefectKind, Expected};
 use super::effective::{Written, subject_key};
+use super::input::Input;
 use super::model::{AmountSource, Held, HeldWhat, Problem};
+use super::quantity::Read;
 use super::scope::PROTON;
 use super::sparse::coefficient;
+use super::uncertain::Carries;
 use crate::chemistry::formula::Phase;
 use crate::text::tree::{Name, Quantity, Statement, Subject};
 
@@ -18,7 +21,8 @@ pub fn read(case: &mut CaseResolver, problem: &mut Problem) {
         if by.is_some() {
             continue;
         }
-        let Some(what) = what(case, written, &subject.value, value, subject.span) else {
+        let found = what(case, written, &subject.value, value, subject.span);
+        let Some((what, carries, read)) = found else {
             case.all_amounts_read = false;
             continue;
         };
@@ -44,6 +48,15 @@ pub fn read(case: &mut CaseResolver, problem: &mut Problem) {
                 }
             }
         };
+        let input = Input::Held(problem.held.len());
+        let words = format!("hold {}", subject_key(&subject.value));
+        case.keep_uncertainty(problem, (written, value), (input, carries), &read, words);
+        if let (HeldWhat::Ph(_), Carries::Positive) = (what, carries)
+            && let Some(kept) = problem.uncertain.last_mut().filter(|kept| kept.input == input)
+        {
+            // An activity of H+ is held as its pH.
+            kept.standard_uncertainty /= read.value * std::f64::consts::LN_10;
+        }
         problem.held.push(Held { at, words: subject_key(&subject.value), what, releases });
     }
 }
@@ -80,15 +93,20 @@ fn released(
         .ok_or_else(|| others().find_map(|&(j, _)| problem.amounts[j].at))
 }
 
+/// What is held, what a `±` of it would mean, and the value with its `±` in the unit of what
+/// is held.
 fn what(
     case: &mut CaseResolver,
     written: &Written,
     subject: &Subject,
     value: &Quantity,
     span: crate::text::span::Span,
-) -> Option<HeldWhat> {
+) -> Option<(HeldWhat, Carries, Read)> {
     match subject {
-        Subject::Ph => case.plain(written, value).map(HeldWhat::Ph),
+        Subject::Ph => {
+            let read = case.plain(written, value)?;
+            Some((HeldWhat::Ph(read.value), Carries::Logarithm, read))
+        }
         Subject::Poh => {
             // With pOH held the pH follows from water's own reaction.
             let poh = case.plain(written, value)?;
@@ -97,7 +115,8 @@ fn what(
             let log_k = made.log_beta(|r| {
                 case.scope.reactions[r].log_k(case.kelvin).map_or(0.0, |(log_k, _)| log_k)
             });
-            (!coefficient(&made.row, PROTON).is_zero()).then_some(HeldWhat::Ph(-log_k - poh))
+            let moves_ph = !coefficient(&made.row, PROTON).is_zero();
+            moves_ph.then_some((HeldWhat::Ph(-log_k - poh.value), Carries::Logarithm, poh))
         }
         Subject::Pe => {
             let pe = case.plain(written, value)?;
@@ -110,22 +129,22 @@ fn what(
                 case.resolver.report(written.place(span), kind);
                 return None;
             }
-            Some(HeldWhat::Pe(pe))
+            Some((HeldWhat::Pe(pe.value), Carries::Logarithm, pe))
         }
         Subject::Pressure(name) => {
             let species = phase(case, written, name, true)?;
-            let atm = case.pressure(written, value)?;
-            positive(case, written, value, atm)?;
-            Some(HeldWhat::Pressure { species, atm })
+            let read = case.pressure(written, value)?;
+            positive(case, written, value, read.value)?;
+            Some((HeldWhat::Pressure { species, atm: read.value }, Carries::Positive, read))
         }
         Subject::Activity(name) => {
             let species = phase(case, written, name, false)?;
             let read = case.plain(written, value)?;
-            positive(case, written, value, read)?;
+            positive(case, written, value, read.value)?;
             if case.scope.species[species].is_proton() {
-                return Some(HeldWhat::Ph(-read.log10()));
+                return Some((HeldWhat::Ph(-read.value.log10()), Carries::Positive, read));
             }
-            Some(HeldWhat::Activity { species, value: read })
+            Some((HeldWhat::Activity { species, value: read.value }, Carries::Positive, read))
         }
         Subject::Concentration(name) => {
             let species = phase(case, written, name, false)?;
@@ -133,7 +152,7 @@ fn what(
             let read =
                 case.concentration(written, value, Some(&formula), Expected::Concentration)?;
             positive(case, written, value, read.value)?;
-            Some(HeldWhat::Concentration { species, value: read.value })
+            Some((HeldWhat::Concentration { species, value: read.value }, Carries::Positive, read))
         }
         Subject::Total(_)
         | Subject::Fraction(_)

@@ -295,6 +295,9 @@ fn is_error(kind: &DefectKind) -> bool {
         kind,
         DefectKind::NoSource
             | DefectKind::BaseReaction { .. }
+            | DefectKind::UncertaintyOfZero
+            | DefectKind::UncertaintyTooLarge { .. }
+            | DefectKind::UncertaintyNotUsed
             | DefectKind::TwoNames { .. }
             | DefectKind::AmbiguousCharge { .. }
             | DefectKind::DiffersFromSet { .. }

@@ -6,8 +6,10 @@ use num_rational::Rational64;
 
 use super::curve::Curve;
 use super::defect::Defect;
+use super::input::Input;
 use super::scope::Scope;
 use super::sparse::Row;
+use super::uncertain::Uncertain;
 use crate::chemistry::activity::ActivityKind;
 use crate::chemistry::formula::Formula;
 use crate::chemistry::quantity::Scale;
@@ -36,6 +38,11 @@ pub struct Problem {
     pub curves: Vec<Curve>,
     /// log10 K of each reaction of the scope at `kelvin`; zero where it is not in use.
     pub log_k: Vec<f64>,
+    /// Every input that carries a `±`.
+    pub uncertain: Vec<Uncertain>,
+    /// Inputs that were converted with the density of water, and their derivatives by its
+    /// logarithm.
+    pub by_ln_density: Vec<(Input, f64)>,
     pub defects: Vec<Defect>,
     /// Whether there is a problem to solve; a file of definitions alone states none.
     pub states_problem: bool,
@@ -103,6 +110,13 @@ pub enum Presence {
     Forms,
     /// There is more of it than can dissolve.
     Excess,
+}
+
+impl Held {
+    /// Whether a pH is held by way of the pOH, so that it moves with water's own constant.
+    pub fn is_by_poh(&self) -> bool {
+        matches!(self.what, HeldWhat::Ph(_)) && self.words == "pOH"
+    }
 }
 
 #[derive(Clone, Copy, Debug, PartialEq)]
@@ -182,6 +196,8 @@ pub struct Expectation {
     /// In canonical words, such as `[NH3]`.
     pub words: String,
     pub limit: Limit,
+    /// The probability with which the limit has to hold, where one is asked for.
+    pub confidence: Option<f64>,
     /// The unit as written, with its value in base units; a plain number has none.
     pub unit: Option<ShownUnit>,
     pub source: Option<String>,

@@ -26,6 +26,8 @@ pub struct Read {
     pub words: Option<String>,
     /// Whether the unit counts charge.
     pub equivalents: bool,
+    /// The derivative by the logarithm of the density of water, where that converted it.
+    pub by_ln_density: f64,
 }
 
 impl Resolver {
@@ -83,6 +85,7 @@ impl Resolver {
                 per_unit: unit.factor,
                 words: Some(unit.name.to_owned()),
                 equivalents: false,
+                by_ln_density: 0.0,
             }),
             Err(ConversionProblem::BelowAbsoluteZero) => {
                 let why = "it lies below absolute zero, −273.15 °C";
@@ -119,7 +122,8 @@ impl Resolver {
         Some(self.kelvin_read(written, quantity)?.value)
     }
 
-    fn kelvin_read(&mut self, written: &Written, quantity: &Quantity) -> Option<Read> {
+    /// Kelvin.
+    pub fn kelvin_read(&mut self, written: &Written, quantity: &Quantity) -> Option<Read> {
         let read = self.converted(written, quantity, Expected::Temperature, to_kelvin)?;
         if read.value > 0.0 {
             return Some(read);
@@ -130,15 +134,14 @@ impl Resolver {
     }
 
     /// J/mol.
-    pub fn molar_energy(&mut self, written: &Written, quantity: &Quantity) -> Option<f64> {
-        let read = self.converted(written, quantity, Expected::MolarEnergy, to_joules_per_mole)?;
-        Some(read.value)
+    pub fn molar_energy(&mut self, written: &Written, quantity: &Quantity) -> Option<Read> {
+        self.converted(written, quantity, Expected::MolarEnergy, to_joules_per_mole)
     }
 
     /// J/(mol·K).
-    pub fn molar_entropy(&mut self, written: &Written, quantity: &Quantity) -> Option<f64> {
+    pub fn molar_entropy(&mut self, written: &Written, quantity: &Quantity) -> Option<Read> {
         let convert = to_joules_per_mole_kelvin;
-        Some(self.converted(written, quantity, Expected::MolarEntropy, convert)?.value)
+        self.converted(written, quantity, Expected::MolarEntropy, convert)
     }
 
     /// A number without a unit, or a share that may be in percent.
@@ -163,17 +166,14 @@ impl Resolver {
             per_unit,
             words: quantity.unit.as_ref().map(|unit| unit.value.clone()),
             equivalents: false,
+            by_ln_density: 0.0,
         })
     }
 }
 
 impl CaseResolver<'_> {
-    pub fn temperature(&mut self, written: &Written, quantity: &Quantity) -> Option<Read> {
-        self.resolver.kelvin_read(written, quantity)
-    }
-
-    pub fn plain(&mut self, written: &Written, quantity: &Quantity) -> Option<f64> {
-        Some(self.resolver.number(written, quantity, Expected::Plain)?.value)
+    pub fn plain(&mut self, written: &Written, quantity: &Quantity) -> Option<Read> {
+        self.resolver.number(written, quantity, Expected::Plain)
     }
 
     pub fn number(
@@ -186,11 +186,7 @@ impl CaseResolver<'_> {
     }
 
     /// atm.
-    pub fn pressure(&mut self, written: &Written, quantity: &Quantity) -> Option<f64> {
-        Some(self.pressure_read(written, quantity)?.value)
-    }
-
-    pub fn pressure_read(&mut self, written: &Written, quantity: &Quantity) -> Option<Read> {
+    pub fn pressure(&mut self, written: &Written, quantity: &Quantity) -> Option<Read> {
         self.resolver.converted(written, quantity, Expected::Pressure, to_atmospheres)
     }
 
@@ -204,6 +200,7 @@ impl CaseResolver<'_> {
                 per_unit: 1.0,
                 words: Some("%".into()),
                 equivalents: false,
+                by_ln_density: 0.0,
             });
         }
         self.concentration(written, quantity, None, Expected::Imbalance)
@@ -261,7 +258,7 @@ impl CaseResolver<'_> {
                 return None;
             }
         };
-        let factor = self.onto_scale(scale, written.place(quantity.span));
+        let (factor, power) = self.onto_scale(scale, written.place(quantity.span));
         let value = value * factor;
         let per_unit = if quantity.number.value == 0.0 {
             match formula {
@@ -281,6 +278,7 @@ impl CaseResolver<'_> {
             per_unit,
             words: Some(words),
             equivalents: unit.dimension == Dimension::EquivalentsPerLitre,
+            by_ln_density: power * value,
         })
     }
 
@@ -307,23 +305,23 @@ impl CaseResolver<'_> {
         self.resolver.report(written.place(at), kind);
     }
 
-    /// What brings a value of this scale onto the file's: one, or the density of water. The
-    /// first concentration in the file sets its scale.
-    fn onto_scale(&mut self, scale: Scale, at: Place) -> f64 {
+    /// What brings a value of this scale onto the file's, a power of the density of water, and
+    /// that power. The first concentration in the file sets its scale.
+    fn onto_scale(&mut self, scale: Scale, at: Place) -> (f64, f64) {
         let Some((own, first)) = self.scale else {
             self.scale = Some((scale, at));
-            return 1.0;
+            return (1.0, 0.0);
         };
         if own == scale {
-            return 1.0;
+            return (1.0, 0.0);
         }
         if !std::mem::replace(&mut self.mixed, true) {
             self.resolver.report(at, DefectKind::MixedScales { other: first });
         }
         let density = water::density(self.kelvin) / 1000.0;
         match own {
-            Scale::PerLitre => density,
-            Scale::PerKilogram => 1.0 / density,
+            Scale::PerLitre => (density, 1.0),
+            Scale::PerKilogram => (1.0 / density, -1.0),
         }
     }
 }

@@ -25,6 +25,9 @@ pub struct Reaction {
     pub enthalpy: Option<f64>,
     /// J/(mol·K).
     pub heat_capacity: Option<f64>,
+    /// One standard uncertainty of each, in the same units.
+    pub enthalpy_uncertainty: Option<f64>,
+    pub heat_capacity_uncertainty: Option<f64>,
     /// Kelvin.
     pub valid: Option<(f64, f64)>,
     pub source: Option<String>,

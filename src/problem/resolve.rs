@@ -150,6 +150,8 @@ impl Resolver {
             constant: terms.constant,
             enthalpy: terms.enthalpy,
             heat_capacity: terms.heat_capacity,
+            enthalpy_uncertainty: terms.enthalpy_uncertainty,
+            heat_capacity_uncertainty: terms.heat_capacity_uncertainty,
             valid: terms.valid,
             source: tree.source.as_ref().map(|source| source.value.clone()),
             origin,

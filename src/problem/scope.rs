@@ -337,6 +337,8 @@ fn water_reaction() -> Reaction {
         }),
         enthalpy: None,
         heat_capacity: None,
+        enthalpy_uncertainty: None,
+        heat_capacity_uncertainty: None,
         valid: Some((273.15, 373.15)),
         source: Some("IAPWS R11-07(2019)".into()),
         origin: Origin::Set { name: "water", edition: 1 },

@@ -142,6 +142,7 @@ fn term(
                 WrittenWhat::Amount { value: 0.0, half_digit: 0.0 }
             } else {
                 let read = case.concentration(written, quantity, None, Expected::Equivalents)?;
+                case.resolver.carries_nothing(written, quantity);
                 let half_digit = read.per_unit * quantity.number.half_digit;
                 WrittenWhat::Amount { value: read.value, half_digit }
             }

@@ -1,7 +1,9 @@
 //! An answer as text for a terminal.
 
 use super::curve::Traced;
-use super::expectation::{asked, value_words, verdict};
+use super::expectation::{
+    Standing, asked, is_met, probability_words, uncertain_words, value_words, verdict,
+};
 use super::figures::{
     celsius, concentration, decimals, percent, scale_unit, scientific, significant,
 };
@@ -12,14 +14,15 @@ use super::source::{Source, Stated};
 use super::style::{Paint, Style};
 use super::summary::counted;
 use super::table::{Cell, Side, Table};
+use super::uncertainty;
 use crate::chemistry::activity::ActivityKind;
 use crate::chemistry::formula::Phase;
 use crate::chemistry::quantity::Scale;
 use crate::equilibrium::quantities::Solved;
-use crate::equilibrium::uncertainty::ph_uncertainty;
 use crate::problem::model::{HeldWhat, Problem, Sought};
 use crate::problem::scope::PROTON;
 use crate::rules::check::{Checked, locate_place};
+use crate::rules::outcome::Outcome;
 
 /// The conditions, the pH and every table that applies.
 pub fn answer(
@@ -32,7 +35,7 @@ pub fn answer(
 ) -> String {
     let problem = &stated.outcome.problem;
     let mut text = conditions(problem) + "\n\n";
-    text += &main_figures(problem, solved, style);
+    text += &main_figures(stated.outcome, solved, style);
     let ledger = Ledger::new(stated.outcome);
     for (title, body) in [
         ("Dissolved", species(problem, solved, style)),
@@ -42,7 +45,8 @@ pub fn answer(
         ("Solids", solids::table(problem, solved, style)),
         ("Charge balance", sheet(&ledger.charge(), problem.scale, style)),
         ("Proton condition", protons(&ledger, problem, style)),
-        ("Expectations", expectations(source, checked, stated, solved, style)),
+        ("Expectations", expectations(source, checked, stated, style)),
+        ("Uncertainty", uncertainty::table(source, checked, stated, style)),
     ] {
         if !body.is_empty() {
             text += &format!("\n{}\n{body}", style.paint(Paint::Heading, title));
@@ -68,7 +72,8 @@ pub fn conditions(problem: &Problem) -> String {
     format!("{}, {activities}", celsius(problem.kelvin))
 }
 
-fn main_figures(problem: &Problem, solved: &Solved, style: Style) -> String {
+fn main_figures(outcome: &Outcome, solved: &Solved, style: Style) -> String {
+    let problem = &outcome.problem;
     let mut table = Table::new(&[("", Side::Left), ("", Side::Left), ("", Side::Left)]);
     let mut row = |what: &str, value: String, remark: &str| {
         table.row([what.into(), value.into(), Cell::painted(Paint::Faint, remark)]);
@@ -77,8 +82,8 @@ fn main_figures(problem: &Problem, solved: &Solved, style: Style) -> String {
     let held = |is_held: bool| if is_held { "held" } else { "" };
     let ph_held = holds(|what| matches!(what, HeldWhat::Ph(_)));
     let ph = decimals(solved.ph(), 3);
-    match ph_uncertainty(problem, solved) {
-        Some(u) => row("pH", format!("{ph} ± {}", decimals(u, 3)), "from its constants"),
+    match outcome.ph_uncertainty() {
+        Some(u) => row("pH", format!("{ph} ± {}", decimals(u, 3)), held(ph_held)),
         None => row("pH", ph, held(ph_held)),
     }
     if let Some(pe) = solved.value(problem, Sought::Pe) {
@@ -263,13 +268,7 @@ fn protons(ledger: &Ledger, problem: &Problem, style: Style) -> String {
     ledger.protons().map_or(String::new(), |(protons, _)| sheet(&protons, problem.scale, style))
 }
 
-fn expectations(
-    source: &Source,
-    checked: &Checked,
-    stated: Stated,
-    solved: &Solved,
-    style: Style,
-) -> String {
+fn expectations(source: &Source, checked: &Checked, stated: Stated, style: Style) -> String {
     let problem = &stated.outcome.problem;
     let mut table = Table::new(&[
         ("line", Side::Right),
@@ -278,17 +277,26 @@ fn expectations(
         ("", Side::Left),
     ]);
     for expectation in &problem.expectations {
-        let verdict = verdict(problem, solved, expectation);
+        let verdict = verdict(stated.outcome, expectation);
         let at = locate_place(&checked.document, stated.section, expectation.at);
-        let found = verdict.value.map(|value| value_words(problem, expectation, value));
+        let found = verdict.value.map(|value| match verdict.standard_uncertainty {
+            Some(size) => uncertain_words(problem, expectation, value, size),
+            None => value_words(problem, expectation, value),
+        });
+        // How surely is told where the file asks how surely.
+        let surely = expectation.confidence.and(verdict.probability);
+        let with = |word: &str| match surely {
+            Some(probability) => format!("{word}, {}", probability_words(probability)),
+            None => word.into(),
+        };
         table.row([
             source.region(&at).line.to_string().into(),
             asked(checked, stated.section, expectation).into(),
             found.unwrap_or_else(|| "not known".into()).into(),
-            if verdict.met {
-                Cell::painted(Paint::Good, "met")
-            } else {
-                Cell::painted(Paint::Bad, "not met")
+            match verdict.standing {
+                Standing::Met => Cell::painted(Paint::Good, with("met")),
+                Standing::NotSure => Cell::painted(Paint::Bad, with("not sure")),
+                Standing::NotMet => Cell::painted(Paint::Bad, "not met"),
             },
         ]);
     }
@@ -315,8 +323,8 @@ pub fn overview(problems: &[Stated], style: Style) -> String {
                 Cell::painted(Paint::Bad, "not solved"),
             ]),
             Some(solved) => {
-                let met = |e: &&_| verdict(problem, solved, e).met;
-                let met = problem.expectations.iter().filter(met).count();
+                let outcome = stated.outcome;
+                let met = problem.expectations.iter().filter(|e| is_met(outcome, e)).count();
                 let words = match all {
                     0 => Cell::default(),
                     all if met == all => Cell::painted(Paint::Good, format!("{met} of {all} met")),

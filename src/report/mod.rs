@@ -20,6 +20,7 @@ pub mod style;
 pub mod summary;
 pub mod table;
 pub mod terminal;
+pub mod uncertainty;
 pub mod wrap;
 
 pub use crate::rules::{expectation, figures};

@@ -7,16 +7,16 @@ use serde::Serialize;
 
 use super::cautions::{self, CautionJson};
 use super::curve::{CurveJson, Traced};
-use super::expectation::verdict;
+use super::expectation::{Standing, verdict};
 use super::sheet::{Ledger, Sheet};
 use super::sheet_json::SheetJson;
 use super::source::{FileReport, Source, Stated};
+use super::uncertainty::{self, UncertaintyJson};
 use crate::chemistry::formula::Phase;
 use crate::chemistry::quantity::Scale;
 use crate::chemistry::water;
 use crate::equilibrium::quantities::Solved;
 use crate::equilibrium::system::Failure;
-use crate::equilibrium::uncertainty::ph_uncertainty;
 use crate::problem::model::{Problem, Sought};
 use crate::problem::scope::PROTON;
 use crate::rules::check::{Checked, locate_place};
@@ -63,6 +63,7 @@ struct Answer<'a> {
     balances: Vec<SheetJson>,
     expectations: Vec<Expectation<'a>>,
     curves: Vec<CurveJson<'a>>,
+    uncertainties: Vec<UncertaintyJson<'a>>,
     cautions: Vec<CautionJson<'a>>,
 }
 
@@ -116,6 +117,11 @@ struct Expectation<'a> {
     quantity: &'a str,
     #[serde(skip_serializing_if = "Option::is_none")]
     value: Option<f64>,
+    #[serde(skip_serializing_if = "Option::is_none")]
+    standard_uncertainty: Option<f64>,
+    /// That the true value meets it.
+    #[serde(skip_serializing_if = "Option::is_none")]
+    probability: Option<f64>,
     met: bool,
     line: usize,
 }
@@ -179,7 +185,7 @@ fn answer<'a>(
         activity_model: problem.activity.name(),
         scale: super::figures::scale_unit(problem.scale),
         ph: value(Sought::Ph),
-        ph_uncertainty: ph_uncertainty(problem, solved),
+        ph_uncertainty: outcome.ph_uncertainty(),
         ionic_strength: value(Sought::IonicStrength),
         alkalinity: value(Sought::Alkalinity),
         buffer_capacity: value(Sought::BufferCapacity),
@@ -205,11 +211,13 @@ fn answer<'a>(
             .expectations
             .iter()
             .map(|expectation| {
-                let verdict = verdict(problem, solved, expectation);
+                let verdict = verdict(outcome, expectation);
                 Expectation {
                     quantity: &expectation.words,
                     value: finite(verdict.value),
-                    met: verdict.met,
+                    standard_uncertainty: verdict.standard_uncertainty,
+                    probability: verdict.probability,
+                    met: verdict.standing == Standing::Met,
                     line: source
                         .region(&locate_place(&checked.document, section, expectation.at))
                         .line,
@@ -217,6 +225,7 @@ fn answer<'a>(
             })
             .collect(),
         curves: curves.iter().map(|traced| traced.json(problem)).collect(),
+        uncertainties: uncertainty::json(source, checked, section, outcome),
         cautions: cautions::json(outcome),
     }
 }

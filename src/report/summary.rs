@@ -1,6 +1,6 @@
 //! How much was checked and what came of it, in numbers and as one line.
 
-use super::expectation::verdict;
+use super::expectation::is_met;
 use super::source::{FileReport, Stated};
 use super::style::{Paint, Style};
 use crate::rules::finding::{Failing, Severity};
@@ -28,10 +28,11 @@ impl Summary {
                 let expectations = &outcome.problem.expectations;
                 summary.problems += 1;
                 summary.expectations += expectations.len();
-                let Some(solved) = outcome.solved() else { continue };
+                if outcome.solved().is_none() {
+                    continue;
+                }
                 summary.solved += 1;
-                let met = |e: &&_| verdict(&outcome.problem, solved, e).met;
-                summary.met += expectations.iter().filter(met).count();
+                summary.met += expectations.iter().filter(|e| is_met(outcome, e)).count();
             }
             for finding in &file.findings {
                 *match finding.severity {

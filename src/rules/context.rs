@@ -3,9 +3,10 @@
 use super::compared::Compared;
 use super::outcome::State;
 use crate::equilibrium::quantities::Solved;
+use crate::equilibrium::uncertainty::{Budget, Uncertainties};
 use crate::problem::defect::Defect;
 use crate::problem::effective::{InForce, Written};
-use crate::problem::model::{Held, HeldWhat, Problem};
+use crate::problem::model::{Held, HeldWhat, Problem, Sought};
 use crate::text::problem::SyntaxProblem;
 use crate::text::span::{Part, Place, Span};
 
@@ -18,6 +19,7 @@ pub struct Context<'a> {
     pub state: &'a State,
     /// The written balances, held against the implied ones.
     pub compared: &'a [Compared],
+    uncertainties: &'a Uncertainties,
     /// Whether this is a case that shares the base's scope, looked over already.
     pub inherited: bool,
     syntax: Vec<(Written<'a>, &'a SyntaxProblem)>,
@@ -28,7 +30,7 @@ impl<'a> Context<'a> {
         in_force: &'a InForce<'a>,
         problem: &'a Problem,
         state: &'a State,
-        compared: &'a [Compared],
+        (compared, uncertainties): (&'a [Compared], &'a Uncertainties),
         inherited: bool,
     ) -> Self {
         let InForce { statements, left_out, .. } = in_force;
@@ -40,7 +42,7 @@ impl<'a> Context<'a> {
             .filter(|written| !is_case || written.part == Part::Case)
             .flat_map(|written| written.parsed.problems.iter().map(|problem| (*written, problem)))
             .collect();
-        Self { statements, left_out, problem, state, compared, inherited, syntax }
+        Self { statements, left_out, problem, state, compared, uncertainties, inherited, syntax }
     }
 
     /// What was found while resolving; what a case only inherits is left out.
@@ -59,6 +61,12 @@ impl<'a> Context<'a> {
             State::Solved(solved) => Some(solved),
             _ => None,
         }
+    }
+
+    /// What a quantity is uncertain by; none where nothing is uncertain.
+    pub fn budget(&self, sought: Sought) -> Option<Budget> {
+        let (problem, solved) = (self.problem, self.solved()?);
+        self.uncertainties.budget(problem, solved, sought)
     }
 
     pub fn statement(&self, place: Place) -> Option<&Written<'a>> {

@@ -73,6 +73,19 @@ pub fn scientific(value: f64, digits: usize) -> String {
     }
 }
 
+/// A value with its standard uncertainty, `9.322 ± 0.021`: two digits of the uncertainty, and
+/// the value to the same place (JCGM 100:2008, 7.2.6).
+pub fn with_uncertainty(value: f64, standard_uncertainty: f64) -> String {
+    let size = |value: f64| value.abs().log10().floor();
+    let plain = value == 0.0 || (-4.0..6.0).contains(&size(value));
+    let places = 1.0 - size(standard_uncertainty);
+    if plain && (-5.0..10.0).contains(&places) {
+        let places = places.max(0.0) as usize;
+        return format!("{} ± {}", decimals(value, places), decimals(standard_uncertainty, places));
+    }
+    format!("{} ± {}", significant(value, 4), significant(standard_uncertainty, 2))
+}
+
 /// With so many decimals.
 pub fn decimals(value: f64, places: usize) -> String {
     let text = format!("{value:.places$}");
@@ -101,6 +114,14 @@ pub fn percent(share: f64) -> String {
     } else {
         format!("{} %", significant(value, 2))
     }
+}
+
+/// A share that was stated, without zeros that were not: `95 %`, `99.9 %`.
+pub fn stated_percent(share: f64) -> String {
+    let text = significant(100.0 * share, 6);
+    let text =
+        if text.contains('.') { text.trim_end_matches('0').trim_end_matches('.') } else { &text };
+    format!("{text} %")
 }
 
 /// `18 °C`, `4.5 °C`.

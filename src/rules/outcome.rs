@@ -13,10 +13,11 @@ use crate::equilibrium::phases::{Assemblage, Near, equilibrate, is_settled};
 use crate::equilibrium::quantities::Solved;
 use crate::equilibrium::several::other_states;
 use crate::equilibrium::system::{Failure, System};
+use crate::equilibrium::uncertainty::{Budget, Uncertainties};
 use crate::equilibrium::weighed::{Balances, Weighed};
 use crate::problem::case::resolve;
 use crate::problem::effective::InForce;
-use crate::problem::model::Problem;
+use crate::problem::model::{Problem, Sought};
 use crate::problem::scope::Scope;
 use crate::text::span::Place;
 
@@ -28,6 +29,7 @@ pub struct Outcome {
     pub findings: Vec<Finding<Place>>,
     /// Weighed when first asked for: no rule needs them.
     balances: OnceLock<Balances>,
+    uncertainties: Uncertainties,
 }
 
 /// What became of the equations.
@@ -53,6 +55,19 @@ impl Outcome {
     pub fn balance(&self, kind: BalanceKind) -> Option<&Weighed> {
         let solved = self.solved()?;
         self.balances.get_or_init(|| Balances::new(&self.problem, solved)).of(kind, solved)
+    }
+
+    /// What a quantity is uncertain by, and from which inputs; none where nothing is
+    /// uncertain, or where there is no answer.
+    pub fn budget(&self, sought: Sought) -> Option<Budget> {
+        let (problem, solved) = (&self.problem, self.solved()?);
+        self.uncertainties.budget(problem, solved, sought)
+    }
+
+    /// One standard uncertainty of the pH; none where nothing uncertain moves it.
+    pub fn ph_uncertainty(&self) -> Option<f64> {
+        let size = self.budget(Sought::Ph)?.standard_uncertainty;
+        (size > 0.0).then_some(size)
     }
 
     /// Takes the statements in force through all rooms. `near` is an answer to start from;
@@ -83,11 +98,14 @@ impl Outcome {
         let same_sources = inherited && !in_force.other_sources;
         let compared = compared(&problem, brought.as_deref(), same_sources);
         let mut findings = Vec::new();
-        let context = Context::new(in_force, &problem, &state, &compared, inherited);
+        let uncertainties = Uncertainties::default();
+        let context =
+            Context::new(in_force, &problem, &state, (&compared, &uncertainties), inherited);
         for rule in rules() {
             (rule.find)(&context, &mut findings);
         }
-        Some(Outcome { problem, state, compared, findings, balances: OnceLock::new() })
+        let balances = OnceLock::new();
+        Some(Outcome { problem, state, compared, findings, balances, uncertainties })
     }
 }
 

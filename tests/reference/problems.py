@@ -26,7 +26,7 @@ LIBRARY = os.path.join(HERE, "..", "..", "src", "library")
 
 def met(text, problem):
     """Whether an expectation is met, and the value found."""
-    text = re.sub(r',\s*source\s+"[^"]*"', "", text)
+    text = re.sub(r',\s*(source\s+"[^"]*"|confidence\s+\S+\s*%?)', "", text)
     subject, relation, right = re.match(r"expect (.*?) (=|<=|>=|<|>|between) (.*)$", text).groups()
     species = re.sub(r"[\[\]{}]|^(fraction|total|saturation index|precipitated) ", "", subject)
     amount = lambda t: quantity(t, species, problem.groups, subject == "alkalinity")

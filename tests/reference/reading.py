@@ -127,7 +127,14 @@ def statements(path):
                 out.append((True, line.strip()))
             else:
                 out[-1] = (out[-1][0], out[-1][1] + " " + line.strip())
-    return out
+    return [(inside, without_uncertainty(text)) for inside, text in out]
+
+
+def without_uncertainty(text):
+    """What is put in, held or at hand counts at its value; after `expect` the ± is a tolerance."""
+    if text.split()[0] in ("expect", "balance", "problem", "case"):
+        return text
+    return re.sub(rf"\s*(?:±|\+/-)\s*{NUMBER}(?:\s*%)?", "", text)
 
 
 def gather(path):

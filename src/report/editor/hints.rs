@@ -8,7 +8,7 @@ use crate::balance::written::Verdict;
 use crate::equilibrium::quantities::Solved;
 use crate::problem::model::{Expectation, Problem};
 use crate::report::balance;
-use crate::report::expectation::value_words;
+use crate::report::expectation::{is_met, value_words};
 use crate::report::figures::{concentration, decimals, percent, significant};
 use crate::report::inline::Hint;
 use crate::report::solids::fate_words;
@@ -98,7 +98,7 @@ fn statement(
         Statement::Expect { .. } => {
             if let Some(expectation) = problem.expectations.iter().find(|e| here(&e.at)) {
                 let offset = placed.start + expectation.at.span.end as usize;
-                hints.extend(expected(problem, solved, expectation, offset));
+                hints.extend(expected(outcome, solved, expectation, offset));
             }
         }
         Statement::Balance { .. } => {
@@ -176,15 +176,21 @@ fn component(problem: &Problem, solved: &Solved, j: usize, offset: usize) -> Opt
 }
 
 fn expected(
-    problem: &Problem,
+    outcome: &Outcome,
     solved: &Solved,
     expectation: &Expectation,
     offset: usize,
 ) -> Option<Hint> {
+    let problem = &outcome.problem;
     let value = solved.value(problem, expectation.sought)?;
-    let met = expectation.limit.is_met_by(value);
     let words = value_words(problem, expectation, value);
-    let text = if met { format!("is {words}") } else { format!("is {words}, not met") };
+    let text = if !expectation.limit.is_met_by(value) {
+        format!("is {words}, not met")
+    } else if expectation.confidence.is_some() && !is_met(outcome, expectation) {
+        format!("is {words}, not sure")
+    } else {
+        format!("is {words}")
+    };
     let tooltip = format!("{} = {}", expectation.words, significant(value, 6));
     Some(Hint { offset, text, tooltip: Some(tooltip) })
 }

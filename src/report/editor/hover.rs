@@ -15,9 +15,10 @@ use crate::report::figures::{
 };
 use crate::report::inline::Hover;
 use crate::report::solids::fate_words;
+use crate::report::uncertainty;
 use crate::rules::check::Checked;
 use crate::rules::outcome::Outcome;
-use crate::text::span::{Part, Span};
+use crate::text::span::{Part, Place, Span};
 use crate::text::tree::{ConstantKind, Name, Placed, Statement};
 
 /// What is known of the thing at an offset of the file, or just before it.
@@ -68,6 +69,12 @@ pub fn hover(checked: &Checked, offset: usize) -> Option<Hover> {
         // Solved only now: a check does not follow curves.
         let markdown = ends(&outcome.problem, curve);
         return Some(Hover { range: range(curve.at.span), markdown });
+    }
+    if let Statement::Expect { .. } = &placed.parsed.statement {
+        let here = |at: Place| at.section == part && at.statement as usize == index;
+        let expectation = outcome.problem.expectations.iter().find(|e| here(e.at))?;
+        let markdown = uncertainty::hover(outcome, expectation)?;
+        return Some(Hover { range: range(expectation.at.span), markdown });
     }
     None
 }

@@ -31,11 +31,10 @@
 use crate::problem::model::{Expectation, Limit};
 use crate::rules::catalogue::rule;
 use crate::rules::context::Context;
-use crate::rules::expectation::value_words;
+use crate::rules::expectation::{value_words, written};
 use crate::rules::figures::significant;
 use crate::rules::finding::Finding;
-use crate::text::span::{Place, Span};
-use crate::text::tree::{Relation, Statement};
+use crate::text::span::Place;
 
 rule!("expectation-not-met", Error, "expectation_not_met.rs", find);
 
@@ -85,22 +84,4 @@ fn distance(expectation: &Expectation, off: f64) -> Option<String> {
     let size = significant(off.abs() / unit.map_or(1.0, |unit| unit.factor), 3);
     let unit = unit.map_or_else(String::new, |unit| format!(" {}", unit.words));
     Some(format!("{size}{unit} {way}"))
-}
-
-/// From the quantity to its limit, and the limit's own words.
-fn written(context: &Context, expectation: &Expectation) -> Option<(Place, String)> {
-    let written = context.statement(expectation.at)?;
-    let Statement::Expect { subject, relation, .. } = written.statement() else { return None };
-    let limit: Span = match relation {
-        Relation::Equal(q)
-        | Relation::Less(q)
-        | Relation::LessOrEqual(q)
-        | Relation::Greater(q)
-        | Relation::GreaterOrEqual(q) => q.span,
-        Relation::Between(low, high) => low.span.to(high.span),
-    };
-    let text = written.parsed.text.get(limit.range())?;
-    // It may go over a line break.
-    let words: Vec<&str> = text.split_whitespace().collect();
-    Some((written.place(subject.span.to(limit)), words.join(" ")))
 }

@@ -8,6 +8,8 @@ family! {
     expectation_not_met,
     ion_lacks_interaction,
     ionic_strength_not_used,
+    limit_not_sure,
+    confidence_without_uncertainty,
     ionic_strength_past_model,
     litre_taken_as_kilogram,
     temperature_past_model,

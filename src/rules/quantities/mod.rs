@@ -12,4 +12,9 @@ family! {
     unit_not_applicable,
     mixed_scales,
     impossible_value,
+    uncertainty_of_zero,
+    uncertainty_too_large,
+    relative_uncertainty_of_logarithm,
+    uncertainty_not_used,
+    confidence_out_of_range,
 }
