@@ -3,6 +3,7 @@
 
 mod amounts;
 pub mod belong;
+pub mod builtin;
 pub mod case;
 mod charge_reading;
 mod compare;
@@ -22,6 +23,7 @@ pub mod reagent;
 pub mod resolve;
 pub mod scope;
 pub mod sets;
+pub mod sort;
 pub mod sparse;
 mod split;
 pub mod stoichiometry;

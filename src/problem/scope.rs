@@ -14,7 +14,7 @@ use super::compare::compare_with_used;
 use super::defect::{Defect, DefectKind};
 use super::effective::Written;
 use super::import::{Definitions, add_new};
-use super::reaction::{Constant, LogK, Origin, Participant, Reaction};
+use super::reaction::{Constant, LogK, Origin, Participant, Reaction, key};
 use super::resolve::Resolver;
 use super::split::Reagents;
 use super::stoichiometry::{SpeciesRow, Stoichiometry};
@@ -66,6 +66,7 @@ impl Scope {
     ) -> Scope {
         let mut resolver = Resolver::default();
         let mut used = Definitions::default();
+        let several = uses.len() > 1;
         for (at, result) in uses {
             match result {
                 Ok(definitions) => {
@@ -88,6 +89,11 @@ impl Scope {
             span: Span::default(),
         });
         let mut reactions = resolver.reactions(statements, &own);
+        // A group that means something else here takes the used reactions with it that were
+        // written with the other meaning.
+        if several || statements.iter().any(|w| matches!(w.statement(), Statement::Group { .. })) {
+            used.reactions.retain(|reaction| resolver.means_the_same(reaction));
+        }
         compare_with_used(&reactions, &used.reactions, &mut resolver);
         add_new(&mut reactions, &used.reactions);
         add_new(&mut reactions, &[Arc::new(water_reaction())]);
@@ -347,6 +353,16 @@ impl Builder {
             if belonging.made[name].is_none() && belonging.made[other].is_none() {
                 continue;
             }
+            // Isomers: two substances that a set or a file tells apart.
+            let is_used = |s: usize| {
+                let name = &self.species[s].name;
+                let of_used = |reaction: &&Arc<Reaction>| reaction.origin.own().is_none();
+                let mut used = reactions.iter().filter(of_used);
+                used.any(|reaction| reaction.participants.iter().any(|p| p.formula.name == *name))
+            };
+            if is_used(name) && is_used(other) {
+                continue;
+            }
             let kind = DefectKind::TwoNames {
                 name: self.species[name].name.clone(),
                 other: self.species[other].name.clone(),
@@ -382,12 +398,14 @@ fn water_reaction() -> Reaction {
             span: Span::default(),
         })
     };
+    let participants: Vec<_> = [("H2O", -1), ("H+", 1), ("OH-", 1)]
+        .iter()
+        .filter_map(|(text, n)| participant(text, *n))
+        .collect();
     Reaction {
-        participants: [("H2O", -1), ("H+", 1), ("OH-", 1)]
-            .iter()
-            .filter_map(|(text, n)| participant(text, *n))
-            .collect(),
         equation: "H2O <=> H+ + OH-".into(),
+        key: key(&participants),
+        participants,
         constant: Some(Constant {
             kind: ConstantKind::PK,
             value: LogK::Water,

@@ -3,10 +3,13 @@
 pub mod answer;
 pub mod balance;
 pub mod check_json;
+pub mod constant;
 pub mod derivation;
 pub mod editor;
 pub mod inline;
 pub mod junit;
+pub mod library;
+pub mod library_json;
 pub mod page;
 pub mod sarif;
 pub mod sheet;
