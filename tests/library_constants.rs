@@ -245,7 +245,7 @@ fn constants_move_with_temperature_as_others_found() {
         seen += 1;
     }
     assert!(wrong.is_empty(), "{}", wrong.join("\n"));
-    assert!(seen > 75 && doubtful <= 3, "{seen} {doubtful}");
+    assert!(seen > 75 && doubtful <= 4, "{seen} {doubtful}");
 }
 
 #[test]

@@ -197,14 +197,16 @@ pub(super) fn resolve(
         .filter(|problem| problem.kind != SyntaxProblemKind::StrayIndent)
         .count();
     found.errors = defects.len() + syntax;
+    let mut used = Vec::new();
     for written in &statements {
         if let Statement::Use(what) = written.statement() {
             match read(what) {
-                Ok(used) => found.join(&used),
+                Ok(definitions) => used.push(definitions),
                 Err(_) => found.errors += 1,
             }
         }
     }
+    found.join(used.iter().map(Arc::as_ref));
     let mut resolver = Resolver::default();
     resolver.groups.extend(&found.groups);
     resolver.declare_groups(&statements);
@@ -217,19 +219,24 @@ pub(super) fn resolve(
 }
 
 impl Definitions {
-    pub fn join(&mut self, used: &Definitions) {
-        self.groups.extend(&used.groups);
-        self.errors += used.errors;
-        self.files.extend(used.files.iter().cloned());
-        add_new(&mut self.reactions, &used.reactions);
+    /// Takes up what several others bring, the first before the second.
+    pub fn join<'a>(&mut self, others: impl Iterator<Item = &'a Definitions>) {
+        let mut reactions = Vec::new();
+        for used in others {
+            self.groups.extend(&used.groups);
+            self.errors += used.errors;
+            self.files.extend(used.files.iter().cloned());
+            reactions.extend(used.reactions.iter().cloned());
+        }
+        add_new(&mut self.reactions, &reactions);
     }
 }
 
 /// Adds the reactions whose equilibrium is not there yet: the first `use` wins.
 pub fn add_new(reactions: &mut Vec<Arc<Reaction>>, more: &[Arc<Reaction>]) {
     let fresh: Vec<_> = {
-        let known: HashSet<_> = reactions.iter().map(|r| r.key.as_str()).collect();
-        more.iter().filter(|reaction| !known.contains(reaction.key.as_str())).cloned().collect()
+        let mut known: HashSet<_> = reactions.iter().map(|r| r.key.as_str()).collect();
+        more.iter().filter(|reaction| known.insert(reaction.key.as_str())).cloned().collect()
     };
     reactions.extend(fresh);
 }

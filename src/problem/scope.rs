@@ -65,7 +65,7 @@ impl Scope {
         uses: Vec<(Place, Result<Arc<Definitions>, DefectKind>)>,
     ) -> Scope {
         let mut resolver = Resolver::default();
-        let mut used = Definitions::default();
+        let mut brought = Vec::new();
         let several = uses.len() > 1;
         for (at, result) in uses {
             match result {
@@ -76,11 +76,13 @@ impl Scope {
                         let (path, count) = (path.clone(), definitions.errors);
                         resolver.report(at, DefectKind::ImportBroken { path, count });
                     }
-                    used.join(&definitions);
+                    brought.push(definitions);
                 }
                 Err(kind) => resolver.report(at, kind),
             }
         }
+        let mut used = Definitions::default();
+        used.join(brought.iter().map(Arc::as_ref));
         resolver.groups.extend(&used.groups);
         resolver.declare_groups(statements);
         let own = Origin::Own(Place {
@@ -326,25 +328,26 @@ impl Builder {
         }
     }
 
-    /// Two names for one composition, charge and phase.
+    /// Two names for one composition, charge and phase: only where the file itself writes
+    /// one of them, and the species meet.
     fn report_names(&mut self, belonging: &Belonging, reactions: &[Arc<Reaction>]) {
-        let mut seen: HashMap<(String, i32, Phase), usize> = HashMap::new();
-        for s in 0..self.species.len() {
-            let formula = self.species[s].clone();
-            let Some(elements) = formula.elements() else { continue };
-            if formula.is_electron() || formula.composite {
+        let written = self.written(reactions);
+        let mut pairs: Vec<(usize, usize)> = Vec::new();
+        for &s in written.keys() {
+            let formula = &self.species[s];
+            if formula.is_electron() || formula.composite || formula.elements().is_none() {
                 continue;
             }
-            let composition: String =
-                elements.iter().map(|(e, n)| format!("{}{n} ", e.symbol())).collect();
-            let key = (composition, formula.charge, formula.phase.clone());
-            let Some(&other) = seen.get(&key) else {
-                seen.insert(key, s);
-                continue;
-            };
-            // Only where the file itself writes one of them, and both can meet.
-            let of = |s: usize| self.written_at(s, reactions);
-            let (here, there) = (of(s), of(other));
+            let same = (0..self.species.len()).filter(|&other| {
+                let other_formula = &self.species[other];
+                other != s && !other_formula.composite && other_formula.same_matter(formula)
+            });
+            pairs.extend(same.map(|other| (s.max(other), s.min(other))));
+        }
+        pairs.sort_unstable();
+        pairs.dedup();
+        for (s, other) in pairs {
+            let (here, there) = (written.get(&s).copied(), written.get(&other).copied());
             let (at, name, other_at, other) = match (here, there) {
                 (Some(at), there) => (at, s, there, other),
                 (None, Some(at)) => (at, other, None, s),
@@ -372,19 +375,25 @@ impl Builder {
         }
     }
 
-    /// Where the file itself first writes a species: as a component or in a reaction.
-    fn written_at(&self, s: usize, reactions: &[Arc<Reaction>]) -> Option<Place> {
-        let component = self.components.iter().find(|c| c.species == s).and_then(|c| c.at);
-        component.or_else(|| {
-            reactions.iter().find_map(|reaction| {
-                let place = reaction.origin.own()?;
-                let participant = reaction
-                    .participants
-                    .iter()
-                    .find(|p| p.formula.name == self.species[s].name)?;
-                Some(Place { span: participant.span, ..place })
-            })
-        })
+    /// The species that the file itself writes, with the first place of each: as a component
+    /// or in a reaction.
+    fn written(&self, reactions: &[Arc<Reaction>]) -> BTreeMap<usize, Place> {
+        let mut written = BTreeMap::new();
+        for component in &self.components {
+            if let Some(at) = component.at {
+                written.entry(component.species).or_insert(at);
+            }
+        }
+        for reaction in reactions {
+            let Some(place) = reaction.origin.own() else { continue };
+            for participant in &reaction.participants {
+                if let Some(&s) = self.index.get(&participant.formula.name) {
+                    let at = Place { span: participant.span, ..place };
+                    written.entry(s).or_insert(at);
+                }
+            }
+        }
+        written
     }
 }
 
