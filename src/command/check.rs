@@ -3,7 +3,7 @@
 use std::collections::HashMap;
 use std::path::PathBuf;
 
-use super::library::{Checker, find};
+use super::files::{Checker, find};
 use super::reply::{Complaint, Reply};
 use super::terminal::style;
 use crate::report::source::{FileReport, Reading};

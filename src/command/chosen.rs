@@ -2,7 +2,7 @@
 
 use std::path::PathBuf;
 
-use super::library::Checker;
+use super::files::Checker;
 use super::reply::Complaint;
 use crate::report::source::{FileReport, Reading, Stated};
 

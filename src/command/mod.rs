@@ -8,6 +8,7 @@ mod check;
 mod chosen;
 mod derive;
 mod explain;
+mod files;
 mod library;
 mod reply;
 mod serve;
@@ -35,6 +36,7 @@ enum Command {
     Solve(solve::Arguments),
     Derive(derive::Arguments),
     Explain(explain::Arguments),
+    Library(library::Arguments),
     Serve(serve::Arguments),
 }
 
@@ -45,6 +47,7 @@ pub fn run() -> ExitCode {
         Command::Solve(arguments) => reply::give(solve::run(&arguments)),
         Command::Derive(arguments) => reply::give(derive::run(&arguments)),
         Command::Explain(arguments) => reply::give(explain::run(&arguments)),
+        Command::Library(arguments) => reply::give(library::run(&arguments)),
         Command::Serve(arguments) => serve::run(&arguments),
     }
 }

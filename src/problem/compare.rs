@@ -16,9 +16,10 @@ pub fn compare_with_used(own: &[Arc<Reaction>], used: &[Arc<Reaction>], resolver
     if own.is_empty() {
         return;
     }
-    let by_key: HashMap<_, _> = used.iter().map(|reaction| (reaction.key(), reaction)).collect();
+    let by_key: HashMap<_, _> =
+        used.iter().map(|reaction| (reaction.key.as_str(), reaction)).collect();
     for reaction in own {
-        let Some(other) = by_key.get(&reaction.key()) else { continue };
+        let Some(other) = by_key.get(reaction.key.as_str()) else { continue };
         let Some(factor) = proportion(&reaction.participants, &other.participants) else {
             continue;
         };

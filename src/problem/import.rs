@@ -1,18 +1,18 @@
 //! What `use` brings: reactions and groups of a built-in set or of another file, and
 //! those that it uses in turn. Never anybody's amounts.
 
-use std::collections::HashMap;
+use std::collections::{HashMap, HashSet};
 use std::hash::{DefaultHasher, Hash, Hasher};
 use std::path::{Path, PathBuf};
 use std::sync::atomic::{AtomicU64, Ordering};
 use std::sync::{Arc, Mutex};
 
+use super::builtin;
 use super::defect::{Conserved, Defect, DefectKind};
 use super::effective::{InForce, in_force};
 use super::files::{Files, ReadProblem, root_of};
 use super::reaction::{Origin, Reaction};
 use super::resolve::Resolver;
-use super::sets;
 use crate::chemistry::formula::Groups;
 use crate::text::problem::SyntaxProblemKind;
 use crate::text::tree::{Document, Statement, Use};
@@ -30,17 +30,11 @@ pub struct Definitions {
     pub number: u64,
 }
 
-/// Files and sets already read and resolved, kept between edits. A file is resolved again
-/// when its text, or that of one it uses, has changed.
+/// Files already read and resolved, kept between edits. A file is resolved again when its
+/// text, or that of one it uses, has changed.
 #[derive(Default)]
 pub struct Imports {
-    kept: Mutex<HashMap<(Whence, u64), Arc<Definitions>>>,
-}
-
-#[derive(Clone, PartialEq, Eq, Hash)]
-enum Whence {
-    Set(&'static str, u32),
-    File(PathBuf),
+    kept: Mutex<HashMap<(PathBuf, u64), Arc<Definitions>>>,
 }
 
 /// One walk through the files that a file uses.
@@ -70,7 +64,9 @@ impl Reader<'_> {
     /// Resolves one `use`.
     pub fn read(&self, what: &Use) -> Result<Arc<Definitions>, DefectKind> {
         match what {
-            Use::Set { name, edition } => self.set(&name.value, edition.as_ref().map(|e| e.value)),
+            Use::Set { name, edition } => {
+                builtin::find(&name.value, edition.as_ref().map(|e| e.value))
+            }
             Use::File { path } => {
                 let Some(own) = self.path else {
                     let path = PathBuf::from(&path.value);
@@ -83,36 +79,6 @@ impl Reader<'_> {
                 self.file(&own, &path.value, &mut walk)
             }
         }
-    }
-
-    fn set(&self, name: &str, edition: Option<u32>) -> Result<Arc<Definitions>, DefectKind> {
-        let Some(set) = sets::find(name, edition) else {
-            return Err(match (sets::find(name, None), edition) {
-                (Some(newest), Some(edition)) => DefectKind::UnknownEdition {
-                    name: name.into(),
-                    edition,
-                    newest: newest.edition,
-                },
-                _ => DefectKind::UnknownSet { name: name.into(), known: sets::names() },
-            });
-        };
-        let key = (Whence::Set(set.name, set.edition), 0);
-        if let Some(kept) = self.kept(&key) {
-            return Ok(kept);
-        }
-        let origin = Origin::Set { name: set.name, edition: set.edition };
-        let found = self.resolve(&Document::parse(set.text), &origin, |what| match what {
-            // A set uses only sets; a name of itself would not end.
-            Use::Set { name: other, edition } if other.value != set.name => {
-                self.set(&other.value, edition.as_ref().map(|e| e.value))
-            }
-            // Sets stand beside one another as files too.
-            Use::File { path } if path.value != format!("{}.lyate", set.name) => {
-                self.set(path.value.trim_end_matches(".lyate"), None)
-            }
-            _ => Err(DefectKind::UnknownSet { name: set.name.into(), known: sets::names() }),
-        });
-        Ok(self.keep(key, found))
     }
 
     fn file(
@@ -170,7 +136,7 @@ impl Reader<'_> {
         for what in &uses {
             let definitions = match what {
                 Use::Set { name, edition } => {
-                    self.set(&name.value, edition.as_ref().map(|e| e.value))
+                    builtin::find(&name.value, edition.as_ref().map(|e| e.value))
                 }
                 Use::File { path: next } => {
                     walk.chain.push(path.to_path_buf());
@@ -185,12 +151,12 @@ impl Reader<'_> {
             }
             used.insert(use_key(what), definitions);
         }
-        let key = (Whence::File(path.to_path_buf()), hasher.finish());
+        let key = (path.to_path_buf(), hasher.finish());
         if let Some(kept) = self.kept(&key) {
             return Ok(kept);
         }
         let origin = Origin::File(path.to_path_buf());
-        let mut found = self.resolve(&document, &origin, |what| {
+        let mut found = resolve(&document, &origin, |what| {
             used.get(&use_key(what)).cloned().unwrap_or_else(|| {
                 let why = "it was not read".into();
                 Err(DefectKind::FileMissing { path: shown.clone(), why })
@@ -200,46 +166,11 @@ impl Reader<'_> {
         Ok(self.keep(key, found))
     }
 
-    fn resolve(
-        &self,
-        document: &Document,
-        origin: &Origin,
-        mut read: impl FnMut(&Use) -> Result<Arc<Definitions>, DefectKind>,
-    ) -> Definitions {
-        let InForce { statements, defects, .. } = in_force(&document.sections[0], None);
-        let number = NUMBER.fetch_add(1, Ordering::Relaxed);
-        let mut found = Definitions { number, ..Definitions::default() };
-        let syntax = document
-            .sections
-            .iter()
-            .flat_map(|section| &section.statements)
-            .flat_map(|placed| &placed.parsed.problems)
-            .filter(|problem| problem.kind != SyntaxProblemKind::StrayIndent)
-            .count();
-        found.errors = defects.len() + syntax;
-        for written in &statements {
-            if let Statement::Use(what) = written.statement() {
-                match read(what) {
-                    Ok(used) => found.join(&used),
-                    Err(_) => found.errors += 1,
-                }
-            }
-        }
-        let mut resolver = Resolver::default();
-        resolver.groups.extend(&found.groups);
-        resolver.declare_groups(&statements);
-        let own = resolver.reactions(&statements, origin);
-        found.errors += errors(&resolver.defects);
-        found.groups = resolver.groups;
-        override_with(&mut found.reactions, own);
-        found
-    }
-
-    fn kept(&self, key: &(Whence, u64)) -> Option<Arc<Definitions>> {
+    fn kept(&self, key: &(PathBuf, u64)) -> Option<Arc<Definitions>> {
         self.imports.kept.lock().unwrap_or_else(|e| e.into_inner()).get(key).cloned()
     }
 
-    fn keep(&self, key: (Whence, u64), definitions: Definitions) -> Arc<Definitions> {
+    fn keep(&self, key: (PathBuf, u64), definitions: Definitions) -> Arc<Definitions> {
         let mut kept = self.imports.kept.lock().unwrap_or_else(|e| e.into_inner());
         // One state of each file is enough.
         kept.retain(|(origin, _), _| *origin != key.0);
@@ -249,20 +180,63 @@ impl Reader<'_> {
     }
 }
 
+/// What the statements of one text define, with what `read` gives for each of its `use`.
+pub(super) fn resolve(
+    document: &Document,
+    origin: &Origin,
+    mut read: impl FnMut(&Use) -> Result<Arc<Definitions>, DefectKind>,
+) -> Definitions {
+    let InForce { statements, defects, .. } = in_force(&document.sections[0], None);
+    let number = NUMBER.fetch_add(1, Ordering::Relaxed);
+    let mut found = Definitions { number, ..Definitions::default() };
+    let syntax = document
+        .sections
+        .iter()
+        .flat_map(|section| &section.statements)
+        .flat_map(|placed| &placed.parsed.problems)
+        .filter(|problem| problem.kind != SyntaxProblemKind::StrayIndent)
+        .count();
+    found.errors = defects.len() + syntax;
+    let mut used = Vec::new();
+    for written in &statements {
+        if let Statement::Use(what) = written.statement() {
+            match read(what) {
+                Ok(definitions) => used.push(definitions),
+                Err(_) => found.errors += 1,
+            }
+        }
+    }
+    found.join(used.iter().map(Arc::as_ref));
+    let mut resolver = Resolver::default();
+    resolver.groups.extend(&found.groups);
+    resolver.declare_groups(&statements);
+    let own = resolver.reactions(&statements, origin);
+    found.errors += errors(&resolver.defects);
+    found.reactions.retain(|reaction| resolver.means_the_same(reaction));
+    found.groups = resolver.groups;
+    override_with(&mut found.reactions, own);
+    found
+}
+
 impl Definitions {
-    pub fn join(&mut self, used: &Definitions) {
-        self.groups.extend(&used.groups);
-        self.errors += used.errors;
-        self.files.extend(used.files.iter().cloned());
-        add_new(&mut self.reactions, &used.reactions);
+    /// Takes up what several others bring, the first before the second.
+    pub fn join<'a>(&mut self, others: impl Iterator<Item = &'a Definitions>) {
+        let mut reactions = Vec::new();
+        for used in others {
+            self.groups.extend(&used.groups);
+            self.errors += used.errors;
+            self.files.extend(used.files.iter().cloned());
+            reactions.extend(used.reactions.iter().cloned());
+        }
+        add_new(&mut self.reactions, &reactions);
     }
 }
 
 /// Adds the reactions whose equilibrium is not there yet: the first `use` wins.
 pub fn add_new(reactions: &mut Vec<Arc<Reaction>>, more: &[Arc<Reaction>]) {
     let fresh: Vec<_> = {
-        let known: std::collections::HashSet<_> = reactions.iter().map(|r| r.key()).collect();
-        more.iter().filter(|reaction| !known.contains(&reaction.key())).cloned().collect()
+        let mut known: HashSet<_> = reactions.iter().map(|r| r.key.as_str()).collect();
+        more.iter().filter(|reaction| known.insert(reaction.key.as_str())).cloned().collect()
     };
     reactions.extend(fresh);
 }

@@ -3,6 +3,7 @@
 
 mod amounts;
 pub mod belong;
+pub mod builtin;
 pub mod case;
 mod charge_reading;
 mod compare;
@@ -26,6 +27,7 @@ pub mod resolve;
 pub mod scope;
 pub mod sets;
 mod solids;
+pub mod sort;
 pub mod sparse;
 mod split;
 pub mod stoichiometry;

@@ -20,6 +20,8 @@ pub struct Reaction {
     pub participants: Vec<Participant>,
     /// The equation in canonical form, `NH4+ <=> NH3 + H+`.
     pub equation: String,
+    /// The same for the same equilibrium, whichever way it is written.
+    pub key: String,
     pub constant: Option<Constant>,
     /// J/mol, for the reaction as written.
     pub enthalpy: Option<f64>,
@@ -155,18 +157,14 @@ impl Reaction {
     pub fn is_ion_product(&self) -> bool {
         matches!(self.constant.as_ref().map(|constant| &constant.value), Some(LogK::Water))
     }
+}
 
-    /// Species of the reaction, water left out, sorted: the same for the same equilibrium.
-    pub fn key(&self) -> Vec<&str> {
-        let mut key: Vec<_> = self
-            .participants
-            .iter()
-            .map(|p| p.formula.name.as_str())
-            .filter(|&name| name != "H2O")
-            .collect();
-        key.sort_unstable();
-        key
-    }
+/// Species of a reaction in order, water left out: the key of its equilibrium.
+pub fn key(participants: &[Participant]) -> String {
+    let names = participants.iter().map(|p| p.formula.name.as_str());
+    let mut names: Vec<_> = names.filter(|&name| name != "H2O").collect();
+    names.sort_unstable();
+    names.join(" ")
 }
 
 /// The value of an expression in T, in kelvin. The parser limits how deep it nests.

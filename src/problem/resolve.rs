@@ -8,7 +8,7 @@ use num_traits::{CheckedAdd, CheckedMul, Zero};
 
 use super::defect::{Conserved, Defect, DefectKind};
 use super::effective::Written;
-use super::reaction::{Origin, Participant, Reaction};
+use super::reaction::{Origin, Participant, Reaction, key};
 use super::scope::Scope;
 use crate::chemistry::formula::{Atom, Formula, FormulaProblem, GroupProblem, Groups};
 use crate::text::span::{Place, Span};
@@ -94,6 +94,17 @@ impl Resolver {
         }
     }
 
+    /// Whether the groups in scope give the names of a used reaction the meaning that they
+    /// were written with.
+    pub fn means_the_same(&mut self, reaction: &Reaction) -> bool {
+        let grouped =
+            |formula: &Formula| formula.atoms.keys().any(|atom| matches!(atom, Atom::Group(_)));
+        reaction.participants.iter().map(|participant| &participant.formula).all(|formula| {
+            !grouped(formula)
+                || self.quiet_formula(&formula.name).is_some_and(|read| read.same_matter(formula))
+        })
+    }
+
     /// Reads a formula without a word about what is wrong with it.
     pub fn quiet_formula(&mut self, text: &str) -> Option<Arc<Formula>> {
         self.look_up(text).ok()
@@ -147,6 +158,7 @@ impl Resolver {
         let terms = self.constant_terms(written, tree, &participants);
         Some(Reaction {
             equation: equation(&participants),
+            key: key(&participants),
             constant: terms.constant,
             enthalpy: terms.enthalpy,
             heat_capacity: terms.heat_capacity,

@@ -14,7 +14,7 @@ use super::compare::compare_with_used;
 use super::defect::{Defect, DefectKind};
 use super::effective::Written;
 use super::import::{Definitions, add_new};
-use super::reaction::{Constant, LogK, Origin, Participant, Reaction};
+use super::reaction::{Constant, LogK, Origin, Participant, Reaction, key};
 use super::resolve::Resolver;
 use super::split::Reagents;
 use super::stoichiometry::{SpeciesRow, Stoichiometry};
@@ -65,7 +65,8 @@ impl Scope {
         uses: Vec<(Place, Result<Arc<Definitions>, DefectKind>)>,
     ) -> Scope {
         let mut resolver = Resolver::default();
-        let mut used = Definitions::default();
+        let mut brought = Vec::new();
+        let several = uses.len() > 1;
         for (at, result) in uses {
             match result {
                 Ok(definitions) => {
@@ -75,11 +76,13 @@ impl Scope {
                         let (path, count) = (path.clone(), definitions.errors);
                         resolver.report(at, DefectKind::ImportBroken { path, count });
                     }
-                    used.join(&definitions);
+                    brought.push(definitions);
                 }
                 Err(kind) => resolver.report(at, kind),
             }
         }
+        let mut used = Definitions::default();
+        used.join(brought.iter().map(Arc::as_ref));
         resolver.groups.extend(&used.groups);
         resolver.declare_groups(statements);
         let own = Origin::Own(Place {
@@ -88,6 +91,11 @@ impl Scope {
             span: Span::default(),
         });
         let mut reactions = resolver.reactions(statements, &own);
+        // A group that means something else here takes the used reactions with it that were
+        // written with the other meaning.
+        if several || statements.iter().any(|w| matches!(w.statement(), Statement::Group { .. })) {
+            used.reactions.retain(|reaction| resolver.means_the_same(reaction));
+        }
         compare_with_used(&reactions, &used.reactions, &mut resolver);
         add_new(&mut reactions, &used.reactions);
         add_new(&mut reactions, &[Arc::new(water_reaction())]);
@@ -261,31 +269,42 @@ impl Builder {
         }
     }
 
-    /// Two names for one composition, charge and phase.
+    /// Two names for one composition, charge and phase: only where the file itself writes
+    /// one of them, and the species meet.
     fn report_names(&mut self, belonging: &Belonging, reactions: &[Arc<Reaction>]) {
-        let mut seen: HashMap<(String, i32, Phase), usize> = HashMap::new();
-        for s in 0..self.species.len() {
-            let formula = self.species[s].clone();
-            let Some(elements) = formula.elements() else { continue };
-            if formula.is_electron() || formula.composite {
+        let written = self.written(reactions);
+        let mut pairs: Vec<(usize, usize)> = Vec::new();
+        for &s in written.keys() {
+            let formula = &self.species[s];
+            if formula.is_electron() || formula.composite || formula.elements().is_none() {
                 continue;
             }
-            let composition: String =
-                elements.iter().map(|(e, n)| format!("{}{n} ", e.symbol())).collect();
-            let key = (composition, formula.charge, formula.phase.clone());
-            let Some(&other) = seen.get(&key) else {
-                seen.insert(key, s);
-                continue;
-            };
-            // Only where the file itself writes one of them, and both can meet.
-            let of = |s: usize| self.written_at(s, reactions);
-            let (here, there) = (of(s), of(other));
+            let same = (0..self.species.len()).filter(|&other| {
+                let other_formula = &self.species[other];
+                other != s && !other_formula.composite && other_formula.same_matter(formula)
+            });
+            pairs.extend(same.map(|other| (s.max(other), s.min(other))));
+        }
+        pairs.sort_unstable();
+        pairs.dedup();
+        for (s, other) in pairs {
+            let (here, there) = (written.get(&s).copied(), written.get(&other).copied());
             let (at, name, other_at, other) = match (here, there) {
                 (Some(at), there) => (at, s, there, other),
                 (None, Some(at)) => (at, other, None, s),
                 (None, None) => continue,
             };
             if belonging.made[name].is_none() && belonging.made[other].is_none() {
+                continue;
+            }
+            // Isomers: two substances that a set or a file tells apart.
+            let is_used = |s: usize| {
+                let name = &self.species[s].name;
+                let of_used = |reaction: &&Arc<Reaction>| reaction.origin.own().is_none();
+                let mut used = reactions.iter().filter(of_used);
+                used.any(|reaction| reaction.participants.iter().any(|p| p.formula.name == *name))
+            };
+            if is_used(name) && is_used(other) {
                 continue;
             }
             let kind = DefectKind::TwoNames {
@@ -297,19 +316,25 @@ impl Builder {
         }
     }
 
-    /// Where the file itself first writes a species: as a component or in a reaction.
-    fn written_at(&self, s: usize, reactions: &[Arc<Reaction>]) -> Option<Place> {
-        let component = self.components.iter().find(|c| c.species == s).and_then(|c| c.at);
-        component.or_else(|| {
-            reactions.iter().find_map(|reaction| {
-                let place = reaction.origin.own()?;
-                let participant = reaction
-                    .participants
-                    .iter()
-                    .find(|p| p.formula.name == self.species[s].name)?;
-                Some(Place { span: participant.span, ..place })
-            })
-        })
+    /// The species that the file itself writes, with the first place of each: as a component
+    /// or in a reaction.
+    fn written(&self, reactions: &[Arc<Reaction>]) -> BTreeMap<usize, Place> {
+        let mut written = BTreeMap::new();
+        for component in &self.components {
+            if let Some(at) = component.at {
+                written.entry(component.species).or_insert(at);
+            }
+        }
+        for reaction in reactions {
+            let Some(place) = reaction.origin.own() else { continue };
+            for participant in &reaction.participants {
+                if let Some(&s) = self.index.get(&participant.formula.name) {
+                    let at = Place { span: participant.span, ..place };
+                    written.entry(s).or_insert(at);
+                }
+            }
+        }
+        written
     }
 }
 
@@ -323,12 +348,14 @@ fn water_reaction() -> Reaction {
             span: Span::default(),
         })
     };
+    let participants: Vec<_> = [("H2O", -1), ("H+", 1), ("OH-", 1)]
+        .iter()
+        .filter_map(|(text, n)| participant(text, *n))
+        .collect();
     Reaction {
-        participants: [("H2O", -1), ("H+", 1), ("OH-", 1)]
-            .iter()
-            .filter_map(|(text, n)| participant(text, *n))
-            .collect(),
         equation: "H2O <=> H+ + OH-".into(),
+        key: key(&participants),
+        participants,
         constant: Some(Constant {
             kind: ConstantKind::PK,
             value: LogK::Water,

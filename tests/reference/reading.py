@@ -10,8 +10,10 @@ import mpmath as mp
 # IUPAC (CIAAW 2021) abridged standard atomic weights, of the elements that occur.
 MASS = dict(
     H=1.008, B=10.81, C=12.011, N=14.007, O=15.999, F=18.998, Na=22.990, Mg=24.305,
-    Al=26.982, Si=28.085, P=30.974, S=32.06, Cl=35.45, K=39.098, Ca=40.078, Mn=54.938,
-    Fe=55.845, Cu=63.546, Br=79.904, Ag=107.87, Cd=112.41, I=126.90, Hg=200.59, Pb=207.2,
+    Al=26.982, Si=28.085, P=30.974, S=32.06, Cl=35.45, Ar=39.95, K=39.098, Ca=40.078,
+    Cr=51.996, Mn=54.938, Fe=55.845, Co=58.933, Ni=58.693, Cu=63.546, Zn=65.38, As=74.922,
+    Se=78.971, Br=79.904, Sr=87.62, Mo=95.95, Ag=107.87, Cd=112.41, I=126.90, Ba=137.33,
+    Au=196.97, Hg=200.59, Pb=207.2,
 )
 GAS_CONSTANT = mp.mpf("8.31446261815324")
 NUMBER = r"[-+]?(?:10\^[-+]?\d+|\d+(?:\.\d+)?(?:[×x]10\^[-+]?\d+|e[-+]?\d+)?)"
@@ -213,6 +215,13 @@ class Reaction:
         return value
 
 
+def built_in(library, name, edition=None):
+    """A set's file, in this edition or the newest that has it."""
+    editions = [edition] if edition else sorted(os.listdir(library), key=int, reverse=True)
+    files = (os.path.join(library, folder, name + ".lyate") for folder in editions)
+    return next(file for file in files if os.path.exists(file))
+
+
 def definitions(path, library):
     """Groups and reactions in a file's scope; its own reactions win."""
     groups, used = {}, []
@@ -223,10 +232,11 @@ def definitions(path, library):
             if name.startswith('"'):
                 target = os.path.join(os.path.dirname(path), name.strip('"'))
             else:
-                target = os.path.join(library, name.split()[0] + ".lyate")
+                target = built_in(library, *name.split())
             more_groups, more = definitions(os.path.normpath(target), library)
             groups.update(more_groups)
-            used += more
+            known = [set(r.coefficients) for r in used]
+            used += [r for r in more if set(r.coefficients) not in known]
         elif text.startswith("group "):
             _, symbol, *rest = text.split()
             groups[symbol] = rest[1]

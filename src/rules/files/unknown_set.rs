@@ -20,7 +20,6 @@ use crate::problem::defect::DefectKind;
 use crate::rules::catalogue::rule;
 use crate::rules::context::Context;
 use crate::rules::finding::Finding;
-use crate::rules::words::names;
 use crate::text::span::Place;
 use crate::text::tree::{Statement, Use};
 
@@ -32,10 +31,9 @@ fn find(context: &Context, found: &mut Vec<Finding<Place>>) {
             DefectKind::UnknownSet { name, known } => {
                 let finding = RULE
                     .at(defect.at, format!("there is no built-in set `{name}`"))
-                    .with_help(format!(
-                        "there are {}; another file is used by its path in quotes",
-                        names(known, "and"),
-                    ));
+                    .with_help(
+                        "`lyate library` lists the sets; another file is used by its path in quotes",
+                    );
                 found.push(match nearest(name, known) {
                     Some(near) => finding.with_fix(format!("write `{near}`"), false, defect.at, near),
                     None => finding,

@@ -85,7 +85,7 @@ fn converted(context: &Context, at: Place) -> Option<Converted> {
 /// log Kw by the reaction of water that is in force.
 fn log_kw(context: &Context, kelvin: f64) -> Option<f64> {
     let reactions = &context.problem.scope.reactions;
-    let water = reactions.iter().find(|reaction| reaction.key() == ["H+", "OH-"])?;
+    let water = reactions.iter().find(|reaction| reaction.key == "H+ OH-")?;
     let (log_k, _) = water.log_k(kelvin)?;
     let proton = water.participants.iter().find(|p| p.formula.is_proton())?;
     Some(log_k / proton.coefficient.to_f64()?)
