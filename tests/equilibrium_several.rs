@@ -34,6 +34,7 @@ fn phosphate(sodium: f64, held: f64) -> System {
             // With counter-ions that the charge balance does not see: z of HPO4^2- off.
             supply: row(&[(0, 3), (1, 1)]),
         }],
+        candidates: Vec::new(),
         activity: IDEAL,
         ionic_strength: IonicStrength::Computed,
     }
