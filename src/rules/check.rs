@@ -262,7 +262,7 @@ fn gather(document: &Document, outcomes: &[Arc<Outcome>]) -> Vec<LocatedFinding>
 
 /// Findings that cases may put right by stating what the base leaves open.
 fn is_about_closure(finding: &Finding<Place>) -> bool {
-    matches!(finding.rule, "total-missing" | "component-unused")
+    matches!(finding.rule, "total-missing" | "component-unused" | "solid-cannot-form")
 }
 
 fn same(one: &Finding<Place>, other: &Finding<Place>) -> bool {
