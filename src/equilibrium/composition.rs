@@ -77,10 +77,32 @@ fn turn_up(search: &mut Search, cancel: &AtomicBool) -> Result<(), Failure> {
         search.evaluate();
         rise *= 0.5;
         if rise < LEAST_RISE {
-            return Err(Failure::NotConverged { residual: open, iterations: search.iterations });
+            return jump(search, open, cancel);
         }
     }
     Ok(())
+}
+
+/// Where the states that interactions lead to step by step turn back, as they can with ions
+/// of charge three and above: goes over to another branch, by balances closed at given
+/// coefficients and coefficients that follow half way.
+fn jump(search: &mut Search, open: f64, cancel: &AtomicBool) -> Result<(), Failure> {
+    for round in 1..=200 {
+        search.converge(ROUGH, cancel)?;
+        let mut now = coefficients(search, 1.0);
+        if let Some(taken) = &search.taken {
+            for (now, taken) in now.ln_gamma.iter_mut().zip(&taken.ln_gamma) {
+                *now = 0.5 * (*now + taken);
+            }
+            now.ln_water = 0.5 * (now.ln_water + taken.ln_water);
+        }
+        search.take(now);
+        search.evaluate();
+        if round % 10 == 0 && joint(search, 1.0, cancel)? {
+            return Ok(());
+        }
+    }
+    Err(Failure::NotConverged { residual: open, iterations: search.iterations })
 }
 
 /// Back to coefficients of one.
