@@ -7,6 +7,7 @@ use clap::{Parser, Subcommand};
 mod check;
 mod chosen;
 mod derive;
+mod draw;
 mod explain;
 mod library;
 mod reply;
@@ -34,6 +35,7 @@ enum Command {
     Check(check::Arguments),
     Solve(solve::Arguments),
     Derive(derive::Arguments),
+    Draw(draw::Arguments),
     Explain(explain::Arguments),
     Serve(serve::Arguments),
 }
@@ -44,6 +46,7 @@ pub fn run() -> ExitCode {
         Command::Check(arguments) => reply::give(check::run(&arguments)),
         Command::Solve(arguments) => reply::give(solve::run(&arguments)),
         Command::Derive(arguments) => reply::give(derive::run(&arguments)),
+        Command::Draw(arguments) => reply::give(draw::run(&arguments)),
         Command::Explain(arguments) => reply::give(explain::run(&arguments)),
         Command::Serve(arguments) => serve::run(&arguments),
     }

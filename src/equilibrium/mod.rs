@@ -5,6 +5,7 @@ mod basis;
 pub mod build;
 pub mod charge;
 mod coordinates;
+pub mod diagram;
 mod direction;
 pub mod dominance;
 mod exact;
