@@ -38,6 +38,54 @@ expect charge imbalance between -5 % and 5 %
     insta::assert_snapshot!(session(&[("tank.lyate", text)], &arguments));
 }
 
+/// A few rows of each curve for people, every point for programs.
+#[test]
+fn curves() {
+    let text = "\
+# Make-up water of a cooling loop, softened with caustic. Invented figures.
+problem \"Loop make-up\"
+use aqueous
+temperature 15 °C
+component CO3^2-, Ca^2+, Cl-, Na+
+reaction CaCO3(s) <=> Ca^2+ + CO3^2-, pKsp = 8.48, enthalpy = -9.6 kJ/mol, source \"plant sheet\"
+add CaCl2  1 mmol/L
+add NaHCO3 2 mmol/L
+curve over NaOH from 0 to 4 mmol/L
+curve over pH from 6 to 10, 3 points
+curve over temperature from 5 to 45 °C, 5 points
+case \"short\"
+    curve over NaOH from 80 to 0 mg/L, 3 points
+";
+    insta::assert_snapshot!(session(&[("loop.lyate", text)], &["solve", "loop.lyate"]));
+    let arguments = ["solve", "loop.lyate", "--case", "short", "--output", "json"];
+    insta::assert_snapshot!(session(&[("loop.lyate", text)], &arguments));
+}
+
+#[test]
+fn a_point_of_a_curve_without_an_answer_is_named() {
+    let text = "\
+component NH3, Cl-
+reaction NH4+ <=> NH3 + H+, log K(T) = log(T - 293.15) - 10.4, source \"made up\"
+add NH4Cl 2 mmol/L
+curve over temperature from 10 to 40 °C, 7 points
+";
+    let folder = folder(&[("jar.lyate", text)]);
+    let output = run(folder.path(), &["solve", "jar.lyate"]);
+    assert_eq!(code(&output), 1);
+    let told = "not solved from 10 °C to 20 °C (3 points): \
+                the constant of `NH4+ <=> NH3 + H+` has no value there";
+    assert!(stdout(&output).contains(told), "{}", stdout(&output));
+    let output = run(folder.path(), &["solve", "jar.lyate", "--output", "json"]);
+    assert_eq!(code(&output), 1);
+    let report: Value = serde_json::from_slice(&output.stdout).unwrap();
+    let points = report["solutions"][0]["curves"][0]["points"].as_array().unwrap();
+    let status = |point: &Value| point["status"].as_str().unwrap().to_owned();
+    let statuses: Vec<String> = points.iter().map(status).collect();
+    let (without, with) = ("no-constant", "solved");
+    assert_eq!(statuses, [without, without, without, with, with, with, with]);
+    assert_eq!(points[0].as_object().unwrap().len(), 2, "no numbers but x");
+}
+
 #[test]
 fn what_cannot_be_solved_says_why() {
     insta::assert_snapshot!(session(

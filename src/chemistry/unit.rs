@@ -2,6 +2,9 @@
 
 use Dimension as D;
 
+/// 0 °C in kelvin.
+pub const ZERO_CELSIUS: f64 = 273.15;
+
 /// What a unit measures.
 #[derive(Clone, Copy, Debug, PartialEq, Eq, Hash)]
 pub enum Dimension {
@@ -131,7 +134,7 @@ const fn unit(name: &'static str, dimension: Dimension, factor: f64) -> Unit {
 /// Standard atmosphere, Pa: exact (10th CGPM, 1954). The bar is 10⁵ Pa exactly.
 const ATMOSPHERE: f64 = 101_325.0;
 
-const UNITS: [Unit; 37] = [
+const UNITS: [Unit; 39] = [
     unit("mol/L", D::AmountPerLitre, 1.0),
     unit("mmol/L", D::AmountPerLitre, 1e-3),
     unit("µmol/L", D::AmountPerLitre, 1e-6),
@@ -148,13 +151,15 @@ const UNITS: [Unit; 37] = [
     unit("µg/L", D::MassPerLitre, 1e-6),
     unit("g/m³", D::MassPerLitre, 1e-3),
     unit("mg/m³", D::MassPerLitre, 1e-6),
+    unit("kg/L", D::MassPerLitre, 1e3),
+    unit("g/mL", D::MassPerLitre, 1e3),
     unit("kg/m³", D::MassPerLitre, 1.0),
     unit("g/kg", D::MassPerKilogram, 1.0),
     unit("mg/kg", D::MassPerKilogram, 1e-3),
     unit("% w/w", D::MassFraction, 1e-2),
     unit("mL/L", D::VolumePerVolume, 1e-3),
     unit("L/m³", D::VolumePerVolume, 1e-3),
-    Unit { name: "°C", dimension: D::Temperature, factor: 1.0, offset: 273.15 },
+    Unit { name: "°C", dimension: D::Temperature, factor: 1.0, offset: ZERO_CELSIUS },
     unit("K", D::Temperature, 1.0),
     unit("atm", D::Pressure, 1.0),
     unit("matm", D::Pressure, 1e-3),

@@ -9,7 +9,7 @@ use super::terminal::style;
 use crate::report::source::{FileReport, Reading};
 use crate::report::summary::Summary;
 use crate::report::{check_json, junit, sarif, terminal};
-use crate::rules::finding::{LocatedFinding, Severity};
+use crate::rules::finding::{Failing, LocatedFinding, Severity};
 
 /// Check problem files, and solve what can be solved
 ///
@@ -36,9 +36,17 @@ pub struct Arguments {
     /// each file that holds .git or lyate.toml, or the file's own
     #[arg(long, value_name = "FOLDER", verbatim_doc_comment)]
     root: Option<PathBuf>,
-    /// The mildest finding that makes the exit code 1
-    #[arg(long, value_name = "SEVERITY", value_enum, default_value_t = FailOn::Error)]
-    fail_on: FailOn,
+    /// The mildest fault that makes the exit code 1; cautions do only
+    /// where `caution` is named, alone or as in `warning,caution`
+    #[arg(
+        long,
+        value_name = "SEVERITY",
+        value_enum,
+        value_delimiter = ',',
+        default_value = "error",
+        verbatim_doc_comment
+    )]
+    fail_on: Vec<FailOn>,
     /// How to tell what was found
     #[arg(long, value_name = "FORM", value_enum, default_value_t = Form::Text)]
     output: Form,
@@ -49,6 +57,7 @@ enum FailOn {
     Error,
     Warning,
     Note,
+    Caution,
 }
 
 #[derive(Clone, Copy, PartialEq, Eq, clap::ValueEnum)]
@@ -71,16 +80,12 @@ pub fn run(arguments: &Arguments) -> Result<Reply, Complaint> {
     let found = find(&paths).map_err(Complaint)?;
     let files = Checker::new(arguments.root.as_ref())?.check_all(&found);
     let summary = Summary::of(&files);
-    let fail_on = match arguments.fail_on {
-        FailOn::Error => Severity::Error,
-        FailOn::Warning => Severity::Warning,
-        FailOn::Note => Severity::Note,
-    };
+    let fail_on = failing(&arguments.fail_on);
     let unread = files.iter().any(|file| matches!(file.reading, Reading::Missing));
     let code = if unread {
         2
     } else {
-        u8::from(summary.count(fail_on) > 0 || summary.solved < summary.problems)
+        u8::from(summary.failing(fail_on) > 0 || summary.solved < summary.problems)
     };
     let written = |text: Result<String, String>| match text {
         Ok(text) => Ok(text.trim_end().to_owned() + "\n"),
@@ -99,6 +104,18 @@ pub fn run(arguments: &Arguments) -> Result<Reply, Complaint> {
         reply.remark = format!("lyate: there are no .lyate files in {}\n", places.join(", "));
     }
     Ok(reply)
+}
+
+fn failing(named: &[FailOn]) -> Failing {
+    let fault = |named: &FailOn| match named {
+        FailOn::Error | FailOn::Caution => Severity::Error,
+        FailOn::Warning => Severity::Warning,
+        FailOn::Note => Severity::Note,
+    };
+    Failing {
+        at_least: named.iter().map(fault).min().unwrap_or(Severity::Error),
+        cautions: named.iter().any(|named| matches!(named, FailOn::Caution)),
+    }
 }
 
 /// Errors and warnings in their text, notes on a line each, and a line that sums up.

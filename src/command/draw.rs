@@ -14,12 +14,13 @@ use crate::report::picture::{self, Kind, Wish};
 /// Columns of a picture that goes into a pipe.
 const COLUMNS: usize = 80;
 
-/// Draw a problem: log concentration against pH, or how a component is distributed
+/// Draw a problem: log concentration against pH, a titration, and other curves
 ///
 /// Draws the base, or the case that is asked for: into a file as SVG, or without `-o` in
 /// the letters of the terminal. A log-concentration picture shows each species, the system
-/// points, both sides of the proton condition, and the answer where they cross. It keeps
-/// the ionic strength of the answer at every pH.
+/// points, both sides of the proton condition, and the answer where they cross. It and a
+/// distribution keep the ionic strength of the answer at every pH; along a curve, each
+/// point is solved in full.
 #[derive(clap::Args)]
 #[command(
     verbatim_doc_comment,
@@ -35,11 +36,12 @@ pub struct Arguments {
     /// The SVG file to write; `-` for standard output
     #[arg(short, long, value_name = "FILE")]
     output: Option<PathBuf>,
-    /// What to show
+    /// What to show; by itself log concentration, or the pH along a curve of the file that is
+    /// over something else than pH
     #[arg(long, value_name = "PICTURE", value_enum)]
     picture: Option<Picture>,
-    /// The component that the picture is about
-    #[arg(long, value_name = "FORMULA")]
+    /// The component, reagent, solid or quantity that the picture is about
+    #[arg(long, value_name = "NAME")]
     of: Option<String>,
     /// The colours of an SVG
     #[arg(long, value_name = "THEME", value_enum, default_value_t = Colours::Auto)]
@@ -58,6 +60,14 @@ enum Picture {
     LogConcentration,
     /// The shares of a component's forms, against pH
     Distribution,
+    /// The pH along a reagent's dose, or what else a curve of the file is over
+    Titration,
+    /// The buffer capacity along the file's first curve; without one, against pH
+    BufferCapacity,
+    /// Saturation indices along the file's first curve; without one, against pH
+    Saturation,
+    /// A quantity that the file expects something of, along the same, with its limits
+    Quantity,
 }
 
 #[derive(Clone, Copy, PartialEq, Eq, clap::ValueEnum)]
@@ -78,6 +88,10 @@ pub fn run(arguments: &Arguments) -> Result<Reply, Complaint> {
     let kind = arguments.picture.map(|picture| match picture {
         Picture::LogConcentration => Kind::LogConcentration,
         Picture::Distribution => Kind::Distribution,
+        Picture::Titration => Kind::Titration,
+        Picture::BufferCapacity => Kind::BufferCapacity,
+        Picture::Saturation => Kind::Saturation,
+        Picture::Quantity => Kind::Quantity,
     });
     let wish = Wish { kind, of: arguments.of.as_deref() };
     let title = Path::new(name).file_stem().map_or(name.clone(), |s| s.display().to_string());

@@ -5,7 +5,7 @@ use std::collections::HashMap;
 use super::defect::{Defect, DefectKind};
 use crate::chemistry::formula::canonical;
 use crate::text::span::{Part, Place, Span};
-use crate::text::tree::{BalanceKind, Parsed, Section, Statement, Subject, Without};
+use crate::text::tree::{BalanceKind, Over, Parsed, Section, Statement, Subject, Without};
 
 /// A statement in force, and where it stands.
 #[derive(Clone, Copy)]
@@ -54,7 +54,8 @@ pub enum Key {
     Precipitate(String),
     Saturate(String),
     Group(String),
-    Curve,
+    Curve(String),
+    Blend,
 }
 
 pub fn key(statement: &Statement) -> Option<Key> {
@@ -71,7 +72,8 @@ pub fn key(statement: &Statement) -> Option<Key> {
         Statement::Precipitate { solid } => Key::Precipitate(canonical(solid)),
         Statement::Saturate { solid } => Key::Saturate(canonical(solid)),
         Statement::Group { symbol, .. } => Key::Group(symbol.value.clone()),
-        Statement::Curve { .. } => Key::Curve,
+        Statement::Curve { over, .. } => Key::Curve(over_words(&over.value)),
+        Statement::Blend { .. } => Key::Blend,
         Statement::Reaction(reaction) => {
             let mut names: Vec<_> =
                 reaction.left.iter().chain(&reaction.right).map(|m| canonical(&m.name)).collect();
@@ -115,6 +117,17 @@ pub fn balance_key(kind: &BalanceKind) -> String {
     }
 }
 
+/// What a curve is over, in canonical words: `pH`, `NaOH`, `total NH3`, `temperature`.
+pub fn over_words(over: &Over) -> String {
+    match over {
+        Over::Ph => "pH".into(),
+        Over::Reagent(name) => canonical(name),
+        Over::Total(name) => format!("total {}", canonical(name)),
+        Over::Temperature => "temperature".into(),
+        Over::Blend(file) => format!("blend \"{}\"", file.value),
+    }
+}
+
 fn removed_key(without: &Without) -> Key {
     match without {
         Without::Hold(subject) => Key::Hold(subject_key(subject)),
@@ -125,6 +138,7 @@ fn removed_key(without: &Without) -> Key {
         Without::Precipitate(name) => Key::Precipitate(canonical(name)),
         Without::Saturate(name) => Key::Saturate(canonical(name)),
         Without::IonicStrength => Key::IonicStrength,
+        Without::Blend => Key::Blend,
     }
 }
 
@@ -188,7 +202,8 @@ pub fn in_force<'a>(base: &'a Section, case: Option<&'a Section>) -> InForce<'a>
             found.defects.push(Defect { at, kind: DefectKind::NothingToRemove });
         }
     }
-    let is_source = |key: &Key| matches!(key, Key::Total(_) | Key::Add(_) | Key::Hold(_));
+    let is_source =
+        |key: &Key| matches!(key, Key::Total(_) | Key::Add(_) | Key::Hold(_) | Key::Blend);
     found.other_sources = from_nothing
         || replaced.iter().any(|(key, met)| is_source(key) && !met)
         || varied.kept.iter().any(|(_, written)| {

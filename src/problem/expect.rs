@@ -4,7 +4,7 @@ use super::case::CaseResolver;
 use super::defect::{DefectKind, Expected};
 use super::effective::{Written, subject_key};
 use super::model::{Expectation, Limit, ShownUnit, Sought};
-use super::quantity::Read;
+use super::quantity::{Read, with_unit_of};
 use crate::chemistry::formula::{Formula, Phase};
 use crate::text::span::Spanned;
 use crate::text::tree::{Name, Quantity, Relation, Statement, Subject};
@@ -12,7 +12,7 @@ use crate::text::tree::{Name, Quantity, Relation, Statement, Subject};
 pub fn read(case: &mut CaseResolver) -> Vec<Expectation> {
     let mut expectations = Vec::new();
     for written in case.statements {
-        let Statement::Expect { subject, relation, source } = written.statement() else {
+        let Statement::Expect { subject, relation, source, .. } = written.statement() else {
             continue;
         };
         let Some(mut sought) = sought(case, written, subject) else { continue };
@@ -44,11 +44,7 @@ pub fn read(case: &mut CaseResolver) -> Vec<Expectation> {
                 value(q).map(|r| (Limit::Above { value: r.value, or_equal: true }, r))
             }
             Relation::Between(low, high) => {
-                // `between 6 and 9 mg/L`: one unit may serve both.
-                let shared =
-                    Quantity { unit: high.unit.clone(), basis: high.basis.clone(), ..low.clone() };
-                let low = if low.unit.is_none() { &shared } else { low };
-                value(low)
+                value(&with_unit_of(low, high))
                     .zip(value(high))
                     .map(|(low, high)| (Limit::Between { low: low.value, high: high.value }, high))
             }

@@ -12,8 +12,10 @@ pub mod words;
 
 mod answers;
 mod balances;
+mod cautions;
 mod closure;
 mod components;
+mod curves;
 mod files;
 mod formulas;
 mod quantities;
@@ -33,6 +35,8 @@ pub static FAMILIES: &[catalogue::Family] = &[
     closure::FAMILY,
     balances::FAMILY,
     answers::FAMILY,
+    curves::FAMILY,
+    cautions::FAMILY,
     files::FAMILY,
     statements::FAMILY,
 ];

@@ -27,7 +27,7 @@ impl Statement {
                 subject(&what.value, call);
                 if let Some(by) = by {
                     match &by.value {
-                        By::Reagent(name) | By::Total(name) => call(name),
+                        By::Reagent(name, _) | By::Total(name) => call(name),
                     }
                 }
             }
@@ -39,7 +39,7 @@ impl Statement {
             Statement::Expect { subject: what, .. } => subject(&what.value, call),
             Statement::Curve { over, .. } => match &over.value {
                 Over::Reagent(name) | Over::Total(name) => call(name),
-                Over::Ph | Over::Temperature => {}
+                Over::Ph | Over::Temperature | Over::Blend(_) => {}
             },
             Statement::Without(without) => match &without.value {
                 Without::Hold(what) | Without::Expect(what) => subject(what, call),
@@ -48,13 +48,14 @@ impl Statement {
                 | Without::Precipitate(name)
                 | Without::Saturate(name) => call(name),
                 Without::Balance(kind) => balance(kind, call),
-                Without::IonicStrength => {}
+                Without::IonicStrength | Without::Blend => {}
             },
             Statement::Problem { .. }
             | Statement::Use(_)
             | Statement::Temperature { .. }
             | Statement::Activity { .. }
             | Statement::IonicStrength { .. }
+            | Statement::Blend { .. }
             | Statement::Case { .. }
             | Statement::Broken => {}
         }

@@ -4,8 +4,8 @@ use std::fmt::{self, Display, Formatter};
 
 use super::tree::{
     BalanceKind, By, Constant, ConstantKind, ConstantValue, Expression, Fraction, Member, Number,
-    Operator, Over, Quantity, Reaction, Relation, Statement, Subject, Term, TermKind, Uncertainty,
-    Use, Without,
+    Operator, Over, Quantity, Reaction, Relation, Statement, Strength, Subject, Term, TermKind,
+    Uncertainty, Use, Without,
 };
 
 /// A statement that could not be read prints as nothing: its text is all there is.
@@ -42,8 +42,14 @@ impl Display for Statement {
             Statement::Total { component, value } => {
                 write!(f, "total {} = {value}", component.value)
             }
-            Statement::Add { reagent, amount, giving } => {
-                write!(f, "add {} {amount}", reagent.value)?;
+            Statement::Add { reagent, amount, stock, giving } => {
+                match stock {
+                    None => write!(f, "add {} {amount}", reagent.value)?,
+                    Some(strength) => {
+                        write!(f, "add {amount} of ")?;
+                        of_stock(f, &reagent.value, strength)?;
+                    }
+                }
                 match giving {
                     None => Ok(()),
                     Some(giving) => {
@@ -56,9 +62,26 @@ impl Display for Statement {
                 write!(f, "hold {} = {value}", subject.value)?;
                 match by.as_ref().map(|by| &by.value) {
                     None => Ok(()),
-                    Some(By::Reagent(reagent)) => write!(f, " by {}", reagent.value),
+                    Some(By::Reagent(reagent, None)) => write!(f, " by {}", reagent.value),
+                    Some(By::Reagent(reagent, Some(strength))) => {
+                        f.write_str(" by dose of ")?;
+                        of_stock(f, &reagent.value, strength)
+                    }
                     Some(By::Total(component)) => write!(f, " by total {}", component.value),
                 }
+            }
+            Statement::Blend { parts } => {
+                f.write_str("blend ")?;
+                for (i, part) in parts.iter().enumerate() {
+                    if i > 0 {
+                        f.write_str(", ")?;
+                    }
+                    write!(f, "{} of \"{}\"", part.share, part.file.value)?;
+                    if let Some(case) = &part.case {
+                        write!(f, " case \"{}\"", case.value)?;
+                    }
+                }
+                Ok(())
             }
             Statement::Precipitate { solid } => write!(f, "precipitate {}", solid.value),
             Statement::Saturate { solid } => write!(f, "saturate with {}", solid.value),
@@ -68,15 +91,22 @@ impl Display for Statement {
                 f.write_str(" = ")?;
                 terms(f, right)
             }
-            Statement::Expect { subject, relation, source } => {
+            Statement::Expect { subject, relation, confidence, source } => {
                 write!(f, "expect {} {relation}", subject.value)?;
+                if let Some(confidence) = confidence {
+                    write!(f, ", confidence {confidence}")?;
+                }
                 match source {
                     None => Ok(()),
                     Some(source) => write!(f, ", source \"{}\"", source.value),
                 }
             }
-            Statement::Curve { over, from, to } => {
-                write!(f, "curve over {} from {from} to {to}", over.value)
+            Statement::Curve { over, from, to, points } => {
+                write!(f, "curve over {} from {from} to {to}", over.value)?;
+                match points {
+                    None => Ok(()),
+                    Some(points) => write!(f, ", {} points", points.value),
+                }
             }
             Statement::Case { title } => write!(f, "case \"{}\"", title.value),
             Statement::Without(without) => write!(f, "without {}", without.value),
@@ -110,6 +140,14 @@ impl Display for Reaction {
             write!(f, ", source \"{}\"", source.value)?;
         }
         Ok(())
+    }
+}
+
+fn of_stock(f: &mut Formatter<'_>, reagent: &str, strength: &Strength) -> fmt::Result {
+    write!(f, "{} {reagent}", strength.value)?;
+    match &strength.density {
+        None => Ok(()),
+        Some(density) => write!(f, ", density = {density}"),
     }
 }
 
@@ -272,6 +310,7 @@ impl Display for Over {
             Over::Reagent(reagent) => write!(f, "dose {}", reagent.value),
             Over::Total(component) => write!(f, "total {}", component.value),
             Over::Temperature => f.write_str("temperature"),
+            Over::Blend(file) => write!(f, "blend \"{}\"", file.value),
         }
     }
 }
@@ -287,6 +326,7 @@ impl Display for Without {
             Without::Precipitate(solid) => write!(f, "precipitate {}", solid.value),
             Without::Saturate(solid) => write!(f, "saturate with {}", solid.value),
             Without::IonicStrength => f.write_str("ionic strength"),
+            Without::Blend => f.write_str("blend"),
         }
     }
 }

@@ -95,7 +95,12 @@ pub enum Statement {
     Add {
         reagent: Name,
         amount: Quantity,
+        /// `add 2 mL/L of 30 % NaOH`: the amount is one of this stock.
+        stock: Option<Strength>,
         giving: Option<Vec<Member>>,
+    },
+    Blend {
+        parts: Vec<BlendPart>,
     },
     Hold {
         subject: Spanned<Subject>,
@@ -117,12 +122,16 @@ pub enum Statement {
     Expect {
         subject: Spanned<Subject>,
         relation: Relation,
+        /// `confidence 95 %`: how sure it must be that the answer meets it.
+        confidence: Option<Quantity>,
         source: Option<Name>,
     },
     Curve {
         over: Spanned<Over>,
         from: Quantity,
         to: Quantity,
+        /// `, 200 points`, both ends among them.
+        points: Option<Spanned<u32>>,
     },
     Case {
         title: Name,
@@ -252,8 +261,26 @@ pub struct Uncertainty {
 
 #[derive(Clone, Debug, PartialEq)]
 pub enum By {
-    Reagent(Name),
+    /// `by NaOH`, or `by dose of 30 % NaOH`.
+    Reagent(Name, Option<Strength>),
     Total(Name),
+}
+
+/// How strong a reagent comes: the `30 %` of `30 % NaOH`, with the stock's density where
+/// it is written.
+#[derive(Clone, Debug, PartialEq)]
+pub struct Strength {
+    pub value: Quantity,
+    pub density: Option<Quantity>,
+}
+
+/// A share of a blend: `70 % of "river.lyate" case "winter"`.
+#[derive(Clone, Debug, PartialEq)]
+pub struct BlendPart {
+    pub share: Quantity,
+    pub file: Name,
+    pub case: Option<Name>,
+    pub span: Span,
 }
 
 #[derive(Clone, Debug, PartialEq)]
@@ -322,6 +349,8 @@ pub enum Over {
     Reagent(Name),
     Total(Name),
     Temperature,
+    /// The share of the blend's part from this file.
+    Blend(Name),
 }
 
 #[derive(Clone, Debug, PartialEq)]
@@ -334,4 +363,5 @@ pub enum Without {
     Precipitate(Name),
     Saturate(Name),
     IonicStrength,
+    Blend,
 }

@@ -77,7 +77,7 @@ fn unit() -> BoxedStrategy<Name> {
         ])
         .prop_map(str::to_owned),
         "[b-df-z]{1,5}(/[A-Z][a-z]{0,2})?".prop_filter("no reserved word", |unit| {
-            !["by", "to", "from", "giving", "source", "valid", "with", "heat", "total"]
+            !["by", "to", "of", "from", "giving", "source", "valid", "with", "heat", "total"]
                 .contains(&unit.split('/').next().unwrap_or_default())
         }),
     ]
@@ -170,6 +170,23 @@ fn subject() -> BoxedStrategy<Subject> {
     .boxed()
 }
 
+/// Always with a unit: without one, the formula of the stock would be read as its unit.
+fn strength() -> BoxedStrategy<Strength> {
+    let unit = prop::sample::select(vec!["%", "% w/w", "mol/L", "g/L"]).prop_map(str::to_owned);
+    (quantity(false), unit, prop::option::of(quantity(true)))
+        .prop_map(|(value, unit, density)| Strength {
+            value: Quantity { unit: Some(spanned(unit)), basis: None, ..value },
+            density,
+        })
+        .boxed()
+}
+
+fn blend_part() -> BoxedStrategy<BlendPart> {
+    (quantity(true), string(), prop::option::of(string()))
+        .prop_map(|(share, file, case)| BlendPart { share, file, case, span: Span::default() })
+        .boxed()
+}
+
 fn balance_kind() -> BoxedStrategy<BalanceKind> {
     prop_oneof![
         Just(BalanceKind::Charge),
@@ -256,7 +273,11 @@ fn reaction() -> BoxedStrategy<Statement> {
 /// Any statement that can be read, without ranges.
 pub fn statement() -> BoxedStrategy<Statement> {
     let q = || quantity(true);
-    let by = prop_oneof![formula().prop_map(By::Reagent), formula().prop_map(By::Total)];
+    let by = prop_oneof![
+        (formula(), prop::option::of(strength()))
+            .prop_map(|(name, stock)| By::Reagent(name, stock)),
+        formula().prop_map(By::Total)
+    ];
     let relation = prop_oneof![
         q().prop_map(Relation::Equal),
         q().prop_map(Relation::Less),
@@ -270,6 +291,7 @@ pub fn statement() -> BoxedStrategy<Statement> {
         Just(Over::Temperature),
         formula().prop_map(Over::Reagent),
         formula().prop_map(Over::Total),
+        string().prop_map(Over::Blend),
     ];
     let without = prop_oneof![
         subject().prop_map(Without::Hold),
@@ -280,6 +302,7 @@ pub fn statement() -> BoxedStrategy<Statement> {
         formula().prop_map(Without::Precipitate),
         formula().prop_map(Without::Saturate),
         Just(Without::IonicStrength),
+        Just(Without::Blend),
     ];
     let item = (formula(), prop::option::of(string()))
         .prop_map(|(name, title)| ComponentItem { name, title });
@@ -298,8 +321,10 @@ pub fn statement() -> BoxedStrategy<Statement> {
         prop::collection::vec(item, 1..5).prop_map(|items| Statement::Component { items }),
         reaction(),
         (formula(), q()).prop_map(|(component, value)| Statement::Total { component, value }),
-        (formula(), q(), prop::option::of(members()))
-            .prop_map(|(reagent, amount, giving)| Statement::Add { reagent, amount, giving }),
+        (formula(), q(), prop::option::of(strength()), prop::option::of(members())).prop_map(
+            |(reagent, amount, stock, giving)| Statement::Add { reagent, amount, stock, giving }
+        ),
+        prop::collection::vec(blend_part(), 1..4).prop_map(|parts| Statement::Blend { parts }),
         (subject(), q(), prop::option::of(by)).prop_map(|(subject, value, by)| Statement::Hold {
             subject: spanned(subject),
             value,
@@ -313,17 +338,16 @@ pub fn statement() -> BoxedStrategy<Statement> {
             right,
             equals: Span::default()
         }),
-        (subject(), relation, prop::option::of(string())).prop_map(
-            |(subject, relation, source)| Statement::Expect {
+        (subject(), relation, prop::option::of(q()), prop::option::of(string())).prop_map(
+            |(subject, relation, confidence, source)| Statement::Expect {
                 subject: spanned(subject),
                 relation,
+                confidence,
                 source
             }
         ),
-        (over, q(), q()).prop_map(|(over, from, to)| Statement::Curve {
-            over: spanned(over),
-            from,
-            to
+        (over, q(), q(), prop::option::of(1u32..20_000)).prop_map(|(over, from, to, points)| {
+            Statement::Curve { over: spanned(over), from, to, points: points.map(spanned) }
         }),
         string().prop_map(|title| Statement::Case { title }),
         without.prop_map(|without| Statement::Without(spanned(without))),

@@ -100,6 +100,12 @@ fn entries(placed: &Placed) -> Vec<Symbol> {
             SymbolKind::Amount,
             at(reagent.span),
         ),
+        Statement::Blend { parts } => {
+            let first = parts.first().map_or(0..0, |part| at(part.span));
+            let last = parts.last().map_or(first.end, |part| at(part.span).end);
+            let all = first.start..last;
+            one("blend".into(), Some(text(all.clone())), SymbolKind::Amount, all)
+        }
         Statement::Hold { subject, value, .. } => one(
             format!("hold {}", subject_key(&subject.value)),
             Some(text(at(value.span))),

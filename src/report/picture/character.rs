@@ -9,6 +9,7 @@ const LEAST: usize = 40;
 const MOST: usize = 240;
 const ROWS: (usize, usize) = (14, 40);
 const RULE: char = '┊';
+const LEVEL: char = '┄';
 
 /// The chart, no wider than so many columns where there are at least 40.
 pub fn character(chart: &Chart, columns: usize) -> String {
@@ -21,6 +22,11 @@ pub fn character(chart: &Chart, columns: usize) -> String {
     for rule in &chart.rules {
         if let Some(column) = field.column(chart, rule.x) {
             field.cells.iter_mut().for_each(|row| row[column].push(RULE));
+        }
+    }
+    for &level in &chart.levels {
+        if let Some(row) = field.row(chart, level) {
+            field.cells[row].iter_mut().for_each(|cell| cell.push(LEVEL));
         }
     }
     let letters = letters(chart);
@@ -78,7 +84,7 @@ fn letters(chart: &Chart) -> Vec<char> {
 /// run together take turns.
 fn shown(met: &[char], column: usize) -> char {
     let main: Vec<char> = met.iter().copied().filter(char::is_ascii_uppercase).collect();
-    let plain: Vec<char> = met.iter().copied().filter(|c| *c != RULE).collect();
+    let plain: Vec<char> = met.iter().copied().filter(|c| ![RULE, LEVEL].contains(c)).collect();
     let first = [main, plain, met.to_vec()].into_iter().find(|letters| !letters.is_empty());
     first.map_or(' ', |letters| letters[column % letters.len()])
 }

@@ -14,6 +14,8 @@ pub struct Chart {
     pub marks: Vec<Mark>,
     /// Upright lines across the plane, such as at the pH of the answer.
     pub rules: Vec<Rule>,
+    /// Level lines across the plane, such as at a limit.
+    pub levels: Vec<f64>,
     /// Sentences that stand below.
     pub notes: Vec<Words>,
 }

@@ -67,6 +67,7 @@ pub fn chart(
         lines,
         marks,
         rules: vec![Rule { x: subject.solved.ph(), label: Words::plain(&subject.ph_words()) }],
+        levels: Vec::new(),
         notes: Vec::new(),
     };
     chart.tidy();

@@ -48,6 +48,7 @@ const CLEAR: f64 = 6.0;
 const HIDES: f64 = 60.0;
 const UNCLEAR: f64 = 14.0;
 const LEADER: f64 = 26.0;
+const MERGED: f64 = 10.0;
 const MEETS: f64 = 1e5;
 const KEPT: usize = 160;
 const ROUNDS: usize = 8;
@@ -125,7 +126,7 @@ fn choices(ground: &Ground, raster: &Raster, want: &Want) -> Vec<(f64, Spot)> {
     match want.tie {
         Tie::Line(line) => {
             for piece in ground.lines.get(line).into_iter().flatten() {
-                beside(piece, want, &mut spots);
+                beside(piece, want, raster, Raster::bit(line), &mut spots);
             }
         }
         Tie::Mark(at, radius) => {
@@ -164,7 +165,13 @@ fn choices(ground: &Ground, raster: &Raster, want: &Want) -> Vec<(f64, Spot)> {
 }
 
 /// Places along a line: touching it on either side, and off it with a leader.
-fn beside(piece: &[Point], want: &Want, spots: &mut Vec<(f64, Spot)>) {
+fn beside(
+    piece: &[Point],
+    want: &Want,
+    raster: &Raster,
+    own: u64,
+    spots: &mut Vec<(f64, Spot)>,
+) {
     let points = along(piece, 7.0);
     let count = points.len();
     for (index, &at) in points.iter().enumerate() {
@@ -176,6 +183,9 @@ fn beside(piece: &[Point], want: &Want, spots: &mut Vec<(f64, Spot)>) {
         let normal = ((before.y - after.y) / length, (after.x - before.x) / length);
         // In the middle of its line a label is found soonest; above it sooner than below.
         let middle = (index as f64 / count as f64 - 0.5).abs() * 4.0;
+        // Where lines run together, nobody can tell which one is meant.
+        let together = raster.under(&Frame::round(at, CELL, CELL)) & !own;
+        let middle = middle + MERGED * f64::from(together.count_ones());
         for sign in [1.0, -1.0] {
             let (nx, ny) = (sign * normal.0, sign * normal.1);
             let off = GAP + 0.5 * (nx.abs() * want.width + ny.abs() * want.height);

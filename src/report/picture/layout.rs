@@ -183,7 +183,7 @@ impl Layout {
             let left = plot.left - TICK - Kind::Tick.width(&words);
             self.write(words, Kind::Tick, left, y - 0.5 * Kind::Tick.height());
         }
-        for (value, words) in ticks(&chart.x, (plot.width() / 42.0) as usize) {
+        for (value, words) in ticks(&chart.x, (plot.width() / 40.0) as usize) {
             let x = self.at(chart, (value, chart.y.from)).x;
             self.grid.push((Point { x, y: plot.top }, Point { x, y: plot.bottom }));
             let words = Words::plain(&words);
@@ -201,6 +201,10 @@ impl Layout {
             frame: Frame::round(middle, high, wide),
             turned: true,
         });
+        for &level in chart.levels.iter().filter(|level| chart.y.holds(**level)) {
+            let y = self.at(chart, (chart.x.from, level)).y;
+            self.rules.push((Point { x: plot.left, y }, Point { x: plot.right, y }));
+        }
         let mut last = f64::NEG_INFINITY;
         for rule in &chart.rules {
             let x = self.at(chart, (rule.x, chart.y.from)).x;

@@ -78,6 +78,7 @@ pub fn chart(subject: &Subject, cancel: &AtomicBool) -> Option<Chart> {
         lines,
         marks,
         rules: vec![Rule { x: solved.ph(), label: Words::plain(&subject.ph_words()) }],
+        levels: Vec::new(),
         notes,
     };
     chart.tidy();

@@ -9,15 +9,20 @@ mod geometry;
 mod labels;
 pub mod layout;
 mod log_concentration;
+mod quantity;
+mod run;
+mod saturation;
 mod subject;
 mod svg;
 pub mod theme;
 mod ticks;
+mod titration;
 mod words;
 
 use std::sync::atomic::AtomicBool;
 
 use super::source::Stated;
+use crate::problem::curve::Sweep;
 pub use character::character;
 use chart::Chart;
 use layout::Layout;
@@ -30,6 +35,10 @@ use theme::Theme;
 pub enum Kind {
     LogConcentration,
     Distribution,
+    Titration,
+    BufferCapacity,
+    Saturation,
+    Quantity,
 }
 
 /// What is asked for.
@@ -57,9 +66,24 @@ pub fn chart(
         };
         return Some(Err(format!("{what} not solved, so there is nothing to draw")));
     };
-    match wish.kind.unwrap_or(Kind::LogConcentration) {
+    match wish.kind.unwrap_or_else(|| usual(&subject)) {
         Kind::LogConcentration => log_concentration::chart(&subject, cancel).map(Ok),
         Kind::Distribution => distribution::chart(&subject, wish.of, cancel),
+        Kind::Titration => titration::chart(&subject, wish.of, cancel),
+        Kind::BufferCapacity => titration::buffer_capacity(&subject, cancel),
+        Kind::Saturation => saturation::chart(&subject, wish.of, cancel),
+        Kind::Quantity => quantity::chart(&subject, wish.of, cancel),
+    }
+}
+
+/// What is drawn where nothing is asked for: the pH along a curve of the file that is over
+/// something else, or else log concentration.
+fn usual(subject: &Subject) -> Kind {
+    let curves = &subject.problem().curves;
+    if curves.iter().any(|curve| curve.over != Sweep::Ph) {
+        Kind::Titration
+    } else {
+        Kind::LogConcentration
     }
 }
 

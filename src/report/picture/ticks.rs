@@ -11,13 +11,7 @@ pub fn ticks(axis: &Axis, most: usize) -> Vec<(f64, String)> {
         return Vec::new();
     }
     let scale = if axis.percent { 100.0 } else { 1.0 };
-    let least = scale * span / most.max(2) as f64;
-    let power = least.log10().floor();
-    let step = [1.0, 2.0, 5.0, 10.0]
-        .into_iter()
-        .map(|digit| digit * 10f64.powf(power))
-        .find(|step| scale * span / step <= most.max(2) as f64 - 1.0 + 1e-9)
-        .unwrap_or(20.0 * 10f64.powf(power));
+    let step = step(scale * span, most);
     let places = (-(step * 1.0001).log10().floor()).clamp(0.0, 12.0) as usize;
     let (first, last) = (scale * axis.from / step, scale * axis.to / step);
     let (first, last) = ((first - 1e-9).ceil(), (last + 1e-9).floor());
@@ -26,6 +20,30 @@ pub fn ticks(axis: &Axis, most: usize) -> Vec<(f64, String)> {
         .map(|n| (first + n as f64) * step)
         .map(|value| (value / scale, decimals(value, places)))
         .collect()
+}
+
+/// The least of 1, 2 and 5 times a power of ten that cuts a span into fewer than `most` parts.
+fn step(span: f64, most: usize) -> f64 {
+    let parts = most.max(2) as f64 - 1.0;
+    let unit = 10f64.powf((span / parts).log10().floor());
+    let fits = |step: &f64| span / step <= parts + 1e-9;
+    [1.0, 2.0, 5.0].map(|digit| digit * unit).into_iter().find(fits).unwrap_or(10.0 * unit)
+}
+
+/// Ends of an axis at round numbers that hold all values, zero among them where it is near.
+pub fn round_ends(values: impl Iterator<Item = f64>) -> (f64, f64) {
+    let finite = values.filter(|value| value.is_finite());
+    let (low, high) = finite.fold((f64::INFINITY, f64::NEG_INFINITY), |(low, high), value| {
+        (low.min(value), high.max(value))
+    });
+    if low > high {
+        return (0.0, 1.0);
+    }
+    let wide = if high > low { high - low } else { high.abs().max(1e-3) };
+    let low = if low > 0.0 && low < 0.4 * high { 0.0 } else { low };
+    let step = step(wide, 9);
+    let ends = ((low / step + 1e-9).floor() * step, (high / step - 1e-9).ceil() * step);
+    if ends.0 < ends.1 { ends } else { (ends.0 - step, ends.1 + step) }
 }
 
 #[cfg(test)]

@@ -48,6 +48,9 @@ fn find(context: &Context, found: &mut Vec<Finding<Place>>) {
 fn value_of_first(written: &Written, clause: &str) -> Option<Span> {
     let (reaction, source) = match written.statement() {
         Statement::Reaction(reaction) => (Some(reaction), reaction.source.as_ref()),
+        Statement::Expect { confidence: Some(value), .. } if clause == "confidence" => {
+            return Some(value.span);
+        }
         Statement::Expect { source, .. } => (None, source.as_ref()),
         _ => (None, None),
     };

@@ -47,7 +47,12 @@ expectations! {
     Kind "`charge`, `protons` or a component",
     Term "a term such as [NH4+], total NH3, added NaOH or 2 mmol/L",
     Over "pH, temperature, a reagent, or `total` and a component",
-    Found "a reagent, or `total` and a component",
+    Found "a reagent, `dose of` a stock such as 30 % NaOH, or `total` and a component",
+    Of "`of`",
+    Stock "a stock such as 30 % NaOH",
+    Density "`density`",
+    Share "a share such as 70 % of \"river.lyate\"",
+    ExpectClause "`confidence`",
     Clause "a clause such as pKa = 9.25",
     Equals "`=`",
     Relation "`=`, `<`, `<=`, `>`, `>=` or `between`",
@@ -69,6 +74,7 @@ expectations! {
     From "`from`",
     To "`to`",
     And "`and`",
+    Points "`points`",
     Giving "`giving`",
     Source "`source`",
     Comma "a comma",
@@ -76,7 +82,7 @@ expectations! {
 }
 
 impl Expect {
-    fn bit(self) -> u64 {
+    fn bit(self) -> u128 {
         match self {
             Expect::Nothing => 0,
             expect => 1 << (expect as u8),
@@ -92,7 +98,7 @@ impl Expect {
 #[derive(Clone, Debug)]
 pub(super) struct Failure {
     at: usize,
-    expected: u64,
+    expected: u128,
     problem: Option<Box<SyntaxProblem>>,
 }
 

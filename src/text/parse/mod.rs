@@ -7,6 +7,7 @@ mod failure;
 mod quantity;
 mod reaction;
 mod statement;
+mod stock;
 mod subject;
 mod sum;
 

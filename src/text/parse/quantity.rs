@@ -5,14 +5,29 @@ use chumsky::prelude::*;
 use super::basic::{Extra, Lexeme, Rule, Tokens, name, one, sign, span_of, word};
 use super::failure::{Expect, Failure};
 use crate::text::number;
-use crate::text::span::Spanned;
+use crate::text::span::{Span, Spanned};
 use crate::text::token::Token;
 use crate::text::tree::{Fraction, Name, Number, Quantity, Uncertainty};
 
 /// Words that follow a quantity and are no unit.
-const RESERVED: [&str; 14] = [
-    "by", "at", "as", "and", "to", "from", "giving", "source", "valid", "with", "enthalpy", "heat",
-    "total", "added",
+const RESERVED: [&str; 17] = [
+    "by",
+    "at",
+    "as",
+    "and",
+    "to",
+    "from",
+    "of",
+    "giving",
+    "source",
+    "valid",
+    "with",
+    "enthalpy",
+    "heat",
+    "density",
+    "confidence",
+    "total",
+    "added",
 ];
 
 /// A number without a sign.
@@ -58,8 +73,8 @@ fn whole_number<'s>() -> impl Rule<'s, Spanned<i64>> + Copy {
     })
 }
 
-/// The edition of a set.
-pub(super) fn edition<'s>() -> impl Rule<'s, Spanned<u32>> + Copy {
+/// The edition of a set, or how many points a curve has.
+pub(super) fn count<'s>() -> impl Rule<'s, Spanned<u32>> + Copy {
     one(Expect::WholeNumber, move |lexeme| {
         let value = (lexeme.token == Token::Number).then(|| lexeme.text.parse().ok())??;
         Some(Spanned::new(value, lexeme.span()))
@@ -80,6 +95,19 @@ struct Reading {
 }
 
 impl Reading {
+    fn of(number: Number) -> Reading {
+        let span = number.span;
+        let quantity = Quantity { number, uncertainty: None, unit: None, basis: None, span };
+        Reading { quantity, failure: None }
+    }
+
+    fn finish(self, span: Span) -> Result<Quantity, Failure> {
+        match self.failure {
+            None => Ok(Quantity { span, ..self.quantity }),
+            Some(failure) => Err(failure),
+        }
+    }
+
     fn with(mut self, part: Part<'_>) -> Reading {
         let quantity = &mut self.quantity;
         let failure = match part {
@@ -120,31 +148,41 @@ pub(super) fn unsigned_quantity<'s>() -> impl Rule<'s, Quantity> {
     with_parts(number())
 }
 
-fn with_parts<'s>(number: impl Rule<'s, Number>) -> impl Rule<'s, Quantity> {
-    let uncertainty = sign(Token::PlusMinus, Expect::Nothing)
-        .then(self::number())
-        .then(lone_percent().or_not())
-        .map(|((at, number), percent)| {
+/// A number with its unit, and nothing after it that could be a unit too: what follows is
+/// a formula.
+pub(super) fn strength<'s>() -> impl Rule<'s, Quantity> {
+    let unit = unit(Expect::Unit).map(|(unit, at)| Part::Unit(unit, at));
+    number()
+        .map(Reading::of)
+        .foldl(uncertainty().or_not(), Reading::with)
+        .then(unit)
+        .map(|(reading, unit)| reading.with(unit))
+        .foldl(uncertainty().or_not(), Reading::with)
+        .map_with(|reading, extra| (reading, span_of(extra.slice())))
+        .try_map(|(reading, span), _| reading.finish(span))
+}
+
+/// `± 0.02`, `± 5 %`
+fn uncertainty<'s>() -> impl Rule<'s, Part<'s>> {
+    sign(Token::PlusMinus, Expect::Nothing).then(number()).then(lone_percent().or_not()).map(
+        |((at, number), percent)| {
             Part::Uncertainty(Uncertainty { number, percent: percent.is_some() }, at)
-        });
+        },
+    )
+}
+
+fn with_parts<'s>(number: impl Rule<'s, Number>) -> impl Rule<'s, Quantity> {
     let basis = word("as", Expect::Nothing)
         .then(name(Expect::Basis))
         .map(|(at, basis)| Part::Basis(basis, at));
     let unit = |expect| unit(expect).map(|(unit, at)| Part::Unit(unit, at));
     number
-        .map(|number| {
-            let span = number.span;
-            let quantity = Quantity { number, uncertainty: None, unit: None, basis: None, span };
-            Reading { quantity, failure: None }
-        })
-        .foldl(uncertainty.or_not(), Reading::with)
+        .map(Reading::of)
+        .foldl(uncertainty().or_not(), Reading::with)
         .foldl(unit(Expect::Unit).or_not(), Reading::with)
-        .foldl(choice((uncertainty, unit(Expect::Nothing), basis)).repeated(), Reading::with)
+        .foldl(choice((uncertainty(), unit(Expect::Nothing), basis)).repeated(), Reading::with)
         .map_with(|reading, extra| (reading, span_of(extra.slice())))
-        .try_map(|(reading, span), _| match reading.failure {
-            None => Ok(Quantity { span, ..reading.quantity }),
-            Some(failure) => Err(failure),
-        })
+        .try_map(|(reading, span), _| reading.finish(span))
 }
 
 /// The percent sign of an uncertainty, and not that of `% w/w`.

@@ -3,18 +3,19 @@
 use chumsky::prelude::*;
 
 use super::basic::{Lexeme, Rule, any_word, clause_end, name, sign, string, to_comma, word};
-use super::failure::{Expect, Failure};
-use super::quantity::{edition, quantity};
-use super::reaction::{reaction, source};
+use super::failure::Expect;
+use super::quantity::{count, quantity};
+use super::reaction::reaction;
+use super::stock::{blend, of_stock};
 use super::subject::{expect, hold, without};
 use super::sum::{members, terms};
-use crate::text::problem::{MOST_PROBLEMS, SyntaxProblem, SyntaxProblemKind};
+use crate::text::problem::{MOST_PROBLEMS, SyntaxProblem};
 use crate::text::span::{Span, Spanned};
 use crate::text::token::Token;
 use crate::text::tree::{BalanceKind, ComponentItem, Name, Over, Statement, Use};
 
 /// The first words of all statements.
-pub const KEYWORDS: [&str; 18] = [
+pub const KEYWORDS: [&str; 19] = [
     "problem",
     "use",
     "temperature",
@@ -25,6 +26,7 @@ pub const KEYWORDS: [&str; 18] = [
     "reaction",
     "total",
     "add",
+    "blend",
     "hold",
     "precipitate",
     "saturate",
@@ -64,6 +66,7 @@ pub(super) fn read(lexemes: &[Lexeme<'_>], problems: &mut Vec<SyntaxProblem>) ->
                 .map(|(component, value)| Statement::Total { component, value }),
         ),
         "add" => run.parse(add()),
+        "blend" => run.parse(blend()),
         "hold" => run.parse(hold()),
         "precipitate" => {
             run.parse(name(Expect::Formula).map(|solid| Statement::Precipitate { solid }))
@@ -100,7 +103,7 @@ impl<'s> Run<'s, '_> {
 
 fn used<'s>() -> impl Rule<'s, Use> {
     let set = any_word(Expect::Set)
-        .then(edition().or_not())
+        .then(count().or_not())
         .map(|(name, edition)| Use::Set { name, edition });
     let file = string().map(|path| Use::File { path });
     set.or(file.labelled(Expect::Set))
@@ -131,10 +134,18 @@ fn add<'s>() -> impl Rule<'s, Statement> {
     let giving = sign(Token::Comma, Expect::Comma)
         .ignore_then(word("giving", Expect::Giving))
         .ignore_then(members());
-    name(Expect::Formula)
-        .then(quantity().labelled(Expect::Amount))
-        .then(giving.or_not())
-        .map(|((reagent, amount), giving)| Statement::Add { reagent, amount, giving })
+    let amount = || quantity().labelled(Expect::Amount);
+    let pure =
+        name(Expect::Formula).then(amount()).map(|(reagent, amount)| (reagent, amount, None));
+    let stock = amount()
+        .then(of_stock())
+        .map(|(amount, (reagent, strength))| (reagent, amount, Some(strength)));
+    pure.or(stock).then(giving.or_not()).map(|((reagent, amount, stock), giving)| Statement::Add {
+        reagent,
+        amount,
+        stock,
+        giving,
+    })
 }
 
 /// `charge`, `protons` or a component.
@@ -187,28 +198,21 @@ fn curve<'s>() -> impl Rule<'s, Statement> {
         named("temperature", Over::Temperature),
         of("total", Over::Total),
         of("dose", Over::Reagent),
+        word("blend", Expect::Over).then(string()).map(|(at, file): (&Lexeme<'_>, Name)| {
+            let span = at.span().to(file.span);
+            Spanned::new(Over::Blend(file), span)
+        }),
         reagent,
     ));
+    let points = sign(Token::Comma, Expect::Comma)
+        .ignore_then(count())
+        .then_ignore(word("points", Expect::Points));
     word("over", Expect::OverWord)
         .ignore_then(over)
         .then_ignore(word("from", Expect::From))
         .then(quantity())
         .then_ignore(word("to", Expect::To))
         .then(quantity())
-        .map(|((over, from), to)| Statement::Curve { over, from, to })
-}
-
-/// `, source "…"`, once.
-pub(super) fn closing_source<'s>() -> impl Rule<'s, Option<Name>> {
-    sign(Token::Comma, Expect::Comma).ignore_then(source()).repeated().collect::<Vec<_>>().validate(
-        |sources, _, emitter| {
-            let mut sources = sources.into_iter();
-            let first = sources.next();
-            for again in sources {
-                let kind = SyntaxProblemKind::RepeatedClause { clause: "source" };
-                emitter.emit(Failure::problem(again.span, kind));
-            }
-            first
-        },
-    )
+        .then(points.or_not())
+        .map(|(((over, from), to), points)| Statement::Curve { over, from, to, points })
 }

@@ -6,12 +6,14 @@ use chumsky::prelude::*;
 use super::basic::{Rule, name, one, sign, span_of, word};
 use super::failure::{Expect, Failure};
 use super::quantity::quantity;
-use super::statement::{balance_kind, closing_source};
+use super::reaction::source;
+use super::statement::balance_kind;
+use super::stock::of_stock;
 use crate::text::number::shortened;
 use crate::text::problem::SyntaxProblemKind;
 use crate::text::span::Spanned;
 use crate::text::token::Token;
-use crate::text::tree::{By, Name, Relation, Statement, Subject, Without};
+use crate::text::tree::{By, Name, Quantity, Relation, Statement, Subject, Without};
 
 /// A quantity of the answer, as it is named.
 fn subject<'s>() -> impl Rule<'s, Spanned<Subject>> {
@@ -79,11 +81,14 @@ fn not_a_gas(name: &Name) -> Option<Failure> {
     Some(Failure::problem(name.span, SyntaxProblemKind::Unexpected { found, expected }))
 }
 
-/// `hold Q = v`, `hold Q = v by NaOH`
+/// `hold Q = v`, `hold Q = v by NaOH`, `hold Q = v by dose of 30 % NaOH`
 pub(super) fn hold<'s>() -> impl Rule<'s, Statement> {
     let total = word("total", Expect::Found).ignore_then(name(Expect::Formula)).map(By::Total);
+    let dose = word("dose", Expect::Found)
+        .ignore_then(of_stock())
+        .map(|(reagent, strength)| By::Reagent(reagent, Some(strength)));
     let by = word("by", Expect::Nothing)
-        .ignore_then(total.or(name(Expect::Found).map(By::Reagent)))
+        .ignore_then(choice((total, dose, name(Expect::Found).map(|name| By::Reagent(name, None)))))
         .map_with(|by, extra| Spanned::new(by, span_of(extra.slice())));
     subject()
         .then_ignore(sign(Token::Equals, Expect::Equals))
@@ -110,10 +115,42 @@ pub(super) fn expect<'s>() -> impl Rule<'s, Statement> {
         compared(Token::GreaterOrEqual, Relation::GreaterOrEqual),
         between,
     ));
-    subject()
-        .then(relation)
-        .then(closing_source())
-        .map(|((subject, relation), source)| Statement::Expect { subject, relation, source })
+    subject().then(relation).then(closing()).map(|((subject, relation), (confidence, source))| {
+        Statement::Expect { subject, relation, confidence, source }
+    })
+}
+
+#[derive(Clone)]
+enum Clause {
+    Confidence(Quantity),
+    Source(Name),
+}
+
+/// `, confidence 95 %` and `, source "…"`, each once and in either order.
+fn closing<'s>() -> impl Rule<'s, (Option<Quantity>, Option<Name>)> {
+    let confidence =
+        word("confidence", Expect::ExpectClause).ignore_then(quantity()).map(Clause::Confidence);
+    let clause = confidence.or(source().map(Clause::Source));
+    let clauses = sign(Token::Comma, Expect::Comma).ignore_then(clause).repeated();
+    clauses.collect::<Vec<_>>().validate(|clauses, _, emitter| {
+        let (mut confidence, mut source) = (None, None);
+        for clause in clauses {
+            let (span, clause) = match clause {
+                Clause::Confidence(value) if confidence.is_none() => {
+                    confidence = Some(value);
+                    continue;
+                }
+                Clause::Source(words) if source.is_none() => {
+                    source = Some(words);
+                    continue;
+                }
+                Clause::Confidence(again) => (again.span, "confidence"),
+                Clause::Source(again) => (again.span, "source"),
+            };
+            emitter.emit(Failure::problem(span, SyntaxProblemKind::RepeatedClause { clause }));
+        }
+        (confidence, source)
+    })
 }
 
 /// What `without` takes away.
@@ -141,6 +178,7 @@ pub(super) fn without<'s>() -> impl Rule<'s, Spanned<Without>> {
         word("ionic", Expect::Removed)
             .ignore_then(word("strength", Expect::Strength))
             .to(Without::IonicStrength),
+        word("blend", Expect::Removed).to(Without::Blend),
     ))
     .map_with(|without, extra| Spanned::new(without, span_of(extra.slice())))
 }
