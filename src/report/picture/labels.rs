@@ -192,7 +192,9 @@ fn beside(
             let centre = Point { x: at.x + nx * off, y: at.y + ny * off };
             let frame = Frame::round(centre, want.width, want.height);
             let below = if ny > 0.2 { 2.0 } else { 0.0 };
-            spots.push((middle + below, Spot { frame, leader: None }));
+            let between = raster.along(at, frame.nearest(at)) & !own;
+            let other_side = HIDES * f64::from(between.count_ones());
+            spots.push((middle + below + other_side, Spot { frame, leader: None }));
         }
         if index % 3 == 0 {
             for away in [12.0, 24.0, 40.0, 60.0, 84.0] {

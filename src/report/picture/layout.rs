@@ -274,7 +274,8 @@ impl Layout {
             .collect();
         let mut wanted: Vec<(&Words, Tie, Option<usize>)> = Vec::new();
         for (index, line) in chart.lines.iter().enumerate() {
-            if !keyed.contains(&index) {
+            // The axis says what a line that is alone shows.
+            if !keyed.contains(&index) && chart.lines.len() > 1 {
                 wanted.push((&line.label, Tie::Line(index), Some(index)));
             }
         }

@@ -44,7 +44,7 @@ pub fn chart(subject: &Subject, cancel: &AtomicBool) -> Option<Chart> {
     });
     if let (Some((sheet, _)), Some(_)) = (&condition, crossing) {
         notes.push(Words::told(&format!(
-            "Heavy lines: the proton condition. Left side, whole: {}. Right side, dashed: {}.",
+            "Proton condition: {} (left side) = {} (right side).",
             present(&sheet.left),
             present(&sheet.right),
         )));

@@ -56,7 +56,10 @@ pub fn chart(
         .collect();
     let here = subject.solved.value(problem, chosen.sought).map(|value| value / factor);
     let answer = run.answer(subject, here);
-    let values = line.pieces.iter().flatten().map(|place| place.1).chain(levels.clone());
+    // What is an amount is seen best from zero.
+    let zero = (factor != 1.0).then_some(0.0);
+    let values = line.pieces.iter().flatten().map(|place| place.1);
+    let values = values.chain(levels.clone()).chain(zero);
     let (low, high) = round_ends(values);
     let comma = if words.is_empty() { "" } else { ", " };
     let title = Words::told(&chosen.words).then(&format!("{comma}{words}"), Words::default());

@@ -8,7 +8,7 @@ use super::subject::Subject;
 use super::words::Words;
 use crate::chemistry::formula::canonical;
 use crate::chemistry::quantity::Scale;
-use crate::equilibrium::curve::{along, at_point};
+use crate::equilibrium::curve::{CurvePoint, along, at_point};
 use crate::equilibrium::quantities::Solved;
 use crate::problem::curve::{Curve, Sweep};
 use crate::problem::model::{Problem, ShownUnit};
@@ -17,6 +17,9 @@ use crate::text::span::{Part, Place as Written, Span};
 
 /// At least so many points make a line.
 const POINTS: usize = 401;
+/// Where the pH jumps by more than this from one point to the next, so many are put between.
+const JUMP: f64 = 0.1;
+const FINE: usize = 41;
 /// What a curve over pH goes from and to where the file has none.
 const PH: (f64, f64) = (2.0, 12.0);
 
@@ -26,13 +29,30 @@ pub struct Run {
     points: Vec<(f64, Option<(Problem, Solved)>)>,
 }
 
+fn jumps(one: &CurvePoint, other: &CurvePoint) -> bool {
+    match (&one.state, &other.state) {
+        (Ok(one), Ok(other)) => (one.ph() - other.ph()).abs() > JUMP,
+        _ => false,
+    }
+}
+
 impl Run {
     /// None where the work was cancelled.
     pub fn new(subject: &Subject, curve: Curve, cancel: &AtomicBool) -> Option<Run> {
         let curve = Curve { points: curve.points.max(POINTS), ..curve };
         let problem = subject.problem();
         let points = along(problem, &curve, cancel).ok()?;
-        let points = points
+        let mut found: Vec<CurvePoint> = Vec::with_capacity(points.len());
+        for point in points {
+            if let Some(last) = found.last().filter(|last| jumps(last, &point)) {
+                let between = Curve { from: last.x, to: point.x, points: FINE, ..curve.clone() };
+                let mut between = along(problem, &between, cancel).ok()?;
+                between.pop();
+                found.extend(between.into_iter().skip(1));
+            }
+            found.push(point);
+        }
+        let points = found
             .iter()
             .map(|point| (curve.shown(point.x), at_point(problem, &curve, point)))
             .collect();

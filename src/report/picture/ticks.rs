@@ -30,7 +30,7 @@ fn step(span: f64, most: usize) -> f64 {
     [1.0, 2.0, 5.0].map(|digit| digit * unit).into_iter().find(fits).unwrap_or(10.0 * unit)
 }
 
-/// Ends of an axis at round numbers that hold all values, zero among them where it is near.
+/// Ends of an axis at round numbers that hold all values.
 pub fn round_ends(values: impl Iterator<Item = f64>) -> (f64, f64) {
     let finite = values.filter(|value| value.is_finite());
     let (low, high) = finite.fold((f64::INFINITY, f64::NEG_INFINITY), |(low, high), value| {
@@ -40,7 +40,6 @@ pub fn round_ends(values: impl Iterator<Item = f64>) -> (f64, f64) {
         return (0.0, 1.0);
     }
     let wide = if high > low { high - low } else { high.abs().max(1e-3) };
-    let low = if low > 0.0 && low < 0.4 * high { 0.0 } else { low };
     let step = step(wide, 9);
     let ends = ((low / step + 1e-9).floor() * step, (high / step - 1e-9).ceil() * step);
     if ends.0 < ends.1 { ends } else { (ends.0 - step, ends.1 + step) }
