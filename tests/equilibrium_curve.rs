@@ -42,8 +42,7 @@ fn same(one: &Answer, two: &Answer) -> Result<(), String> {
 
 fn checked(path: Option<&Path>, text: String) -> Checked {
     let imports = Imports::default();
-    let around =
-        Surroundings { path, roots: &[], files: &Disk, imports: &imports, cancel: &GO_ON };
+    let around = Surroundings { path, roots: &[], files: &Disk, imports: &imports, cancel: &GO_ON };
     check(Document::parse(text), &around, None).expect("nothing cancels it")
 }
 
@@ -70,15 +69,8 @@ fn files(folder: &Path, into: &mut Vec<PathBuf>) {
 fn curves(problem: &Problem, points: usize) -> Vec<Curve> {
     let here = problem.scope.components.iter().find_map(|c| c.at);
     let Some(at) = here.or(problem.title_at) else { return Vec::new() };
-    let curve = |over, from, to| Curve {
-        at,
-        over,
-        words: String::new(),
-        from,
-        to,
-        points,
-        unit: None,
-    };
+    let curve =
+        |over, from, to| Curve { at, over, words: String::new(), from, to, points, unit: None };
     let mut all = vec![
         curve(Sweep::Ph, 2.0, 12.0),
         curve(Sweep::Ph, 9.0, 4.0),
@@ -282,7 +274,9 @@ const UNIONISED: [(f64, [f64; 4]); 16] = [
 #[test]
 fn curves_over_ph_and_temperature_meet_the_published_ammonia_table() {
     let text = |conditions: &str| {
-        format!("use aqueous 1\nactivity ideal\ncomponent NH3\ntotal NH3 = 1 mg/L as N\n{conditions}")
+        format!(
+            "use aqueous 1\nactivity ideal\ncomponent NH3\ntotal NH3 = 1 mg/L as N\n{conditions}"
+        )
     };
     let percent = |problem: &Problem, answer: &Answer| {
         let row = |name: &str| problem.scope.row_of(problem.scope.find(name).unwrap()).unwrap();
@@ -302,7 +296,8 @@ fn curves_over_ph_and_temperature_meet_the_published_ammonia_table() {
         }
     };
     for (ph, row) in &UNIONISED {
-        let text = text(&format!("hold pH = {ph}\ncurve over temperature from 10 to 25 °C, 4 points\n"));
+        let text =
+            text(&format!("hold pH = {ph}\ncurve over temperature from 10 to 25 °C, 4 points\n"));
         meets(text, row, &|index| index == 3);
     }
     for (column, celsius) in [10, 15, 20, 25].iter().enumerate() {
@@ -322,7 +317,12 @@ fn curves_over_ph_and_temperature_meet_the_published_ammonia_table() {
 fn a_titration_ends_at_the_published_equivalence_points() {
     for (acid, anion, reaction, published) in [
         ("HCl", "Cl-", "", 7.00),
-        ("CH3COOH", "CH3COO-", "reaction CH3COOH <=> CH3COO- + H+, K = 1.8e-5, source \"x\"\n", 8.72),
+        (
+            "CH3COOH",
+            "CH3COO-",
+            "reaction CH3COOH <=> CH3COO- + H+, K = 1.8e-5, source \"x\"\n",
+            8.72,
+        ),
     ] {
         let text = format!(
             "activity ideal\ncomponent {anion}, Na+\n{reaction}\

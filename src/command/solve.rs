@@ -3,8 +3,8 @@
 use super::chosen::Asked;
 use super::reply::{Complaint, Reply};
 use super::terminal::style;
-use crate::report::curve::{Traced, traced};
 use crate::report::answer::{answer, conditions, overview};
+use crate::report::curve::{Traced, traced};
 use crate::report::expectation::verdict;
 use crate::report::solution::json;
 use crate::report::source::{FileReport, Stated};
@@ -91,7 +91,7 @@ fn text(file: &FileReport, problems: &[Stated], curves: &[Vec<Traced>], style: S
         let body = match (file.checked(), stated.outcome.solved()) {
             (Some(checked), Some(solved)) => {
                 answer(&file.source, checked, *stated, solved, curves, style)
-            },
+            }
             _ => {
                 let conditions = conditions(&stated.outcome.problem);
                 let state = style.paint(Paint::Bad, "not solved");

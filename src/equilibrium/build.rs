@@ -82,9 +82,7 @@ fn ln_value(problem: &Problem, held: &Held) -> f64 {
         HeldWhat::Ph(value) | HeldWhat::Pe(value) => -value * LN_10,
         HeldWhat::Pressure { species, atm: value }
         | HeldWhat::Activity { species, value }
-        | HeldWhat::Concentration { species, value } => {
-            value.ln() - ln_formation(problem, species)
-        }
+        | HeldWhat::Concentration { species, value } => value.ln() - ln_formation(problem, species),
     }
 }
 
@@ -109,9 +107,7 @@ fn fixed(problem: &Problem, held: &Held) -> Option<Fixed> {
             (single(electron), supply(problem, electron))
         }
         HeldWhat::Pressure { species, .. } => (row_of(species)?, row_of(species)?),
-        HeldWhat::Activity { species, .. } => {
-            (row_of(species)?, supply(problem, held.releases?))
-        }
+        HeldWhat::Activity { species, .. } => (row_of(species)?, supply(problem, held.releases?)),
         HeldWhat::Concentration { species, .. } => {
             let formula = &scope.species[species];
             concentration_of = Some((formula.charge, ion_size(formula).angstrom));

@@ -140,7 +140,8 @@ impl State {
         if self.u.len() != before.u.len() {
             return None;
         }
-        let u: Vec<f64> = self.u.iter().zip(&before.u).map(|(now, then)| 2.0 * now - then).collect();
+        let u: Vec<f64> =
+            self.u.iter().zip(&before.u).map(|(now, then)| 2.0 * now - then).collect();
         let near = self.u.iter().zip(&u).all(|(now, next)| (now - next).abs() <= FURTHEST);
         let ionic_strength = match (self.ionic_strength, before.ionic_strength) {
             (Some(now), Some(then)) if then > 0.0 => Some(now * (now / then).clamp(0.1, 10.0)),

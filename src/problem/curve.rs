@@ -67,9 +67,7 @@ impl Curve {
     pub fn shown(&self, x: f64) -> f64 {
         let unit = self.unit.as_ref();
         match self.over {
-            Sweep::Temperature if unit.is_some_and(|unit| unit.words == "°C") => {
-                x - ZERO_CELSIUS
-            }
+            Sweep::Temperature if unit.is_some_and(|unit| unit.words == "°C") => x - ZERO_CELSIUS,
             _ => x / unit.map_or(1.0, |unit| unit.factor),
         }
     }

@@ -43,11 +43,9 @@ pub fn read(case: &mut CaseResolver) -> Vec<Expectation> {
             Relation::GreaterOrEqual(q) => {
                 value(q).map(|r| (Limit::Above { value: r.value, or_equal: true }, r))
             }
-            Relation::Between(low, high) => {
-                value(&with_unit_of(low, high))
-                    .zip(value(high))
-                    .map(|(low, high)| (Limit::Between { low: low.value, high: high.value }, high))
-            }
+            Relation::Between(low, high) => value(&with_unit_of(low, high))
+                .zip(value(high))
+                .map(|(low, high)| (Limit::Between { low: low.value, high: high.value }, high)),
         };
         let Some((limit, read)) = limit else { continue };
         if let Sought::ChargeImbalance { equivalents } = &mut sought {

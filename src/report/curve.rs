@@ -107,7 +107,8 @@ impl Traced {
         let last = self.points.len().saturating_sub(1);
         let count = self.points.len().min(SHOWN);
         (0..count).filter_map(move |row| {
-            let index = if count < 2 { 0 } else { (2 * row * last + count - 1) / (2 * (count - 1)) };
+            let index =
+                if count < 2 { 0 } else { (2 * row * last + count - 1) / (2 * (count - 1)) };
             self.points.get(index)
         })
     }

@@ -5,8 +5,8 @@ use std::panic::{AssertUnwindSafe, catch_unwind};
 use std::sync::Arc;
 
 use serde::Serialize;
-use serde_json::{Value, to_value};
 use serde_json::value::to_raw_value;
+use serde_json::{Value, to_value};
 use tokio::task::spawn_blocking;
 use tower_lsp::jsonrpc::{Error, ErrorCode, Result};
 use tower_lsp::lsp_types::*;

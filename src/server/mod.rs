@@ -30,8 +30,8 @@ mod symbols;
 
 use std::io::Write;
 use std::process::ExitCode;
-use std::sync::{Arc, PoisonError};
 use std::sync::atomic::Ordering;
+use std::sync::{Arc, PoisonError};
 use std::time::Duration;
 
 use tokio::io::{AsyncRead, AsyncWrite};

@@ -83,8 +83,11 @@ fn write(session: &Session, source: &Url, picture: &Picture) -> std::io::Result<
         none => none.insert(tempfile::Builder::new().prefix("lyate-").tempdir()?),
     };
     let plain = |c: char| if c.is_alphanumeric() { c } else { '-' };
-    let name: String =
-        format!("{} {}", stem(source), picture.title).chars().map(plain).take(LONGEST_NAME).collect();
+    let name: String = format!("{} {}", stem(source), picture.title)
+        .chars()
+        .map(plain)
+        .take(LONGEST_NAME)
+        .collect();
     let path = folder.path().join(format!("{name}.svg"));
     std::fs::write(&path, &picture.svg)?;
     Url::from_file_path(&path).map_err(|()| std::io::ErrorKind::InvalidInput.into())

@@ -69,13 +69,16 @@ fn curves(criterion: &mut Criterion) {
             .filter_map(|point| at(&problem, &problem.curves[1], problem.curves[1].x(point)).ok())
             .map(|moved| system(&moved))
             .collect();
-        criterion.bench_function(&format!("the same over NaOH, each cold, {activity}"), |bencher| {
-            bencher.iter(|| {
-                for system in &systems {
-                    let _ = black_box(solve(black_box(system), None, &cancel));
-                }
-            });
-        });
+        criterion.bench_function(
+            &format!("the same over NaOH, each cold, {activity}"),
+            |bencher| {
+                bencher.iter(|| {
+                    for system in &systems {
+                        let _ = black_box(solve(black_box(system), None, &cancel));
+                    }
+                });
+            },
+        );
     }
     let phosphate = WATER.replace("CH3COO-\n", "PO4^3-\n").replace("CH3COOH 0.5", "H3PO4 5");
     let without = |line: &&str| !line.contains("CaCH3COO+");

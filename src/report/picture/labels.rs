@@ -165,13 +165,7 @@ fn choices(ground: &Ground, raster: &Raster, want: &Want) -> Vec<(f64, Spot)> {
 }
 
 /// Places along a line: touching it on either side, and off it with a leader.
-fn beside(
-    piece: &[Point],
-    want: &Want,
-    raster: &Raster,
-    own: u64,
-    spots: &mut Vec<(f64, Spot)>,
-) {
+fn beside(piece: &[Point], want: &Want, raster: &Raster, own: u64, spots: &mut Vec<(f64, Spot)>) {
     let points = along(piece, 7.0);
     let count = points.len();
     for (index, &at) in points.iter().enumerate() {

@@ -84,7 +84,8 @@ impl Kind {
     }
 
     pub fn height(self) -> f64 {
-        LEADING * self.size()
+        // Numbers have nothing below the line.
+        if self == Kind::Tick { 1.1 * self.size() } else { LEADING * self.size() }
     }
 
     /// Bold letters are wider.
@@ -130,7 +131,7 @@ fn set(chart: &Chart, width: f64, height: f64, keyed: &[usize]) -> (Layout, Vec<
     };
     let top = layout.head(chart);
     let foot = Foot::new(chart, keyed, width - 2.0 * PAD);
-    let below = TICK + Kind::Tick.height() + 2.0 + Kind::AxisTitle.height();
+    let below = TICK + Kind::Tick.height() + 4.0 + Kind::AxisTitle.height();
     let bottom = (height - PAD - foot.height - below).max(top + LEAST_PLOT);
     layout.height = bottom + below + foot.height + PAD;
     let numbers = ticks(&chart.y, ((bottom - top) / 32.0) as usize);
@@ -163,7 +164,7 @@ impl Layout {
             }
             top += 2.0;
         }
-        top + if chart.rules.is_empty() { 8.0 } else { 6.0 + Kind::Tick.height() }
+        top + if chart.rules.is_empty() { 8.0 } else { 8.0 + Kind::Tick.height() }
     }
 
     fn at(&self, chart: &Chart, (x, y): Place) -> Point {
@@ -188,10 +189,10 @@ impl Layout {
             self.grid.push((Point { x, y: plot.top }, Point { x, y: plot.bottom }));
             let words = Words::plain(&words);
             let left = x - 0.5 * Kind::Tick.width(&words);
-            self.write(words, Kind::Tick, left, plot.bottom + TICK - 2.0);
+            self.write(words, Kind::Tick, left, plot.bottom + TICK + 1.0);
         }
         let wide = Kind::AxisTitle.width(&chart.x.title);
-        let top = plot.bottom + TICK + Kind::Tick.height();
+        let top = plot.bottom + TICK + Kind::Tick.height() + 3.0;
         self.write(chart.x.title.clone(), Kind::AxisTitle, plot.middle().x - 0.5 * wide, top);
         let (high, wide) = (Kind::AxisTitle.height(), Kind::AxisTitle.width(&chart.y.title));
         let middle = Point { x: PAD - 2.0 + 0.5 * high, y: plot.middle().y };
@@ -216,7 +217,8 @@ impl Layout {
             let left = (x - 0.5 * wide).min(self.width - PAD - wide).max(last + 8.0);
             last = left + wide;
             if last <= self.width - 2.0 {
-                let top = plot.top - Kind::Tick.height() - 2.0;
+                // Clear of a mark on the edge.
+                let top = plot.top - Kind::Tick.height() - RADIUS - 0.5;
                 self.write(rule.label.clone(), Kind::Tick, left, top);
             }
         }
