@@ -45,12 +45,17 @@ const GAP: f64 = 2.5;
 const APART: f64 = 5.0;
 /// Around a label no other line should come so near.
 const CLEAR: f64 = 6.0;
-const HIDES: f64 = 60.0;
+const HIDES: f64 = 100.0;
+/// A leader that passes a line, a mark or a label.
+const PASSES: f64 = 24.0;
 const UNCLEAR: f64 = 14.0;
 const LEADER: f64 = 26.0;
 const MERGED: f64 = 10.0;
 const MEETS: f64 = 1e5;
+/// Places without a leader that leave enough choice.
+const ENOUGH: usize = 12;
 const KEPT: usize = 160;
+const TURNS: u32 = 16;
 const ROUNDS: usize = 8;
 
 /// A place for each label; none where it would meet another.
@@ -122,29 +127,60 @@ fn cross(one: (Point, Point), two: (Point, Point)) -> bool {
 
 /// The best places of a label, with what each costs by itself.
 fn choices(ground: &Ground, raster: &Raster, want: &Want) -> Vec<(f64, Spot)> {
-    let mut spots: Vec<(f64, Spot)> = Vec::new();
-    match want.tie {
+    let mut near = Vec::new();
+    let own = match want.tie {
         Tie::Line(line) => {
             for piece in ground.lines.get(line).into_iter().flatten() {
-                beside(piece, want, raster, Raster::bit(line), &mut spots);
+                beside(piece, want, raster, Raster::bit(line), &mut near);
             }
+            Raster::bit(line)
         }
         Tie::Mark(at, radius) => {
-            round(at, radius + GAP, want, 0.0, false, &mut spots);
-            for away in [10.0, 18.0, 28.0, 40.0, 54.0, 70.0, 90.0, 120.0] {
-                round(at, radius + away, want, 0.0, true, &mut spots);
+            round(at, radius + GAP, want, 0.0, false, &mut near);
+            0
+        }
+    };
+    let mut spots = weighed(near, own, ground, raster);
+    // Leaders are only for where it is crowded.
+    if spots.iter().filter(|(cost, _)| *cost < UNCLEAR).count() < ENOUGH {
+        let mut far = Vec::new();
+        match want.tie {
+            Tie::Line(line) => {
+                for piece in ground.lines.get(line).into_iter().flatten() {
+                    for at in along(piece, 28.0) {
+                        let cost = merged(at, raster, own);
+                        for away in [12.0, 22.0, 38.0, 60.0] {
+                            round(at, away, want, cost, true, &mut far);
+                        }
+                    }
+                }
+            }
+            Tie::Mark(at, radius) => {
+                for away in [8.0, 14.0, 20.0, 28.0, 38.0, 50.0, 66.0, 90.0] {
+                    round(at, radius + away, want, 0.0, true, &mut far);
+                }
             }
         }
+        spots.extend(weighed(far, own, ground, raster));
     }
+    spots.sort_by(|a, b| a.0.total_cmp(&b.0));
+    spots.truncate(KEPT);
+    spots
+}
+
+/// The spots inside the plot that meet nothing that is taken, with what they hide added to
+/// their cost.
+fn weighed(
+    mut spots: Vec<(f64, Spot)>,
+    own: u64,
+    ground: &Ground,
+    raster: &Raster,
+) -> Vec<(f64, Spot)> {
     let inside = ground.plot.grown(-3.0);
     spots.retain(|(_, spot)| {
         inside.holds(&spot.frame)
             && !ground.taken.iter().any(|taken| taken.grown(1.5).meets(&spot.frame))
     });
-    let own = match want.tie {
-        Tie::Line(line) => Raster::bit(line),
-        Tie::Mark(..) => 0,
-    };
     for (cost, spot) in &mut spots {
         let hidden = raster.under(&spot.frame);
         let near = raster.under(&spot.frame.grown(CLEAR)) & !hidden & !own;
@@ -153,18 +189,22 @@ fn choices(ground: &Ground, raster: &Raster, want: &Want) -> Vec<(f64, Spot)> {
         *cost += HIDES * f64::from(hidden.count_ones()) + unclear * f64::from(near.count_ones());
         if let Some((from, to)) = spot.leader {
             *cost += LEADER + 0.5 * from.far(to);
-            let passed = raster.along(from, from.towards(to, 0.9)) & !own;
-            *cost += 0.4 * HIDES * f64::from(passed.count_ones());
-            let blocked = |taken: &&Frame| taken.clip(from, from.towards(to, 0.9)).is_some();
-            *cost += 0.4 * HIDES * ground.taken.iter().filter(blocked).count() as f64;
+            let end = from.towards(to, 0.9);
+            let passed = raster.along(from, end) & !own;
+            let blocked = ground.taken.iter().filter(|taken| taken.clip(from, end).is_some());
+            *cost += PASSES * (f64::from(passed.count_ones()) + blocked.count() as f64);
         }
     }
-    spots.sort_by(|a, b| a.0.total_cmp(&b.0));
-    spots.truncate(KEPT);
     spots
 }
 
-/// Places along a line: touching it on either side, and off it with a leader.
+/// Where lines run together, nobody can tell which one is meant.
+fn merged(at: Point, raster: &Raster, own: u64) -> f64 {
+    let others = raster.under(&Frame::round(at, CELL, CELL)) & !own;
+    MERGED * f64::from(others.count_ones())
+}
+
+/// Places along a line, touching it on either side.
 fn beside(piece: &[Point], want: &Want, raster: &Raster, own: u64, spots: &mut Vec<(f64, Spot)>) {
     let points = along(piece, 7.0);
     let count = points.len();
@@ -177,9 +217,7 @@ fn beside(piece: &[Point], want: &Want, raster: &Raster, own: u64, spots: &mut V
         let normal = ((before.y - after.y) / length, (after.x - before.x) / length);
         // In the middle of its line a label is found soonest; above it sooner than below.
         let middle = (index as f64 / count as f64 - 0.5).abs() * 4.0;
-        // Where lines run together, nobody can tell which one is meant.
-        let together = raster.under(&Frame::round(at, CELL, CELL)) & !own;
-        let middle = middle + MERGED * f64::from(together.count_ones());
+        let together = merged(at, raster, own);
         for sign in [1.0, -1.0] {
             let (nx, ny) = (sign * normal.0, sign * normal.1);
             let off = GAP + 0.5 * (nx.abs() * want.width + ny.abs() * want.height);
@@ -188,29 +226,25 @@ fn beside(piece: &[Point], want: &Want, raster: &Raster, own: u64, spots: &mut V
             let below = if ny > 0.2 { 2.0 } else { 0.0 };
             let between = raster.along(at, frame.nearest(at)) & !own;
             let other_side = HIDES * f64::from(between.count_ones());
-            spots.push((middle + below + other_side, Spot { frame, leader: None }));
-        }
-        if index % 3 == 0 {
-            for away in [12.0, 24.0, 40.0, 60.0, 84.0] {
-                round(at, away, want, middle, true, spots);
-            }
+            let cost = middle + below + together + other_side;
+            spots.push((cost, Spot { frame, leader: None }));
         }
     }
 }
 
 /// Places round a point, the label's nearest edge so far away.
 fn round(at: Point, away: f64, want: &Want, cost: f64, leads: bool, spots: &mut Vec<(f64, Spot)>) {
-    for turn in 0..16 {
-        let angle = std::f64::consts::TAU * f64::from(turn) / 16.0;
+    for turn in 0..TURNS {
+        let angle = std::f64::consts::TAU * f64::from(turn) / f64::from(TURNS);
         let (dx, dy) = (angle.cos(), angle.sin());
         let centre = Point {
-            x: at.x + dx * away + 0.5 * want.width * dx.clamp(-1.0, 1.0),
-            y: at.y + dy * away + 0.5 * want.height * dy.clamp(-1.0, 1.0),
+            x: at.x + dx * (away + 0.5 * want.width),
+            y: at.y + dy * (away + 0.5 * want.height),
         };
         let frame = Frame::round(centre, want.width, want.height);
         let start = frame.nearest(at);
         let leader = (leads && start.far(at) > 5.0).then_some((start, at));
-        spots.push((cost + f64::from(turn % 4) * 0.2, Spot { frame, leader }));
+        spots.push((cost, Spot { frame, leader }));
     }
 }
 
