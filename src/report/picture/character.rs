@@ -144,7 +144,7 @@ impl Field {
         let mut edge = vec!['─'; self.width];
         let mut numbers = vec![' '; self.width + 8];
         let mut free = 0;
-        for (value, words) in ticks(&chart.x, (self.width / 7).max(3)) {
+        for (value, words) in ticks(&chart.x, (self.width / 6).max(3)) {
             let Some(column) = self.column(chart, value) else { continue };
             edge[column] = '┬';
             let start = column.saturating_sub(words.chars().count() / 2);
