@@ -68,6 +68,7 @@ component NH3, Cl-
 reaction NH4+ <=> NH3 + H+, log K(T) = log(T - 293.15) - 10.4, source \"made up\"
 add NH4Cl 2 mmol/L
 curve over temperature from 10 to 40 °C, 7 points
+curve over NH4Cl from 0 to 1 mol/L, 11 points
 ";
     let folder = folder(&[("jar.lyate", text)]);
     let output = run(folder.path(), &["solve", "jar.lyate"]);
@@ -75,6 +76,8 @@ curve over temperature from 10 to 40 °C, 7 points
     let told = "not solved from 10 °C to 20 °C (3 points): \
                 the constant of `NH4+ <=> NH3 + H+` has no value there";
     assert!(stdout(&output).contains(told), "{}", stdout(&output));
+    let past = "past the ionic strength of 0.5 mol/L up to which `davies` is used: 5 of 11 points";
+    assert!(stdout(&output).contains(past), "{}", stdout(&output));
     let output = run(folder.path(), &["solve", "jar.lyate", "--output", "json"]);
     assert_eq!(code(&output), 1);
     let report: Value = serde_json::from_slice(&output.stdout).unwrap();
@@ -149,7 +152,7 @@ case \"weak\"
     total NH3 = 5 mmol/L
 
 case \"strong\"
-    total NH3 = 50 mmol/L
+    total NH3 = 15 mmol/L
 ";
     let folder = folder(&[("bath.lyate", text)]);
     let output = run(folder.path(), &["solve", "bath.lyate", "--output", "json"]);

@@ -8,6 +8,7 @@ use super::reply::{Complaint, Reply};
 use super::terminal::style;
 use crate::report::source::{FileReport, Reading};
 use crate::report::summary::Summary;
+use crate::report::wrap::wrapped;
 use crate::report::{check_json, junit, sarif, terminal};
 use crate::rules::finding::{Failing, LocatedFinding, Severity};
 
@@ -72,6 +73,8 @@ enum Form {
     Junit,
 }
 
+const WIDTH: usize = 100;
+
 pub fn run(arguments: &Arguments) -> Result<Reply, Complaint> {
     let mut paths = arguments.paths.clone();
     if paths.is_empty() {
@@ -118,14 +121,15 @@ fn failing(named: &[FailOn]) -> Failing {
     }
 }
 
-/// Errors and warnings in their text, notes on a line each, and a line that sums up.
+/// Errors and warnings in their text, notes and cautions on a line each, and a line that
+/// sums up.
 fn text(files: &[FileReport], summary: &Summary) -> String {
     let style = style();
     let mut text = String::new();
     let mut before_are_notes = true;
     for file in files {
         let (notes, others): (Vec<&LocatedFinding>, Vec<&LocatedFinding>) =
-            file.findings.iter().partition(|finding| finding.severity == Severity::Note);
+            file.findings.iter().partition(|finding| finding.severity <= Severity::Note);
         for (finding, cases) in by_place(&others) {
             text += if before_are_notes && !text.is_empty() { "\n" } else { "" };
             text += &terminal::likewise(finding, &cases, &file.source, style);
@@ -138,7 +142,13 @@ fn text(files: &[FileReport], summary: &Summary) -> String {
         }
     }
     text += if before_are_notes && !text.is_empty() { "\n" } else { "" };
-    text + &summary.words(style) + "\n"
+    text += &summary.words(style);
+    if summary.cautions > 0 {
+        let words = "Cautions find no fault with a file; where they speak, safety data sheets, \
+                     local codes and licensed practice go first.";
+        text += &format!("\n{}", wrapped(words, 0, 0, WIDTH));
+    }
+    text + "\n"
 }
 
 /// Findings of one rule at one place in several cases, told together.

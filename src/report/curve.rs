@@ -5,7 +5,7 @@ use std::sync::atomic::AtomicBool;
 
 use serde::Serialize;
 
-use super::figures::{concentration, decimals, significant};
+use super::figures::{concentration, decimals, scale_unit, significant};
 use super::solution::in_phase;
 use super::style::{Paint, Style};
 use super::summary::counted;
@@ -20,6 +20,9 @@ use crate::rules::outcome::Outcome;
 
 /// So many points are shown to people, both ends among them.
 const SHOWN: usize = 11;
+
+/// The limits of activity models are round figures: what shows as one of them is not past it.
+const TOUCHES: f64 = 1.005;
 
 /// A curve with its points solved.
 pub struct Traced {
@@ -99,7 +102,26 @@ impl Traced {
                 text += &format!("  {}\n", style.paint(Paint::Bad, &line));
             }
         }
-        text
+        text + &self.past_model(problem, style)
+    }
+
+    /// A line that tells of points past the activity model; nothing where there are none.
+    fn past_model(&self, problem: &Problem, style: Style) -> String {
+        let Some(limit) = problem.activity.range_limit() else { return String::new() };
+        let is_past = |point: &&CurvePoint| {
+            point.state.as_ref().is_ok_and(|answer| answer.ionic_strength > limit * TOUCHES)
+        };
+        let past = self.points.iter().filter(is_past).count();
+        if past == 0 {
+            return String::new();
+        }
+        let line = format!(
+            "past the ionic strength of {limit} {} up to which `{}` is used: {past} of {}",
+            scale_unit(problem.scale),
+            problem.activity.name(),
+            counted(self.points.len(), "point"),
+        );
+        format!("  {}\n", style.paint(Paint::Doubtful, &line))
     }
 
     /// Evenly picked, the first and the last among them.

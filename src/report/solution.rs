@@ -5,6 +5,7 @@
 use num_traits::ToPrimitive;
 use serde::Serialize;
 
+use super::cautions::{self, CautionJson};
 use super::curve::{CurveJson, Traced};
 use super::expectation::verdict;
 use super::sheet::{Ledger, Sheet};
@@ -62,6 +63,7 @@ struct Answer<'a> {
     balances: Vec<SheetJson>,
     expectations: Vec<Expectation<'a>>,
     curves: Vec<CurveJson<'a>>,
+    cautions: Vec<CautionJson<'a>>,
 }
 
 #[derive(Serialize)]
@@ -215,6 +217,7 @@ fn answer<'a>(
             })
             .collect(),
         curves: curves.iter().map(|traced| traced.json(problem)).collect(),
+        cautions: cautions::json(outcome),
     }
 }
 

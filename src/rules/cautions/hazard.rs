@@ -92,3 +92,47 @@ pub mod ammonia {
         }
     }
 }
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    /// The published limits, with source and how each was had, copied apart from this file.
+    #[test]
+    fn thresholds_are_the_published_ones() {
+        let text = include_str!("../../../tests/reference/hazards.json");
+        let published: serde_json::Value = serde_json::from_str(text).unwrap();
+        let air = |formula: &str, body: &str, kind: &str| {
+            let all = published["air"].as_array().unwrap();
+            let found = all.iter().find(|entry| {
+                entry["formula"] == formula
+                    && entry["body"] == body
+                    && entry["kind"].as_str().unwrap().starts_with(kind)
+            });
+            found.unwrap()["ppm"].as_f64().unwrap()
+        };
+        let ppm = |limits: &[AirLimit]| limits.iter().map(|limit| limit.ppm).collect::<Vec<_>>();
+        for (formula, kind, limits) in [
+            ("H2S", "C", &HYDROGEN_SULFIDE),
+            ("HCN", "STEL", &HYDROGEN_CYANIDE),
+            ("SO2", "STEL", &SULFUR_DIOXIDE),
+            ("Cl2", "C", &CHLORINE),
+        ] {
+            let known = [air(formula, "NIOSH REL", kind), air(formula, "NIOSH IDLH", "IDLH")];
+            assert_eq!(ppm(limits), known, "{formula}");
+        }
+        assert_eq!(ppm(&AMMONIA), [air("NH3", "NIOSH IDLH", "IDLH")]);
+        let ph = |id: &str| {
+            let all = published["ph"].as_array().unwrap();
+            let entry = all.iter().find(|entry| entry["id"] == id).unwrap();
+            let number = |key: &str, at: usize| {
+                entry[key].as_f64().or_else(|| entry["range"][at].as_f64()).unwrap()
+            };
+            (number("low_at_or_below", 0), number("high_at_or_above", 1))
+        };
+        assert_eq!(CORROSIVE_WASTE, ph("rcra_corrosive"));
+        assert_eq!(CORROSIVE_TO_SKIN, ph("clp_skin_corrosive"));
+        assert_eq!(REACTIVE_WASTE, ph("cyanide_sulfide_reactive"));
+        assert_eq!(DRINKING_WATER, ph("us_secondary_drinking"));
+    }
+}

@@ -46,6 +46,7 @@ fn instead(what: &str) -> &'static str {
             "hold the ion that the solid sets, as in `hold {Ca^2+} = 1e-4`, \
              and look at the saturation index"
         }
+        "curve over blend" => "write a case for each share that matters",
         _ => "try doses with `add`, one in each case, and state the target with `expect`",
     }
 }

@@ -1,5 +1,5 @@
 //! Curves: every point has the answer that the problem has there by itself, found from a
-//! cold start.
+//! cold start, and published values are met along the way.
 
 #[path = "equilibrium_support/mod.rs"]
 mod equilibrium_support;
@@ -17,6 +17,7 @@ use lyate::problem::curve::{Curve, Sweep, at};
 use lyate::problem::files::Disk;
 use lyate::problem::import::Imports;
 use lyate::problem::model::{AmountSource, Problem};
+use lyate::report::editor::hover;
 use lyate::rules::check::{Checked, Surroundings, check};
 use lyate::text::tree::Document;
 
@@ -246,6 +247,32 @@ curve over temperature from 10 to 40 °C, 4 points
 
     let cancelled = AtomicBool::new(true);
     assert!(matches!(along(&problem, &problem.curves[0], &cancelled), Err(Failure::Cancelled)));
+}
+
+#[test]
+fn pointing_at_a_curve_tells_its_ends() {
+    let text = AMMONIA.to_owned()
+        + "curve over NaOH from 0 to 4 mmol/L\ncurve over pH from 4 to 10, 7 points\n";
+    let checked = checked(None, text.clone());
+    let told = |at: &str| {
+        let offset = text.find(at).expect("the words are in the text");
+        hover(&checked, offset).map(|hover| (text[hover.range].to_owned(), hover.markdown))
+    };
+    let (range, words) = told("over NaOH").expect("a hover");
+    assert_eq!(range, "curve over NaOH from 0 to 4 mmol/L");
+    let lines: Vec<&str> = words.lines().filter(|line| !line.is_empty()).collect();
+    assert_eq!(lines[0], "**curve over NaOH** · 101 points");
+    let solve_it = |text: &str| {
+        let answer = solve(&build::system(&problem(text)), None, &GO_ON).expect("an answer");
+        format!("pH {:.3}", answer.ph())
+    };
+    assert_eq!(lines[1], format!("at 0 mmol/L: {}", solve_it(AMMONIA)));
+    let dosed = solve_it(&format!("{AMMONIA}add NaOH 4 mmol/L\n"));
+    assert_eq!(lines[2], format!("at 4 mmol/L: {dosed}"));
+    let (_, words) = told("over pH").expect("a hover");
+    assert!(words.contains("at pH 4: ionic strength") && words.contains("7 points"), "{words}");
+    // The reagent's name tells of the reagent.
+    assert!(told("NaOH from").expect("a hover").1.contains("g/mol"));
 }
 
 /// R. P. Trussell, J. Fish. Res. Board Can. 29, 1505 (1972), percent of ammonia that is NH3
