@@ -7,6 +7,7 @@ use clap::{Parser, Subcommand};
 mod check;
 mod chosen;
 mod derive;
+mod draw;
 mod explain;
 mod files;
 mod library;
@@ -35,6 +36,7 @@ enum Command {
     Check(check::Arguments),
     Solve(solve::Arguments),
     Derive(derive::Arguments),
+    Draw(draw::Arguments),
     Explain(explain::Arguments),
     Library(library::Arguments),
     Serve(serve::Arguments),
@@ -46,6 +48,7 @@ pub fn run() -> ExitCode {
         Command::Check(arguments) => reply::give(check::run(&arguments)),
         Command::Solve(arguments) => reply::give(solve::run(&arguments)),
         Command::Derive(arguments) => reply::give(derive::run(&arguments)),
+        Command::Draw(arguments) => reply::give(draw::run(&arguments)),
         Command::Explain(arguments) => reply::give(explain::run(&arguments)),
         Command::Library(arguments) => reply::give(library::run(&arguments)),
         Command::Serve(arguments) => serve::run(&arguments),

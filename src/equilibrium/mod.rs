@@ -9,6 +9,7 @@ pub mod confidence;
 mod coordinates;
 pub mod curve;
 pub mod derivative;
+pub mod diagram;
 mod direction;
 pub mod dominance;
 mod exact;

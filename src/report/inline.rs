@@ -3,6 +3,9 @@
 
 use std::ops::Range;
 
+use super::picture::Kind;
+use super::picture::theme::Theme;
+
 /// A few words shown after a place in the text.
 #[derive(Clone, Debug, PartialEq)]
 pub struct Hint {
@@ -18,6 +21,41 @@ pub struct Hint {
 pub struct Hover {
     pub range: Range<usize>,
     pub markdown: String,
+}
+
+/// A picture that may be asked for, as an editor offers it.
+#[derive(Clone, Debug, PartialEq)]
+pub struct Offer {
+    pub title: String,
+    pub wish: PictureWish,
+}
+
+/// What a picture is to show. Whatever is left out is as the command line has it.
+#[derive(Clone, Debug, Default, PartialEq, serde::Deserialize, serde::Serialize)]
+pub struct PictureWish {
+    #[serde(skip_serializing_if = "Option::is_none")]
+    pub picture: Option<Kind>,
+    /// The title of the case; the first problem of the file where there is none.
+    #[serde(skip_serializing_if = "Option::is_none")]
+    pub case: Option<String>,
+    /// The component, reagent, solid or quantity that it is about.
+    #[serde(skip_serializing_if = "Option::is_none")]
+    pub of: Option<String>,
+    #[serde(skip_serializing_if = "Option::is_none")]
+    pub theme: Option<Theme>,
+    /// Pixels.
+    #[serde(skip_serializing_if = "Option::is_none")]
+    pub width: Option<u32>,
+    #[serde(skip_serializing_if = "Option::is_none")]
+    pub height: Option<u32>,
+}
+
+/// A picture that was drawn.
+#[derive(Clone, Debug, PartialEq, serde::Serialize)]
+pub struct Picture {
+    pub title: String,
+    /// A complete SVG document.
+    pub svg: String,
 }
 
 /// An entry of the outline.

@@ -1,4 +1,4 @@
-//! How it is told: terminal text, JSON, SARIF, JUnit, and an editor's inline words.
+//! How it is told: terminal text, JSON, SARIF, JUnit, pictures, and an editor's inline words.
 
 pub mod answer;
 pub mod balance;
@@ -13,6 +13,7 @@ pub mod junit;
 pub mod library;
 pub mod library_json;
 pub mod page;
+pub mod picture;
 pub mod sarif;
 pub mod sheet;
 pub mod sheet_json;

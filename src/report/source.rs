@@ -75,31 +75,34 @@ impl FileReport {
     /// The problems that the file states: its base, unless only its cases complete it, and
     /// its cases.
     pub fn problems(&self) -> Vec<Stated<'_>> {
-        let Some(checked) = self.checked() else { return Vec::new() };
-        let open_base = self.is_open_base();
-        checked
-            .outcomes
-            .iter()
-            .enumerate()
-            .filter(|(_, outcome)| !matches!(outcome.state, State::NothingStated))
-            .filter(|(section, _)| *section > 0 || !open_base)
-            .map(|(section, outcome)| Stated {
-                section,
-                case: case_title(&checked.document, section),
-                outcome,
-            })
-            .collect()
+        self.checked().map(problems).unwrap_or_default()
     }
+}
 
-    /// Whether the base leaves amounts to its cases: nothing is wrong with it, and yet it
-    /// cannot be solved by itself.
-    fn is_open_base(&self) -> bool {
-        let Some(checked) = self.checked() else { return false };
-        let Some((base, cases)) = checked.outcomes.split_first() else { return false };
-        matches!(base.state, State::NotWellPosed)
-            && !cases.is_empty()
-            && !self.findings.iter().any(|f| f.case.is_none() && f.severity == Severity::Error)
-    }
+/// The problems that a checked document states.
+pub fn problems(checked: &Checked) -> Vec<Stated<'_>> {
+    let open_base = is_open_base(checked);
+    checked
+        .outcomes
+        .iter()
+        .enumerate()
+        .filter(|(_, outcome)| !matches!(outcome.state, State::NothingStated))
+        .filter(|(section, _)| *section > 0 || !open_base)
+        .map(|(section, outcome)| Stated {
+            section,
+            case: case_title(&checked.document, section),
+            outcome,
+        })
+        .collect()
+}
+
+/// Whether the base leaves amounts to its cases: nothing is wrong with it, and yet it
+/// cannot be solved by itself.
+fn is_open_base(checked: &Checked) -> bool {
+    let Some((base, cases)) = checked.outcomes.split_first() else { return false };
+    matches!(base.state, State::NotWellPosed)
+        && !cases.is_empty()
+        && !checked.findings.iter().any(|f| f.case.is_none() && f.severity == Severity::Error)
 }
 
 /// The title of a case; none for the base.

@@ -8,7 +8,8 @@ use tower_lsp::lsp_types::*;
 use super::convert::Positions;
 use super::diagnostics::diagnostic;
 use super::generation::Checked;
-use super::settings::{FIX_ALL, Settings};
+use super::pictures;
+use super::settings::{DRAW_ACTION, FIX_ALL, Settings};
 use crate::rules::finding::{Fix, LocatedFinding};
 
 /// What may be done in a range.
@@ -56,6 +57,15 @@ pub fn actions(
                 ..Default::default()
             });
         }
+    }
+    // A client that shows no files would draw for nobody.
+    if settings.show_document && wanted(params, &DRAW_ACTION) {
+        actions.extend(checked.view.pictures(range).into_iter().map(|offer| CodeAction {
+            title: offer.title.clone(),
+            kind: Some(DRAW_ACTION),
+            command: Some(pictures::command(offer, &checked.uri)),
+            ..Default::default()
+        }));
     }
     actions.into_iter().map(CodeActionOrCommand::CodeAction).collect()
 }

@@ -8,7 +8,7 @@ use std::sync::Arc;
 use std::sync::atomic::AtomicBool;
 
 use crate::report::inline::{Hint, Hover};
-pub use crate::report::inline::{Symbol, SymbolKind};
+pub use crate::report::inline::{Offer, Picture, PictureWish, Symbol, SymbolKind};
 use crate::rules::finding::LocatedFinding;
 
 /// Makes views of texts. Called from several threads at once, one call per document.
@@ -54,6 +54,15 @@ pub trait View: Send + Sync + Any {
 
     /// The document's outline, in the text's order.
     fn symbols(&self) -> Vec<Symbol>;
+
+    /// The pictures that are offered in a range.
+    fn pictures(&self, range: Range<usize>) -> Vec<Offer>;
+
+    /// A picture; `file` names a problem without a title. May take a while.
+    ///
+    /// # Errors
+    /// In words for the user: why it cannot be drawn.
+    fn picture(&self, file: &str, wish: &PictureWish) -> Result<Picture, String>;
 
     /// The files that were read, or looked for and not found, directly or through others.
     fn imports(&self) -> &[PathBuf];

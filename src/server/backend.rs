@@ -5,8 +5,8 @@ use std::panic::{AssertUnwindSafe, catch_unwind};
 use std::sync::Arc;
 
 use serde::Serialize;
-use serde_json::to_value;
 use serde_json::value::to_raw_value;
+use serde_json::{Value, to_value};
 use tokio::task::spawn_blocking;
 use tower_lsp::jsonrpc::{Error, ErrorCode, Result};
 use tower_lsp::lsp_types::*;
@@ -16,7 +16,7 @@ use super::documents::Missing;
 use super::generation::Checked;
 use super::session::Session;
 use super::settings::Settings;
-use super::{actions, diagnostics, hints, hover, order, symbols};
+use super::{actions, diagnostics, hints, hover, order, pictures, symbols};
 
 pub struct Backend {
     session: Arc<Session>,
@@ -116,6 +116,23 @@ impl LanguageServer for Backend {
     async fn code_action(&self, params: CodeActionParams) -> Result<Option<CodeActionResponse>> {
         let settings = self.session.settings();
         self.answer(|checked| actions::actions(checked, &params, settings)).await?;
+        Ok(None)
+    }
+
+    async fn execute_command(&self, params: ExecuteCommandParams) -> Result<Option<Value>> {
+        let wish = pictures::read(params)?;
+        let Some(snapshot) = order::snapshot() else {
+            return Err(pictures::refusal("the file is not open in the editor".into()));
+        };
+        let documents = &self.session.documents;
+        let checked = documents.checked(snapshot).await.map_err(missing)?;
+        let uri = checked.uri.clone();
+        let drawn = spawn_blocking(move || pictures::draw(&checked, &wish)).await;
+        let picture = drawn.map_err(|_| Error::internal_error())?.map_err(pictures::refusal)?;
+        if self.session.settings().show_document {
+            pictures::show(&self.session, &uri, &picture);
+        }
+        order::write(to_raw_value(&picture).map_err(drop))?;
         Ok(None)
     }
 

@@ -5,7 +5,7 @@ use std::ops::Range;
 use std::path::{Path, PathBuf};
 use std::sync::Arc;
 
-use super::analysis::{Analyser, Request, View};
+use super::analysis::{Analyser, Offer, Picture, PictureWish, Request, View};
 use crate::problem::files::{Disk, Files, ReadProblem};
 use crate::problem::import::Imports;
 use crate::report::editor;
@@ -80,6 +80,14 @@ impl View for Seen {
 
     fn symbols(&self) -> Vec<Symbol> {
         editor::outline(&self.0)
+    }
+
+    fn pictures(&self, range: Range<usize>) -> Vec<Offer> {
+        editor::offers(&self.0, &range)
+    }
+
+    fn picture(&self, file: &str, wish: &PictureWish) -> Result<Picture, String> {
+        editor::picture(&self.0, file, wish)
     }
 
     fn imports(&self) -> &[PathBuf] {

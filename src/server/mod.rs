@@ -21,6 +21,7 @@ mod hints;
 mod hover;
 mod order;
 mod outbox;
+mod pictures;
 mod place;
 mod session;
 mod settings;
@@ -29,8 +30,8 @@ mod symbols;
 
 use std::io::Write;
 use std::process::ExitCode;
-use std::sync::Arc;
 use std::sync::atomic::Ordering;
+use std::sync::{Arc, PoisonError};
 use std::time::Duration;
 
 use tokio::io::{AsyncRead, AsyncWrite};
@@ -101,6 +102,8 @@ pub async fn serve(
         LspService::new(|client| Backend::new(Session::new(analyser, client, outbox)));
     let session = service.inner().session().clone();
     connection::serve(&session, service, socket, outgoing, reader, writer).await;
+    // Workers may hold the session a little longer.
+    drop(session.pictures.lock().unwrap_or_else(PoisonError::into_inner).take());
     if session.shut_down.load(Ordering::Relaxed) { Ending::Orderly } else { Ending::Abrupt }
 }
 

@@ -136,7 +136,8 @@ impl InOrder {
     }
 
     fn snapshot(&self, params: &Value) -> Option<Snapshot> {
-        let uri = params.get("textDocument")?.get("uri")?.as_str()?;
+        let of_command = || params.pointer("/arguments/0/uri");
+        let uri = params.pointer("/textDocument/uri").or_else(of_command)?.as_str()?;
         self.session.documents.snapshot(&Url::parse(uri).ok()?)
     }
 

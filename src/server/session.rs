@@ -7,6 +7,7 @@ use std::path::PathBuf;
 use std::sync::atomic::{AtomicBool, AtomicU64, Ordering};
 use std::sync::{Arc, Mutex, OnceLock, PoisonError};
 
+use tempfile::TempDir;
 use tokio::runtime::Handle;
 use tokio::sync::Notify;
 use tower_lsp::Client;
@@ -29,6 +30,8 @@ pub struct Session {
     settings: OnceLock<Settings>,
     roots: Mutex<Arc<[PathBuf]>>,
     refresh: Notify,
+    /// The folder of pictures that were shown; it goes with the session.
+    pub pictures: Mutex<Option<TempDir>>,
     reports: AtomicU64,
     pub shut_down: AtomicBool,
 }
@@ -45,6 +48,7 @@ impl Session {
             settings: OnceLock::new(),
             roots: Mutex::new(Arc::new([])),
             refresh: Notify::new(),
+            pictures: Mutex::default(),
             reports: AtomicU64::new(1),
             shut_down: AtomicBool::new(false),
         })

@@ -12,6 +12,11 @@ pub const SOURCE: &str = "lyate";
 /// The code action that applies every safe fix.
 pub const FIX_ALL: CodeActionKind = CodeActionKind::new("source.fixAll.lyate");
 
+/// The command that draws a problem.
+pub const DRAW: &str = "lyate.draw";
+/// The code action that asks for it.
+pub const DRAW_ACTION: CodeActionKind = CodeActionKind::new("source.draw.lyate");
+
 /// What the client can do.
 #[derive(Clone, Debug, Default, PartialEq)]
 pub struct Settings {
@@ -26,6 +31,8 @@ pub struct Settings {
     pub document_changes: bool,
     pub code_action_literals: bool,
     pub watch: bool,
+    /// The client shows a file that it is told of.
+    pub show_document: bool,
 }
 
 impl Settings {
@@ -55,6 +62,7 @@ impl Settings {
             document_changes: is("workspace/workspaceEdit/documentChanges"),
             code_action_literals: client("textDocument/codeAction/codeActionLiteralSupport")
                 .is_some_and(Value::is_object),
+            show_document: is("window/showDocument/support"),
             watch: is("workspace/didChangeWatchedFiles/dynamicRegistration"),
         }
     }
@@ -80,9 +88,13 @@ impl Settings {
             inlay_hint_provider: Some(OneOf::Left(true)),
             code_action_provider: self.code_action_literals.then(|| {
                 CodeActionProviderCapability::Options(CodeActionOptions {
-                    code_action_kinds: Some(vec![CodeActionKind::QUICKFIX, FIX_ALL]),
+                    code_action_kinds: Some(self.action_kinds()),
                     ..Default::default()
                 })
+            }),
+            execute_command_provider: Some(ExecuteCommandOptions {
+                commands: vec![DRAW.into()],
+                ..Default::default()
             }),
             diagnostic_provider: self.pull.then(|| {
                 DiagnosticServerCapabilities::Options(DiagnosticOptions {
@@ -101,6 +113,12 @@ impl Settings {
             }),
             ..Default::default()
         }
+    }
+
+    fn action_kinds(&self) -> Vec<CodeActionKind> {
+        let mut kinds = vec![CodeActionKind::QUICKFIX, FIX_ALL];
+        kinds.extend(self.show_document.then_some(DRAW_ACTION));
+        kinds
     }
 
     /// The watch on problem files that a client is asked to keep.

@@ -12,7 +12,9 @@ use std::time::{Duration, Instant};
 
 use lyate::report::inline::{Hint, Hover};
 use lyate::rules::finding::{Finding, LocatedFinding, Severity};
-use lyate::server::analysis::{Analyser, Request, Symbol, SymbolKind, View};
+use lyate::server::analysis::{
+    Analyser, Offer, Picture, PictureWish, Request, Symbol, SymbolKind, View,
+};
 
 /// How long `slow` takes where nobody cancels it.
 pub const SLOW: Duration = Duration::from_secs(20);
@@ -179,6 +181,25 @@ impl View for WordsView {
                 children: Vec::new(),
             })
             .collect()
+    }
+
+    fn pictures(&self, range: Range<usize>) -> Vec<Offer> {
+        let drawn = |(at, word): &(Range<usize>, &str)| *word == "draw" && at.end >= range.start;
+        let offer = |_| Offer {
+            title: "Draw the words".into(),
+            wish: PictureWish { case: Some("all".into()), ..PictureWish::default() },
+        };
+        words(&self.text).filter(drawn).map(offer).collect()
+    }
+
+    fn picture(&self, file: &str, wish: &PictureWish) -> Result<Picture, String> {
+        match words(&self.text).count() {
+            0 => Err("there are no words to draw".into()),
+            count => Ok(Picture {
+                title: format!("{file}, {}", wish.case.as_deref().unwrap_or("none")),
+                svg: format!("<svg><text>{count}</text></svg>"),
+            }),
+        }
     }
 
     fn imports(&self) -> &[PathBuf] {

@@ -4,7 +4,9 @@
 mod hints;
 mod hover;
 mod outline;
+mod picture;
 
 pub use hints::hints;
 pub use hover::hover;
 pub use outline::outline;
+pub use picture::{offers, picture};

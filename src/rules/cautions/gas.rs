@@ -95,7 +95,7 @@ impl ToxicGas {
             let henry = henry * (slope * (1.0 / problem.kelvin - 1.0 / 298.15)).exp();
             let activity = match self.dissolved_in(problem) {
                 Some(species) => solved.ln_activity(problem, species)?.exp(),
-                None => self.from_hypochlorite(problem, solved)?,
+                None => self.chlorine_over(problem, solved)?,
             };
             Some(activity / henry)
         })?;
@@ -103,7 +103,7 @@ impl ToxicGas {
     }
 
     /// Activity of dissolved chlorine over hypochlorous acid and chloride.
-    fn from_hypochlorite(&self, problem: &Problem, solved: &Solved) -> Option<f64> {
+    fn chlorine_over(&self, problem: &Problem, solved: &Solved) -> Option<f64> {
         if self.kin != "hypochlorite" {
             return None;
         }

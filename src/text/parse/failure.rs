@@ -52,7 +52,7 @@ expectations! {
     Stock "a stock such as 30 % NaOH",
     Density "`density`",
     Share "a share such as 70 % of \"river.lyate\"",
-    ExpectClause "`confidence`",
+    Confidence "`confidence`",
     Clause "a clause such as pKa = 9.25",
     Equals "`=`",
     Relation "`=`, `<`, `<=`, `>`, `>=` or `between`",

@@ -130,7 +130,7 @@ enum Clause {
 /// `, confidence 95 %` and `, source "…"`, each once and in either order.
 fn closing<'s>() -> impl Rule<'s, (Option<Quantity>, Option<Name>)> {
     let confidence =
-        word("confidence", Expect::ExpectClause).ignore_then(quantity()).map(Clause::Confidence);
+        word("confidence", Expect::Confidence).ignore_then(quantity()).map(Clause::Confidence);
     let clause = confidence.or(source().map(Clause::Source));
     let clauses = sign(Token::Comma, Expect::Comma).ignore_then(clause).repeated();
     clauses.collect::<Vec<_>>().validate(|clauses, _, emitter| {
