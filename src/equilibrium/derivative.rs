@@ -13,7 +13,7 @@ use super::sensitivity::{Response, Sensitivity, buffer_capacity};
 use super::solve::needs_activity;
 use super::system::{Activity, Answer, IonicStrength, System};
 use crate::problem::input::Input;
-use crate::problem::model::{Problem, Sought};
+use crate::problem::model::{Presence, Problem, Sought};
 use crate::problem::scope::WATER;
 
 /// A solved problem, ready to be asked how its answer moves.
@@ -49,7 +49,9 @@ impl<'a> Derivatives<'a> {
     /// Of an answer to this very problem. None where the equations leave the state
     /// undetermined to first order.
     pub fn new(problem: &'a Problem, solved: &'a Solved) -> Option<Self> {
-        if problem.held.len() != solved.system.fixed.len() {
+        let excess = problem.solids_that_are(Presence::Excess).count();
+        let formed = solved.formed.iter().flatten().count();
+        if problem.held.len() + excess + formed != solved.system.fixed.len() {
             return None;
         }
         let sensitivity = Sensitivity::new(&solved.system, &solved.answer)?;
