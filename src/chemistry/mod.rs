@@ -1,4 +1,4 @@
-//! What matter is: elements, formulas, quantities and units, water, activity.
+//! What matter is: elements, formulas, quantities, units and stocks, water, activity.
 
 pub mod activity;
 pub mod constant;
@@ -6,5 +6,6 @@ pub mod element;
 pub mod formula;
 pub mod ion_size;
 pub mod quantity;
+pub mod stock;
 pub mod unit;
 pub mod water;

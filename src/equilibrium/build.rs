@@ -14,6 +14,7 @@ use crate::chemistry::ion_size::ion_size;
 use crate::problem::model::{Held, HeldWhat, Problem};
 use crate::problem::scope::PROTON;
 
+/// Per litre, or kilogram of water, of the mixture.
 pub fn system(problem: &Problem) -> System {
     let scope = &problem.scope;
     let species = scope
@@ -32,8 +33,9 @@ pub fn system(problem: &Problem) -> System {
             },
         })
         .collect();
+    let dilution = problem.dilution();
     let mut totals: Vec<f64> =
-        problem.amounts.iter().map(|amount| amount.total.unwrap_or(0.0)).collect();
+        problem.amounts.iter().map(|amount| amount.total.unwrap_or(0.0) / dilution).collect();
     totals[PROTON] = -(1..totals.len())
         .map(|j| f64::from(scope.components[j].formula.charge) * totals[j])
         .sum::<f64>();

@@ -61,6 +61,8 @@ pub fn resolve(statements: &[Written], merging: Vec<Defect>, scope: Arc<Scope>) 
         amounts: Vec::new(),
         reagents: Vec::new(),
         held: Vec::new(),
+        targets: Vec::new(),
+        found: None,
         balances: Vec::new(),
         expectations: Vec::new(),
         log_k: Vec::new(),
@@ -74,7 +76,7 @@ pub fn resolve(statements: &[Written], merging: Vec<Defect>, scope: Arc<Scope>) 
     held::read(&mut case, &mut problem);
     amounts::close(&mut case, &mut problem);
     problem.balances = written::read(&mut case, &problem);
-    problem.expectations = expect::read(&mut case);
+    problem.expectations = expect::read(&mut case, &problem);
     // A case has only its own to add to what the base was told.
     let is_case = statements.iter().any(|written| written.part == Part::Case);
     for written in statements.iter().filter(|w| !is_case || w.part == Part::Case) {
@@ -87,9 +89,7 @@ pub fn resolve(statements: &[Written], merging: Vec<Defect>, scope: Arc<Scope>) 
             Statement::Precipitate { .. } => "precipitate",
             Statement::Saturate { .. } => "saturate with",
             Statement::Curve { .. } => "curve",
-            Statement::Hold { by: Some(_), .. } => "hold … by",
             Statement::Blend { .. } => "blend",
-            Statement::Add { stock: Some(_), .. } => "add … of",
             Statement::Expect { confidence: Some(_), .. } => "confidence",
             _ => continue,
         };

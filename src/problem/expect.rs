@@ -3,27 +3,20 @@
 use super::case::CaseResolver;
 use super::defect::{DefectKind, Expected};
 use super::effective::{Written, subject_key};
-use super::model::{Expectation, Limit, ShownUnit, Sought};
+use super::model::{Expectation, Limit, Problem, ShownUnit, Sought};
 use super::quantity::Read;
 use crate::chemistry::formula::{Formula, Phase};
 use crate::text::span::Spanned;
 use crate::text::tree::{Name, Quantity, Relation, Statement, Subject};
 
-pub fn read(case: &mut CaseResolver) -> Vec<Expectation> {
+pub fn read(case: &mut CaseResolver, problem: &Problem) -> Vec<Expectation> {
     let mut expectations = Vec::new();
     for written in case.statements {
         let Statement::Expect { subject, relation, source, .. } = written.statement() else {
             continue;
         };
-        let Some(mut sought) = sought(case, written, subject) else { continue };
-        let formula = match sought {
-            Sought::Concentration(species) => Some(case.scope.species[species].clone()),
-            Sought::Total(component) => Some(case.scope.components[component].formula.clone()),
-            _ => None,
-        };
-        let expected = takes(sought);
-        let mut value =
-            |quantity: &Quantity| read_as(case, written, quantity, expected, formula.as_deref());
+        let Some(mut sought) = sought(case, problem, written, subject) else { continue };
+        let mut value = |quantity: &Quantity| value(case, problem, written, quantity, sought);
         let limit = match relation {
             Relation::Equal(quantity) => value(quantity).map(|read| {
                 let tolerance = read
@@ -69,6 +62,26 @@ pub fn read(case: &mut CaseResolver) -> Vec<Expectation> {
     expectations
 }
 
+/// A value that a quantity is held against, in its base units.
+pub(super) fn value(
+    case: &mut CaseResolver,
+    problem: &Problem,
+    written: &Written,
+    quantity: &Quantity,
+    sought: Sought,
+) -> Option<Read> {
+    let formula = match sought {
+        Sought::Concentration(species) => Some(case.scope.species[species].clone()),
+        Sought::Total(component) => Some(case.scope.components[component].formula.clone()),
+        Sought::Dose(reagent) => {
+            let reagent = &problem.reagents[reagent];
+            return case.dose(written, quantity, &reagent.formula, reagent.stock.as_deref());
+        }
+        _ => None,
+    };
+    read_as(case, written, quantity, takes(sought), formula.as_deref())
+}
+
 fn takes(sought: Sought) -> Expected {
     match sought {
         Sought::Ph
@@ -79,7 +92,8 @@ fn takes(sought: Sought) -> Expected {
         Sought::Concentration(_)
         | Sought::Total(_)
         | Sought::IonicStrength
-        | Sought::BufferCapacity => Expected::Concentration,
+        | Sought::BufferCapacity
+        | Sought::Dose(_) => Expected::Concentration,
         Sought::Pressure(_) => Expected::Pressure,
         Sought::Fraction { .. } => Expected::Share,
         Sought::Alkalinity => Expected::Equivalents,
@@ -102,8 +116,9 @@ fn read_as(
     }
 }
 
-fn sought(
+pub(super) fn sought(
     case: &mut CaseResolver,
+    problem: &Problem,
     written: &Written,
     subject: &Spanned<Subject>,
 ) -> Option<Sought> {
@@ -167,9 +182,15 @@ fn sought(
         Subject::IonicStrength => Sought::IonicStrength,
         Subject::BufferCapacity => Sought::BufferCapacity,
         Subject::ChargeImbalance => Sought::ChargeImbalance { equivalents: false },
-        Subject::Dose(_) => {
-            case.resolver.report(written.whole(), DefectKind::NotYetSupported { what: "dose" });
-            return None;
+        Subject::Dose(name) => {
+            let formula = case.resolver.formula(written, name)?;
+            let known = problem.reagents.iter().position(|r| r.formula.name == formula.name);
+            let Some(reagent) = known else {
+                let kind = DefectKind::NotAdded { name: formula.name.clone() };
+                case.resolver.report(written.place(name.span), kind);
+                return None;
+            };
+            Sought::Dose(reagent)
         }
     })
 }

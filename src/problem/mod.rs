@@ -24,5 +24,7 @@ pub mod scope;
 pub mod sets;
 pub mod sparse;
 mod split;
+mod stock;
 pub mod stoichiometry;
+mod target;
 mod written;

@@ -1,5 +1,6 @@
 //! An answer as text for a terminal.
 
+use super::dose;
 use super::expectation::{asked, value_words, verdict};
 use super::figures::{
     celsius, concentration, decimals, log10_of_exp, percent, scale_unit, scientific, significant,
@@ -32,6 +33,7 @@ pub fn answer(
     text += &main_figures(problem, solved, style);
     let ledger = Ledger::new(stated.outcome);
     for (title, body) in [
+        ("Doses", dose::table(problem, style)),
         ("Dissolved", species(problem, solved, style)),
         ("Components", components(problem, solved, style)),
         ("Put in and held", put_in(problem, style)),
@@ -169,6 +171,10 @@ fn put_in(problem: &Problem, style: Style) -> String {
     let mut table = Table::new(&[("", Side::Left), ("", Side::Left)]);
     for reagent in &problem.reagents {
         let amount = concentration(reagent.amount, problem.scale);
+        let amount = match dose::stock_words(problem, reagent) {
+            Some(stock) => format!("{amount}, {stock}"),
+            None => amount,
+        };
         table.row([reagent.formula.name.as_str().into(), amount.into()]);
     }
     for held in &problem.held {

@@ -4,6 +4,7 @@ pub mod answer;
 pub mod balance;
 pub mod check_json;
 pub mod derivation;
+pub mod dose;
 pub mod editor;
 pub mod inline;
 pub mod junit;

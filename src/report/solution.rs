@@ -5,6 +5,7 @@
 use num_traits::ToPrimitive;
 use serde::Serialize;
 
+use super::dose::{self, DoseJson};
 use super::expectation::verdict;
 use super::sheet::{Ledger, Sheet};
 use super::sheet_json::SheetJson;
@@ -57,7 +58,7 @@ struct Answer<'a> {
     components: Vec<Component<'a>>,
     solids: Vec<Solid<'a>>,
     gases: Vec<Gas<'a>>,
-    doses: Vec<Dose<'a>>,
+    doses: Vec<DoseJson>,
     balances: Vec<SheetJson>,
     expectations: Vec<Expectation<'a>>,
 }
@@ -102,12 +103,6 @@ struct Gas<'a> {
 }
 
 #[derive(Serialize)]
-struct Dose<'a> {
-    reagent: &'a str,
-    amount: f64,
-}
-
-#[derive(Serialize)]
 struct Expectation<'a> {
     quantity: &'a str,
     #[serde(skip_serializing_if = "Option::is_none")]
@@ -144,7 +139,7 @@ pub fn status(state: &State) -> &'static str {
     match state {
         State::Solved(_) => "solved",
         State::NothingStated | State::NotWellPosed => "not-well-posed",
-        State::Failed(Failure::Infeasible { .. }) => "no-solution",
+        State::Failed(Failure::Infeasible { .. }) | State::OutOfReach(_) => "no-solution",
         State::Failed(Failure::Dependent { .. }) => "not-well-posed",
         State::Failed(Failure::NotConverged { .. } | Failure::Cancelled) => "not-converged",
     }
@@ -189,7 +184,7 @@ fn answer<'a>(
                 partial_pressure_atm: value(Sought::Pressure(s)),
             })
             .collect(),
-        doses: Vec::new(),
+        doses: dose::json(problem),
         balances: sheets.iter().map(Sheet::json).collect(),
         expectations: problem
             .expectations

@@ -3,7 +3,7 @@
 
 use super::figures::{decimals, percent, scale_unit, significant};
 use crate::equilibrium::quantities::Solved;
-use crate::problem::model::{Expectation, Limit, Problem, Sought};
+use crate::problem::model::{Expectation, Limit, Problem, ShownUnit, Sought};
 use crate::rules::check::Checked;
 use crate::text::span::Part;
 use crate::text::tree::Statement;
@@ -45,10 +45,20 @@ pub fn asked(checked: &Checked, section: usize, expectation: &Expectation) -> St
 
 /// `9.321`, `117 mg/L as N`, `62.3 %`.
 pub fn value_words(problem: &Problem, expectation: &Expectation, value: f64) -> String {
-    if let Some(unit) = &expectation.unit {
+    quantity_words(problem, expectation.unit.as_ref(), expectation.sought, value)
+}
+
+/// A quantity in the unit that the file wrote it in.
+pub fn quantity_words(
+    problem: &Problem,
+    unit: Option<&ShownUnit>,
+    sought: Sought,
+    value: f64,
+) -> String {
+    if let Some(unit) = unit {
         return format!("{} {}", significant(value / unit.factor, 4), unit.words);
     }
-    match expectation.sought {
+    match sought {
         Sought::Ph | Sought::Poh | Sought::Pe => decimals(value, 3),
         Sought::SaturationIndex(_) => decimals(value, 2),
         Sought::Fraction { .. } => percent(value),

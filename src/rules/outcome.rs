@@ -9,10 +9,12 @@ use super::context::Context;
 use super::finding::Finding;
 use crate::balance::BalanceKind;
 use crate::equilibrium::build::system;
+use crate::equilibrium::dose::meet;
 use crate::equilibrium::quantities::Solved;
 use crate::equilibrium::several::other_states;
 use crate::equilibrium::solve::solve;
 use crate::equilibrium::system::{Failure, System};
+use crate::equilibrium::target::Missed;
 use crate::equilibrium::weighed::{Balances, Weighed};
 use crate::problem::case::resolve;
 use crate::problem::effective::InForce;
@@ -39,6 +41,8 @@ pub enum State {
     /// Something found wrong has to be put right first.
     NotWellPosed,
     Failed(Failure),
+    /// No amounts meet the targets.
+    OutOfReach(Missed),
 }
 
 impl Outcome {
@@ -64,14 +68,19 @@ impl Outcome {
         near: Option<&Solved>,
         cancel: &AtomicBool,
     ) -> Option<Outcome> {
-        let problem = resolve(&in_force.statements, in_force.defects.clone(), scope);
+        let mut problem = resolve(&in_force.statements, in_force.defects.clone(), scope);
         let state = if !problem.states_problem {
             State::NothingStated
         } else if problem.blocked {
             State::NotWellPosed
         } else {
-            match answer(system(&problem), near, cancel) {
-                Ok(solved) => State::Solved(Box::new(solved)),
+            let solved = if problem.targets.is_empty() {
+                answer(system(&problem), near, cancel).map(|s| State::Solved(Box::new(s)))
+            } else {
+                dosed(&mut problem, near, cancel)
+            };
+            match solved {
+                Ok(state) => state,
                 Err(Failure::Cancelled) => return None,
                 Err(failure) => State::Failed(failure),
             }
@@ -97,21 +106,46 @@ fn answer(system: System, near: Option<&Solved>, cancel: &AtomicBool) -> Result<
     if let Some(near) = near.filter(|near| near.system == system) {
         return Ok(near.clone());
     }
+    let solved = with_others(state(system, near, cancel)?, cancel)?;
+    // Where there are several, the one shown must not hang on what was shown before.
+    if near.is_some() && !solved.others.is_empty() {
+        return self::answer(solved.system, None, cancel);
+    }
+    Ok(solved)
+}
+
+/// A state of a system.
+fn state(system: System, near: Option<&Solved>, cancel: &AtomicBool) -> Result<Solved, Failure> {
     // Only an answer over the same components and species is a place to start from.
-    let start = near.filter(|near| {
-        let rows =
-            |system: &System| (system.totals.len(), system.species.len(), system.fixed.len());
-        rows(&near.system) == rows(&system)
-    });
+    let rows = |system: &System| (system.totals.len(), system.species.len());
+    let start = near.filter(|near| rows(&near.system) == rows(&system));
     let answer = solve(&system, start.map(|near| &near.answer), cancel)?;
-    let others: Vec<(f64, f64)> = match other_states(&system, &answer, cancel) {
+    Ok(Solved { system, answer, others: Vec::new(), dosed: None })
+}
+
+/// With what is known of other states.
+fn with_others(mut solved: Solved, cancel: &AtomicBool) -> Result<Solved, Failure> {
+    solved.others = match other_states(&solved.system, &solved.answer, cancel) {
         Ok(others) => others.iter().map(|other| (other.ph(), other.ionic_strength)).collect(),
         Err(Failure::Cancelled) => return Err(Failure::Cancelled),
         Err(_) => Vec::new(),
     };
-    // Where there are several, the one shown must not hang on what was shown before.
-    if start.is_some() && !others.is_empty() {
-        return self::answer(system, None, cancel);
-    }
-    Ok(Solved { system, answer, others })
+    Ok(solved)
+}
+
+/// Finds the amounts that meet the targets of a problem, and puts them in.
+fn dosed(
+    problem: &mut Problem,
+    near: Option<&Solved>,
+    cancel: &AtomicBool,
+) -> Result<State, Failure> {
+    let found = meet(problem, near, |system, near| state(system, near, cancel))?;
+    Ok(match found {
+        Ok(solved) => {
+            let solved = with_others(solved, cancel)?;
+            problem.put_in(solved.dosed.as_ref().map(|d| d.amounts.clone()).unwrap_or_default());
+            State::Solved(Box::new(solved))
+        }
+        Err(missed) => State::OutOfReach(missed),
+    })
 }

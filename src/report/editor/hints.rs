@@ -1,14 +1,16 @@
 //! Hints: the pH at the problem's name, the dominating form at each component, whether
-//! each balance closes and what it rests on, the value at each expectation.
+//! each balance closes and what it rests on, the value at each expectation, the amount found for each target.
 
 use std::ops::Range;
 
 use crate::balance::written::Verdict;
+use crate::chemistry::quantity::Scale;
 use crate::equilibrium::quantities::Solved;
-use crate::problem::model::{Expectation, Problem};
+use crate::problem::model::{Expectation, Problem, Target};
 use crate::report::balance;
+use crate::report::dose;
 use crate::report::expectation::value_words;
-use crate::report::figures::{concentration, decimals, percent, significant};
+use crate::report::figures::{concentration, decimals, percent, scale_unit, significant};
 use crate::report::inline::Hint;
 use crate::rules::check::Checked;
 use crate::rules::compared::kind;
@@ -99,6 +101,12 @@ fn statement(
                 hints.extend(expected(problem, solved, expectation, offset));
             }
         }
+        Statement::Hold { by: Some(_), .. } => {
+            for (target, amount) in dose::found(problem).filter(|(target, _)| here(&target.at)) {
+                let offset = placed.start + target.by.span.end as usize;
+                hints.push(found(problem, target, amount, offset));
+            }
+        }
         Statement::Balance { .. } => {
             let at = problem.balances.iter().position(|balance| here(&balance.at));
             let offset = placed.start + first_line(&placed.parsed.text);
@@ -136,6 +144,21 @@ fn written_balance(
         text: format!("{head} · {}", balance::rests_on(problem, implied)),
         tooltip: Some(balance::long(problem, implied)),
     })
+}
+
+/// What was found for a target.
+fn found(problem: &Problem, target: &Target, amount: f64, offset: usize) -> Hint {
+    let text = dose::line(problem, target, amount);
+    let per = match problem.scale {
+        Scale::PerLitre => "litre",
+        Scale::PerKilogram => "kilogram",
+    };
+    let tooltip = format!(
+        "{} {} for each {per} of the water treated. Try it on a sample before it is dosed.",
+        significant(amount, 6),
+        scale_unit(problem.scale)
+    );
+    Hint { offset, text, tooltip: Some(tooltip) }
 }
 
 /// The form of a component that holds most of it; none where it has one form only.

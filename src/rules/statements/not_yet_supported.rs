@@ -1,6 +1,6 @@
 //! A statement is part of the language, and this edition cannot solve it yet.
 //!
-//! `precipitate`, `saturate with`, `hold … by` and `curve` are read and checked for
+//! `precipitate`, `saturate with` and `curve` are read and checked for
 //! their writing; solving them comes with a later edition. An amount that such a
 //! statement would decide makes the answer another one, so the problem is not solved
 //! while it stands there.
