@@ -104,7 +104,8 @@ fn goal(problem: &Problem, dosing: &Dosing, target: &Target) -> Goal {
         && matches!(target.sought, Sought::Ph | Sought::Poh)
         && problem.held.iter().all(|held| matches!(held.what, HeldWhat::Pressure { .. }))
         && keeps_to_itself(problem, &unknown(problem, target.unknown), dosing);
-    Goal { wanted: target.wanted, held, logarithmic, single }
+    let slope = target.sought == Sought::BufferCapacity;
+    Goal { wanted: target.wanted, held, logarithmic, slope, single }
 }
 
 /// Whether what a dose brings forms species with protons alone, one of it in each: then, at a

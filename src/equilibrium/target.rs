@@ -84,6 +84,9 @@ pub struct Goal {
     pub held: Option<Fixed>,
     /// Whether the value counts powers of ten.
     pub logarithmic: bool,
+    /// Whether it tells how the state moves, as a buffer capacity does, and so is another one
+    /// while something is held.
+    pub slope: bool,
     /// Whether no more than one amount can meet it, so that the first found is the only one.
     pub single: bool,
 }

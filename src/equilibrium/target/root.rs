@@ -67,7 +67,7 @@ mod tests {
         for (function, root, most) in [
             ((|x| 3.0 - 7.0 * x) as fn(f64) -> f64, 3.0 / 7.0, 4),
             (|x| x * x - 1e-8, 1e-4, 30),
-            (|x| (x / 1.3).ln(), 1.3, 12),
+            (|x| (x / 1.3).ln(), 1.3, 30),
             (|x| (40.0 * (x - 0.7)).exp() - 1.0, 0.7, 40),
         ] {
             let mut looks = 0;

@@ -1,5 +1,5 @@
 //! Several goals at once: Newton over all amounts, from several places; and where that finds
-//! nothing, for two, one inside the other.
+//! nothing, for two, from where the one is met along the other.
 
 use nalgebra::{DMatrix, DVector};
 
@@ -12,6 +12,8 @@ use crate::equilibrium::system::Failure;
 const PLACES: [f64; 3] = [1e-3, 1e-1, 1e-5];
 /// With more goals than this, each amount is the same at the start.
 const MIXED: usize = 3;
+/// So many of the places where one goal is met are tried for both.
+const NEAREST: usize = 12;
 /// Steps of Newton's method from one place.
 const STEPS: u32 = 40;
 
@@ -22,7 +24,7 @@ pub(super) fn find<B: Bench>(
     start: Option<&[f64]>,
 ) -> Result<Search<B::State>, Failure> {
     let count = goals.len();
-    let held = goals.iter().any(|goal| goal.held.is_some());
+    let held = goals.iter().all(|goal| !goal.slope);
     let mut space = Space { bench, dosing, goals, held, near: None, trials: 0 };
     // What is wrong with the water as it is comes first.
     space.near = Some(bench.solve(dosing.system(&vec![0.0; count]), None)?);
@@ -38,13 +40,19 @@ pub(super) fn find<B: Bench>(
             below_zero.get_or_insert(doses);
         }
     }
-    if below_zero.is_none()
-        && count == 2
-        && let Some(doses) = space.nested()?
-    {
-        let doses = space.newton(&doses)?.filter(|d| d.iter().all(|d| *d >= 0.0)).unwrap_or(doses);
-        if let Some(found) = space.met(doses)? {
-            return Ok(found);
+    // Without slopes the equations are all but straight lines, and what led below zero would
+    // lead there again.
+    let straight = goals.iter().all(|goal| !goal.slope);
+    if count == 2 && !(straight && below_zero.is_some()) {
+        for inner in [0, 1] {
+            for place in space.nested(inner)? {
+                if let Some(doses) = space.newton(&place)?
+                    && doses.iter().all(|dose| *dose >= 0.0)
+                    && let Some(found) = space.met(doses)?
+                {
+                    return Ok(found);
+                }
+            }
         }
     }
     Ok(Search::Missed(Missed::Together { amounts: below_zero }))
@@ -175,43 +183,65 @@ impl<B: Bench> Space<'_, B> {
         Ok(good.then(|| Search::Met(Box::new(Met { doses, state, others: Vec::new(), trials }))))
     }
 
-    /// For each amount of the second the first goal is met by the first; along that, the
-    /// second is.
-    fn nested(&mut self) -> Result<Option<Vec<f64>>, Failure> {
-        let [_, second] = &self.dosing.unknowns[..] else { return Ok(None) };
-        let mut marks: Vec<Mark> = Vec::new();
-        for dose in amounts(second) {
-            if let Some(open) = self.inner(dose)?.1 {
-                marks.push((dose, open));
+    /// Places to set out from, the likeliest first: for each of many amounts of one unknown,
+    /// those of the other that meet the first goal; and of these, where the second goal is met
+    /// on the way from one to the next, or is least off.
+    fn nested(&mut self, inner: usize) -> Result<Vec<Vec<f64>>, Failure> {
+        let outer = self.dosing.unknowns[1 - inner].clone();
+        let mut branches: Vec<Vec<Mark>> = Vec::new();
+        let mut near: Vec<(f64, Vec<f64>)> = Vec::new();
+        let place = |own: f64, other: f64| {
+            if inner == 0 { vec![own, other] } else { vec![other, own] }
+        };
+        for other in amounts(&outer) {
+            for (branch, (own, open)) in self.inner(inner, other)?.into_iter().enumerate() {
+                if branches.len() <= branch {
+                    branches.push(Vec::new());
+                }
+                branches[branch].push((other, open));
+                near.push((open.abs(), place(own, other)));
             }
         }
-        for pair in marks.windows(2) {
-            if pair[0].1 * pair[1].1 > 0.0 {
-                continue;
-            }
-            let root = close_in(|dose| Ok(self.inner(dose)?.1), pair[0], pair[1])?;
-            if let Some(dose) = root
-                && let (Some(first), Some(_)) = self.inner(dose)?
-            {
-                return Ok(Some(vec![first, dose]));
+        let mut places = Vec::new();
+        for (branch, marks) in branches.iter().enumerate() {
+            for pair in marks.windows(2).filter(|pair| pair[0].1 * pair[1].1 <= 0.0) {
+                let at = |other: f64, space: &mut Self| {
+                    Ok(space.inner(inner, other)?.get(branch).copied())
+                };
+                let open = |other: f64| Ok(at(other, self)?.map(|(_, open)| open));
+                if let Some(other) = close_in(open, pair[0], pair[1])?
+                    && let Some((own, _)) = at(other, self)?
+                {
+                    places.push(place(own, other));
+                }
             }
         }
-        Ok(None)
+        near.sort_by(|a, b| a.0.total_cmp(&b.0));
+        places.extend(near.into_iter().take(NEAREST).map(|(_, place)| place));
+        Ok(places)
     }
 
-    /// With an amount of the second: that of the first, and how far the second goal is off.
-    fn inner(&mut self, second: f64) -> Result<(Option<f64>, Option<f64>), Failure> {
-        let Unknown { row, brings } = &self.dosing.unknowns[1];
+    /// With an amount of the other unknown: each amount of this one that meets the first goal,
+    /// and how far the second is off with it.
+    fn inner(&mut self, inner: usize, other: f64) -> Result<Vec<Mark>, Failure> {
+        let Unknown { row, brings } = &self.dosing.unknowns[1 - inner];
         let mut dosing = self.dosing.clone();
         for (j, n) in row {
-            dosing.base.totals[*j] += n * second;
+            dosing.base.totals[*j] += n * other;
         }
-        dosing.dilution += brings * second;
-        dosing.unknowns.truncate(1);
+        dosing.dilution += brings * other;
+        dosing.unknowns = vec![self.dosing.unknowns[inner].clone()];
         let found = passed(one::find(self.bench, &dosing, &self.goals[0], None))?;
-        let Some(Search::Met(met)) = found else { return Ok((None, None)) };
+        let Some(Search::Met(met)) = found else { return Ok(Vec::new()) };
         self.trials += met.trials;
-        let value = self.bench.value(1, &met.state);
-        Ok((met.doses.first().copied(), value.map(|value| self.goals[1].off(value))))
+        let mut marks = Vec::new();
+        for doses in std::iter::once(&met.doses).chain(&met.others) {
+            self.trials += 1;
+            let solved = self.bench.solve(dosing.system(doses), Some(&met.state));
+            let Some(state) = passed(solved)? else { continue };
+            let value = self.bench.value(1, &state).filter(|value| value.is_finite());
+            marks.extend(doses.first().copied().zip(value.map(|v| self.goals[1].off(v))));
+        }
+        Ok(marks)
     }
 }

@@ -15,7 +15,7 @@
 //! reaction Al^3+ + 4 H2O <=> Al(OH)4- + 4 H+, log K = -22.7, source "site table, row 41"
 //! reaction Al(OH)3(s) + 3 H+ <=> Al^3+ + 3 H2O, log K = 8.5, source "site table, row 42"
 //! add AlCl3 1 mmol/L
-//! hold saturation index Al(OH)3(s) = 0.5 by NaOH
+//! hold saturation index Al(OH)3(s) = 5 by NaOH
 //! ```
 //!
 //! After:

@@ -90,7 +90,7 @@ fn short(problem: &Problem, target: &Target, nearest: &Nearest) -> Finding<Place
     let nearly = match (&without, nearest.grows) {
         (Some(without), _) if nearest.dose == 0.0 => format!("{without}, and more {way} it"),
         (None, _) if nearest.dose == 0.0 => format!("the nearest is {come}, with none of it"),
-        (_, true) => format!("it comes nearest as the dose grows, {come} at {dose}"),
+        (_, true) => format!("the nearest is {come}, approached as the dose grows"),
         (Some(without), false) => format!("{without}, and the nearest is {come}, at {dose}"),
         (None, false) => format!("the nearest is {come}, at {dose}"),
     };
