@@ -33,9 +33,7 @@ impl Quantity {
     fn of(self, system: &System, answer: &Answer) -> Option<f64> {
         let value = match self {
             Quantity::Ph => answer.ph(),
-            Quantity::Index(i) => {
-                (answer.concentrations[i].ln() + answer.ln_gammas[i]) / LN_10
-            }
+            Quantity::Index(i) => (answer.concentrations[i].ln() + answer.ln_gammas[i]) / LN_10,
             Quantity::Concentration(i) => answer.concentrations[i],
             Quantity::Total(j) => system
                 .species
@@ -247,8 +245,7 @@ fn hidden(survey: &mut Survey, seed: u64, goals: usize, davies: bool) {
     let unknowns: Vec<Unknown> = (0..goals).map(|_| reagent(random, &base, false)).collect();
     let dilution = if random.chance(0.2) { 1.0 + random.uniform(0.0, 0.1) } else { 1.0 };
     let most = if davies { -1.0 } else { 0.0 };
-    let doses: Vec<f64> =
-        (0..goals).map(|_| 10f64.powf(random.uniform(-6.0, most))).collect();
+    let doses: Vec<f64> = (0..goals).map(|_| 10f64.powf(random.uniform(-6.0, most))).collect();
     let quantities: Vec<Quantity> = (0..goals).map(|_| quantity(random, &base)).collect();
     let dosing = Dosing { base, dilution, unknowns };
     let system = dosing.system(&doses);
@@ -274,7 +271,10 @@ fn hidden(survey: &mut Survey, seed: u64, goals: usize, davies: bool) {
         asked.push(goal);
     }
     // Two that bring the same, or one that is told by how it dilutes alone, are no two doses.
-    if goals > 1 && (dosing.unknowns[0].row == dosing.unknowns[1].row || !apart(&dosing, &doses, &quantities, &asked)) {
+    if goals > 1
+        && (dosing.unknowns[0].row == dosing.unknowns[1].row
+            || !apart(&dosing, &doses, &quantities, &asked))
+    {
         return;
     }
     let found = find(&Trials { quantities: &quantities }, &dosing, &asked, None);
@@ -338,8 +338,7 @@ fn a_ph_by_acid_or_base_takes_few_states() {
             base.activity = DAVIES;
             base.totals.iter_mut().for_each(|total| *total *= 0.1);
         }
-        let dosing =
-            Dosing { unknowns: vec![reagent(random, &base, true)], base, dilution: 1.0 };
+        let dosing = Dosing { unknowns: vec![reagent(random, &base, true)], base, dilution: 1.0 };
         let dose = 10f64.powf(random.uniform(-6.0, -0.5));
         let Some(answer) = run(&dosing.system(&[dose])) else { continue };
         if answer.ionic_strength > 1.0 || run(&dosing.system(&[0.0])).is_none() {
@@ -391,15 +390,10 @@ fn what_cannot_be_reached_is_named() {
 #[test]
 fn what_does_not_move_is_told_apart() {
     let charges = [1, 1];
-    let species = |entries: &[(usize, i64)], log_k| {
-        equilibrium_support::species(entries, log_k, &charges)
-    };
+    let species =
+        |entries: &[(usize, i64)], log_k| equilibrium_support::species(entries, log_k, &charges);
     let base = System {
-        species: vec![
-            species(&[(0, 1)], 0.0),
-            species(&[(0, -1)], -14.0),
-            species(&[(1, 1)], 0.0),
-        ],
+        species: vec![species(&[(0, 1)], 0.0), species(&[(0, -1)], -14.0), species(&[(1, 1)], 0.0)],
         totals: vec![0.0, 1e-3],
         fixed: Vec::new(),
         activity: equilibrium_support::IDEAL,

@@ -46,9 +46,8 @@ fn every_dose_is_the_one_found_by_arithmetic_of_many_digits() {
             let outcome = &checked.outcomes[section.unwrap()];
             let solved = outcome.solved().unwrap_or_else(|| panic!("{name} {case:?}"));
             let is_exact = entry["exact"].as_bool().unwrap();
-            let number = |value: &serde_json::Value| -> f64 {
-                value.as_str().unwrap().parse().unwrap()
-            };
+            let number =
+                |value: &serde_json::Value| -> f64 { value.as_str().unwrap().parse().unwrap() };
             // Elsewhere the published formulas for water differ by 10⁻⁴.
             let within = if is_exact { 1e-9 } else { 1e-4 };
             let found = outcome.problem.found.clone().unwrap_or_default();
@@ -96,7 +95,10 @@ fn a_dose_put_in_gives_what_was_asked() {
         for (target, amount) in problem.targets.iter().zip(found) {
             lines.push(match target.unknown {
                 Unknown::Total(j) => {
-                    format!("total {} = {amount:e} mol/{per}", problem.scope.components[j].formula.name)
+                    format!(
+                        "total {} = {amount:e} mol/{per}",
+                        problem.scope.components[j].formula.name
+                    )
                 }
                 Unknown::Reagent(index) => {
                     let reagent = &problem.reagents[index];

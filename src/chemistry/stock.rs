@@ -327,8 +327,7 @@ mod tests {
     fn a_strength_per_litre_finds_its_density() {
         // 30 % NaOH of 1.3277 kg/L holds 398.31 g/L.
         let of = |strength| Stock::new("NaOH", Some(39.997), strength, "s", None).expect("a stock");
-        for strength in
-            [Strength::MassPerLitre(398.31), Strength::AmountPerLitre(398.31 / 39.997)]
+        for strength in [Strength::MassPerLitre(398.31), Strength::AmountPerLitre(398.31 / 39.997)]
         {
             let stock = of(strength);
             assert!((stock.density.unwrap_or(0.0) - 1.3277).abs() < 1e-9, "{stock:?}");
@@ -346,7 +345,8 @@ mod tests {
         assert_eq!(density_of("KOH", 46.0), None);
         assert_eq!(density_of("NaCl", 20.0), None);
         assert_eq!(known_range("NaOH"), Some((1.0, 50.0)));
-        let powder = Stock::new("Ca(OH)2", Some(74.092), Strength::MassFraction(0.92), "92 %", None);
+        let powder =
+            Stock::new("Ca(OH)2", Some(74.092), Strength::MassFraction(0.92), "92 %", None);
         let powder = powder.expect("a powder");
         assert_eq!((powder.litres(), powder.kilograms_of_water()), (0.0, 0.0));
         assert!((powder.grams_per_mole.unwrap_or(0.0) - 80.535).abs() < 1e-3);

@@ -88,18 +88,15 @@ fn unknown(problem: &Problem, unknown: model::Unknown) -> Unknown {
         }
     };
     let components = &problem.scope.components;
-    let charge: f64 =
-        row.iter().map(|&(j, n)| f64::from(components[j].formula.charge) * n).sum();
+    let charge: f64 = row.iter().map(|&(j, n)| f64::from(components[j].formula.charge) * n).sum();
     row.insert(0, (PROTON, -charge));
     Unknown { row, brings }
 }
 
 fn goal(problem: &Problem, dosing: &Dosing, target: &Target) -> Goal {
     let held = held(problem, target);
-    let logarithmic = matches!(
-        target.sought,
-        Sought::Ph | Sought::Poh | Sought::Pe | Sought::SaturationIndex(_)
-    );
+    let logarithmic =
+        matches!(target.sought, Sought::Ph | Sought::Poh | Sought::Pe | Sought::SaturationIndex(_));
     let single = held.is_some()
         && matches!(target.sought, Sought::Ph | Sought::Poh)
         && problem.held.iter().all(|held| matches!(held.what, HeldWhat::Pressure { .. }))
@@ -118,9 +115,8 @@ fn keeps_to_itself(problem: &Problem, unknown: &Unknown, dosing: &Dosing) -> boo
             && dosing.base.species.iter().all(|species| {
                 let own = species.row.iter().find(|(column, _)| column == j);
                 own.is_none_or(|(_, n)| {
-                    *n == one && species.row.iter().all(|(column, _)| {
-                        column == j || *column == PROTON
-                    })
+                    *n == one
+                        && species.row.iter().all(|(column, _)| column == j || *column == PROTON)
                 })
             })
     })

@@ -121,7 +121,16 @@ fn add(
     }
     let at = written.place(name.span);
     let amount = read.value;
-    problem.reagents.push(Reagent { formula, at, amount, brings, stock, target: None, row, giving });
+    problem.reagents.push(Reagent {
+        formula,
+        at,
+        amount,
+        brings,
+        stock,
+        target: None,
+        row,
+        giving,
+    });
     Some(())
 }
 

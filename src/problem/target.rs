@@ -8,9 +8,7 @@ use super::case::CaseResolver;
 use super::defect::DefectKind;
 use super::effective::{Written, subject_key};
 use super::expect;
-use super::model::{
-    Amount, AmountSource, Problem, Reagent, ShownUnit, Sought, Target, Unknown,
-};
+use super::model::{Amount, AmountSource, Problem, Reagent, ShownUnit, Sought, Target, Unknown};
 use super::scope::PROTON;
 use super::sparse::coefficient;
 use crate::text::span::{Place, Spanned};
@@ -59,9 +57,7 @@ fn target(
     let sought = expect::sought(case, problem, written, subject)?;
     let read = expect::value(case, problem, written, value, sought)?;
     let sought = match sought {
-        Sought::ChargeImbalance { .. } => {
-            Sought::ChargeImbalance { equivalents: read.equivalents }
-        }
+        Sought::ChargeImbalance { .. } => Sought::ChargeImbalance { equivalents: read.equivalents },
         other => other,
     };
     possible(case, written.place(value.span), value, sought, read.value)?;
@@ -72,9 +68,7 @@ fn target(
         return None;
     }
     let is_ph = |sought: Sought| matches!(sought, Sought::Ph | Sought::Poh);
-    let same = |other: &&Target| {
-        other.sought == sought || is_ph(other.sought) && is_ph(sought)
-    };
+    let same = |other: &&Target| other.sought == sought || is_ph(other.sought) && is_ph(sought);
     if let Some(other) = problem.targets.iter().find(same) {
         case.resolver.report(at, DefectKind::HeldTwice { subject: words, other: other.at });
         return None;

@@ -34,9 +34,8 @@ pub fn compared(problem: &Problem, brought: Option<&[f64]>, same_sources: bool) 
             |term: &model::WrittenTerm| matches!(term.what, model::WrittenWhat::Amount { .. });
         !problem.lacks_doses() || !sides.into_iter().any(is_amount)
     };
-    let wanted = |balance: &WrittenBalance| {
-        balance.complete && is_new(balance) && can_tell(balance)
-    };
+    let wanted =
+        |balance: &WrittenBalance| balance.complete && is_new(balance) && can_tell(balance);
     if !problem.balances.iter().any(wanted) {
         return Vec::new();
     }

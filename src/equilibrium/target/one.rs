@@ -12,12 +12,19 @@ pub(super) fn find<B: Bench>(
     start: Option<f64>,
 ) -> Result<Search<B::State>, Failure> {
     let mut line = Line { bench, dosing, goal, held: goal.held.is_some(), near: None, trials: 0 };
-    // The water as it is must have a state, or what is wrong with it comes first.
-    let untouched = line.state(0.0)?;
-    let without = bench.value(0, &untouched);
-    if without.is_some_and(|value| goal.off(value).abs() <= 1e-13) {
-        return Ok(met(vec![0.0], untouched, Vec::new(), line.trials));
-    }
+    // What is wrong with the water as it is comes first; but a model out of its range there may
+    // be in it with a dose.
+    let (without, failure) = match line.state(0.0) {
+        Ok(untouched) => {
+            let value = bench.value(0, &untouched);
+            if value.is_some_and(|value| goal.off(value).abs() <= 1e-13) {
+                return Ok(met(vec![0.0], untouched, Vec::new(), line.trials));
+            }
+            (value, None)
+        }
+        Err(failure @ Failure::NotConverged { .. }) => (None, Some(failure)),
+        Err(failure) => return Err(failure),
+    };
     let mut doses = if goal.single { line.single(start)? } else { line.all()? };
     doses.sort_by(f64::total_cmp);
     let mut found: Vec<(f64, B::State)> = Vec::new();
@@ -33,7 +40,7 @@ pub(super) fn find<B: Bench>(
         let others = found.map(|(dose, _)| vec![dose]).collect();
         return Ok(met(vec![dose], state, others, line.trials));
     }
-    Ok(Search::Missed(nearest(&mut line, without)?))
+    failure.map_or_else(|| Ok(Search::Missed(nearest(&mut line, without)?)), Err)
 }
 
 fn met<S>(doses: Vec<f64>, state: S, others: Vec<Vec<f64>>, trials: u32) -> Search<S> {

@@ -119,7 +119,11 @@ impl<B: Bench> Space<'_, B> {
     }
 
     /// How each goal opens with each amount.
-    fn slopes(&mut self, doses: &[f64], open: &DVector<f64>) -> Result<Option<DMatrix<f64>>, Failure> {
+    fn slopes(
+        &mut self,
+        doses: &[f64],
+        open: &DVector<f64>,
+    ) -> Result<Option<DMatrix<f64>>, Failure> {
         let mut slopes = DMatrix::zeros(doses.len(), doses.len());
         for i in 0..doses.len() {
             let mut moved = doses.to_vec();
