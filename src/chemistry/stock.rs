@@ -174,7 +174,7 @@ fn interpolated(points: Points, percent: f64) -> Option<f64> {
     points.windows(2).find_map(|pair| {
         let ((low, below), (high, above)) = (pair[0], pair[1]);
         let share = (percent - low) / (high - low);
-        (0.0..=1.0).contains(&share).then(|| below + share * (above - below))
+        (0.0..=1.0).contains(&share).then_some(below + share * (above - below))
     })
 }
 
