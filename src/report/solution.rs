@@ -5,6 +5,7 @@
 use num_traits::ToPrimitive;
 use serde::Serialize;
 
+use super::cautions::{self, CautionJson};
 use super::dose::{self, DoseJson};
 use super::expectation::verdict;
 use super::sheet::{Ledger, Sheet};
@@ -61,6 +62,7 @@ struct Answer<'a> {
     doses: Vec<DoseJson>,
     balances: Vec<SheetJson>,
     expectations: Vec<Expectation<'a>>,
+    cautions: Vec<CautionJson<'a>>,
 }
 
 #[derive(Serialize)]
@@ -201,6 +203,7 @@ fn answer<'a>(
                 }
             })
             .collect(),
+        cautions: cautions::json(outcome),
     }
 }
 

@@ -12,6 +12,7 @@ pub mod words;
 
 mod answers;
 mod balances;
+mod cautions;
 mod closure;
 mod components;
 mod files;
@@ -35,6 +36,7 @@ pub static FAMILIES: &[catalogue::Family] = &[
     targets::FAMILY,
     balances::FAMILY,
     answers::FAMILY,
+    cautions::FAMILY,
     files::FAMILY,
     statements::FAMILY,
 ];
