@@ -346,7 +346,8 @@ fn a_ph_by_acid_or_base_takes_few_states() {
         }
         let quantities = [Quantity::Ph];
         let goal = Goal { single: true, ..Quantity::Ph.goal(&dosing.base, answer.ph()) };
-        let found = find(&Trials { quantities: &quantities }, &dosing, std::slice::from_ref(&goal), None);
+        let found =
+            find(&Trials { quantities: &quantities }, &dosing, std::slice::from_ref(&goal), None);
         survey.check(seed, &dosing, &quantities, &[goal], found);
     }
     survey.finish(0);
