@@ -232,7 +232,7 @@ fn empty_and_extreme_systems_are_answered() {
     let system = System::new(&[("NH3", 0)]);
     assert_eq!(shown(&system), "[H+] = [OH-]");
     let mut system = sump();
-    system.recipe.reagents[0].amount = f64::NAN;
+    system.recipe.reagents[0].amount = Some(f64::NAN);
     let _ = condition(&system);
     // Nothing the kind of which a file would hold, but no panic either.
     let mut system = sump();

@@ -266,14 +266,14 @@ fn what_is_absent_or_unknown_is_not_held_against_it() {
     // Without sulfate its species need not be written, and may be.
     let system = sump();
     let mut none = system.clone();
-    none.recipe.reagents[0].amount = 0.0;
+    none.recipe.reagents[0].amount = Some(0.0);
     none.recipe.reagents.push(none.recipe.reagents[0].clone());
     for text in ["[H+] + [Na+] = [OH-]", "[H+] + [NH4+] + [Na+] = [OH-] + [HSO4-] + 2 [SO4^2-]"] {
         assert!(matches!(verdict(&none, "charge", text), Verdict::Right(_)), "{text}");
     }
     // A strong acid of which nothing is added may be left out of the constant.
     let mut zero = system.clone();
-    zero.recipe.reagents[1].amount = 0.0;
+    zero.recipe.reagents[1].amount = Some(0.0);
     let text = "[H+] + [HSO4-] = [OH-] + [NH3]";
     assert!(matches!(verdict(&zero, "protons", text), Verdict::Right(_)));
     // Under a held gas the total is not known: it may be named, and no number is judged.

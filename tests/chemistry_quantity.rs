@@ -32,7 +32,7 @@ fn amount(
 #[test]
 fn every_unit_of_the_language_is_read() {
     let units = "mol/L|mmol/L|µmol/L|umol/L|nmol/L|M|mM|µM|uM|mol/kg|mmol/kg|eq/L|meq/L|g/L|\
-        mg/L|µg/L|ug/L|g/m3|g/m³|mg/m³|mg/m3|kg/m³|g/kg|mg/kg|% w/w|%w/w|mL/L|L/m³|°C|degC|K|\
+        mg/L|µg/L|ug/L|g/m3|g/m³|mg/m³|mg/m3|kg/m³|g/kg|mg/kg|% w/w|%w/w|% w/v|mL/L|L/m³|°C|degC|K|\
         atm|matm|µatm|uatm|bar|mbar|kPa|Pa|kJ/mol|J/mol|kJ/(mol·K)|J/(mol·K)|J/(mol.K)|\
         J/(mol K)|μmol/L|%|deg C";
     for text in units.split('|') {

@@ -124,6 +124,43 @@ curve over NH4Cl from 0 to 1 mol/L, 11 points
     assert_eq!(points[0].as_object().unwrap().len(), 2, "no numbers but x");
 }
 
+/// A dose from a stock, in each form, and one that no amount reaches.
+#[test]
+fn doses_that_meet_targets() {
+    let text = "\
+# Rinse water before the stripper, caustic from the drum. Invented figures.
+problem \"Stripper feed\"
+use aqueous
+component NH3 \"ammonia nitrogen\", Na+, Cl-
+add NH4Cl 10 mmol/L
+hold pH = 11.0 by dose of 30 % NaOH
+balance protons
+    [H+] + added NaOH = [OH-] + [NH3]
+expect dose NaOH < 1.5 mL/L
+
+case \"back to the sewer\"
+    add 1.3 mL/L of 30 % NaOH
+    hold pH = 8.5 by HCl
+    without expect dose NaOH
+    without balance protons
+
+case \"the wrong drum\"
+    hold pH = 3 by dose of 30 % NaOH
+    without expect dose NaOH
+";
+    insta::assert_snapshot!(session(&[("feed.lyate", text)], &["solve", "feed.lyate"]));
+    let folder = folder(&[("feed.lyate", text)]);
+    let output = run(folder.path(), &["solve", "feed.lyate", "--output", "json"]);
+    assert_eq!(code(&output), 1, "one case is not solved");
+    let report: Value = serde_json::from_slice(&output.stdout).unwrap();
+    let statuses: Vec<&Value> =
+        report["solutions"].as_array().unwrap().iter().map(|s| &s["status"]).collect();
+    assert_eq!(statuses, ["solved", "solved", "no-solution"]);
+    insta::assert_snapshot!(
+        serde_json::to_string_pretty(&report["solutions"][0]["doses"]).unwrap()
+    );
+}
+
 #[test]
 fn what_cannot_be_solved_says_why() {
     insta::assert_snapshot!(session(

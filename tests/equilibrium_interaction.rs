@@ -93,6 +93,7 @@ fn answers_agree_with_many_digit_arithmetic() {
                 .collect(),
             totals: reference.totals.clone(),
             fixed: Vec::new(),
+            candidates: Vec::new(),
             activity: by_composition(&names, reference.a_phi),
             ionic_strength: IonicStrength::Computed,
         };
@@ -213,6 +214,7 @@ fn water(random: &mut Random) -> System {
         species: list,
         totals,
         fixed: Vec::new(),
+        candidates: Vec::new(),
         activity: by_composition(&names, 0.3915),
         ionic_strength: IonicStrength::Computed,
     }

@@ -25,13 +25,23 @@ fn water(components: &[(i64, f64)]) -> System {
 }
 
 fn candidate(system: &mut System, entries: &[(usize, i64)], log_value: f64) {
-    system.candidates.push(Candidate { row: row(entries), ln_value: log_value * LN_10 });
+    system.candidates.push(Candidate {
+        row: row(entries),
+        ln_value: log_value * LN_10,
+        water: 0.0,
+    });
 }
 
 fn excess(system: &mut System, entries: &[(usize, i64)], log_value: f64) {
     let row = row(entries);
     let ln_value = log_value * LN_10;
-    system.fixed.push(Fixed { supply: row.clone(), row, ln_value, concentration_of: None });
+    system.fixed.push(Fixed {
+        supply: row.clone(),
+        row,
+        ln_value,
+        water: 0.0,
+        concentration_of: None,
+    });
 }
 
 fn run(system: &System) -> Result<Assemblage, Failure> {

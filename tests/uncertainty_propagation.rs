@@ -40,7 +40,7 @@ fn sampled(case: &Case, sought: &[Sought], seed: u64) -> Vec<(f64, f64)> {
         }
         let system = system(&problem);
         let answer = solve(&system, Some(&case.solved.answer), &AtomicBool::new(false)).unwrap();
-        let solved = Solved { system, answer, others: Vec::new() };
+        let solved = Solved { system, answer, formed: Vec::new(), others: Vec::new(), dosed: None };
         for (sum, &sought) in sums.iter_mut().zip(sought) {
             // About the value itself, so that nothing cancels.
             let off = solved.value(&problem, sought).unwrap() - value(case, sought);

@@ -140,7 +140,7 @@ fn added_forms(stoichiometry: &Stoichiometry, recipe: &Recipe) -> Vec<(usize, f6
     let mut amounts: Vec<(usize, f64)> = Vec::new();
     for reagent in &recipe.reagents {
         for (species, count) in &reagent.forms {
-            let amount = reagent.amount * count.to_f64().unwrap_or(0.0);
+            let amount = reagent.amount.unwrap_or(0.0) * count.to_f64().unwrap_or(0.0);
             match amounts.iter_mut().find(|(index, _)| index == species) {
                 Some((_, sum)) => *sum += amount,
                 None if *species < stoichiometry.species.len() => amounts.push((*species, amount)),

@@ -57,8 +57,8 @@ pub struct Reagent {
     pub brings: Row,
     /// The dissolved species that one mole splits into; empty where it splits into none.
     pub forms: Vec<(usize, Rational64)>,
-    /// mol per litre or kilogram.
-    pub amount: f64,
+    /// mol per litre or kilogram of the mixture; none while a target has yet to find it.
+    pub amount: Option<f64>,
 }
 
 /// A gas, a solid or a species whose activity or concentration is held.
@@ -85,15 +85,21 @@ impl Recipe {
     /// that may form brought, once solved.
     pub fn of(problem: &Problem, brought: Option<&[f64]>) -> Recipe {
         let stoichiometry = &problem.scope.stoichiometry;
+        let dilution = problem.dilution();
+        let known = |reagent: &model::Reagent| {
+            (reagent.target.is_none() || problem.found.is_some()).then_some(reagent.amount)
+        };
         let reagents = problem.reagents.iter().map(|reagent| Reagent {
             brings: reagent.row.clone(),
             forms: reagent.giving.clone().unwrap_or_else(|| {
                 split_into_species(&reagent.row, stoichiometry).unwrap_or_default().forms
             }),
-            amount: reagent.amount,
+            amount: known(reagent).map(|amount| amount / dilution),
         });
         let totals = problem.amounts.iter().map(|amount| match amount.source {
-            AmountSource::Total => amount.total,
+            AmountSource::Total | AmountSource::Found(_) => {
+                amount.total.map(|total| total / dilution)
+            }
             AmountSource::Nothing | AmountSource::Reagents | AmountSource::Held(_) => None,
         });
         let mut recipe =
@@ -168,7 +174,7 @@ impl Recipe {
     /// The amount of a part, mol per litre or kilogram; none where it is not known.
     pub fn value(&self, part: Part) -> Option<f64> {
         match part {
-            Part::Added(reagent) => self.reagents.get(reagent).map(|reagent| reagent.amount),
+            Part::Added(reagent) => self.reagents.get(reagent)?.amount,
             Part::Held(held) => self.held.get(held)?.amount,
             Part::Precipitated(solid) => self.precipitates.get(solid)?.amount,
             Part::Total(component) => match self.totals.get(component).copied().flatten() {

@@ -1,4 +1,4 @@
-//! What matter is: elements, formulas, quantities and units, water, activity.
+//! What matter is: elements, formulas, quantities, units and stocks, water, activity.
 
 pub mod activity;
 pub mod constant;
@@ -7,5 +7,6 @@ pub mod formula;
 pub mod interaction;
 pub mod ion_size;
 pub mod quantity;
+pub mod stock;
 pub mod unit;
 pub mod water;

@@ -134,7 +134,7 @@ const fn unit(name: &'static str, dimension: Dimension, factor: f64) -> Unit {
 /// Standard atmosphere, Pa: exact (10th CGPM, 1954). The bar is 10⁵ Pa exactly.
 const ATMOSPHERE: f64 = 101_325.0;
 
-const UNITS: [Unit; 39] = [
+const UNITS: [Unit; 40] = [
     unit("mol/L", D::AmountPerLitre, 1.0),
     unit("mmol/L", D::AmountPerLitre, 1e-3),
     unit("µmol/L", D::AmountPerLitre, 1e-6),
@@ -157,6 +157,8 @@ const UNITS: [Unit; 39] = [
     unit("g/kg", D::MassPerKilogram, 1.0),
     unit("mg/kg", D::MassPerKilogram, 1e-3),
     unit("% w/w", D::MassFraction, 1e-2),
+    // Grams in a hundred millilitres, as medicine and the laboratory have it.
+    unit("% w/v", D::MassPerLitre, 10.0),
     unit("mL/L", D::VolumePerVolume, 1e-3),
     unit("L/m³", D::VolumePerVolume, 1e-3),
     Unit { name: "°C", dimension: D::Temperature, factor: 1.0, offset: ZERO_CELSIUS },
@@ -186,7 +188,7 @@ const SYNONYMS: [(&str, &str); 5] = [
     ("kJ/(molK)", "kJ/(mol·K)"),
 ];
 
-const AMBIGUOUS: [(&str, &[&str]); 8] = [
+const AMBIGUOUS: [(&str, &[&str]); 7] = [
     ("ppm", &["mg/L", "mg/kg", "µatm"]),
     ("ppmv", &["µatm"]),
     ("ppb", &["µg/L"]),
@@ -194,7 +196,6 @@ const AMBIGUOUS: [(&str, &[&str]); 8] = [
     ("N", &["eq/L"]),
     ("mN", &["meq/L"]),
     ("m", &["mol/kg"]),
-    ("%w/v", &["g/L"]),
 ];
 
 /// One spelling for what is written in several.

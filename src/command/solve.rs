@@ -15,10 +15,10 @@ use crate::rules::finding::Severity;
 
 /// Solve a problem file, and show the answer for its base and each case
 ///
-/// Shows pH, ionic strength and alkalinity; every dissolved species with its activity
-/// and its share; partial pressures, saturation indices, both sides of the charge balance
-/// and the proton condition; what the file expects of the answer; and points along its
-/// curves.
+/// Shows pH, ionic strength and alkalinity; the doses that meet its targets; every
+/// dissolved species with its activity and its share; partial pressures, saturation
+/// indices, both sides of the charge balance and the proton condition; and what the file
+/// expects of the answer.
 #[derive(clap::Args)]
 #[command(
     verbatim_doc_comment,

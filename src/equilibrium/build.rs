@@ -18,6 +18,7 @@ use crate::problem::curve::Sweep;
 use crate::problem::model::{Held, HeldWhat, Presence, Problem, Solid};
 use crate::problem::scope::{PROTON, WATER};
 
+/// Per litre, or kilogram of water, of the mixture.
 pub fn system(problem: &Problem) -> System {
     let scope = &problem.scope;
     let species = scope
@@ -120,8 +121,9 @@ pub fn renew(system: &mut System, problem: &Problem, moved: Sweep) {
 
 /// The total of each component, and the charge balance in the place of the proton's.
 fn totals(problem: &Problem, totals: &mut [f64]) {
+    let dilution = problem.dilution();
     for (total, amount) in totals.iter_mut().zip(&problem.amounts) {
-        *total = amount.total.unwrap_or(0.0);
+        *total = amount.total.unwrap_or(0.0) / dilution;
     }
     totals[PROTON] = -(1..totals.len())
         .map(|j| f64::from(problem.scope.components[j].formula.charge) * totals[j])

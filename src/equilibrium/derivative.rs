@@ -166,6 +166,7 @@ impl Movement {
                 let amounts = &self.response.amounts;
                 solved.total_of(component, moved) + solved.solid_total_of(component, amounts)
             }
+            Sought::Dose(reagent) => *self.push.reagents.get(reagent)?,
             Sought::Precipitated(species) => {
                 solved.precipitated_of(problem, species, &self.response.amounts)?
             }

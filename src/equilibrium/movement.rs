@@ -12,7 +12,7 @@ use crate::chemistry::activity::ActivityModel;
 use crate::chemistry::constant::{ReactionHeat, log_k_at};
 use crate::chemistry::water;
 use crate::problem::input::Input;
-use crate::problem::model::{HeldWhat, Presence, Problem};
+use crate::problem::model::{HeldWhat, Presence, Problem, carried};
 use crate::problem::reaction::LogK;
 use crate::problem::scope::PROTON;
 
@@ -33,6 +33,8 @@ pub(super) struct Push {
     pub ionic_strength: f64,
     /// Of the temperature, kelvin.
     pub kelvin: f64,
+    /// Of the amount of each reagent.
+    pub reagents: Vec<f64>,
 }
 
 impl Push {
@@ -45,6 +47,7 @@ impl Push {
             held_ln_gammas: vec![0.0; system.fixed.len()],
             ionic_strength: 0.0,
             kelvin: 0.0,
+            reagents: vec![0.0; problem.reagents.len()],
         }
     }
 
@@ -53,11 +56,19 @@ impl Push {
         let (system, answer) = (&solved.system, &solved.answer);
         let mut push = Push::none(problem, system);
         match input {
-            Input::Total(j) => push.total(problem, j, 1.0),
+            Input::Total(j) => push.total(problem, j, problem.dilution().recip()),
             Input::Reagent(i) => {
-                for &(j, n) in problem.reagents.get(i)?.row.iter().filter(|&&(j, _)| j != PROTON) {
-                    push.total(problem, j, n.to_f64()?);
+                let reagent = problem.reagents.get(i)?;
+                let dilution = problem.dilution();
+                for &(j, n) in reagent.row.iter().filter(|&&(j, _)| j != PROTON) {
+                    push.total(problem, j, n.to_f64()? / dilution);
                 }
+                // What its stock brings along dilutes all there is.
+                let brings = carried(reagent.stock.as_deref(), problem.scale) / dilution;
+                for j in (1..system.totals.len()).filter(|_| brings != 0.0) {
+                    push.total(problem, j, -system.totals[j] * brings);
+                }
+                push.reagents[i] = 1.0;
             }
             Input::Held(k) => {
                 *push.ln_values.get_mut(k)? = match problem.held.get(k)?.what {
@@ -201,6 +212,7 @@ impl Push {
         add(&mut self.held_ln_gammas, times, &other.held_ln_gammas);
         self.ionic_strength += times * other.ionic_strength;
         self.kelvin += times * other.kelvin;
+        add(&mut self.reagents, times, &other.reagents);
     }
 
     /// The system with its constants moved by so much of the input; totals are not.

@@ -7,7 +7,9 @@ use num_traits::ToPrimitive;
 use super::build::{ln_formation, water_taken};
 use super::sensitivity;
 use super::system::{Answer, System};
-use crate::problem::model::{Presence, Problem, Sought, WrittenBalance, WrittenTerm, WrittenWhat};
+use crate::problem::model::{
+    Presence, Problem, Sought, Target, WrittenBalance, WrittenTerm, WrittenWhat,
+};
 use crate::problem::reaction::STANDARD;
 use crate::problem::scope::{PROTON, WATER};
 
@@ -23,6 +25,19 @@ pub struct Solved {
     /// pH and ionic strength of other states that meet the same equations; none for most
     /// problems.
     pub others: Vec<(f64, f64)>,
+    /// What was found for the targets of the problem; none where it has none.
+    pub dosed: Option<Dosed>,
+}
+
+/// Amounts that meet targets, mol per litre or kilogram of the water treated.
+#[derive(Clone, Debug, PartialEq)]
+pub struct Dosed {
+    /// The targets that they were found for.
+    pub targets: Vec<Target>,
+    /// One for each target.
+    pub amounts: Vec<f64>,
+    /// Others that meet them too.
+    pub others: Vec<Vec<f64>>,
 }
 
 impl Solved {
@@ -176,7 +191,9 @@ impl Solved {
                             let place = self.formed.get(candidate).copied().flatten();
                             place.map_or(0.0, |k| -self.answer.amounts[k])
                         }
-                        WrittenWhat::Added(reagent) => problem.reagents[reagent].amount,
+                        WrittenWhat::Added(reagent) => {
+                            problem.reagents[reagent].amount / problem.dilution()
+                        }
                         WrittenWhat::Amount { value, .. } => value,
                     };
                     term.coefficient.to_f64().unwrap_or(0.0) * value
@@ -269,6 +286,7 @@ impl Solved {
                 let (cations, anions) = self.charges();
                 cations - anions
             }
+            Sought::Dose(reagent) => problem.reagents[reagent].amount,
         };
         // Minus infinity is the saturation index of a solid whose ions are absent.
         (!value.is_nan()).then_some(value)

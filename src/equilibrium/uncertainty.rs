@@ -7,7 +7,8 @@ use std::sync::OnceLock;
 
 use super::derivative::{Derivatives, Movement};
 use super::quantities::Solved;
-use crate::problem::model::{Problem, Sought};
+use crate::problem::input::Input;
+use crate::problem::model::{Problem, Sought, Unknown};
 
 /// How an answer moves with each of its uncertain inputs: found when first asked for, since
 /// few problems carry any.
@@ -88,7 +89,20 @@ fn size(solved: &Solved, sought: Sought, value: f64) -> f64 {
 
 /// Costs one factorisation, and a few solutions for each input.
 fn movements(problem: &Problem, solved: &Solved) -> Vec<Option<Movement>> {
+    let targets: Vec<(Sought, Input)> = (problem.targets.iter())
+        .map(|target| {
+            let dose = match target.unknown {
+                Unknown::Reagent(reagent) => Input::Reagent(reagent),
+                Unknown::Total(component) => Input::Total(component),
+            };
+            (target.sought, dose)
+        })
+        .collect();
     let derivatives = Derivatives::new(problem, solved);
+    let derivatives = match targets.is_empty() {
+        true => derivatives,
+        false => derivatives.and_then(|by| by.with_targets(&targets)),
+    };
     let mut movements: Vec<Option<Movement>> = Vec::with_capacity(problem.uncertain.len());
     for (source, uncertain) in problem.uncertain.iter().enumerate() {
         // Two lines of one reagent move the answer in the same way.

@@ -1,5 +1,7 @@
 //! Totals and reagents: how much of each component there is.
 
+use std::sync::Arc;
+
 use num_rational::Rational64;
 use num_traits::{Signed, ToPrimitive};
 
@@ -13,11 +15,12 @@ use super::resolve::differences;
 use super::scope::PROTON;
 use super::sparse::{Row, add_scaled};
 use super::split::{Split, split};
+use super::target;
 use super::uncertain::Carries;
 use crate::chemistry::formula::Formula;
 use crate::text::parse::KEYWORDS;
 use crate::text::span::Place;
-use crate::text::tree::{Member, Name, Quantity, Statement};
+use crate::text::tree::{Member, Name, Quantity, Statement, Strength};
 
 /// Reads `total` and `add`.
 pub fn read(case: &mut CaseResolver, problem: &mut Problem) {
@@ -28,8 +31,9 @@ pub fn read(case: &mut CaseResolver, problem: &mut Problem) {
                 let read = total(case, problem, written, component, value);
                 case.all_amounts_read &= read.is_some();
             }
-            Statement::Add { reagent, amount, giving, stock: None } => {
-                let read = add(case, problem, written, (reagent, amount, giving.as_deref()));
+            Statement::Add { reagent, amount, giving, stock } => {
+                let what = (reagent, amount, stock.as_ref(), giving.as_deref());
+                let read = add(case, problem, written, what);
                 case.all_amounts_read &= read.is_some();
             }
             Statement::Broken => case.all_amounts_read &= !may_be_amount(written),
@@ -37,12 +41,13 @@ pub fn read(case: &mut CaseResolver, problem: &mut Problem) {
         }
     }
     case.all_amounts_read &= curve::reagents(case, problem);
+    target::read(case, problem);
     for reagent in &problem.reagents {
         for &(j, n) in reagent.row.iter().filter(|&&(j, _)| j != PROTON) {
             let brought = n.to_f64().unwrap_or(0.0) * reagent.amount;
             let amount = &mut problem.amounts[j];
             match amount.source {
-                AmountSource::Total => {
+                AmountSource::Total | AmountSource::Found(_) => {
                     if let Some(at) = amount.at {
                         let name = case.scope.components[j].formula.name.clone();
                         let kind = DefectKind::TotalAndReagent { name, reagent: reagent.at };
@@ -95,28 +100,49 @@ fn total(
     Some(())
 }
 
+type Put<'a> = (&'a Name, &'a Quantity, Option<&'a Strength>, Option<&'a [Member]>);
+
 /// None where it could not be read.
 fn add(
     case: &mut CaseResolver,
     problem: &mut Problem,
     written: &Written,
-    (name, amount, giving): (&Name, &Quantity, Option<&[Member]>),
+    (name, amount, strength, giving): Put,
 ) -> Option<()> {
-    let reagent = reagent(case, written, name, giving)?;
-    let read =
-        case.concentration(written, amount, Some(&reagent.formula), Expected::Concentration)?;
+    let formula = neutral(case, written, name, giving.is_some())?;
+    let stock = match strength {
+        Some(strength) => Some(case.stock(written, strength, &formula)?),
+        None => None,
+    };
+    let read = case.dose(written, amount, &formula, stock.as_deref())?;
     if !case.not_negative(written, amount) {
         return None;
     }
-    let known = problem.reagents.iter().position(|r| r.formula.name == reagent.formula.name);
+    let brings = case.carried(stock.as_deref(), read.value);
+    let (row, giving) = row(case, written, name, &formula, giving)?;
+    let known = problem.reagents.iter().position(|r| r.formula.name == formula.name);
     let index = known.unwrap_or(problem.reagents.len());
-    let words = format!("add {}", reagent.formula.name);
+    let words = format!("add {}", formula.name);
     let carries = (Input::Reagent(index), Carries::Positive);
     case.keep_uncertainty(problem, (written, amount), carries, &read, words);
-    match known {
-        Some(known) => problem.reagents[known].amount += read.value,
-        None => problem.reagents.push(Reagent { amount: read.value, ..reagent }),
+    if let Some(known) = known.and_then(|known| problem.reagents.get_mut(known)) {
+        known.amount += read.value;
+        known.brings += brings;
+        known.stock = known.stock.take().filter(|one| Some(one) == stock.as_ref());
+        return Some(());
     }
+    let at = written.place(name.span);
+    let amount = read.value;
+    problem.reagents.push(Reagent {
+        formula,
+        at,
+        amount,
+        brings,
+        stock,
+        target: None,
+        row,
+        giving,
+    });
     Some(())
 }
 
@@ -128,32 +154,55 @@ pub(super) fn reagent(
     name: &Name,
     giving: Option<&[Member]>,
 ) -> Option<Reagent> {
-    let known = case.scope.reagents.get(&name.value).filter(|_| giving.is_none());
-    let formula = match &known {
-        Some((formula, _)) => formula.clone(),
+    let formula = neutral(case, written, name, giving.is_some())?;
+    let (row, giving) = row(case, written, name, &formula, giving)?;
+    let at = written.place(name.span);
+    Some(Reagent { formula, at, amount: 0.0, brings: 0.0, stock: None, target: None, row, giving })
+}
+
+/// The formula of a reagent, which must be neutral. `afresh` does not look whether it was put
+/// in before.
+pub(super) fn neutral(
+    case: &mut CaseResolver,
+    written: &Written,
+    name: &Name,
+    afresh: bool,
+) -> Option<Arc<Formula>> {
+    let known = case.scope.reagents.get(&name.value).filter(|_| !afresh);
+    let formula = match known {
+        Some((formula, _)) => formula,
         None => case.resolver.formula(written, name)?,
     };
-    let at = written.place(name.span);
     if formula.charge != 0 {
         let charge = i64::from(formula.charge);
         let kind = DefectKind::ReagentNotNeutral { name: formula.name.clone(), charge };
-        case.resolver.report(at, kind);
+        case.resolver.report(written.place(name.span), kind);
         return None;
     }
-    let (row, giving) = match (known, giving) {
-        (Some((_, row)), _) => (row, None),
-        (None, Some(members)) => {
-            let pieces = given(case, written, &formula, members)?;
-            (row_over_components(case, &pieces)?, Some(forms(case, &pieces)))
-        }
-        (None, None) => {
-            let pieces = taken_apart(case, at, &formula)?;
-            let row = row_over_components(case, &pieces)?;
-            case.scope.reagents.keep(&name.value, &formula, &row);
-            (row, None)
-        }
-    };
-    Some(Reagent { formula, at, amount: 0.0, row, giving })
+    Some(formula)
+}
+
+type Forms = Option<Vec<(usize, Rational64)>>;
+
+/// What one mole of a reagent is over the components, and the forms that `giving` names.
+pub(super) fn row(
+    case: &mut CaseResolver,
+    written: &Written,
+    name: &Name,
+    formula: &Arc<Formula>,
+    giving: Option<&[Member]>,
+) -> Option<(Row, Forms)> {
+    if let Some(members) = giving {
+        let pieces = given(case, written, formula, members)?;
+        return Some((row_over_components(case, &pieces)?, Some(forms(case, &pieces))));
+    }
+    if let Some((_, row)) = case.scope.reagents.get(&name.value) {
+        return Some((row, None));
+    }
+    let pieces = taken_apart(case, written.place(name.span), formula)?;
+    let row = row_over_components(case, &pieces)?;
+    case.scope.reagents.keep(&name.value, formula, &row);
+    Some((row, None))
 }
 
 /// A reagent as species; a defect where it is not to be had from those in scope.
@@ -177,7 +226,7 @@ fn taken_apart(
 fn given(
     case: &mut CaseResolver,
     written: &Written,
-    formula: &std::sync::Arc<Formula>,
+    formula: &Arc<Formula>,
     members: &[Member],
 ) -> Option<Vec<(usize, Rational64)>> {
     let mut both = case.resolver.side(written, members, 1)?;

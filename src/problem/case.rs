@@ -66,6 +66,8 @@ pub fn resolve(statements: &[Written], merging: Vec<Defect>, scope: Arc<Scope>) 
         reagents: Vec::new(),
         held: Vec::new(),
         solids: Vec::new(),
+        targets: Vec::new(),
+        found: None,
         balances: Vec::new(),
         expectations: Vec::new(),
         curves: Vec::new(),
@@ -95,9 +97,7 @@ pub fn resolve(statements: &[Written], merging: Vec<Defect>, scope: Arc<Scope>) 
     }
     for written in statements {
         let unsupported = match written.statement() {
-            Statement::Hold { by: Some(_), .. } => "hold … by",
             Statement::Blend { .. } => "blend",
-            Statement::Add { stock: Some(_), .. } => "add … of",
             _ => continue,
         };
         let at = written.whole();

@@ -6,7 +6,7 @@ use super::amounts;
 use super::case::CaseResolver;
 use super::defect::{DefectKind, Expected};
 use super::effective::{Written, over_words};
-use super::model::{AmountSource, Held, HeldWhat, Problem, Reagent, ShownUnit};
+use super::model::{AmountSource, Held, HeldWhat, Problem, Reagent, ShownUnit, carried};
 use super::quantity::{Read, with_unit_of};
 use super::reaction::TemperatureIssue;
 use super::scope::PROTON;
@@ -91,7 +91,10 @@ impl Curve {
                 }
             }
             Sweep::Reagent(reagent) => {
-                moved.reagents[reagent].amount = x;
+                let scale = moved.scale;
+                let swept = &mut moved.reagents[reagent];
+                swept.amount = x;
+                swept.brings = x * carried(swept.stock.as_deref(), scale);
                 for index in 0..moved.reagents[reagent].row.len() {
                     let (component, _) = moved.reagents[reagent].row[index];
                     let amount = &mut moved.amounts[component];
@@ -243,7 +246,16 @@ fn swept(
             return None;
         }
         // One that is not among them has its defect already.
-        Over::Reagent(name) => Sweep::Reagent(reagent(case, problem, name)?),
+        Over::Reagent(name) => {
+            let index = reagent(case, problem, name)?;
+            if let Some(target) = problem.reagents[index].target {
+                let by = problem.targets.get(target).map(|target| target.by);
+                let name = problem.reagents[index].formula.name.clone();
+                case.resolver.report(written.place(span), DefectKind::CurveNotFree { name, by });
+                return None;
+            }
+            Sweep::Reagent(index)
+        }
         Over::Total(name) => {
             let component = case.component(written, name)?;
             let amount = &problem.amounts[component];
@@ -253,6 +265,7 @@ fn swept(
                 AmountSource::Nothing => None,
                 AmountSource::Reagents => amount.at,
                 AmountSource::Held(held) => problem.held.get(held).map(|held| held.at),
+                AmountSource::Found(target) => problem.targets.get(target).map(|found| found.by),
             };
             let name = format!("total {}", case.scope.components[component].formula.name);
             case.resolver.report(written.place(span), DefectKind::CurveNotFree { name, by });

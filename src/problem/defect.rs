@@ -227,6 +227,13 @@ pub enum DefectKind {
         right: Rational64,
     },
 
+    /// An amount counts a stock whose density is not known; `known` is between which
+    /// percentages that substance's is.
+    DensityMissing {
+        stock: String,
+        known: Option<(f64, f64)>,
+    },
+
     // Closure.
     /// A held value that leaves nothing free to meet it.
     NothingFree {
@@ -245,6 +252,16 @@ pub enum DefectKind {
     /// `precipitated X` of a solid that is neither to form nor in excess.
     SolidNotStated {
         name: String,
+    },
+    /// A reagent or total that two targets are to find.
+    FoundTwice {
+        name: String,
+        other: Place,
+    },
+    /// A target that what is to meet it has no part in.
+    NotMoved {
+        subject: String,
+        by: String,
     },
     /// A quantity that is an outcome and can only be expected.
     CannotBeHeld {
@@ -324,6 +341,12 @@ pub enum Conserved {
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
 pub enum Expected {
     Concentration,
+    /// An amount to be put in; of a stock, a volume or a mass of it.
+    Dose,
+    /// How strong a stock is.
+    Strength,
+    /// Mass of a stock per volume.
+    Density,
     /// Charge equivalents count too, as for alkalinity.
     Equivalents,
     Temperature,

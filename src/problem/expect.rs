@@ -18,16 +18,7 @@ pub fn read(case: &mut CaseResolver, problem: &Problem) -> Vec<Expectation> {
             continue;
         };
         let Some(mut sought) = sought(case, problem, written, subject) else { continue };
-        let formula = match sought {
-            Sought::Concentration(species) | Sought::Precipitated(species) => {
-                Some(case.scope.species[species].clone())
-            }
-            Sought::Total(component) => Some(case.scope.components[component].formula.clone()),
-            _ => None,
-        };
-        let expected = takes(sought);
-        let mut value =
-            |quantity: &Quantity| read_as(case, written, quantity, expected, formula.as_deref());
+        let mut value = |quantity: &Quantity| value(case, problem, written, quantity, sought);
         let limit = match relation {
             Relation::Equal(quantity) => value(quantity).map(|read| {
                 let tolerance = read
@@ -109,6 +100,28 @@ fn confidence(case: &mut CaseResolver, written: &Written, quantity: &Quantity) -
     None
 }
 
+/// A value that a quantity is held against, in its base units.
+pub(super) fn value(
+    case: &mut CaseResolver,
+    problem: &Problem,
+    written: &Written,
+    quantity: &Quantity,
+    sought: Sought,
+) -> Option<Read> {
+    let formula = match sought {
+        Sought::Concentration(species) | Sought::Precipitated(species) => {
+            Some(case.scope.species[species].clone())
+        }
+        Sought::Total(component) => Some(case.scope.components[component].formula.clone()),
+        Sought::Dose(reagent) => {
+            let reagent = &problem.reagents[reagent];
+            return case.dose(written, quantity, &reagent.formula, reagent.stock.as_deref());
+        }
+        _ => None,
+    };
+    read_as(case, written, quantity, takes(sought), formula.as_deref())
+}
+
 fn takes(sought: Sought) -> Expected {
     match sought {
         Sought::Ph
@@ -120,7 +133,8 @@ fn takes(sought: Sought) -> Expected {
         | Sought::Precipitated(_)
         | Sought::Total(_)
         | Sought::IonicStrength
-        | Sought::BufferCapacity => Expected::Concentration,
+        | Sought::BufferCapacity
+        | Sought::Dose(_) => Expected::Concentration,
         Sought::Pressure(_) => Expected::Pressure,
         Sought::Fraction { .. } => Expected::Share,
         Sought::Alkalinity => Expected::Equivalents,
@@ -143,7 +157,7 @@ fn read_as(
     }
 }
 
-fn sought(
+pub(super) fn sought(
     case: &mut CaseResolver,
     problem: &Problem,
     written: &Written,
@@ -220,9 +234,15 @@ fn sought(
         Subject::IonicStrength => Sought::IonicStrength,
         Subject::BufferCapacity => Sought::BufferCapacity,
         Subject::ChargeImbalance => Sought::ChargeImbalance { equivalents: false },
-        Subject::Dose(_) => {
-            case.resolver.report(written.whole(), DefectKind::NotYetSupported { what: "dose" });
-            return None;
+        Subject::Dose(name) => {
+            let formula = case.resolver.formula(written, name)?;
+            let known = problem.reagents.iter().position(|r| r.formula.name == formula.name);
+            let Some(reagent) = known else {
+                let kind = DefectKind::NotAdded { name: formula.name.clone() };
+                case.resolver.report(written.place(name.span), kind);
+                return None;
+            };
+            Sought::Dose(reagent)
         }
     })
 }

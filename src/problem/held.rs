@@ -6,7 +6,7 @@ use super::case::CaseResolver;
 use super::defect::{DefectKind, Expected};
 use super::effective::{Written, subject_key};
 use super::input::Input;
-use super::model::{AmountSource, Held, HeldWhat, Problem};
+use super::model::{AmountSource, Held, HeldWhat, Problem, Sought};
 use super::quantity::Read;
 use super::scope::PROTON;
 use super::sparse::coefficient;
@@ -15,9 +15,36 @@ use crate::chemistry::formula::Phase;
 use crate::text::tree::{Name, Quantity, Statement, Subject};
 
 pub fn read(case: &mut CaseResolver, problem: &mut Problem) {
+    read_values(case, problem);
+    // A target of what is held already has nothing to find.
+    for target in &problem.targets {
+        let held = problem.held.iter().find(|held| is_same(case, held.what, target.sought));
+        if let Some(held) = held {
+            let kind = DefectKind::HeldTwice { subject: target.words.clone(), other: held.at };
+            case.resolver.report(target.at, kind);
+        }
+    }
+}
+
+/// Whether a held value and a target are about one quantity.
+fn is_same(case: &CaseResolver, held: HeldWhat, sought: Sought) -> bool {
+    let is_proton = |species: usize| case.scope.species[species].is_proton();
+    match (held, sought) {
+        (HeldWhat::Ph(_), Sought::Ph | Sought::Poh) | (HeldWhat::Pe(_), Sought::Pe) => true,
+        (HeldWhat::Ph(_), Sought::Activity(species)) => is_proton(species),
+        (HeldWhat::Pressure { species, .. }, Sought::Pressure(other))
+        | (HeldWhat::Activity { species, .. }, Sought::Activity(other))
+        | (HeldWhat::Concentration { species, .. }, Sought::Concentration(other)) => {
+            species == other
+        }
+        _ => false,
+    }
+}
+
+fn read_values(case: &mut CaseResolver, problem: &mut Problem) {
     for written in case.statements {
         let Statement::Hold { subject, value, by } = written.statement() else { continue };
-        // `by` is a target and no held value; it is reported elsewhere.
+        // With `by` it is a target and no held value.
         if by.is_some() {
             continue;
         }

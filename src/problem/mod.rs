@@ -30,6 +30,8 @@ mod solids;
 pub mod sort;
 pub mod sparse;
 mod split;
+mod stock;
 pub mod stoichiometry;
+mod target;
 pub mod uncertain;
 mod written;

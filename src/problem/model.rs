@@ -3,6 +3,7 @@
 use std::sync::Arc;
 
 use num_rational::Rational64;
+use num_traits::ToPrimitive;
 
 use super::curve::Curve;
 use super::defect::Defect;
@@ -13,6 +14,7 @@ use super::uncertain::Uncertain;
 use crate::chemistry::activity::ActivityKind;
 use crate::chemistry::formula::Formula;
 use crate::chemistry::quantity::Scale;
+use crate::chemistry::stock::Stock;
 use crate::text::span::Place;
 
 #[derive(Clone, Debug)]
@@ -32,6 +34,10 @@ pub struct Problem {
     pub reagents: Vec<Reagent>,
     pub held: Vec<Held>,
     pub solids: Vec<Solid>,
+    pub targets: Vec<Target>,
+    /// What meets the targets, in their order: mol per litre or kilogram of the water treated.
+    /// None until it is found.
+    pub found: Option<Vec<f64>>,
     pub balances: Vec<WrittenBalance>,
     pub expectations: Vec<Expectation>,
     /// Each over something else.
@@ -69,6 +75,8 @@ pub enum AmountSource {
     Reagents,
     /// A held value makes it unknown: the index of that value.
     Held(usize),
+    /// A target makes it unknown, by `by total`: the index of that target.
+    Found(usize),
 }
 
 /// A substance put in.
@@ -76,12 +84,45 @@ pub enum AmountSource {
 pub struct Reagent {
     pub formula: Arc<Formula>,
     pub at: Place,
-    /// mol per litre or kilogram; several `add` lines of one reagent add up.
+    /// mol per litre or kilogram of the water treated; several `add` lines of one reagent add
+    /// up. Zero while a target has yet to find it.
     pub amount: f64,
+    /// What it brings along where it is a solution: litres per litre, or kilograms of water
+    /// per kilogram, of the water treated.
+    pub brings: f64,
+    /// How it is bought, where all lines of it say the same.
+    pub stock: Option<Arc<Stock>>,
+    /// The target that finds its amount.
+    pub target: Option<usize>,
     /// What one mole of it is, over the components of the scope, water left out.
     pub row: Row,
     /// The forms that `giving` names, by stoichiometry row; else it falls into the fewest.
     pub giving: Option<Vec<(usize, Rational64)>>,
+}
+
+/// A value that one amount is to be found for: `hold pH = 11 by NaOH`.
+#[derive(Clone, Debug, PartialEq)]
+pub struct Target {
+    /// The quantity, in `hold`.
+    pub at: Place,
+    /// What follows `by`.
+    pub by: Place,
+    /// In canonical words, such as `pH`.
+    pub words: String,
+    pub sought: Sought,
+    /// In base units.
+    pub wanted: f64,
+    pub unit: Option<ShownUnit>,
+    pub unknown: Unknown,
+}
+
+/// What a target makes unknown.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub enum Unknown {
+    /// The amount of a reagent of the problem.
+    Reagent(usize),
+    /// The total of a component of the scope.
+    Total(usize),
 }
 
 #[derive(Clone, Debug, PartialEq)]
@@ -247,6 +288,8 @@ pub enum Sought {
     ChargeImbalance {
         equivalents: bool,
     },
+    /// What is put in of a reagent of the problem, per litre or kilogram of the water treated.
+    Dose(usize),
 }
 
 impl Problem {
@@ -271,10 +314,60 @@ impl Problem {
         &self.scope.species[solid.species].name
     }
 
+    /// Litres of mixture, or kilograms of water in it, for one of the water treated: what the
+    /// stocks bring along comes on top. Volumes are taken to add up.
+    pub fn dilution(&self) -> f64 {
+        1.0 + self.reagents.iter().map(|reagent| reagent.brings).sum::<f64>()
+    }
+
+    /// Whether targets have yet to find their amounts.
+    pub fn lacks_doses(&self) -> bool {
+        self.found.is_none() && !self.targets.is_empty()
+    }
+
+    /// Puts in what was found, target by target.
+    pub fn put_in(&mut self, found: Vec<f64>) {
+        for (target, &amount) in self.targets.iter().zip(&found) {
+            match target.unknown {
+                Unknown::Reagent(index) => {
+                    let reagent = &mut self.reagents[index];
+                    let more = amount - reagent.amount;
+                    reagent.amount = amount;
+                    reagent.brings = amount * carried(reagent.stock.as_deref(), self.scale);
+                    for &(j, n) in &reagent.row {
+                        let brought = &mut self.amounts[j];
+                        if brought.source == AmountSource::Reagents {
+                            let more = more * n.to_f64().unwrap_or(0.0);
+                            brought.total = Some(brought.total.unwrap_or(0.0) + more);
+                        }
+                    }
+                }
+                Unknown::Total(component) => self.amounts[component].total = Some(amount),
+            }
+        }
+        self.found = Some(found);
+    }
+
+    /// The name of what a target makes unknown: `NaOH`, `total CO3^2-`.
+    pub fn unknown_name(&self, unknown: Unknown) -> String {
+        match unknown {
+            Unknown::Reagent(index) => self.reagents[index].formula.name.clone(),
+            Unknown::Total(j) => format!("total {}", self.scope.components[j].formula.name),
+        }
+    }
+
     /// The name of a row of the stoichiometry.
     pub fn row_name(&self, row: usize) -> &str {
         &self.scope.stoichiometry.species[row].name
     }
+}
+
+/// What one mole from a stock brings along, in litres or in kilograms of water.
+pub fn carried(stock: Option<&Stock>, scale: Scale) -> f64 {
+    stock.map_or(0.0, |stock| match scale {
+        Scale::PerLitre => stock.litres(),
+        Scale::PerKilogram => stock.kilograms_of_water(),
+    })
 }
 
 impl Limit {

@@ -32,7 +32,12 @@ pub struct Read {
 
 impl Resolver {
     /// The unit of a quantity; a defect where it is missing or none.
-    fn unit(&mut self, written: &Written, quantity: &Quantity, expected: Expected) -> Option<Unit> {
+    pub fn unit(
+        &mut self,
+        written: &Written,
+        quantity: &Quantity,
+        expected: Expected,
+    ) -> Option<Unit> {
         let Some(name) = &quantity.unit else {
             self.report(written.place(quantity.span), DefectKind::MissingUnit { expected });
             return None;
@@ -51,7 +56,7 @@ impl Resolver {
         }
     }
 
-    fn wrong_dimension(
+    pub fn wrong_dimension(
         &mut self,
         written: &Written,
         quantity: &Quantity,
@@ -307,7 +312,7 @@ impl CaseResolver<'_> {
 
     /// What brings a value of this scale onto the file's, a power of the density of water, and
     /// that power. The first concentration in the file sets its scale.
-    fn onto_scale(&mut self, scale: Scale, at: Place) -> (f64, f64) {
+    pub fn onto_scale(&mut self, scale: Scale, at: Place) -> (f64, f64) {
         let Some((own, first)) = self.scale else {
             self.scale = Some((scale, at));
             return (1.0, 0.0);
@@ -360,7 +365,7 @@ fn without_formula(unit: Unit, basis: Option<&Basis>) -> Result<(f64, Scale), Co
 }
 
 /// The uncertainty in base units, from an absolute one in the written unit or a percentage.
-fn uncertainty(quantity: &Quantity, to_base: impl Fn(f64) -> f64) -> Option<f64> {
+pub fn uncertainty(quantity: &Quantity, to_base: impl Fn(f64) -> f64) -> Option<f64> {
     let uncertainty = quantity.uncertainty.as_ref()?;
     // Of a quantity in percent it is in percent too: 62 % ± 2 % is 60 to 64 %.
     let in_percent = quantity.unit.as_ref().is_some_and(|unit| unit.value == "%");

@@ -1,6 +1,7 @@
 //! An answer as text for a terminal.
 
 use super::curve::Traced;
+use super::dose;
 use super::expectation::{
     Standing, asked, is_met, probability_words, uncertain_words, value_words, verdict,
 };
@@ -38,6 +39,7 @@ pub fn answer(
     text += &main_figures(stated.outcome, solved, style);
     let ledger = Ledger::new(stated.outcome);
     for (title, body) in [
+        ("Doses", dose::table(problem, style)),
         ("Dissolved", species(problem, solved, style)),
         ("Components", components(problem, solved, style)),
         ("Put in and held", put_in(problem, solved, style)),
@@ -194,6 +196,10 @@ fn put_in(problem: &Problem, solved: &Solved, style: Style) -> String {
     let mut table = Table::new(&[("", Side::Left), ("", Side::Left), ("", Side::Left)]);
     for reagent in &problem.reagents {
         let amount = concentration(reagent.amount, problem.scale);
+        let amount = match dose::stock_words(problem, reagent) {
+            Some(stock) => format!("{amount}, {stock}"),
+            None => amount,
+        };
         table.row([reagent.formula.name.as_str().into(), amount.into(), Cell::default()]);
     }
     for (held, &brought) in problem.held.iter().zip(&solved.answer.amounts) {

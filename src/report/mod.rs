@@ -7,6 +7,7 @@ pub mod check_json;
 pub mod constant;
 pub mod curve;
 pub mod derivation;
+pub mod dose;
 pub mod editor;
 pub mod inline;
 pub mod junit;

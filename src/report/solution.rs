@@ -7,6 +7,7 @@ use serde::Serialize;
 
 use super::cautions::{self, CautionJson};
 use super::curve::{CurveJson, Traced};
+use super::dose::{self, DoseJson};
 use super::expectation::{Standing, verdict};
 use super::sheet::{Ledger, Sheet};
 use super::sheet_json::SheetJson;
@@ -59,7 +60,7 @@ struct Answer<'a> {
     components: Vec<Component<'a>>,
     solids: Vec<Solid<'a>>,
     gases: Vec<Gas<'a>>,
-    doses: Vec<Dose<'a>>,
+    doses: Vec<DoseJson>,
     balances: Vec<SheetJson>,
     expectations: Vec<Expectation<'a>>,
     curves: Vec<CurveJson<'a>>,
@@ -104,12 +105,6 @@ struct Gas<'a> {
     name: &'a str,
     #[serde(skip_serializing_if = "Option::is_none")]
     partial_pressure_atm: Option<f64>,
-}
-
-#[derive(Serialize)]
-struct Dose<'a> {
-    reagent: &'a str,
-    amount: f64,
 }
 
 #[derive(Serialize)]
@@ -159,7 +154,8 @@ pub fn status(state: &State) -> &'static str {
     match state {
         State::Solved(_) => "solved",
         State::NothingStated | State::NotWellPosed => "not-well-posed",
-        State::Failed(Failure::Infeasible { .. } | Failure::Endless { .. }) => "no-solution",
+        State::Failed(Failure::Infeasible { .. } | Failure::Endless { .. })
+        | State::OutOfReach(_) => "no-solution",
         State::Failed(Failure::Dependent { .. }) => "not-well-posed",
         State::Failed(Failure::NotConverged { .. } | Failure::Cancelled) => "not-converged",
     }
@@ -205,7 +201,7 @@ fn answer<'a>(
                 partial_pressure_atm: value(Sought::Pressure(s)),
             })
             .collect(),
-        doses: Vec::new(),
+        doses: dose::json(problem),
         balances: sheets.iter().map(Sheet::json).collect(),
         expectations: problem
             .expectations

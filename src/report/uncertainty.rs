@@ -3,7 +3,7 @@
 
 use serde::Serialize;
 
-use super::expectation::{probability_words, quantity_words, verdict};
+use super::expectation::{probability_words, uncertain_quantity_words, verdict};
 use super::figures::decimals;
 use super::source::{Source, Stated};
 use super::style::Style;
@@ -53,7 +53,7 @@ pub fn table(source: &Source, checked: &Checked, stated: Stated, style: Style) -
     ]);
     for Told { words, sought, unit, budget } in told(stated.outcome) {
         let size = budget.standard_uncertainty;
-        let value = quantity_words(problem, sought, unit, budget.value, size);
+        let value = uncertain_quantity_words(problem, sought, unit, budget.value, size);
         let mut head = [Cell::from(words), Cell::from(value)].into_iter();
         let mut row = |share: String, from: String, line: String| {
             let mut next = || head.next().unwrap_or_default();
@@ -113,7 +113,7 @@ pub fn hover(outcome: &Outcome, expectation: &Expectation) -> Option<String> {
         return None;
     }
     let unit = expectation.unit.as_ref();
-    let value = quantity_words(problem, expectation.sought, unit, budget.value, size);
+    let value = uncertain_quantity_words(problem, expectation.sought, unit, budget.value, size);
     let mut lines = vec![format!("**{}** · {value}", expectation.words)];
     let verdict = verdict(outcome, expectation);
     if let Some(probability) = verdict.probability {

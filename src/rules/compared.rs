@@ -30,7 +30,15 @@ pub fn compared(problem: &Problem, brought: Option<&[f64]>, same_sources: bool) 
                 .chain(&balance.right)
                 .any(|term| matches!(term.what, model::WrittenWhat::Amount { .. }))
     };
-    let wanted = |balance: &WrittenBalance| balance.complete && is_new(balance);
+    // While doses are to be found, no amount of theirs can be right or wrong.
+    let can_tell = |balance: &WrittenBalance| {
+        let sides = balance.left.iter().chain(&balance.right);
+        let is_amount =
+            |term: &model::WrittenTerm| matches!(term.what, model::WrittenWhat::Amount { .. });
+        !problem.lacks_doses() || !sides.into_iter().any(is_amount)
+    };
+    let wanted =
+        |balance: &WrittenBalance| balance.complete && is_new(balance) && can_tell(balance);
     if !problem.balances.iter().any(wanted) {
         return Vec::new();
     }

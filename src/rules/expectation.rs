@@ -92,10 +92,20 @@ pub fn written(context: &Context, expectation: &Expectation) -> Option<(Place, S
 
 /// `9.321`, `117 mg/L as N`, `62.3 %`.
 pub fn value_words(problem: &Problem, expectation: &Expectation, value: f64) -> String {
-    if let Some(unit) = &expectation.unit {
+    quantity_words(problem, expectation.unit.as_ref(), expectation.sought, value)
+}
+
+/// A quantity in the unit that the file wrote it in.
+pub fn quantity_words(
+    problem: &Problem,
+    unit: Option<&ShownUnit>,
+    sought: Sought,
+    value: f64,
+) -> String {
+    if let Some(unit) = unit {
         return format!("{} {}", significant(value / unit.factor, 4), unit.words);
     }
-    match expectation.sought {
+    match sought {
         Sought::Ph | Sought::Poh | Sought::Pe => decimals(value, 3),
         Sought::SaturationIndex(_) => decimals(value, 2),
         Sought::Fraction { .. } => percent(value),
@@ -113,7 +123,7 @@ pub fn uncertain_words(
     value: f64,
     standard_uncertainty: f64,
 ) -> String {
-    quantity_words(
+    uncertain_quantity_words(
         problem,
         expectation.sought,
         expectation.unit.as_ref(),
@@ -123,7 +133,7 @@ pub fn uncertain_words(
 }
 
 /// The same of any quantity, in base units where the file has written none.
-pub fn quantity_words(
+pub fn uncertain_quantity_words(
     problem: &Problem,
     sought: Sought,
     unit: Option<&ShownUnit>,

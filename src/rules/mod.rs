@@ -23,6 +23,7 @@ mod reactions;
 mod reagents;
 mod statements;
 mod syntax;
+mod targets;
 
 /// The families of rules, in the order of `lyate explain`.
 pub static FAMILIES: &[catalogue::Family] = &[
@@ -33,6 +34,7 @@ pub static FAMILIES: &[catalogue::Family] = &[
     components::FAMILY,
     reagents::FAMILY,
     closure::FAMILY,
+    targets::FAMILY,
     balances::FAMILY,
     answers::FAMILY,
     curves::FAMILY,

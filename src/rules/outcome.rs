@@ -9,10 +9,12 @@ use super::context::Context;
 use super::finding::Finding;
 use crate::balance::BalanceKind;
 use crate::equilibrium::build::system;
+use crate::equilibrium::dose::meet;
 use crate::equilibrium::phases::{Assemblage, Near, equilibrate, is_settled};
 use crate::equilibrium::quantities::Solved;
 use crate::equilibrium::several::other_states;
 use crate::equilibrium::system::{Failure, System};
+use crate::equilibrium::target::Missed;
 use crate::equilibrium::uncertainty::{Budget, Uncertainties};
 use crate::equilibrium::weighed::{Balances, Weighed};
 use crate::problem::case::resolve;
@@ -41,6 +43,8 @@ pub enum State {
     /// Something found wrong has to be put right first.
     NotWellPosed,
     Failed(Failure),
+    /// No amounts meet the targets.
+    OutOfReach(Missed),
 }
 
 impl Outcome {
@@ -79,14 +83,19 @@ impl Outcome {
         near: Option<&Solved>,
         cancel: &AtomicBool,
     ) -> Option<Outcome> {
-        let problem = resolve(&in_force.statements, in_force.defects.clone(), scope);
+        let mut problem = resolve(&in_force.statements, in_force.defects.clone(), scope);
         let state = if !problem.states_problem {
             State::NothingStated
         } else if problem.blocked {
             State::NotWellPosed
         } else {
-            match answer(system(&problem), near, cancel) {
-                Ok(solved) => State::Solved(Box::new(solved)),
+            let solved = if problem.targets.is_empty() {
+                answer(system(&problem), near, cancel).map(|s| State::Solved(Box::new(s)))
+            } else {
+                dosed(&mut problem, near, cancel)
+            };
+            match solved {
+                Ok(state) => state,
                 Err(Failure::Cancelled) => return None,
                 Err(failure) => State::Failed(failure),
             }
@@ -115,24 +124,53 @@ fn answer(system: System, near: Option<&Solved>, cancel: &AtomicBool) -> Result<
     if let Some(near) = near.filter(|near| near.answers(&system)) {
         return Ok(near.clone());
     }
+    let solved = with_others(state(system, near, cancel)?, cancel)?;
+    // Where there are several, the one shown must not hang on what was shown before.
+    if near.is_some() && !solved.others.is_empty() {
+        return self::answer(solved.asked(), None, cancel);
+    }
+    Ok(solved)
+}
+
+/// A state of a system.
+fn state(system: System, near: Option<&Solved>, cancel: &AtomicBool) -> Result<Solved, Failure> {
     // Only an answer over the same components and species is a place to start from.
-    let start = near.filter(|near| near.is_shaped_like(&system));
+    let rows =
+        |system: &System| (system.totals.len(), system.species.len(), system.candidates.len());
+    let start = near.filter(|near| rows(&near.system) == rows(&system));
     let start = start.map(|near| Near { answer: &near.answer, formed: &near.formed });
-    let is_near = start.is_some();
     let Assemblage { system, answer, formed } = equilibrate(system, start, cancel)?;
-    let others: Vec<(f64, f64)> = match other_states(&system, &answer, cancel) {
+    Ok(Solved { system, answer, formed, others: Vec::new(), dosed: None })
+}
+
+/// With what is known of other states.
+fn with_others(mut solved: Solved, cancel: &AtomicBool) -> Result<Solved, Failure> {
+    let Solved { system, answer, formed, .. } = &solved;
+    solved.others = match other_states(system, answer, cancel) {
         Ok(others) => others
             .iter()
-            .filter(|other| is_settled(&system, &formed, other))
+            .filter(|other| is_settled(system, formed, other))
             .map(|other| (other.ph(), other.ionic_strength))
             .collect(),
         Err(Failure::Cancelled) => return Err(Failure::Cancelled),
         Err(_) => Vec::new(),
     };
-    // Where there are several, the one shown must not hang on what was shown before.
-    let solved = Solved { system, answer, formed, others };
-    if is_near && !solved.others.is_empty() {
-        return self::answer(solved.asked(), None, cancel);
-    }
     Ok(solved)
+}
+
+/// Finds the amounts that meet the targets of a problem, and puts them in.
+fn dosed(
+    problem: &mut Problem,
+    near: Option<&Solved>,
+    cancel: &AtomicBool,
+) -> Result<State, Failure> {
+    let found = meet(problem, near, |system, near| state(system, near, cancel))?;
+    Ok(match found {
+        Ok(solved) => {
+            let solved = with_others(solved, cancel)?;
+            problem.put_in(solved.dosed.as_ref().map(|d| d.amounts.clone()).unwrap_or_default());
+            State::Solved(Box::new(solved))
+        }
+        Err(missed) => State::OutOfReach(missed),
+    })
 }

@@ -262,7 +262,7 @@ pub struct Uncertainty {
 #[derive(Clone, Debug, PartialEq)]
 pub enum By {
     /// `by NaOH`, or `by dose of 30 % NaOH`.
-    Reagent(Name, Option<Strength>),
+    Reagent(Name, Option<Box<Strength>>),
     Total(Name),
 }
 

@@ -69,7 +69,7 @@ impl System {
         let brings = self.row(counts);
         let split = split_into_species(&brings, &self.stoichiometry);
         let forms = split.map(|split| split.forms).unwrap_or_default();
-        self.recipe.reagents.push(Reagent { brings, forms, amount });
+        self.recipe.reagents.push(Reagent { brings, forms, amount: Some(amount) });
         self.reagents.push(name.to_owned());
         self
     }

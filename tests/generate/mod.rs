@@ -277,7 +277,7 @@ pub fn statement() -> BoxedStrategy<Statement> {
     let q = || quantity(true);
     let by = prop_oneof![
         (formula(), prop::option::of(strength()))
-            .prop_map(|(name, stock)| By::Reagent(name, stock)),
+            .prop_map(|(name, stock)| By::Reagent(name, stock.map(Box::new))),
         formula().prop_map(By::Total)
     ];
     let relation = prop_oneof![

@@ -45,7 +45,7 @@ impl Case {
 pub fn solve_again(problem: &Problem) -> Solved {
     let system = system(problem);
     let answer = solve(&system, None, &AtomicBool::new(false)).unwrap();
-    Solved { system, answer, others: Vec::new() }
+    Solved { system, answer, formed: Vec::new(), others: Vec::new(), dosed: None }
 }
 
 /// The problem with one input moved by so much, resolved by its definition and nothing
@@ -113,7 +113,7 @@ fn hold_poh(problem: &Problem, moved: &mut Problem) {
     let water = problem
         .scope
         .reactions_in_use()
-        .find(|(_, reaction)| reaction.key() == ["H+", "OH-"])
+        .find(|(_, reaction)| reaction.key == "H+ OH-")
         .map(|(r, _)| r)
         .unwrap();
     let by = moved.log_k[water] - problem.log_k[water];

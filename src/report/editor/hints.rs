@@ -5,11 +5,13 @@
 use std::ops::Range;
 
 use crate::balance::written::Verdict;
+use crate::chemistry::quantity::Scale;
 use crate::equilibrium::quantities::Solved;
-use crate::problem::model::{Expectation, Problem};
+use crate::problem::model::{Expectation, Problem, Target};
 use crate::report::balance;
+use crate::report::dose;
 use crate::report::expectation::{is_met, value_words};
-use crate::report::figures::{concentration, decimals, percent, significant};
+use crate::report::figures::{concentration, decimals, percent, scale_unit, significant};
 use crate::report::inline::Hint;
 use crate::report::solids::fate_words;
 use crate::rules::check::Checked;
@@ -101,6 +103,12 @@ fn statement(
                 hints.extend(expected(outcome, solved, expectation, offset));
             }
         }
+        Statement::Hold { by: Some(_), .. } => {
+            for (target, amount) in dose::found(problem).filter(|(target, _)| here(&target.at)) {
+                let offset = placed.start + target.by.span.end as usize;
+                hints.push(found(problem, target, amount, offset));
+            }
+        }
         Statement::Balance { .. } => {
             let at = problem.balances.iter().position(|balance| here(&balance.at));
             let offset = placed.start + first_line(&placed.parsed.text);
@@ -148,6 +156,21 @@ fn written_balance(
         text: format!("{head} · {}", balance::rests_on(problem, implied)),
         tooltip: Some(balance::long(problem, implied)),
     })
+}
+
+/// What was found for a target.
+fn found(problem: &Problem, target: &Target, amount: f64, offset: usize) -> Hint {
+    let text = dose::line(problem, target, amount);
+    let per = match problem.scale {
+        Scale::PerLitre => "litre",
+        Scale::PerKilogram => "kilogram",
+    };
+    let tooltip = format!(
+        "{} {} for each {per} of the water treated. Try it on a sample before it is dosed.",
+        significant(amount, 6),
+        scale_unit(problem.scale)
+    );
+    Hint { offset, text, tooltip: Some(tooltip) }
 }
 
 /// The form of a component that holds most of it; none where it has one form only.

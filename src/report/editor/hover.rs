@@ -6,10 +6,12 @@ use crate::chemistry::activity::ActivityKind;
 use crate::chemistry::formula::{Phase, canonical};
 use crate::equilibrium::quantities::Solved;
 use crate::problem::curve::Curve;
-use crate::problem::model::Problem;
+use crate::problem::model::{Problem, Reagent};
 use crate::problem::reaction::{Origin, Reaction};
 use crate::problem::scope::PROTON;
 use crate::report::curve::ends;
+use crate::report::dose;
+use crate::report::expectation::quantity_words;
 use crate::report::figures::{
     celsius, charge, concentration, decimals, log10_of_exp, percent, significant,
 };
@@ -144,7 +146,7 @@ fn species(outcome: &Outcome, name: &str) -> Option<String> {
     }
     lines.push(head);
     if let Some(reagent) = reagent {
-        lines.push(format!("put in: {}", concentration(reagent.amount, problem.scale)));
+        lines.extend(put_in(problem, reagent));
     }
     match (scope.find(name), outcome.solved()) {
         (Some(s), Some(solved)) if scope.belongs(s) => {
@@ -180,6 +182,24 @@ fn species(outcome: &Outcome, name: &str) -> Option<String> {
         }
     }
     Some(lines.join("\n\n"))
+}
+
+/// How much of a reagent is put in, as it is weighed and pumped, and for what.
+fn put_in(problem: &Problem, reagent: &Reagent) -> Vec<String> {
+    let sought = reagent.target.and_then(|index| problem.targets.get(index));
+    if sought.is_some() && problem.found.is_none() {
+        return Vec::new();
+    }
+    let mut amount = format!("put in: {}", concentration(reagent.amount, problem.scale));
+    if let Some(stock) = dose::stock_words(problem, reagent) {
+        amount += &format!(", {stock}");
+    }
+    let found = sought.map(|target| {
+        let unit = target.unit.as_ref();
+        let wanted = quantity_words(problem, unit, target.sought, target.wanted);
+        format!("found for {} {wanted}; try it on a sample before it is dosed", target.words)
+    });
+    std::iter::once(amount).chain(found).collect()
 }
 
 /// Concentration, activity and share of a dissolved species; pressure of a gas; saturation

@@ -39,7 +39,13 @@ fn find(context: &Context, found: &mut Vec<Finding<Place>>) {
             total if total.starts_with("total ") => {
                 format!("to give it, write `{total} = …` without `hold`")
             }
-            other => format!("write `expect {other} = …` to see whether it is met"),
+            dose if dose.starts_with("dose ") => {
+                format!("to give it, write `add {} …`", dose.trim_start_matches("dose "))
+            }
+            other => format!(
+                "write `expect {other} = …` to see whether it is met, or name after `by` what is \
+                 to meet it"
+            ),
         };
         let message = format!("`{subject}` is an outcome and cannot be held by itself");
         found.push(RULE.at(defect.at, message).with_help(help));

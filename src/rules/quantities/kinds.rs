@@ -7,6 +7,9 @@ use crate::problem::defect::Expected;
 pub fn needed(expected: Expected) -> &'static str {
     match expected {
         Expected::Concentration => "a concentration",
+        Expected::Dose => "an amount to be put in",
+        Expected::Strength => "a strength",
+        Expected::Density => "a density",
         Expected::Equivalents => "a concentration of charge or of matter",
         Expected::Temperature => "a temperature",
         Expected::Pressure => "a pressure",
@@ -22,6 +25,9 @@ pub fn needed(expected: Expected) -> &'static str {
 pub fn units(expected: Expected) -> &'static [&'static str] {
     match expected {
         Expected::Concentration => &["mmol/L", "mol/L", "mg/L"],
+        Expected::Dose => &["mmol/L", "mg/L"],
+        Expected::Strength => &["%", "g/L", "mol/L"],
+        Expected::Density => &["kg/L"],
         Expected::Equivalents => &["meq/L", "mmol/L", "mg/L as CaCO3"],
         Expected::Temperature => &["°C", "K"],
         Expected::Pressure => &["atm", "µatm", "kPa"],

@@ -53,8 +53,15 @@ fn find(context: &Context, found: &mut Vec<Finding<Place>>) {
         if added.contains(name) {
             continue;
         }
-        let message = format!("`{name}` is not put in, so there is no `added {name}`");
-        let mut finding = RULE.at(defect.at, message).with_help(format!("write `add {name} …`"));
+        let statement = context.statement(defect.at).map(|written| written.statement());
+        let is_dose = matches!(statement, Some(Statement::Expect { .. }));
+        let (what, help) = if is_dose {
+            ("dose", format!("write `hold … by {name}` to find it"))
+        } else {
+            ("added", format!("write `add {name} …`"))
+        };
+        let message = format!("`{name}` is not put in, so there is no `{what} {name}`");
+        let mut finding = RULE.at(defect.at, message).with_help(help);
         let nearest = added
             .iter()
             .map(|other| (strsim::osa_distance(other, name), other))

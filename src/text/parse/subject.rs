@@ -87,7 +87,7 @@ pub(super) fn hold<'s>() -> impl Rule<'s, Statement> {
     let total = word("total", Expect::Found).ignore_then(name(Expect::Formula)).map(By::Total);
     let dose = word("dose", Expect::Found)
         .ignore_then(of_stock())
-        .map(|(reagent, strength)| By::Reagent(reagent, Some(strength)));
+        .map(|(reagent, strength)| By::Reagent(reagent, Some(Box::new(strength))));
     let by = word("by", Expect::Nothing)
         .ignore_then(choice((total, dose, name(Expect::Found).map(|name| By::Reagent(name, None)))))
         .map_with(|by, extra| Spanned::new(by, span_of(extra.slice())));
