@@ -7,9 +7,9 @@ use num_traits::ToPrimitive;
 use super::build::ln_formation;
 use super::sensitivity;
 use super::system::{Answer, System};
+use crate::chemistry::constant::volts_per_pe;
 use crate::problem::model::{Problem, Sought, WrittenBalance, WrittenTerm, WrittenWhat};
-use crate::problem::reaction::STANDARD;
-use crate::problem::scope::{PROTON, WATER};
+use crate::problem::scope::WATER;
 
 /// A problem with its numbers and its answer.
 #[derive(Clone, Debug)]
@@ -94,29 +94,6 @@ impl Solved {
         if sum > 0.0 { 100.0 * (cations - anions) / sum } else { 0.0 }
     }
 
-    /// Alkalinity by Dickson (1981), eq per litre or kilogram: proton acceptors formed from
-    /// acids of pKa 4.5 and above (25 °C, zero ionic strength), over proton donors. The
-    /// zero level of each component is the form that dominates at pH 4.5.
-    pub fn alkalinity(&self, problem: &Problem) -> f64 {
-        let levels = zero_levels(problem);
-        self.system
-            .species
-            .iter()
-            .zip(&self.answer.concentrations)
-            .map(|(species, c)| {
-                let deficit: f64 = species
-                    .row
-                    .iter()
-                    .map(|&(j, n)| {
-                        let n = n.to_f64().unwrap_or(0.0);
-                        if j == PROTON { -n } else { n * levels[j] }
-                    })
-                    .sum();
-                deficit * c
-            })
-            .sum()
-    }
-
     /// mol per litre or kilogram of strong base for one unit of pH.
     pub fn buffer_capacity(&self) -> Option<f64> {
         sensitivity::buffer_capacity(&self.system, &self.answer)
@@ -144,7 +121,13 @@ impl Solved {
                 let (_, share) = self.shares(component).find(|&(i, _)| i == row)?;
                 share / self.total(component)
             }
+            Sought::Potential => {
+                self.value(problem, Sought::Pe)? * volts_per_pe(problem.kelvin)
+            }
             Sought::Alkalinity => self.alkalinity(problem),
+            Sought::Acidity => self.acidity(problem),
+            Sought::Hardness => self.hardness(problem),
+            Sought::CarbonateHardness => self.carbonate_hardness(problem),
             Sought::IonicStrength => self.answer.ionic_strength,
             Sought::BufferCapacity => self.buffer_capacity()?,
             Sought::ChargeImbalance { equivalents: false } => self.imbalance_percent(),
@@ -156,31 +139,4 @@ impl Solved {
         // Minus infinity is the saturation index of a solid whose ions are absent.
         (!value.is_nan()).then_some(value)
     }
-}
-
-/// Protons that the zero-level form of each component holds, per one of the component.
-fn zero_levels(problem: &Problem) -> Vec<f64> {
-    let scope = &problem.scope;
-    let mut best = vec![(f64::NEG_INFINITY, 0.0); scope.components.len()];
-    let ln_h = -4.5 * LN_10;
-    for (row, &s) in scope.stoichiometry.species.iter().zip(&scope.dissolved) {
-        let mut others = row.row.iter().filter(|&&(j, _)| j != PROTON);
-        let (Some(&(j, n)), None) = (others.next(), others.next()) else { continue };
-        if n != num_rational::Rational64::from_integer(1) {
-            continue;
-        }
-        let protons = row
-            .row
-            .iter()
-            .find(|&&(j, _)| j == PROTON)
-            .map_or(0.0, |p| p.1.to_f64().unwrap_or(0.0));
-        let log_k = |r: usize| scope.reactions[r].log_k(STANDARD).map_or(0.0, |(k, _)| k);
-        let made = scope.belonging.made[s].as_ref();
-        let ln_k = made.map_or(0.0, |made| LN_10 * made.log_beta(log_k));
-        let height = ln_k + protons * ln_h;
-        if height > best[j].0 {
-            best[j] = (height, protons);
-        }
-    }
-    best.into_iter().map(|(_, protons)| protons).collect()
 }

@@ -286,8 +286,12 @@ pub enum Expected {
     Concentration,
     /// Charge equivalents count too, as for alkalinity.
     Equivalents,
+    /// Degrees of hardness count too.
+    Hardness,
     Temperature,
     Pressure,
+    /// Of an electrode.
+    Potential,
     MolarEnergy,
     MolarEntropy,
     /// A plain number.

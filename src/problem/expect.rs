@@ -76,13 +76,15 @@ fn takes(sought: Sought) -> Expected {
         | Sought::Pe
         | Sought::Activity(_)
         | Sought::SaturationIndex(_) => Expected::Plain,
+        Sought::Potential => Expected::Potential,
         Sought::Concentration(_)
         | Sought::Total(_)
         | Sought::IonicStrength
         | Sought::BufferCapacity => Expected::Concentration,
         Sought::Pressure(_) => Expected::Pressure,
         Sought::Fraction { .. } => Expected::Share,
-        Sought::Alkalinity => Expected::Equivalents,
+        Sought::Alkalinity | Sought::Acidity => Expected::Equivalents,
+        Sought::Hardness | Sought::CarbonateHardness => Expected::Hardness,
         Sought::ChargeImbalance { .. } => Expected::Imbalance,
     }
 }
@@ -98,6 +100,8 @@ fn read_as(
         Expected::Pressure => case.pressure_read(written, quantity),
         Expected::Plain | Expected::Share => case.number(written, quantity, expected),
         Expected::Imbalance => case.imbalance(written, quantity),
+        Expected::Potential => case.potential(written, quantity),
+        Expected::Hardness => case.hardness(written, quantity),
         _ => case.concentration(written, quantity, formula, expected),
     }
 }
@@ -122,7 +126,7 @@ fn sought(
     Some(match &subject.value {
         Subject::Ph => Sought::Ph,
         Subject::Poh => Sought::Poh,
-        Subject::Pe => {
+        Subject::Pe | Subject::Potential => {
             if case.scope.component("e-").is_none() {
                 let kind = DefectKind::DoesNotBelong {
                     name: "e-".into(),
@@ -132,7 +136,7 @@ fn sought(
                 case.resolver.report(written.place(subject.span), kind);
                 return None;
             }
-            Sought::Pe
+            if subject.value == Subject::Pe { Sought::Pe } else { Sought::Potential }
         }
         Subject::Concentration(name) => Sought::Concentration(dissolved(case, name)?),
         Subject::Activity(name) => {
@@ -164,6 +168,9 @@ fn sought(
             }
         }
         Subject::Alkalinity => Sought::Alkalinity,
+        Subject::Acidity => Sought::Acidity,
+        Subject::Hardness => Sought::Hardness,
+        Subject::CarbonateHardness => Sought::CarbonateHardness,
         Subject::IonicStrength => Sought::IonicStrength,
         Subject::BufferCapacity => Sought::BufferCapacity,
         Subject::ChargeImbalance => Sought::ChargeImbalance { equivalents: false },

@@ -8,6 +8,7 @@ use super::effective::{Written, subject_key};
 use super::model::{AmountSource, Held, HeldWhat, Problem};
 use super::scope::PROTON;
 use super::sparse::coefficient;
+use crate::chemistry::constant::pe_of_potential;
 use crate::chemistry::formula::Phase;
 use crate::text::tree::{Name, Quantity, Statement, Subject};
 
@@ -99,8 +100,11 @@ fn what(
             });
             (!coefficient(&made.row, PROTON).is_zero()).then_some(HeldWhat::Ph(-log_k - poh))
         }
-        Subject::Pe => {
-            let pe = case.plain(written, value)?;
+        Subject::Pe | Subject::Potential => {
+            let pe = match subject {
+                Subject::Pe => case.plain(written, value)?,
+                _ => pe_of_potential(case.potential(written, value)?.value, case.kelvin),
+            };
             if case.scope.component("e-").is_none() {
                 let kind = DefectKind::DoesNotBelong {
                     name: "e-".into(),
@@ -138,6 +142,9 @@ fn what(
         Subject::Total(_)
         | Subject::Fraction(_)
         | Subject::Alkalinity
+        | Subject::Acidity
+        | Subject::Hardness
+        | Subject::CarbonateHardness
         | Subject::IonicStrength
         | Subject::BufferCapacity
         | Subject::SaturationIndex(_)

@@ -186,6 +186,8 @@ pub enum Sought {
     Ph,
     Poh,
     Pe,
+    /// V against the standard hydrogen electrode.
+    Potential,
     /// A species of the scope.
     Concentration(usize),
     Activity(usize),
@@ -199,6 +201,10 @@ pub enum Sought {
         component: usize,
     },
     Alkalinity,
+    Acidity,
+    /// mol of alkaline earths, two equivalents each.
+    Hardness,
+    CarbonateHardness,
     IonicStrength,
     BufferCapacity,
     /// In percent, or in equivalents.

@@ -10,6 +10,7 @@ use super::source::{Source, Stated};
 use super::style::{Paint, Style};
 use super::summary::counted;
 use super::table::{Cell, Side, Table};
+use super::waters::{hardness_words, ion_balance};
 use crate::chemistry::activity::ActivityKind;
 use crate::chemistry::formula::Phase;
 use crate::chemistry::quantity::Scale;
@@ -37,6 +38,7 @@ pub fn answer(
         ("Put in and held", put_in(problem, style)),
         ("Gases", gases(problem, solved, style)),
         ("Solids", solids(problem, solved, style)),
+        ("Ion balance", ion_balance(problem, solved, style)),
         ("Charge balance", sheet(&ledger.charge(), problem.scale, style)),
         ("Proton condition", protons(&ledger, problem, style)),
         ("Expectations", expectations(source, checked, stated, solved, style)),
@@ -76,6 +78,10 @@ fn main_figures(problem: &Problem, solved: &Solved, style: Style) -> String {
     if let Some(pe) = solved.value(problem, Sought::Pe) {
         row("pe", decimals(pe, 3), held(holds(|what| matches!(what, HeldWhat::Pe(_)))));
     }
+    if let Some(volts) = solved.value(problem, Sought::Potential) {
+        let against = "against the standard hydrogen electrode";
+        row("potential", format!("{} V", decimals(volts, 3)), against);
+    }
     let given = if problem.ionic_strength.is_some() { "given" } else { "" };
     row("ionic strength", concentration(solved.answer.ionic_strength, problem.scale), given);
     let per = match problem.scale {
@@ -86,6 +92,11 @@ fn main_figures(problem: &Problem, solved: &Solved, style: Style) -> String {
     // What is left of sums that cancel is nothing.
     let alkalinity = solved.alkalinity(problem);
     row("alkalinity", milli(if alkalinity.abs() < 1e-12 { 0.0 } else { alkalinity }), "");
+    let hardness = solved.hardness(problem);
+    if hardness > 0.0 {
+        let size = concentration(hardness, problem.scale);
+        row("hardness", size, &hardness_words(problem, hardness));
+    }
     if let Some(capacity) = solved.value(problem, Sought::BufferCapacity) {
         row("buffer capacity", format!("{} per pH", concentration(capacity, problem.scale)), "");
     }

@@ -17,6 +17,7 @@ pub mod style;
 pub mod summary;
 pub mod table;
 pub mod terminal;
+mod waters;
 pub mod wrap;
 
 pub use crate::rules::{expectation, figures};

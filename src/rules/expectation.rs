@@ -51,6 +51,7 @@ pub fn value_words(problem: &Problem, expectation: &Expectation, value: f64) -> 
     match expectation.sought {
         Sought::Ph | Sought::Poh | Sought::Pe => decimals(value, 3),
         Sought::SaturationIndex(_) => decimals(value, 2),
+        Sought::Potential => format!("{} V", decimals(value, 3)),
         Sought::Fraction { .. } => percent(value),
         Sought::ChargeImbalance { equivalents: false } => format!("{} %", decimals(value, 2)),
         Sought::Activity(_) => significant(value, 4),

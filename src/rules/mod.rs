@@ -7,6 +7,7 @@ pub mod context;
 pub mod expectation;
 pub mod figures;
 pub mod finding;
+pub mod ion_balance;
 pub mod outcome;
 pub mod words;
 
