@@ -74,7 +74,7 @@ impl Recipe {
             amount: reagent.amount,
         });
         let totals = problem.amounts.iter().map(|amount| match amount.source {
-            AmountSource::Total => amount.total,
+            AmountSource::Total | AmountSource::Blend => amount.total,
             AmountSource::Nothing | AmountSource::Reagents | AmountSource::Held(_) => None,
         });
         let mut recipe =

@@ -37,6 +37,8 @@ pub fn system(problem: &Problem) -> System {
     totals[PROTON] = -(1..totals.len())
         .map(|j| f64::from(scope.components[j].formula.charge) * totals[j])
         .sum::<f64>();
+    // An analysis whose pH was held brings the charge that it leaves open.
+    totals[PROTON] += problem.blend.as_ref().map_or(0.0, |blend| blend.charge());
     System {
         species,
         totals,

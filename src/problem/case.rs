@@ -7,6 +7,7 @@ use num_traits::ToPrimitive;
 
 use super::amounts;
 use super::belong::combined;
+use super::blend::{self, Waters};
 use super::charge_reading;
 use super::defect::{Defect, DefectKind, Expected};
 use super::effective::Written;
@@ -37,7 +38,13 @@ pub struct CaseResolver<'a> {
 }
 
 /// Resolves the statements in force. `merging` are the defects found while merging.
-pub fn resolve(statements: &[Written], merging: Vec<Defect>, scope: Arc<Scope>) -> Problem {
+/// `waters` are those of the parts of the blend in force.
+pub fn resolve(
+    statements: &[Written],
+    merging: Vec<Defect>,
+    scope: Arc<Scope>,
+    waters: &Waters,
+) -> Problem {
     let mut case = CaseResolver {
         resolver: Resolver::within(scope.clone()),
         scope: &scope,
@@ -59,6 +66,7 @@ pub fn resolve(statements: &[Written], merging: Vec<Defect>, scope: Arc<Scope>) 
         ionic_strength: None,
         scale: Scale::PerLitre,
         amounts: Vec::new(),
+        blend: None,
         reagents: Vec::new(),
         held: Vec::new(),
         balances: Vec::new(),
@@ -68,7 +76,15 @@ pub fn resolve(statements: &[Written], merging: Vec<Defect>, scope: Arc<Scope>) 
         states_problem: statements.iter().any(|w| states_a_problem(w.statement())),
         blocked: false,
     };
+    let blend = blend::read(&mut case, waters);
+    if let Some(blend) = &blend {
+        // Unless the file says another.
+        case.kelvin = blend.kelvin();
+        problem.kelvin = case.kelvin;
+        problem.temperature_at = Some(blend.at);
+    }
     conditions(&mut case, &mut problem);
+    problem.blend = blend.and_then(|blend| blend::over_components(&mut case, blend));
     constants(&mut case, &mut problem);
     amounts::read(&mut case, &mut problem);
     held::read(&mut case, &mut problem);
@@ -88,7 +104,6 @@ pub fn resolve(statements: &[Written], merging: Vec<Defect>, scope: Arc<Scope>) 
             Statement::Saturate { .. } => "saturate with",
             Statement::Curve { .. } => "curve",
             Statement::Hold { by: Some(_), .. } => "hold … by",
-            Statement::Blend { .. } => "blend",
             Statement::Add { stock: Some(_), .. } => "add … of",
             Statement::Expect { confidence: Some(_), .. } => "confidence",
             _ => continue,

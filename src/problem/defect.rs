@@ -240,6 +240,37 @@ pub enum DefectKind {
         what: &'static str,
     },
 
+    // Blends.
+    /// Shares in percent that do not come to 100.
+    BlendSharesSum {
+        percent: f64,
+    },
+    /// Some shares in percent, others in parts.
+    BlendSharesMixed,
+    /// All shares are zero.
+    BlendOfNothing,
+    /// The file, or this case of it, has no answer; `why` is its first error.
+    BlendedWaterNotSolved {
+        path: PathBuf,
+        case: Option<String>,
+        why: Option<String>,
+    },
+    BlendedCaseMissing {
+        path: PathBuf,
+        case: String,
+        cases: Vec<String>,
+    },
+    /// What a blended water holds and no component here does.
+    BlendedComponentMissing {
+        file: String,
+        names: Vec<String>,
+    },
+    /// A `total` of a component that the blend gives.
+    TotalAndBlend {
+        name: String,
+        blend: Place,
+    },
+
     // Files.
     UnknownSet {
         name: String,

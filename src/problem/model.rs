@@ -4,6 +4,7 @@ use std::sync::Arc;
 
 use num_rational::Rational64;
 
+use super::blend::Blend;
 use super::defect::Defect;
 use super::scope::Scope;
 use super::sparse::Row;
@@ -26,6 +27,8 @@ pub struct Problem {
     pub scale: Scale,
     /// Of each component of the scope.
     pub amounts: Vec<Amount>,
+    /// The waters that are put in.
+    pub blend: Option<Blend>,
     pub reagents: Vec<Reagent>,
     pub held: Vec<Held>,
     pub balances: Vec<WrittenBalance>,
@@ -56,6 +59,8 @@ pub enum AmountSource {
     /// A `total` statement.
     Total,
     Reagents,
+    /// Blended waters, and the reagents put in on top.
+    Blend,
     /// A held value makes it unknown: the index of that value.
     Held(usize),
 }

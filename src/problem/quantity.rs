@@ -324,7 +324,7 @@ impl CaseResolver<'_> {
 
     /// What brings a value of this scale onto the file's: one, or the density of water. The
     /// first concentration in the file sets its scale.
-    fn onto_scale(&mut self, scale: Scale, at: Place) -> f64 {
+    pub fn onto_scale(&mut self, scale: Scale, at: Place) -> f64 {
         let Some((own, first)) = self.scale else {
             self.scale = Some((scale, at));
             return 1.0;

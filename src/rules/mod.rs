@@ -9,10 +9,13 @@ pub mod figures;
 pub mod finding;
 pub mod ion_balance;
 pub mod outcome;
+pub mod plan;
+pub mod waters;
 pub mod words;
 
 mod answers;
 mod balances;
+mod blends;
 mod closure;
 mod components;
 mod files;
@@ -31,6 +34,7 @@ pub static FAMILIES: &[catalogue::Family] = &[
     reactions::FAMILY,
     components::FAMILY,
     reagents::FAMILY,
+    blends::FAMILY,
     closure::FAMILY,
     balances::FAMILY,
     answers::FAMILY,
