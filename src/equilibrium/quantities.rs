@@ -107,7 +107,11 @@ impl Solved {
                 let hydroxide = problem.scope.find("OH-")?;
                 -self.ln_activity(problem, hydroxide)? / LN_10
             }
-            Sought::Pe => -self.answer.ln_components[problem.scope.component("e-")?] / LN_10,
+            Sought::Pe => {
+                let pe = -self.answer.ln_components[problem.scope.component("e-")?] / LN_10;
+                // Where nothing is there in two states, electrons have no activity.
+                pe.is_finite().then_some(pe)?
+            }
             Sought::Concentration(species) => {
                 self.answer.concentrations[problem.scope.row_of(species)?]
             }

@@ -12,6 +12,7 @@ use super::defect::{DefectKind, Expected};
 use super::effective::Written;
 use super::scope::PROTON;
 use crate::chemistry::quantity::Scale;
+use crate::chemistry::unit::{Dimension, Unit};
 use crate::text::span::Place;
 use crate::text::tree::{BlendPart, Statement};
 
@@ -175,7 +176,9 @@ pub fn read(case: &mut CaseResolver, waters: &Waters) -> Option<Blend> {
 fn shares(case: &mut CaseResolver, written: &Written, parts: &[BlendPart]) -> Option<Vec<f64>> {
     let mut shares = Vec::with_capacity(parts.len());
     for part in parts {
-        let share = case.number(written, &part.share, Expected::Share)?.value;
+        case.number(written, &part.share, Expected::Share)?;
+        // As written: 70 % over 100 % is 0.7 to the last digit.
+        let share = part.share.number.value;
         if share < 0.0 {
             let why = "a share is zero or more";
             let at = written.place(part.share.span);
@@ -186,15 +189,15 @@ fn shares(case: &mut CaseResolver, written: &Written, parts: &[BlendPart]) -> Op
     }
     let in_percent = parts.iter().filter(|part| part.share.unit.is_some()).count();
     let sum: f64 = shares.iter().sum();
-    let kind = match in_percent {
-        0 if sum > 0.0 => {
-            shares.iter_mut().for_each(|share| *share /= sum);
-            return Some(shares);
-        }
-        0 => DefectKind::BlendOfNothing,
-        n if n < parts.len() => DefectKind::BlendSharesMixed,
-        _ if (sum - 1.0).abs() <= ROUNDING => return Some(shares),
-        _ => DefectKind::BlendSharesSum { percent: 100.0 * sum },
+    let kind = if (1..parts.len()).contains(&in_percent) {
+        DefectKind::BlendSharesMixed
+    } else if in_percent > 0 && (sum - 100.0).abs() > ROUNDING {
+        DefectKind::BlendSharesSum { percent: sum }
+    } else if sum > 0.0 {
+        shares.iter_mut().for_each(|share| *share /= sum);
+        return Some(shares);
+    } else {
+        DefectKind::BlendOfNothing
     };
     case.resolver.report(written.whole(), kind);
     None
@@ -204,6 +207,9 @@ fn shares(case: &mut CaseResolver, written: &Written, parts: &[BlendPart]) -> Op
 /// them holds.
 pub fn over_components(case: &mut CaseResolver, mut blend: Blend) -> Option<Blend> {
     let mut complete = true;
+    if case.scale.is_none() {
+        case.scale = own_scale(case.statements);
+    }
     for portion in &mut blend.portions {
         let factor = case.onto_scale(portion.water.scale, portion.at);
         portion.charge = factor * portion.water.charge;
@@ -232,6 +238,26 @@ pub fn over_components(case: &mut CaseResolver, mut blend: Blend) -> Option<Blen
     }
     case.all_amounts_read &= complete;
     complete.then_some(blend)
+}
+
+/// The scale of the first amount that the file itself states: it goes before those of the
+/// waters, which are read first.
+fn own_scale(statements: &[Written]) -> Option<(Scale, Place)> {
+    statements.iter().find_map(|written| {
+        let (Statement::Total { value: amount, .. } | Statement::Add { amount, stock: None, .. }) =
+            written.statement()
+        else {
+            return None;
+        };
+        let scale = match Unit::parse(&amount.unit.as_ref()?.value).ok()?.dimension {
+            Dimension::AmountPerKilogram
+            | Dimension::MassPerKilogram
+            | Dimension::MassFraction => Scale::PerKilogram,
+            other if other.is_concentration() => Scale::PerLitre,
+            _ => return None,
+        };
+        Some((scale, written.place(amount.span)))
+    })
 }
 
 /// What one mole is over the components of this problem, protons left out: the charge says

@@ -155,8 +155,9 @@ fn sought(
         Subject::Fraction(name) => {
             let species = dissolved(case, name)?;
             let made = case.scope.belonging.made[species].as_ref()?;
-            let others: Vec<_> =
-                made.row.iter().map(|&(j, _)| j).filter(|&j| j != super::scope::PROTON).collect();
+            let electron = case.scope.component("e-");
+            let counts = |&j: &usize| j != super::scope::PROTON && Some(j) != electron;
+            let others: Vec<_> = made.row.iter().map(|&(j, _)| j).filter(counts).collect();
             match others[..] {
                 [component, ..] => Sought::Fraction { species, component },
                 [] => {

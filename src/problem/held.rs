@@ -74,7 +74,12 @@ fn released(
 ) -> Result<usize, Option<crate::text::span::Place>> {
     let row = case.scope.belonging.made[species].as_ref().map(|made| made.row.clone());
     let row = row.unwrap_or_default();
-    let others = || row.iter().filter(|&&(j, _)| j != PROTON);
+    // Electrons last: what is not said of them is that none were given or taken.
+    let electron = case.scope.component("e-");
+    let others = || {
+        let of_matter = row.iter().filter(move |&&(j, _)| j != PROTON && Some(j) != electron);
+        of_matter.chain(row.iter().filter(move |&&(j, _)| Some(j) == electron))
+    };
     others()
         .find(|&&(j, _)| problem.amounts[j].source == AmountSource::Nothing)
         .map(|&(j, _)| j)

@@ -9,7 +9,7 @@ use super::expectation::verdict;
 use super::sheet::{Ledger, Sheet};
 use super::sheet_json::SheetJson;
 use super::source::{FileReport, Source, Stated};
-use super::waters::{IonBalanceJson, ion_balance_json};
+use super::waters::{IonBalanceJson, PortionJson, blend_json, ion_balance_json};
 use crate::chemistry::formula::Phase;
 use crate::equilibrium::quantities::Solved;
 use crate::equilibrium::system::Failure;
@@ -64,6 +64,8 @@ struct Answer<'a> {
     charge_imbalance: ChargeImbalance,
     #[serde(skip_serializing_if = "Option::is_none")]
     ion_balance: Option<IonBalanceJson>,
+    #[serde(skip_serializing_if = "Vec::is_empty")]
+    blend: Vec<PortionJson<'a>>,
     species: Vec<Species<'a>>,
     components: Vec<Component<'a>>,
     solids: Vec<Solid<'a>>,
@@ -190,6 +192,7 @@ fn answer<'a>(
         buffer_capacity: value(Sought::BufferCapacity),
         charge_imbalance: charge_imbalance(problem, solved),
         ion_balance: ion_balance_json(problem, solved),
+        blend: blend_json(problem),
         species: species(problem, solved),
         components: components(problem, solved),
         solids: in_phase(problem, |phase| matches!(phase, Phase::Solid(_)))

@@ -1,15 +1,93 @@
-//! What is told of a water as a laboratory reports it: its ion balance and its hardness.
+//! What is told of a water as a laboratory reports it, and of the waters it is blended from:
+//! its ion balance and its hardness, and the share, pH and alkalinity of each.
 
 use serde::Serialize;
 
-use super::figures::{decimals, significant};
+use super::figures::{celsius, decimals, equivalents, significant};
 use super::style::{Paint, Style};
 use super::table::{Cell, Side, Table};
 use crate::chemistry::quantity::CALCIUM_CARBONATE;
 use crate::chemistry::unit::GERMAN_DEGREE;
 use crate::equilibrium::quantities::Solved;
+use crate::problem::blend::Portion;
 use crate::problem::model::Problem;
 use crate::rules::ion_balance::{CRITERION_SOURCE, Criterion, IonBalance, per_litre};
+
+/// The waters of a blend, and what comes of them.
+pub fn blend(problem: &Problem, solved: &Solved, style: Style) -> String {
+    let Some(blend) = &problem.blend else { return String::new() };
+    let mut table = Table::new(&[
+        ("share", Side::Right),
+        ("", Side::Left),
+        ("°C", Side::Right),
+        ("pH", Side::Right),
+        ("alkalinity", Side::Right),
+    ]);
+    for portion in &blend.portions {
+        let water = &portion.water;
+        table.row([
+            share_words(portion.share).into(),
+            source_words(portion).into(),
+            degrees(water.kelvin).into(),
+            decimals(water.ph, 3).into(),
+            equivalents(water.alkalinity, water.scale).into(),
+        ]);
+    }
+    table.row([
+        Cell::default(),
+        "this water".into(),
+        degrees(problem.kelvin).into(),
+        decimals(solved.ph(), 3).into(),
+        equivalents(solved.alkalinity(problem), problem.scale).into(),
+    ]);
+    table.render(style)
+}
+
+/// `"river.lyate", case "winter"`.
+pub fn source_words(portion: &Portion) -> String {
+    match &portion.case {
+        Some(case) => format!("\"{}\", case \"{case}\"", portion.file),
+        None => format!("\"{}\"", portion.file),
+    }
+}
+
+/// `70 %`, `33.3 %`.
+pub fn share_words(share: f64) -> String {
+    let words = decimals(100.0 * share, 2);
+    format!("{} %", words.trim_end_matches('0').trim_end_matches('.'))
+}
+
+fn degrees(kelvin: f64) -> String {
+    celsius(kelvin).trim_end_matches(" °C").to_owned()
+}
+
+#[derive(Serialize)]
+pub struct PortionJson<'a> {
+    file: &'a str,
+    #[serde(skip_serializing_if = "Option::is_none")]
+    case: Option<&'a str>,
+    /// Of one.
+    share: f64,
+    /// Kelvin.
+    temperature: f64,
+    ph: f64,
+    /// eq per litre or kilogram.
+    alkalinity: f64,
+}
+
+pub fn blend_json(problem: &Problem) -> Vec<PortionJson<'_>> {
+    let portions = problem.blend.iter().flat_map(|blend| &blend.portions);
+    portions
+        .map(|portion| PortionJson {
+            file: &portion.file,
+            case: portion.case.as_deref(),
+            share: portion.share,
+            temperature: portion.water.kelvin,
+            ph: portion.water.ph,
+            alkalinity: portion.water.alkalinity,
+        })
+        .collect()
+}
 
 /// A hardness in mol as the trade reports it: `168 mg/L as CaCO3, 9.4 °dH`.
 pub fn hardness_words(problem: &Problem, hardness: f64) -> String {
