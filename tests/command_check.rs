@@ -59,6 +59,23 @@ fn fail_on_decides_the_exit_code() {
     assert_eq!(ends(&["check", "sound.lyate", "--fail-on", "sometimes"]), 2);
 }
 
+/// A caution is shown, and fails a check only where somebody asks for that.
+#[test]
+fn cautions_fail_no_check_unasked() {
+    let text = "component Na+\nactivity ideal\nadd NaOH 0.6 mol/L\n";
+    let folder = folder(&[("boil-out.lyate", text)]);
+    let output = run(folder.path(), &["check"]);
+    assert_eq!(code(&output), 0);
+    insta::assert_snapshot!(stdout(&output));
+    let ends = |fail_on: &str| code(&run(folder.path(), &["check", "--fail-on", fail_on]));
+    assert_eq!([ends("error"), ends("warning"), ends("note")], [0, 0, 0]);
+    assert_eq!([ends("caution"), ends("warning,caution")], [1, 1]);
+    let form = |form: &str| stdout(&run(folder.path(), &["check", "--output", form]));
+    assert!(form("json").contains("\"severity\": \"caution\""), "{}", form("json"));
+    assert!(form("sarif").contains("\"level\": \"note\""), "{}", form("sarif"));
+    assert!(!form("junit").contains("<failure"), "{}", form("junit"));
+}
+
 #[test]
 fn a_path_that_is_not_there_is_a_matter_of_usage() {
     let folder = folder(&[("rinse.lyate", RINSE)]);

@@ -101,7 +101,7 @@ case \"weak\"
     total NH3 = 5 mmol/L
 
 case \"strong\"
-    total NH3 = 50 mmol/L
+    total NH3 = 15 mmol/L
 ";
     let folder = folder(&[("bath.lyate", text)]);
     let output = run(folder.path(), &["solve", "bath.lyate", "--output", "json"]);

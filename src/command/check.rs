@@ -8,8 +8,9 @@ use super::reply::{Complaint, Reply};
 use super::terminal::style;
 use crate::report::source::{FileReport, Reading};
 use crate::report::summary::Summary;
+use crate::report::wrap::wrapped;
 use crate::report::{check_json, junit, sarif, terminal};
-use crate::rules::finding::{LocatedFinding, Severity};
+use crate::rules::finding::{Failing, LocatedFinding, Severity};
 
 /// Check problem files, and solve what can be solved
 ///
@@ -36,9 +37,17 @@ pub struct Arguments {
     /// each file that holds .git or lyate.toml, or the file's own
     #[arg(long, value_name = "FOLDER", verbatim_doc_comment)]
     root: Option<PathBuf>,
-    /// The mildest finding that makes the exit code 1
-    #[arg(long, value_name = "SEVERITY", value_enum, default_value_t = FailOn::Error)]
-    fail_on: FailOn,
+    /// The mildest fault that makes the exit code 1; cautions do only
+    /// where `caution` is named, alone or as in `warning,caution`
+    #[arg(
+        long,
+        value_name = "SEVERITY",
+        value_enum,
+        value_delimiter = ',',
+        default_value = "error",
+        verbatim_doc_comment
+    )]
+    fail_on: Vec<FailOn>,
     /// How to tell what was found
     #[arg(long, value_name = "FORM", value_enum, default_value_t = Form::Text)]
     output: Form,
@@ -49,6 +58,7 @@ enum FailOn {
     Error,
     Warning,
     Note,
+    Caution,
 }
 
 #[derive(Clone, Copy, PartialEq, Eq, clap::ValueEnum)]
@@ -63,6 +73,8 @@ enum Form {
     Junit,
 }
 
+const WIDTH: usize = 100;
+
 pub fn run(arguments: &Arguments) -> Result<Reply, Complaint> {
     let mut paths = arguments.paths.clone();
     if paths.is_empty() {
@@ -71,16 +83,12 @@ pub fn run(arguments: &Arguments) -> Result<Reply, Complaint> {
     let found = find(&paths).map_err(Complaint)?;
     let files = Checker::new(arguments.root.as_ref())?.check_all(&found);
     let summary = Summary::of(&files);
-    let fail_on = match arguments.fail_on {
-        FailOn::Error => Severity::Error,
-        FailOn::Warning => Severity::Warning,
-        FailOn::Note => Severity::Note,
-    };
+    let fail_on = failing(&arguments.fail_on);
     let unread = files.iter().any(|file| matches!(file.reading, Reading::Missing));
     let code = if unread {
         2
     } else {
-        u8::from(summary.count(fail_on) > 0 || summary.solved < summary.problems)
+        u8::from(summary.failing(fail_on) > 0 || summary.solved < summary.problems)
     };
     let written = |text: Result<String, String>| match text {
         Ok(text) => Ok(text.trim_end().to_owned() + "\n"),
@@ -101,14 +109,27 @@ pub fn run(arguments: &Arguments) -> Result<Reply, Complaint> {
     Ok(reply)
 }
 
-/// Errors and warnings in their text, notes on a line each, and a line that sums up.
+fn failing(named: &[FailOn]) -> Failing {
+    let fault = |named: &FailOn| match named {
+        FailOn::Error | FailOn::Caution => Severity::Error,
+        FailOn::Warning => Severity::Warning,
+        FailOn::Note => Severity::Note,
+    };
+    Failing {
+        at_least: named.iter().map(fault).min().unwrap_or(Severity::Error),
+        cautions: named.iter().any(|named| matches!(named, FailOn::Caution)),
+    }
+}
+
+/// Errors and warnings in their text, notes and cautions on a line each, and a line that
+/// sums up.
 fn text(files: &[FileReport], summary: &Summary) -> String {
     let style = style();
     let mut text = String::new();
     let mut before_are_notes = true;
     for file in files {
         let (notes, others): (Vec<&LocatedFinding>, Vec<&LocatedFinding>) =
-            file.findings.iter().partition(|finding| finding.severity == Severity::Note);
+            file.findings.iter().partition(|finding| finding.severity <= Severity::Note);
         for (finding, cases) in by_place(&others) {
             text += if before_are_notes && !text.is_empty() { "\n" } else { "" };
             text += &terminal::likewise(finding, &cases, &file.source, style);
@@ -121,7 +142,13 @@ fn text(files: &[FileReport], summary: &Summary) -> String {
         }
     }
     text += if before_are_notes && !text.is_empty() { "\n" } else { "" };
-    text + &summary.words(style) + "\n"
+    text += &summary.words(style);
+    if summary.cautions > 0 {
+        let words = "Cautions find no fault with a file; where they speak, safety data sheets, \
+                     local codes and licensed practice go first.";
+        text += &format!("\n{}", wrapped(words, 0, 0, WIDTH));
+    }
+    text + "\n"
 }
 
 /// Findings of one rule at one place in several cases, told together.

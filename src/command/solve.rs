@@ -4,6 +4,7 @@ use super::chosen::Asked;
 use super::reply::{Complaint, Reply};
 use super::terminal::style;
 use crate::report::answer::{answer, conditions, overview};
+use crate::report::cautions;
 use crate::report::expectation::verdict;
 use crate::report::solution::json;
 use crate::report::source::{FileReport, Stated};
@@ -91,7 +92,12 @@ fn text(file: &FileReport, problems: &[Stated], style: Style) -> String {
                 format!("{conditions}: {state}\n\n{}", hindrance(file, *stated, style))
             }
         };
-        parts.push(format!("{head}\n{body}"));
+        let mut part = format!("{head}\n{body}");
+        let cautions = cautions::lines(stated.outcome, style);
+        if !cautions.is_empty() {
+            part = format!("{}\n\n{cautions}", part.trim_end());
+        }
+        parts.push(part);
     }
     if problems.len() > 1 {
         parts.push(overview(problems, style));

@@ -89,11 +89,12 @@ fn finding<'a>(finding: &'a LocatedFinding, source: &'a Source) -> Finding<'a> {
     }
 }
 
-/// A severity's word in data: `error`, `warning`, `note`.
+/// A severity's word in data: `error`, `warning`, `note`, `caution`.
 pub fn severity(severity: Severity) -> &'static str {
     match severity {
         Severity::Error => "error",
         Severity::Warning => "warning",
         Severity::Note => "note",
+        Severity::Caution => "caution",
     }
 }

@@ -7,15 +7,15 @@ use quick_junit::{NonSuccessKind, Report, SerializeError, TestCase, TestCaseStat
 use super::source::{FileReport, Reading};
 use super::style::Style;
 use super::terminal;
-use crate::rules::finding::{LocatedFinding, Severity};
+use crate::rules::finding::{Failing, LocatedFinding};
 use crate::rules::outcome::Outcome;
 
-/// A test case fails when a finding of at least this severity lies in it: an expectation
-/// that is not met is one. Findings of no case belong to the base.
+/// A test case fails when a failing finding lies in it: an expectation that is not met is
+/// one. Findings of no case belong to the base.
 ///
 /// # Errors
 /// Those of the writer of XML; none are known for this data.
-pub fn report(files: &[FileReport], fail_on: Severity) -> Result<String, SerializeError> {
+pub fn report(files: &[FileReport], fail_on: Failing) -> Result<String, SerializeError> {
     let mut report = Report::new("lyate check");
     for file in files {
         report.add_test_suite(suite(file, fail_on));
@@ -23,7 +23,7 @@ pub fn report(files: &[FileReport], fail_on: Severity) -> Result<String, Seriali
     report.to_string()
 }
 
-fn suite(file: &FileReport, fail_on: Severity) -> TestSuite {
+fn suite(file: &FileReport, fail_on: Failing) -> TestSuite {
     let name = file.source.name.as_str();
     let mut suite = TestSuite::new(name);
     let problems = file.problems();
@@ -52,9 +52,9 @@ fn status(
     file: &FileReport,
     outcome: Option<&Outcome>,
     findings: &[&LocatedFinding],
-    fail_on: Severity,
+    fail_on: Failing,
 ) -> TestCaseStatus {
-    let failing: Vec<_> = findings.iter().filter(|f| f.severity >= fail_on).collect();
+    let failing: Vec<_> = findings.iter().filter(|f| fail_on.includes(f.severity)).collect();
     let Some(worst) = failing.iter().min_by_key(|f| Reverse(f.severity)) else {
         return match outcome {
             None => TestCaseStatus::skipped(),

@@ -2,6 +2,7 @@
 
 pub mod answer;
 pub mod balance;
+pub mod cautions;
 pub mod check_json;
 pub mod derivation;
 pub mod editor;

@@ -64,7 +64,7 @@ fn wrap(lines: &[&str]) -> String {
 /// Every rule with its severity and summary, family by family.
 pub fn list(style: Style) -> String {
     let widest = rules().map(|rule| rule.name.len()).max().unwrap_or(0);
-    // Two before, two between, the longest of error, warning and note.
+    // Two before, two between, the longest of error, warning, note and caution.
     let indent = 2 + widest + 2 + 7 + 2;
     let families = FAMILIES.iter().filter(|family| !family.rules.is_empty()).map(|family| {
         let rules = family.rules.iter().map(|rule| {
@@ -82,7 +82,7 @@ pub fn list(style: Style) -> String {
 fn severity_paint(severity: Severity) -> Paint {
     match severity {
         Severity::Error => Paint::Bad,
-        Severity::Warning => Paint::Doubtful,
+        Severity::Warning | Severity::Caution => Paint::Doubtful,
         Severity::Note => Paint::Quiet,
     }
 }

@@ -5,10 +5,9 @@ use std::ops::Range;
 
 use serde_json::{Value, json};
 
-use super::check_json::severity;
 use super::source::{FileReport, Reading, Source};
 use crate::rules::catalogue;
-use crate::rules::finding::LocatedFinding;
+use crate::rules::finding::{LocatedFinding, Severity};
 
 /// The log of one run, as indented JSON. Only rules with findings are described.
 ///
@@ -42,6 +41,15 @@ pub fn report(files: &[FileReport]) -> serde_json::Result<String> {
     }))
 }
 
+/// The standard has no level for a caution, and only `note` says that nothing is wrong.
+fn level(severity: Severity) -> &'static str {
+    match severity {
+        Severity::Error => "error",
+        Severity::Warning => "warning",
+        Severity::Note | Severity::Caution => "note",
+    }
+}
+
 fn rule(name: &str) -> Value {
     let Some(rule) = catalogue::find(name) else { return json!({"id": name}) };
     let page = rule.page();
@@ -49,7 +57,7 @@ fn rule(name: &str) -> Value {
         "id": name,
         "shortDescription": {"text": rule.summary()},
         "help": {"text": page, "markdown": page},
-        "defaultConfiguration": {"level": severity(rule.severity)},
+        "defaultConfiguration": {"level": level(rule.severity)},
     })
 }
 
@@ -61,7 +69,7 @@ fn result(finding: &LocatedFinding, source: &Source, rules: &BTreeMap<&str, usiz
     let mut result = json!({
         "ruleId": finding.rule,
         "ruleIndex": rules.get(finding.rule),
-        "level": severity(finding.severity),
+        "level": level(finding.severity),
         "message": {"text": text},
         "locations": [{"physicalLocation": physical(source, &finding.at)}],
     });

@@ -5,6 +5,7 @@
 use num_traits::ToPrimitive;
 use serde::Serialize;
 
+use super::cautions::{self, CautionJson};
 use super::expectation::verdict;
 use super::sheet::{Ledger, Sheet};
 use super::sheet_json::SheetJson;
@@ -73,6 +74,7 @@ struct Answer<'a> {
     doses: Vec<Dose<'a>>,
     balances: Vec<SheetJson>,
     expectations: Vec<Expectation<'a>>,
+    cautions: Vec<CautionJson<'a>>,
 }
 
 #[derive(Serialize)]
@@ -225,6 +227,7 @@ fn answer<'a>(
                 }
             })
             .collect(),
+        cautions: cautions::json(outcome),
     }
 }
 

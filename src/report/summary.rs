@@ -3,7 +3,7 @@
 use super::expectation::verdict;
 use super::source::{FileReport, Stated};
 use super::style::{Paint, Style};
-use crate::rules::finding::Severity;
+use crate::rules::finding::{Failing, Severity};
 
 #[derive(Clone, Copy, Debug, Default, PartialEq, Eq)]
 pub struct Summary {
@@ -16,6 +16,7 @@ pub struct Summary {
     pub errors: usize,
     pub warnings: usize,
     pub notes: usize,
+    pub cautions: usize,
 }
 
 impl Summary {
@@ -37,19 +38,25 @@ impl Summary {
                     Severity::Error => &mut summary.errors,
                     Severity::Warning => &mut summary.warnings,
                     Severity::Note => &mut summary.notes,
+                    Severity::Caution => &mut summary.cautions,
                 } += 1;
             }
         }
         summary
     }
 
-    /// How many findings there are of at least this severity.
-    pub fn count(&self, at_least: Severity) -> usize {
-        match at_least {
-            Severity::Error => self.errors,
-            Severity::Warning => self.errors + self.warnings,
-            Severity::Note => self.errors + self.warnings + self.notes,
-        }
+    /// How many findings make the check fail.
+    pub fn failing(&self, failing: Failing) -> usize {
+        [
+            (Severity::Error, self.errors),
+            (Severity::Warning, self.warnings),
+            (Severity::Note, self.notes),
+            (Severity::Caution, self.cautions),
+        ]
+        .iter()
+        .filter(|(severity, _)| failing.includes(*severity))
+        .map(|(_, count)| count)
+        .sum()
     }
 
     /// `79 files, 131 problems solved, 214 of 214 expectations met, 2 errors, 5 notes`.
@@ -71,12 +78,13 @@ impl Summary {
             (self.errors, "error", Paint::Bad),
             (self.warnings, "warning", Paint::Doubtful),
             (self.notes, "note", Paint::Quiet),
+            (self.cautions, "caution", Paint::Doubtful),
         ] {
             if count > 0 {
                 parts.push(style.paint(paint, &counted(count, what)));
             }
         }
-        if self.count(Severity::Note) == 0 {
+        if self.errors + self.warnings + self.notes + self.cautions == 0 {
             parts.push("no findings".into());
         }
         parts.join(", ")

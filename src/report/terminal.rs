@@ -159,6 +159,7 @@ fn level(severity: Severity) -> Level<'static> {
         Severity::Error => Level::ERROR,
         Severity::Warning => Level::WARNING,
         Severity::Note => Level::NOTE,
+        Severity::Caution => Level::WARNING.with_name("caution"),
     }
 }
 

@@ -30,11 +30,32 @@ pub struct Fix<L> {
     pub edits: Vec<(L, String)>,
 }
 
+/// How a finding is to be taken; from the mildest fault to the worst, cautions before all.
 #[derive(Clone, Copy, Debug, PartialEq, Eq, PartialOrd, Ord, Hash)]
 pub enum Severity {
+    /// No fault of the file: what it asks for can hurt someone.
+    Caution,
     Note,
     Warning,
     Error,
+}
+
+/// Which findings make a check fail.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub struct Failing {
+    /// The mildest fault that does.
+    pub at_least: Severity,
+    /// Whether a caution does: only where somebody asks for that.
+    pub cautions: bool,
+}
+
+impl Failing {
+    pub fn includes(self, severity: Severity) -> bool {
+        match severity {
+            Severity::Caution => self.cautions,
+            fault => fault >= self.at_least,
+        }
+    }
 }
 
 /// A finding at byte ranges of its file.

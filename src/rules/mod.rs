@@ -16,6 +16,7 @@ pub mod words;
 mod answers;
 mod balances;
 mod blends;
+mod cautions;
 mod closure;
 mod components;
 mod files;
@@ -38,6 +39,7 @@ pub static FAMILIES: &[catalogue::Family] = &[
     closure::FAMILY,
     balances::FAMILY,
     answers::FAMILY,
+    cautions::FAMILY,
     files::FAMILY,
     statements::FAMILY,
 ];

@@ -91,7 +91,8 @@ pub fn diagnostic(
         range: positions.range(&finding.at),
         severity: Some(match finding.severity {
             Severity::Error => DiagnosticSeverity::ERROR,
-            Severity::Warning => DiagnosticSeverity::WARNING,
+            // The protocol has no word for it: among what an editor never hides.
+            Severity::Warning | Severity::Caution => DiagnosticSeverity::WARNING,
             Severity::Note => DiagnosticSeverity::INFORMATION,
         }),
         code: Some(NumberOrString::String(finding.rule.into())),

@@ -16,7 +16,7 @@
 //! the next line, `|` before the character where a finding without width stands, `~` under
 //! each character of a related place. `rule-name (case)` names the case it was found in.
 //! `fix safe:` and `fix unsafe:` also say which kind of fix it is. Notes of
-//! `source-missing` need not be drawn.
+//! `source-missing` need not be drawn, nor cautions in a fixture that is about another rule.
 
 use std::fmt::Write as _;
 use std::ops::Range;
@@ -25,8 +25,9 @@ use std::sync::atomic::AtomicBool;
 
 use lyate::problem::files::Disk;
 use lyate::problem::import::Imports;
+use lyate::rules::catalogue::find;
 use lyate::rules::check::{Checked, Surroundings, check};
-use lyate::rules::finding::LocatedFinding;
+use lyate::rules::finding::{LocatedFinding, Severity};
 use lyate::text::tree::Document;
 
 #[derive(Default)]
@@ -287,7 +288,12 @@ impl Fixture {
 
     fn looks_at(&self, finding: &LocatedFinding) -> bool {
         if self.only.is_empty() {
-            finding.rule != "source-missing" || self.about() == "source-missing"
+            let of_itself =
+                |name: &str| find(name).is_some_and(|r| r.severity == Severity::Caution);
+            match finding.severity {
+                Severity::Caution => of_itself(self.about()),
+                _ => finding.rule != "source-missing" || self.about() == "source-missing",
+            }
         } else {
             self.only.iter().any(|rule| rule == finding.rule)
         }
