@@ -3,9 +3,11 @@
 use std::path::Path;
 use std::sync::atomic::AtomicBool;
 
+use lyate::equilibrium::curve::along;
 use lyate::problem::files::Disk;
 use lyate::problem::import::Imports;
 use lyate::problem::model::Sought;
+use lyate::report::editor::hover;
 use lyate::rules::check::{Checked, Surroundings, check};
 use lyate::rules::finding::Severity;
 use lyate::text::tree::Document;
@@ -290,4 +292,44 @@ fn files_that_blend_one_another_many_times_over_are_looked_at_once() {
     }
     let deep = folder.check("mix.lyate", "component Na+, Cl-\nblend 1 of \"w19.lyate\"\n", None);
     assert!(deep.outcomes[0].solved().is_none(), "past what may nest");
+}
+
+#[test]
+fn a_curve_over_a_share_goes_through_the_blends_of_those_shares() {
+    let folder = Folder::new();
+    let text = format!(
+        "{HEAD}blend 20 % of \"river.lyate\", 60 % of \"well.lyate\", 20 % of \"rain.lyate\"\n\
+         add NaOH 0.1 mmol/L\ncurve over blend \"river.lyate\" from 0 to 60 %, 4 points\n"
+    );
+    let checked = folder.check("mix.lyate", &text, None);
+    let problem = &checked.outcomes[0].problem;
+    let curve = problem.curves.first().expect("a curve");
+    let points = along(problem, curve, &AtomicBool::new(false)).expect("nobody cancels");
+    let shares = [(0, 75, 25), (20, 60, 20), (40, 45, 15), (60, 30, 10)];
+    assert_eq!(points.len(), shares.len());
+    for (point, (river, well, rain)) in points.iter().zip(shares) {
+        let stated = format!(
+            "{HEAD}blend {river} % of \"river.lyate\", {well} % of \"well.lyate\", {rain} % of \
+             \"rain.lyate\"\nadd NaOH 0.1 mmol/L\n"
+        );
+        let stated = folder.check("stated.lyate", &stated, None);
+        let wanted = stated.outcomes[0].solved().expect("it is solved").ph();
+        let found = point.state.as_ref().expect("it is solved").ph();
+        assert!((found - wanted).abs() < 1e-8, "{river} %: {found} for {wanted}");
+    }
+}
+
+#[test]
+fn pointing_at_a_part_tells_its_water() {
+    let folder = Folder::new();
+    let text = format!("{HEAD}blend 25 % of \"river.lyate\", 75 % of \"well.lyate\"\n");
+    let checked = folder.check("mix.lyate", &text, None);
+    let offset = text.find("well.lyate").expect("it is there");
+    let shown = hover(&checked, offset).expect("a hover");
+    assert_eq!(&text[shown.range], "75 % of \"well.lyate\"");
+    assert!(shown.markdown.contains("75 %"), "{}", shown.markdown);
+    assert!(shown.markdown.contains("12 °C, pH 7.100"), "{}", shown.markdown);
+    let alkalinity = figure(&figures(&folder.check("well.lyate", WELL, None), 0), "alkalinity");
+    let words = format!("alkalinity {:.2} meq/L", 1000.0 * alkalinity);
+    assert!(shown.markdown.contains(&words), "{}", shown.markdown);
 }

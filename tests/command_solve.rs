@@ -38,6 +38,109 @@ expect charge imbalance between -5 % and 5 %
     insta::assert_snapshot!(session(&[("tank.lyate", text)], &arguments));
 }
 
+/// Two waters, one of them as a laboratory reports it, mixed and dosed; invented figures.
+#[test]
+fn an_analysis_and_a_blend() {
+    let well = "\
+use aqueous
+component CO3^2-, Ca^2+, Mg^2+, Na+, Cl-
+temperature 12 °C
+total CO3^2- = 4.6 mmol/L
+total Ca^2+ = 82 mg/L
+total Mg^2+ = 2 °dH
+total Na+ = 0 mg/L
+total Cl- = 40 mg/L
+hold pH = 7.3
+";
+    let main = "\
+problem \"Main\"
+use aqueous
+component CO3^2-, Ca^2+, Mg^2+, Na+, Cl-
+blend 70 % of \"river.lyate\" case \"summer\", 30 % of \"well.lyate\"
+add NaOH 0.1 mmol/L
+curve over blend \"well.lyate\" from 0 to 100 %, 3 points
+expect hardness < 12 °dH
+";
+    let river = "\
+use aqueous
+component CO3^2-, Ca^2+, Na+, Cl-
+add NaHCO3 0.4 mmol/L
+add CaCl2  0.5 mmol/L
+hold CO2(g) = 600 µatm
+temperature 6 °C
+case \"summer\"
+    temperature 22 °C
+";
+    let files = [("main.lyate", main), ("river.lyate", river), ("well.lyate", well)];
+    insta::assert_snapshot!(session(&files, &["check", "well.lyate"]));
+    insta::assert_snapshot!(session(&files[2..], &["solve", "well.lyate"]));
+    insta::assert_snapshot!(session(&files, &["solve", "main.lyate"]));
+    let output = run(folder(&files).path(), &["solve", "main.lyate", "--output", "json"]);
+    let answer: Value = serde_json::from_str(&stdout(&output)).unwrap();
+    let part = &answer["solutions"][0]["blend"][0];
+    assert_eq!((&part["file"], &part["case"]), (&"river.lyate".into(), &"summer".into()));
+    assert_eq!(part["share"].as_f64(), Some(0.7));
+    let output = run(folder(&files).path(), &["solve", "well.lyate", "--output", "json"]);
+    let answer: Value = serde_json::from_str(&stdout(&output)).unwrap();
+    let balance = &answer["solutions"][0]["ion_balance"];
+    assert_eq!(balance["criterion"]["percent"].as_f64(), Some(2.0));
+    assert_eq!(balance["accepted"].as_bool(), Some(false));
+    let sums = ["cations_meq_per_litre", "anions_meq_per_litre", "difference_meq_per_litre"]
+        .map(|name| balance[name].as_f64().unwrap());
+    assert!((sums[0] - sums[1] - sums[2]).abs() < 1e-9);
+}
+
+/// A few rows of each curve for people, every point for programs.
+#[test]
+fn curves() {
+    let text = "\
+# Make-up water of a cooling loop, softened with caustic. Invented figures.
+problem \"Loop make-up\"
+use aqueous
+temperature 15 °C
+component CO3^2-, Ca^2+, Cl-, Na+
+reaction CaCO3(s) <=> Ca^2+ + CO3^2-, pKsp = 8.48, enthalpy = -9.6 kJ/mol, source \"plant sheet\"
+add CaCl2  1 mmol/L
+add NaHCO3 2 mmol/L
+curve over NaOH from 0 to 4 mmol/L
+curve over pH from 6 to 10, 3 points
+curve over temperature from 5 to 45 °C, 5 points
+case \"short\"
+    curve over NaOH from 80 to 0 mg/L, 3 points
+";
+    insta::assert_snapshot!(session(&[("loop.lyate", text)], &["solve", "loop.lyate"]));
+    let arguments = ["solve", "loop.lyate", "--case", "short", "--output", "json"];
+    insta::assert_snapshot!(session(&[("loop.lyate", text)], &arguments));
+}
+
+#[test]
+fn a_point_of_a_curve_without_an_answer_is_named() {
+    let text = "\
+component NH3, Cl-
+reaction NH4+ <=> NH3 + H+, log K(T) = log(T - 293.15) - 10.4, source \"made up\"
+add NH4Cl 2 mmol/L
+curve over temperature from 10 to 40 °C, 7 points
+curve over NH4Cl from 0 to 1 mol/L, 11 points
+";
+    let folder = folder(&[("jar.lyate", text)]);
+    let output = run(folder.path(), &["solve", "jar.lyate"]);
+    assert_eq!(code(&output), 1);
+    let told = "not solved from 10 °C to 20 °C (3 points): \
+                the constant of `NH4+ <=> NH3 + H+` has no value there";
+    assert!(stdout(&output).contains(told), "{}", stdout(&output));
+    let past = "past the ionic strength of 0.5 mol/L up to which `davies` is used: 5 of 11 points";
+    assert!(stdout(&output).contains(past), "{}", stdout(&output));
+    let output = run(folder.path(), &["solve", "jar.lyate", "--output", "json"]);
+    assert_eq!(code(&output), 1);
+    let report: Value = serde_json::from_slice(&output.stdout).unwrap();
+    let points = report["solutions"][0]["curves"][0]["points"].as_array().unwrap();
+    let status = |point: &Value| point["status"].as_str().unwrap().to_owned();
+    let statuses: Vec<String> = points.iter().map(status).collect();
+    let (without, with) = ("no-constant", "solved");
+    assert_eq!(statuses, [without, without, without, with, with, with, with]);
+    assert_eq!(points[0].as_object().unwrap().len(), 2, "no numbers but x");
+}
+
 #[test]
 fn what_cannot_be_solved_says_why() {
     insta::assert_snapshot!(session(

@@ -78,6 +78,10 @@ fn every_statement_has_a_canonical_form() {
         ("expect SO₄²⁻(g) > 1 atm", "expect SO₄²⁻(g) > 1 atm"),
         ("curve over NaOH from 0 to 10 mmol/L", "curve over dose NaOH from 0 to 10 mmol/L"),
         ("curve over pH from 2 to 12", "curve over pH from 2 to 12"),
+        (
+            "curve over total NH3 from 0 to 5 mg/L as N ,200 points",
+            "curve over total NH3 from 0 to 5 mg/L as N, 200 points",
+        ),
         ("case \"winter\"", "case \"winter\""),
         ("without hold pH", "without hold pH"),
         ("without expect [NH3]", "without expect [NH3]"),

@@ -2,6 +2,9 @@
 
 use Dimension as D;
 
+/// 0 °C in kelvin.
+pub const ZERO_CELSIUS: f64 = 273.15;
+
 /// What a unit measures.
 #[derive(Clone, Copy, Debug, PartialEq, Eq, Hash)]
 pub enum Dimension {
@@ -170,7 +173,7 @@ const UNITS: [Unit; 43] = [
     unit("% w/w", D::MassFraction, 1e-2),
     unit("mL/L", D::VolumePerVolume, 1e-3),
     unit("L/m³", D::VolumePerVolume, 1e-3),
-    Unit { name: "°C", dimension: D::Temperature, factor: 1.0, offset: 273.15 },
+    Unit { name: "°C", dimension: D::Temperature, factor: 1.0, offset: ZERO_CELSIUS },
     unit("K", D::Temperature, 1.0),
     unit("atm", D::Pressure, 1.0),
     unit("matm", D::Pressure, 1e-3),

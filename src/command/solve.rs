@@ -5,6 +5,7 @@ use super::reply::{Complaint, Reply};
 use super::terminal::style;
 use crate::report::answer::{answer, conditions, overview};
 use crate::report::cautions;
+use crate::report::curve::{Traced, traced};
 use crate::report::expectation::verdict;
 use crate::report::solution::json;
 use crate::report::source::{FileReport, Stated};
@@ -16,14 +17,15 @@ use crate::rules::finding::Severity;
 ///
 /// Shows pH, ionic strength and alkalinity; every dissolved species with its activity
 /// and its share; partial pressures, saturation indices, both sides of the charge balance
-/// and the proton condition; and what the file expects of the answer.
+/// and the proton condition; what the file expects of the answer; and points along its
+/// curves.
 #[derive(clap::Args)]
 #[command(
     verbatim_doc_comment,
     after_help = "\
 Exit code:
   0  everything asked for was solved, and meets what the file expects
-  1  something was not solved, or an expectation is not met
+  1  something was not solved, a point of a curve too, or an expectation is not met
   2  not run: wrong usage, or a file that cannot be read"
 )]
 pub struct Arguments {
@@ -45,12 +47,15 @@ enum Form {
 pub fn run(arguments: &Arguments) -> Result<Reply, Complaint> {
     let file = arguments.asked.check()?;
     let problems = arguments.asked.problems(&file)?;
-    let good = !problems.is_empty() && problems.iter().all(is_good);
+    let curves: Vec<Vec<Traced>> = problems.iter().map(|stated| traced(stated.outcome)).collect();
+    let good = !problems.is_empty()
+        && problems.iter().all(is_good)
+        && curves.iter().flatten().all(Traced::is_solved);
     let style = style();
     let (text, remark) = match arguments.output {
-        Form::Text => (text(&file, &problems, style), String::new()),
+        Form::Text => (text(&file, &problems, &curves, style), String::new()),
         Form::Json => {
-            let text = json(&file, &problems)
+            let text = json(&file, &problems, &curves)
                 .map_err(|e| Complaint(format!("the answer could not be written: {e}")))?;
             let hindrances: Vec<String> = problems
                 .iter()
@@ -75,17 +80,19 @@ fn is_good(stated: &Stated) -> bool {
     })
 }
 
-fn text(file: &FileReport, problems: &[Stated], style: Style) -> String {
+fn text(file: &FileReport, problems: &[Stated], curves: &[Vec<Traced>], style: Style) -> String {
     let mut parts = Vec::new();
     let title = problems.iter().find_map(|stated| stated.outcome.problem.title.as_deref());
     let title = style.paint(Paint::Heading, title.unwrap_or(&file.source.name));
-    for stated in problems {
+    for (stated, curves) in problems.iter().zip(curves) {
         let head = match stated.case {
             Some(case) => format!("{title}, case \"{case}\""),
             None => title.clone(),
         };
         let body = match (file.checked(), stated.outcome.solved()) {
-            (Some(checked), Some(solved)) => answer(&file.source, checked, *stated, solved, style),
+            (Some(checked), Some(solved)) => {
+                answer(&file.source, checked, *stated, solved, curves, style)
+            }
             _ => {
                 let conditions = conditions(&stated.outcome.problem);
                 let state = style.paint(Paint::Bad, "not solved");

@@ -26,11 +26,17 @@ enum Numbers {
 #[derive(Clone, Debug)]
 pub(super) struct Basis<'a> {
     system: &'a System,
+    lines: Lines,
+}
+
+/// The table of a basis, without the system that it is of.
+#[derive(Clone, Debug)]
+pub(super) struct Lines {
     numbers: Numbers,
     /// `q_j` of each component.
     scales: Vec<f64>,
     /// The line that stands in each slot; at first the unit rows.
-    slots: Vec<usize>,
+    pub slots: Vec<usize>,
 }
 
 impl<'a> Basis<'a> {
@@ -46,11 +52,20 @@ impl<'a> Basis<'a> {
         };
         let first_unit = lines - width;
         let slots = (first_unit..lines).collect();
-        Self { system, numbers, scales, slots }
+        Self { system, lines: Lines { numbers, scales, slots } }
+    }
+
+    /// The same table over another system of the same rows.
+    pub fn over(system: &'a System, lines: Lines) -> Self {
+        Self { system, lines }
+    }
+
+    pub fn into_lines(self) -> Lines {
+        self.lines
     }
 
     pub fn width(&self) -> usize {
-        self.slots.len()
+        self.lines.slots.len()
     }
 
     /// The line of held phase `k`.
@@ -65,16 +80,16 @@ impl<'a> Basis<'a> {
 
     /// The line in a slot.
     pub fn line(&self, slot: usize) -> usize {
-        self.slots[slot]
+        self.lines.slots[slot]
     }
 
     /// `q_j`: what component `j`'s balance is multiplied with and its unknown divided by.
     pub fn scale(&self, component: usize) -> f64 {
-        self.scales[component]
+        self.lines.scales[component]
     }
 
     pub fn is_zero(&self, line: usize, slot: usize) -> bool {
-        match &self.numbers {
+        match &self.lines.numbers {
             Numbers::Small(table) => table.is_zero(line, slot),
             Numbers::Large(table) => table.is_zero(line, slot),
         }
@@ -82,7 +97,7 @@ impl<'a> Basis<'a> {
 
     /// The coefficient of a line at a slot, rounded once.
     pub fn value(&self, line: usize, slot: usize) -> f64 {
-        match &self.numbers {
+        match &self.lines.numbers {
             Numbers::Small(table) => table.value(line, slot),
             Numbers::Large(table) => table.value(line, slot),
         }
@@ -90,7 +105,7 @@ impl<'a> Basis<'a> {
 
     /// Every coefficient of a line that is not zero, with its slot.
     pub fn each(&self, line: usize, take: impl FnMut(usize, f64)) {
-        match &self.numbers {
+        match &self.lines.numbers {
             Numbers::Small(table) => table.each(line, take),
             Numbers::Large(table) => table.each(line, take),
         }
@@ -99,21 +114,21 @@ impl<'a> Basis<'a> {
     /// The coefficient times [`Self::denominator`]: whole, so that sums over it can be
     /// made without rounding.
     pub fn numerator(&self, line: usize, slot: usize) -> f64 {
-        match &self.numbers {
+        match &self.lines.numbers {
             Numbers::Small(table) => table.numerator(line, slot),
             Numbers::Large(table) => table.numerator(line, slot),
         }
     }
 
     pub fn denominator(&self) -> f64 {
-        match &self.numbers {
+        match &self.lines.numbers {
             Numbers::Small(table) => table.denominator(),
             Numbers::Large(table) => table.denominator(),
         }
     }
 
     fn is_unit(&self, line: usize, slot: usize) -> bool {
-        match &self.numbers {
+        match &self.lines.numbers {
             Numbers::Small(table) => table.is_unit(line, slot),
             Numbers::Large(table) => table.is_unit(line, slot),
         }
@@ -121,16 +136,16 @@ impl<'a> Basis<'a> {
 
     /// Puts a line into a slot where its coefficient is not zero.
     pub fn exchange(&mut self, line: usize, slot: usize) {
-        if self.slots[slot] == line {
+        if self.lines.slots[slot] == line {
             return;
         }
-        let result = match &mut self.numbers {
+        let result = match &mut self.lines.numbers {
             Numbers::Small(table) => table.exchange(line, slot),
             Numbers::Large(table) => table.exchange(line, slot),
         };
-        self.slots[slot] = line;
+        self.lines.slots[slot] = line;
         if result.is_err() {
-            self.numbers = Numbers::Large(self.rebuilt());
+            self.lines.numbers = Numbers::Large(self.rebuilt());
         }
     }
 
@@ -141,7 +156,7 @@ impl<'a> Basis<'a> {
         // The lines to bring in are independent; each finds a slot not yet taken.
         let mut order = vec![usize::MAX; self.width()];
         let mut taken = vec![false; self.width()];
-        for &line in &self.slots {
+        for &line in &self.lines.slots {
             let slot = (0..self.width()).find(|&s| !taken[s] && !table.is_zero(line, s));
             if let Some(slot) = slot {
                 let done: Result<(), Overflow> = table.exchange(line, slot);
@@ -152,6 +167,7 @@ impl<'a> Basis<'a> {
         }
         // The slots came out in another order: put the columns where they were.
         let columns: Vec<usize> = self
+            .lines
             .slots
             .iter()
             .map(|line| order.iter().position(|l| l == line).unwrap_or(0))
@@ -169,7 +185,7 @@ impl<'a> Basis<'a> {
             if left.is_empty() {
                 break;
             }
-            if let Some(at) = left.iter().position(|&s| self.slots[s] == line) {
+            if let Some(at) = left.iter().position(|&s| self.lines.slots[s] == line) {
                 left.swap_remove(at);
                 continue;
             }

@@ -11,6 +11,7 @@ use num_traits::One;
 use super::system::{Fixed, IonicStrength, Row, Species, System};
 use crate::chemistry::activity::{ActivityKind, ActivityModel};
 use crate::chemistry::ion_size::ion_size;
+use crate::problem::curve::Sweep;
 use crate::problem::model::{Held, HeldWhat, Problem};
 use crate::problem::scope::PROTON;
 
@@ -32,22 +33,58 @@ pub fn system(problem: &Problem) -> System {
             },
         })
         .collect();
-    let mut totals: Vec<f64> =
-        problem.amounts.iter().map(|amount| amount.total.unwrap_or(0.0)).collect();
-    totals[PROTON] = -(1..totals.len())
-        .map(|j| f64::from(scope.components[j].formula.charge) * totals[j])
-        .sum::<f64>();
-    // An analysis whose pH was held brings the charge that it leaves open.
-    totals[PROTON] += problem.blend.as_ref().map_or(0.0, |blend| blend.charge());
+    let mut given = vec![0.0; problem.amounts.len()];
+    totals(problem, &mut given);
     System {
         species,
-        totals,
+        totals: given,
         fixed: problem.held.iter().filter_map(|held| fixed(problem, held)).collect(),
         activity: ActivityModel::new(problem.activity, problem.kelvin),
         ionic_strength: match problem.ionic_strength {
             Some(value) => IonicStrength::Given(value),
             None => IonicStrength::Computed,
         },
+    }
+}
+
+/// Brings the numbers of a system up to those of its problem, of which nothing but `moved`
+/// is another than when it was built.
+pub fn renew(system: &mut System, problem: &Problem, moved: Sweep) {
+    if system.fixed.len() != problem.held.len() {
+        *system = self::system(problem);
+        return;
+    }
+    totals(problem, &mut system.totals);
+    if matches!(moved, Sweep::Temperature | Sweep::Blend(_)) {
+        for (species, &s) in system.species.iter_mut().zip(&problem.scope.dissolved) {
+            species.ln_k = ln_formation(problem, s);
+        }
+        system.activity = ActivityModel::new(problem.activity, problem.kelvin);
+    }
+    for (fixed, held) in system.fixed.iter_mut().zip(&problem.held) {
+        fixed.ln_value = ln_value(problem, held);
+    }
+}
+
+/// The total of each component, and the charge balance in the place of the proton's.
+fn totals(problem: &Problem, totals: &mut [f64]) {
+    for (total, amount) in totals.iter_mut().zip(&problem.amounts) {
+        *total = amount.total.unwrap_or(0.0);
+    }
+    totals[PROTON] = -(1..totals.len())
+        .map(|j| f64::from(problem.scope.components[j].formula.charge) * totals[j])
+        .sum::<f64>();
+    // An analysis whose pH was held brings the charge that it leaves open.
+    totals[PROTON] += problem.blend.as_ref().map_or(0.0, |blend| blend.charge());
+}
+
+/// The value of `Σ row · x` that a held value sets, its activity coefficient left out.
+fn ln_value(problem: &Problem, held: &Held) -> f64 {
+    match held.what {
+        HeldWhat::Ph(value) | HeldWhat::Pe(value) => -value * LN_10,
+        HeldWhat::Pressure { species, atm: value }
+        | HeldWhat::Activity { species, value }
+        | HeldWhat::Concentration { species, value } => value.ln() - ln_formation(problem, species),
     }
 }
 
@@ -64,47 +101,22 @@ fn fixed(problem: &Problem, held: &Held) -> Option<Fixed> {
         Some(scope.belonging.made[species].as_ref()?.row.clone())
     };
     let single = |j: usize| vec![(j, Rational64::one())];
-    Some(match held.what {
-        HeldWhat::Ph(ph) => Fixed {
-            row: single(PROTON),
-            ln_value: -ph * LN_10,
-            concentration_of: None,
-            supply: single(PROTON),
-        },
-        HeldWhat::Pe(pe) => {
+    let mut concentration_of = None;
+    let (row, supply) = match held.what {
+        HeldWhat::Ph(_) => (single(PROTON), single(PROTON)),
+        HeldWhat::Pe(_) => {
             let electron = scope.component("e-")?;
-            Fixed {
-                row: single(electron),
-                ln_value: -pe * LN_10,
-                concentration_of: None,
-                supply: supply(problem, electron),
-            }
+            (single(electron), supply(problem, electron))
         }
-        HeldWhat::Pressure { species, atm } => {
-            let row = row_of(species)?;
-            Fixed {
-                ln_value: atm.ln() - ln_formation(problem, species),
-                concentration_of: None,
-                supply: row.clone(),
-                row,
-            }
-        }
-        HeldWhat::Activity { species, value } => Fixed {
-            row: row_of(species)?,
-            ln_value: value.ln() - ln_formation(problem, species),
-            concentration_of: None,
-            supply: supply(problem, held.releases?),
-        },
-        HeldWhat::Concentration { species, value } => {
+        HeldWhat::Pressure { species, .. } => (row_of(species)?, row_of(species)?),
+        HeldWhat::Activity { species, .. } => (row_of(species)?, supply(problem, held.releases?)),
+        HeldWhat::Concentration { species, .. } => {
             let formula = &scope.species[species];
-            Fixed {
-                row: row_of(species)?,
-                ln_value: value.ln() - ln_formation(problem, species),
-                concentration_of: Some((formula.charge, ion_size(formula).angstrom)),
-                supply: supply(problem, held.releases?),
-            }
+            concentration_of = Some((formula.charge, ion_size(formula).angstrom));
+            (row_of(species)?, supply(problem, held.releases?))
         }
-    })
+    };
+    Some(Fixed { row, ln_value: ln_value(problem, held), concentration_of, supply })
 }
 
 /// One mole more of a component's total, with what that means for the charge balance.

@@ -125,6 +125,13 @@ impl<'a> Frame<'a> {
         sum.over(self.basis.denominator())
     }
 
+    /// The total of the row in `slot`, and whether it is none but for rounding.
+    fn total_or_none(&self, slot: usize) -> (f64, bool) {
+        let sum = self.total(slot);
+        let total = sum.value();
+        (total, total == 0.0 || (sum.count > 1 && total.abs() <= ROUNDINGS * sum.size))
+    }
+
     /// Writes the system over the present basis, having taken out what is absent.
     pub fn coordinates(&mut self) -> Result<Coordinates, Failure> {
         loop {
@@ -133,6 +140,19 @@ impl<'a> Frame<'a> {
                 return Ok(coordinates);
             }
         }
+    }
+
+    /// Whether what is present and absent by this frame still is, the system's numbers
+    /// having moved, so that its rows stand as they are.
+    pub fn still_fits(&self, at: &Coordinates) -> bool {
+        let free = at.slots.iter().zip(&at.signs).all(|(&slot, &(up, down))| {
+            (up && down) || {
+                let (total, none) = self.total_or_none(slot);
+                !none && if total > 0.0 { up } else { down }
+            }
+        });
+        let empty = |s: &usize| self.slots[*s] == Slot::Empty;
+        free && (0..self.slots.len()).filter(empty).all(|slot| self.total_or_none(slot).1)
     }
 
     /// Takes out absent species and rows; says whether it did. Fails where a row can
@@ -144,9 +164,7 @@ impl<'a> Frame<'a> {
             if up && down {
                 continue;
             }
-            let sum = self.total(slot);
-            let total = sum.value();
-            let none = total == 0.0 || (sum.count > 1 && total.abs() <= ROUNDINGS * sum.size);
+            let (total, none) = self.total_or_none(slot);
             if none {
                 self.empty(slot, up, down)?;
                 changed = true;

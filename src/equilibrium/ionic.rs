@@ -56,7 +56,7 @@ fn open(search: &Search) -> f64 {
 }
 
 /// Newton on all unknowns at once; false where it makes no headway.
-fn joint(search: &mut Search, cancel: &AtomicBool) -> Result<bool, Failure> {
+pub(super) fn joint(search: &mut Search, cancel: &AtomicBool) -> Result<bool, Failure> {
     let mut now = open(search);
     for _ in 0..FULL_STEPS {
         if cancel.load(Ordering::Relaxed) {

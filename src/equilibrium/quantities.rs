@@ -125,9 +125,7 @@ impl Solved {
                 let (_, share) = self.shares(component).find(|&(i, _)| i == row)?;
                 share / self.total(component)
             }
-            Sought::Potential => {
-                self.value(problem, Sought::Pe)? * volts_per_pe(problem.kelvin)
-            }
+            Sought::Potential => self.value(problem, Sought::Pe)? * volts_per_pe(problem.kelvin),
             Sought::Alkalinity => self.alkalinity(problem),
             Sought::Acidity => self.acidity(problem),
             Sought::Hardness => self.hardness(problem),

@@ -41,7 +41,7 @@ impl<'a> Search<'a> {
         Ok(search)
     }
 
-    fn from_parts(frame: Frame<'a>, at: Coordinates, point: Point) -> Self {
+    pub fn from_parts(frame: Frame<'a>, at: Coordinates, point: Point) -> Self {
         Self {
             frame,
             at,

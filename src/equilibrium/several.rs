@@ -43,10 +43,7 @@ pub fn other_states(
             Err(failure) => passed(failure),
         },
         Ok(_) => {
-            let steep = system.species.iter().any(|s| s.charge.abs() >= 3);
-            let computed = system.ionic_strength == IonicStrength::Computed;
-            let steep = steepness(system) > STEEP || steep && !system.fixed.is_empty();
-            if !(steep && computed && needs_activity(system)) {
+            if !may_be_several(system) {
                 return Ok(Vec::new());
             }
             let states = by_ionic_strength(system, Some(answer), cancel).or_else(passed)?;
@@ -66,6 +63,15 @@ pub fn other_states(
         }
         Err(failure) => passed(failure),
     }
+}
+
+/// Whether other states are looked for in a system without a charged species held.
+pub(super) fn may_be_several(system: &System) -> bool {
+    if system.ionic_strength != IonicStrength::Computed || !needs_activity(system) {
+        return false;
+    }
+    let highly_charged = || system.species.iter().any(|s| s.charge.abs() >= 3);
+    steepness(system) > STEEP || (!system.fixed.is_empty() && highly_charged())
 }
 
 /// With less than this no second state is looked for. For one to be, ln γ of an ion of

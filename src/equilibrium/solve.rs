@@ -29,9 +29,19 @@ pub fn solve(
     start: Option<&Answer>,
     cancel: &AtomicBool,
 ) -> Result<Answer, Failure> {
+    solve_and_keep(system, start, cancel).map(|(answer, _)| answer)
+}
+
+/// The same, with the search that found it, to be gone on with where the system moves. None
+/// where a charged species is held: that is found otherwise.
+pub(super) fn solve_and_keep<'a>(
+    system: &'a System,
+    start: Option<&Answer>,
+    cancel: &AtomicBool,
+) -> Result<(Answer, Option<Search<'a>>), Failure> {
     let frame = Frame::new(system)?;
     if frame.askew {
-        return solve_skew(system, start, cancel);
+        return solve_skew(system, start, cancel).map(|answer| (answer, None));
     }
     let mut search = match start {
         Some(answer) => {
@@ -58,6 +68,12 @@ pub fn solve(
         }
         IonicStrength::Computed => ionic::converge(&mut search, start.is_some(), cancel)?,
     }
+    let answer = trusted(&mut search)?;
+    Ok((answer, Some(search)))
+}
+
+/// The answer of a search that has converged.
+pub(super) fn trusted(search: &mut Search) -> Result<Answer, Failure> {
     search.polish();
     let answer = search.answer();
     // The rows as given must close too; where amounts past all measure were divided by

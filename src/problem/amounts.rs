@@ -4,6 +4,7 @@ use num_rational::Rational64;
 use num_traits::{Signed, ToPrimitive};
 
 use super::case::CaseResolver;
+use super::curve;
 use super::defect::{DefectKind, Expected};
 use super::effective::Written;
 use super::model::{Amount, AmountSource, Problem, Reagent};
@@ -41,6 +42,7 @@ pub fn read(case: &mut CaseResolver, problem: &mut Problem) {
             _ => {}
         }
     }
+    case.all_amounts_read &= curve::reagents(case, problem);
     for reagent in &problem.reagents {
         for &(j, n) in reagent.row.iter().filter(|&&(j, _)| j != PROTON) {
             let brought = n.to_f64().unwrap_or(0.0) * reagent.amount;
@@ -113,6 +115,28 @@ fn add(
     written: &Written,
     (name, amount, giving): (&Name, &Quantity, Option<&[Member]>),
 ) -> Option<()> {
+    let reagent = reagent(case, written, name, giving)?;
+    let read =
+        case.concentration(written, amount, Some(&reagent.formula), Expected::Concentration)?;
+    if !case.not_negative(written, amount) {
+        return None;
+    }
+    let known = problem.reagents.iter_mut().find(|r| r.formula.name == reagent.formula.name);
+    match known {
+        Some(known) => known.amount += read.value,
+        None => problem.reagents.push(Reagent { amount: read.value, ..reagent }),
+    }
+    Some(())
+}
+
+/// A reagent over the components of the scope, none of it put in; a defect where it cannot
+/// be taken apart.
+pub(super) fn reagent(
+    case: &mut CaseResolver,
+    written: &Written,
+    name: &Name,
+    giving: Option<&[Member]>,
+) -> Option<Reagent> {
     let known = case.scope.reagents.get(&name.value).filter(|_| giving.is_none());
     let formula = match &known {
         Some((formula, _)) => formula.clone(),
@@ -123,10 +147,6 @@ fn add(
         let charge = i64::from(formula.charge);
         let kind = DefectKind::ReagentNotNeutral { name: formula.name.clone(), charge };
         case.resolver.report(at, kind);
-        return None;
-    }
-    let read = case.concentration(written, amount, Some(&formula), Expected::Concentration)?;
-    if !case.not_negative(written, amount) {
         return None;
     }
     let (row, giving) = match (known, giving) {
@@ -142,12 +162,7 @@ fn add(
             (row, None)
         }
     };
-    if let Some(known) = problem.reagents.iter_mut().find(|r| r.formula.name == formula.name) {
-        known.amount += read.value;
-        return Some(());
-    }
-    problem.reagents.push(Reagent { formula, at, amount: read.value, row, giving });
-    Some(())
+    Some(Reagent { formula, at, amount: 0.0, row, giving })
 }
 
 /// A reagent as species; a defect where it is not to be had from those in scope.

@@ -250,9 +250,9 @@ fn own_scale(statements: &[Written]) -> Option<(Scale, Place)> {
             return None;
         };
         let scale = match Unit::parse(&amount.unit.as_ref()?.value).ok()?.dimension {
-            Dimension::AmountPerKilogram
-            | Dimension::MassPerKilogram
-            | Dimension::MassFraction => Scale::PerKilogram,
+            Dimension::AmountPerKilogram | Dimension::MassPerKilogram | Dimension::MassFraction => {
+                Scale::PerKilogram
+            }
             other if other.is_concentration() => Scale::PerLitre,
             _ => return None,
         };

@@ -9,12 +9,13 @@ use super::amounts;
 use super::belong::combined;
 use super::blend::{self, Waters};
 use super::charge_reading;
+use super::curve;
 use super::defect::{Defect, DefectKind, Expected};
 use super::effective::Written;
 use super::expect;
 use super::held;
 use super::model::Problem;
-use super::reaction::{LogK, Origin, STANDARD, TemperatureIssue};
+use super::reaction::{Origin, STANDARD};
 use super::resolve::Resolver;
 use super::scope::Scope;
 use super::written;
@@ -71,6 +72,7 @@ pub fn resolve(
         held: Vec::new(),
         balances: Vec::new(),
         expectations: Vec::new(),
+        curves: Vec::new(),
         log_k: Vec::new(),
         defects: Vec::new(),
         states_problem: statements.iter().any(|w| states_a_problem(w.statement())),
@@ -91,6 +93,7 @@ pub fn resolve(
     amounts::close(&mut case, &mut problem);
     problem.balances = written::read(&mut case, &problem);
     problem.expectations = expect::read(&mut case);
+    problem.curves = curve::read(&mut case, &problem);
     // A case has only its own to add to what the base was told.
     let is_case = statements.iter().any(|written| written.part == Part::Case);
     for written in statements.iter().filter(|w| !is_case || w.part == Part::Case) {
@@ -102,7 +105,6 @@ pub fn resolve(
         let unsupported = match written.statement() {
             Statement::Precipitate { .. } => "precipitate",
             Statement::Saturate { .. } => "saturate with",
-            Statement::Curve { .. } => "curve",
             Statement::Hold { by: Some(_), .. } => "hold … by",
             Statement::Add { stock: Some(_), .. } => "add … of",
             Statement::Expect { confidence: Some(_), .. } => "confidence",
@@ -129,9 +131,9 @@ fn conditions(case: &mut CaseResolver, problem: &mut Problem) {
             }
             Statement::Temperature { value } => {
                 problem.temperature_at = Some(written.place(value.span));
-                if let Some(kelvin) = case.temperature(written, value) {
-                    problem.kelvin = kelvin;
-                    case.kelvin = kelvin;
+                if let Some(read) = case.temperature(written, value) {
+                    problem.kelvin = read.value;
+                    case.kelvin = read.value;
                 }
             }
             Statement::Activity { model } => {
@@ -171,30 +173,12 @@ fn constants(case: &mut CaseResolver, problem: &mut Problem) {
             _ => None,
         };
         // Where water's own constant ends, so do its other properties: that is told as one.
-        let constant = reaction.constant.as_ref().map(|constant| &constant.value);
-        let is_water = matches!(constant, Some(LogK::Water));
-        let Some(issue) = issue.filter(|_| !is_water) else { continue };
+        let Some(issue) = issue.filter(|_| !reaction.is_ion_product()) else { continue };
         let at = own.or(problem.temperature_at).or_else(|| first_use(case.statements));
         let Some(at) = at else { continue };
         let equation = reaction.equation.clone();
-        let own = own.is_some();
-        case.resolver.report(
-            at,
-            match issue {
-                TemperatureIssue::NoEnthalpy { given } => DefectKind::ConstantAtOtherTemperature {
-                    reaction: equation,
-                    given,
-                    wanted,
-                    own,
-                },
-                TemperatureIssue::OutsideValid { low, high } => {
-                    DefectKind::OutsideValidRange { reaction: equation, low, high, wanted, own }
-                }
-                TemperatureIssue::NoValue => {
-                    DefectKind::ConstantHasNoValue { reaction: equation, wanted, own }
-                }
-            },
-        );
+        let kind = DefectKind::at_temperature(issue, equation, wanted, own.is_some());
+        case.resolver.report(at, kind);
     }
     for (_, combination) in &scope.belonging.cycles {
         // Told at the last of the file's own reactions in it; a set alone agrees with itself.

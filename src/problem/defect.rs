@@ -5,6 +5,7 @@ use std::path::PathBuf;
 
 use num_rational::Rational64;
 
+use super::reaction::TemperatureIssue;
 use crate::chemistry::formula::FormulaProblemKind;
 use crate::chemistry::quantity::ConversionProblem;
 use crate::chemistry::unit::{Dimension, UnitProblem};
@@ -225,6 +226,20 @@ pub enum DefectKind {
         subject: String,
     },
 
+    // Curves.
+    /// A curve that ends where it starts.
+    CurveWithoutLength,
+    /// A number of points that is no curve, or that nobody looks through.
+    CurvePoints {
+        points: usize,
+    },
+    /// A curve over something that the file leaves to the answer: the total of a component
+    /// that reagents or a held value bring, or a reagent of one that has a total.
+    CurveNotFree {
+        name: String,
+        by: Option<Place>,
+    },
+
     // Statements.
     /// A single-valued statement stands twice in one section.
     StatementRepeated {
@@ -241,6 +256,11 @@ pub enum DefectKind {
     },
 
     // Blends.
+    /// A curve over the share of a file that is no part of the blend, or its only one.
+    CurveOverNoPart {
+        file: String,
+        parts: Vec<String>,
+    },
     /// Shares in percent that do not come to 100.
     BlendSharesSum {
         percent: f64,
@@ -334,6 +354,25 @@ pub enum Expected {
 }
 
 impl DefectKind {
+    /// What is doubtful about a constant at a temperature, in kelvin. `own` says whether the
+    /// reaction is the file's own and told of there.
+    pub fn at_temperature(
+        issue: TemperatureIssue,
+        reaction: String,
+        wanted: f64,
+        own: bool,
+    ) -> DefectKind {
+        match issue {
+            TemperatureIssue::NoEnthalpy { given } => {
+                Self::ConstantAtOtherTemperature { reaction, given, wanted, own }
+            }
+            TemperatureIssue::OutsideValid { low, high } => {
+                Self::OutsideValidRange { reaction, low, high, wanted, own }
+            }
+            TemperatureIssue::NoValue => Self::ConstantHasNoValue { reaction, wanted, own },
+        }
+    }
+
     /// Whether, in a statement that states conditions, matter or amounts, it makes the
     /// answer one to another question.
     pub fn blocks_solving(&self) -> bool {
@@ -350,7 +389,7 @@ impl DefectKind {
             | Self::NothingToRemove => false,
             Self::Follows { by } => by.abs() > 0.02,
             Self::NotIndependent { from, .. } => !from.is_empty(),
-            Self::NotYetSupported { what } => !matches!(*what, "curve" | "dose"),
+            Self::NotYetSupported { what } => *what != "dose",
             _ => true,
         }
     }

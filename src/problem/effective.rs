@@ -5,7 +5,7 @@ use std::collections::HashMap;
 use super::defect::{Defect, DefectKind};
 use crate::chemistry::formula::canonical;
 use crate::text::span::{Part, Place, Span};
-use crate::text::tree::{BalanceKind, Parsed, Section, Statement, Subject, Without};
+use crate::text::tree::{BalanceKind, Over, Parsed, Section, Statement, Subject, Without};
 
 /// A statement in force, and where it stands.
 #[derive(Clone, Copy)]
@@ -54,7 +54,7 @@ pub enum Key {
     Precipitate(String),
     Saturate(String),
     Group(String),
-    Curve,
+    Curve(String),
     Blend,
 }
 
@@ -72,7 +72,7 @@ pub fn key(statement: &Statement) -> Option<Key> {
         Statement::Precipitate { solid } => Key::Precipitate(canonical(solid)),
         Statement::Saturate { solid } => Key::Saturate(canonical(solid)),
         Statement::Group { symbol, .. } => Key::Group(symbol.value.clone()),
-        Statement::Curve { .. } => Key::Curve,
+        Statement::Curve { over, .. } => Key::Curve(over_words(&over.value)),
         Statement::Blend { .. } => Key::Blend,
         Statement::Reaction(reaction) => {
             let mut names: Vec<_> =
@@ -118,6 +118,17 @@ pub fn balance_key(kind: &BalanceKind) -> String {
         BalanceKind::Charge => "charge".into(),
         BalanceKind::Protons => "protons".into(),
         BalanceKind::Component(name) => canonical(name),
+    }
+}
+
+/// What a curve is over, in canonical words: `pH`, `NaOH`, `total NH3`, `temperature`.
+pub fn over_words(over: &Over) -> String {
+    match over {
+        Over::Ph => "pH".into(),
+        Over::Reagent(name) => canonical(name),
+        Over::Total(name) => format!("total {}", canonical(name)),
+        Over::Temperature => "temperature".into(),
+        Over::Blend(file) => format!("blend \"{}\"", file.value),
     }
 }
 

@@ -4,7 +4,7 @@ use super::case::CaseResolver;
 use super::defect::{DefectKind, Expected};
 use super::effective::{Written, subject_key};
 use super::model::{Expectation, Limit, ShownUnit, Sought};
-use super::quantity::Read;
+use super::quantity::{Read, with_unit_of};
 use crate::chemistry::formula::{Formula, Phase};
 use crate::text::span::Spanned;
 use crate::text::tree::{Name, Quantity, Relation, Statement, Subject};
@@ -43,15 +43,9 @@ pub fn read(case: &mut CaseResolver) -> Vec<Expectation> {
             Relation::GreaterOrEqual(q) => {
                 value(q).map(|r| (Limit::Above { value: r.value, or_equal: true }, r))
             }
-            Relation::Between(low, high) => {
-                // `between 6 and 9 mg/L`: one unit may serve both.
-                let shared =
-                    Quantity { unit: high.unit.clone(), basis: high.basis.clone(), ..low.clone() };
-                let low = if low.unit.is_none() { &shared } else { low };
-                value(low)
-                    .zip(value(high))
-                    .map(|(low, high)| (Limit::Between { low: low.value, high: high.value }, high))
-            }
+            Relation::Between(low, high) => value(&with_unit_of(low, high))
+                .zip(value(high))
+                .map(|(low, high)| (Limit::Between { low: low.value, high: high.value }, high)),
         };
         let Some((limit, read)) = limit else { continue };
         if let Sought::ChargeImbalance { equivalents } = &mut sought {

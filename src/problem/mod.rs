@@ -8,6 +8,7 @@ pub mod case;
 mod charge_reading;
 mod compare;
 mod constant;
+pub mod curve;
 pub mod defect;
 pub mod effective;
 pub mod elimination;

@@ -5,6 +5,7 @@ use std::sync::Arc;
 use num_rational::Rational64;
 
 use super::blend::Blend;
+use super::curve::Curve;
 use super::defect::Defect;
 use super::scope::Scope;
 use super::sparse::Row;
@@ -13,7 +14,7 @@ use crate::chemistry::formula::Formula;
 use crate::chemistry::quantity::Scale;
 use crate::text::span::Place;
 
-#[derive(Debug)]
+#[derive(Clone, Debug)]
 pub struct Problem {
     pub title: Option<String>,
     pub title_at: Option<Place>,
@@ -33,6 +34,8 @@ pub struct Problem {
     pub held: Vec<Held>,
     pub balances: Vec<WrittenBalance>,
     pub expectations: Vec<Expectation>,
+    /// Each over something else.
+    pub curves: Vec<Curve>,
     /// log10 K of each reaction of the scope at `kelvin`; zero where it is not in use.
     pub log_k: Vec<f64>,
     pub defects: Vec<Defect>,

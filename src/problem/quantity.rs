@@ -116,9 +116,13 @@ impl Resolver {
 
     /// Kelvin.
     pub fn kelvin(&mut self, written: &Written, quantity: &Quantity) -> Option<f64> {
+        Some(self.kelvin_read(written, quantity)?.value)
+    }
+
+    fn kelvin_read(&mut self, written: &Written, quantity: &Quantity) -> Option<Read> {
         let read = self.converted(written, quantity, Expected::Temperature, to_kelvin)?;
         if read.value > 0.0 {
-            return Some(read.value);
+            return Some(read);
         }
         let why = "it is absolute zero, where nothing is dissolved in anything";
         self.report(written.place(quantity.span), DefectKind::ImpossibleValue { why });
@@ -164,8 +168,8 @@ impl Resolver {
 }
 
 impl CaseResolver<'_> {
-    pub fn temperature(&mut self, written: &Written, quantity: &Quantity) -> Option<f64> {
-        self.resolver.kelvin(written, quantity)
+    pub fn temperature(&mut self, written: &Written, quantity: &Quantity) -> Option<Read> {
+        self.resolver.kelvin_read(written, quantity)
     }
 
     pub fn plain(&mut self, written: &Written, quantity: &Quantity) -> Option<f64> {
@@ -199,7 +203,8 @@ impl CaseResolver<'_> {
     /// is counted as.
     pub fn hardness(&mut self, written: &Written, quantity: &Quantity) -> Option<Read> {
         let unit = self.resolver.unit(written, quantity, Expected::Hardness)?;
-        let is_mass = matches!(unit.dimension, Dimension::MassPerLitre | Dimension::MassPerKilogram);
+        let is_mass =
+            matches!(unit.dimension, Dimension::MassPerLitre | Dimension::MassPerKilogram);
         if is_mass && quantity.basis.is_none() {
             self.resolver.wrong_dimension(written, quantity, unit.dimension, Expected::Hardness);
             return None;
@@ -340,6 +345,15 @@ impl CaseResolver<'_> {
             Scale::PerLitre => density,
             Scale::PerKilogram => 1.0 / density,
         }
+    }
+}
+
+/// The lower of two quantities with the upper one's unit, where it has none of its own:
+/// `between 6 and 9 mg/L`, `from 0 to 20 mmol/L`.
+pub fn with_unit_of(low: &Quantity, high: &Quantity) -> Quantity {
+    match low.unit {
+        Some(_) => low.clone(),
+        None => Quantity { unit: high.unit.clone(), basis: high.basis.clone(), ..low.clone() },
     }
 }
 

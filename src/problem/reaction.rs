@@ -148,6 +148,11 @@ impl Reaction {
         }
     }
 
+    /// Whether its constant is the ion product of water.
+    pub fn is_ion_product(&self) -> bool {
+        matches!(self.constant.as_ref().map(|constant| &constant.value), Some(LogK::Water))
+    }
+
     /// Species of the reaction, water left out, sorted: the same for the same equilibrium.
     pub fn key(&self) -> Vec<&str> {
         let mut key: Vec<_> = self

@@ -1,5 +1,6 @@
 //! An answer as text for a terminal.
 
+use super::curve::Traced;
 use super::expectation::{asked, value_words, verdict};
 use super::figures::{
     celsius, concentration, decimals, log10_of_exp, percent, scale_unit, scientific, significant,
@@ -27,6 +28,7 @@ pub fn answer(
     checked: &Checked,
     stated: Stated,
     solved: &Solved,
+    curves: &[Traced],
     style: Style,
 ) -> String {
     let problem = &stated.outcome.problem;
@@ -48,6 +50,10 @@ pub fn answer(
         if !body.is_empty() {
             text += &format!("\n{}\n{body}", style.paint(Paint::Heading, title));
         }
+    }
+    for traced in curves {
+        let title = style.paint(Paint::Heading, &traced.title());
+        text += &format!("\n{title}\n{}", traced.text(problem, style));
     }
     text
 }

@@ -4,6 +4,7 @@ pub mod answer;
 pub mod balance;
 pub mod cautions;
 pub mod check_json;
+pub mod curve;
 pub mod derivation;
 pub mod editor;
 pub mod inline;

@@ -6,6 +6,7 @@ use num_traits::ToPrimitive;
 use serde::Serialize;
 
 use super::cautions::{self, CautionJson};
+use super::curve::{CurveJson, Traced};
 use super::expectation::verdict;
 use super::sheet::{Ledger, Sheet};
 use super::sheet_json::SheetJson;
@@ -19,7 +20,7 @@ use crate::problem::model::{Problem, Sought};
 use crate::problem::scope::PROTON;
 use crate::rules::check::{Checked, locate_place};
 use crate::rules::ion_balance::per_litre;
-use crate::rules::outcome::{Outcome, State};
+use crate::rules::outcome::State;
 
 #[derive(Serialize)]
 struct Report<'a> {
@@ -74,6 +75,7 @@ struct Answer<'a> {
     doses: Vec<Dose<'a>>,
     balances: Vec<SheetJson>,
     expectations: Vec<Expectation<'a>>,
+    curves: Vec<CurveJson<'a>>,
     cautions: Vec<CautionJson<'a>>,
 }
 
@@ -131,11 +133,15 @@ struct Expectation<'a> {
     line: usize,
 }
 
-/// The answers to these problems of the file, as indented JSON.
+/// The answers to these problems of the file, as indented JSON. `curves` are those of each.
 ///
 /// # Errors
 /// Those of the serialiser; none are known for this data.
-pub fn json(file: &FileReport, problems: &[Stated]) -> serde_json::Result<String> {
+pub fn json(
+    file: &FileReport,
+    problems: &[Stated],
+    curves: &[Vec<Traced>],
+) -> serde_json::Result<String> {
     let title = file.checked().and_then(|checked| checked.outcomes.first());
     serde_json::to_string_pretty(&Report {
         schema: 1,
@@ -143,11 +149,12 @@ pub fn json(file: &FileReport, problems: &[Stated]) -> serde_json::Result<String
         problem: title.and_then(|base| base.problem.title.as_deref()),
         solutions: problems
             .iter()
-            .map(|stated| Solution {
+            .zip(curves)
+            .map(|(stated, curves)| Solution {
                 case: stated.case,
                 status: status(&stated.outcome.state),
                 answer: file.checked().zip(stated.outcome.solved()).map(|(checked, solved)| {
-                    answer(&file.source, checked, stated.section, stated.outcome, solved)
+                    answer(&file.source, checked, *stated, solved, curves)
                 }),
             })
             .collect(),
@@ -168,10 +175,11 @@ pub fn status(state: &State) -> &'static str {
 fn answer<'a>(
     source: &Source,
     checked: &Checked,
-    section: usize,
-    outcome: &'a Outcome,
+    stated: Stated<'a>,
     solved: &Solved,
+    curves: &'a [Traced],
 ) -> Answer<'a> {
+    let Stated { section, outcome, .. } = stated;
     let problem = &outcome.problem;
     let finite = |value: Option<f64>| value.filter(|value| value.is_finite());
     let value = |sought: Sought| finite(solved.value(problem, sought));
@@ -227,6 +235,7 @@ fn answer<'a>(
                 }
             })
             .collect(),
+        curves: curves.iter().map(|traced| traced.json(problem)).collect(),
         cautions: cautions::json(outcome),
     }
 }

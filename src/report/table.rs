@@ -50,6 +50,11 @@ impl Table {
         self.rows.push(cells.into());
     }
 
+    /// A row of as many cells as there happen to be columns.
+    pub fn cells(&mut self, cells: Vec<Cell>) {
+        self.rows.push(cells);
+    }
+
     pub fn is_empty(&self) -> bool {
         self.rows.is_empty()
     }

@@ -123,7 +123,8 @@ pub fn ion_balance(problem: &Problem, solved: &Solved, style: Style) -> String {
         significant(balance.anion_sum, 4).into(),
     ]);
     let accepted = balance.is_accepted();
-    let (paint, word) = if accepted { (Paint::Good, "accepts") } else { (Paint::Doubtful, "asks for") };
+    let (paint, word) =
+        if accepted { (Paint::Good, "accepts") } else { (Paint::Doubtful, "asks for") };
     let verdict = format!("{CRITERION_SOURCE} {word} {}", balance.criterion().words());
     format!(
         "{}cations less anions: {} meq/L, {} %; {}\n",

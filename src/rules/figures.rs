@@ -3,6 +3,7 @@
 use std::f64::consts::LN_10;
 
 use crate::chemistry::quantity::Scale;
+use crate::chemistry::unit::ZERO_CELSIUS;
 
 /// `mol/L` or `mol/kg`.
 pub fn scale_unit(scale: Scale) -> &'static str {
@@ -104,7 +105,7 @@ pub fn percent(share: f64) -> String {
 
 /// `18 °C`, `4.5 °C`.
 pub fn celsius(kelvin: f64) -> String {
-    let text = decimals(kelvin - 273.15, 2);
+    let text = decimals(kelvin - ZERO_CELSIUS, 2);
     let text = text.trim_end_matches('0').trim_end_matches('.');
     format!("{text} °C")
 }

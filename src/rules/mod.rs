@@ -19,6 +19,7 @@ mod blends;
 mod cautions;
 mod closure;
 mod components;
+mod curves;
 mod files;
 mod formulas;
 mod quantities;
@@ -39,6 +40,7 @@ pub static FAMILIES: &[catalogue::Family] = &[
     closure::FAMILY,
     balances::FAMILY,
     answers::FAMILY,
+    curves::FAMILY,
     cautions::FAMILY,
     files::FAMILY,
     statements::FAMILY,

@@ -50,7 +50,8 @@ impl<'a> Plan<'a> {
         let mut waters = Vec::new();
         if blends {
             for index in 0..document.sections.len() {
-                let varied = (index > 0).then(|| in_force(&document.sections[0], document.sections.get(index)));
+                let varied = (index > 0)
+                    .then(|| in_force(&document.sections[0], document.sections.get(index)));
                 let statements = varied.as_ref().map_or(&base.statements, |case| &case.statements);
                 waters.push(waters::blended(statements, around, walk)?);
             }

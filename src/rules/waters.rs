@@ -201,9 +201,10 @@ fn matter(problem: &Problem, solved: &Solved) -> Vec<Matter> {
         .map(|j| {
             let mut names = vec![scope.components[j].formula.name.clone()];
             for species in rows {
-                let differs_in_protons = species.row.iter().all(|&(k, n)| {
-                    k == PROTON || k == j && n == num_rational::Rational64::from(1)
-                });
+                let differs_in_protons = species
+                    .row
+                    .iter()
+                    .all(|&(k, n)| k == PROTON || k == j && n == num_rational::Rational64::from(1));
                 let holds = species.row.iter().any(|&(k, _)| k == j);
                 if holds && differs_in_protons && !names.contains(&species.name) {
                     names.push(species.name.clone());

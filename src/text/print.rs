@@ -101,8 +101,12 @@ impl Display for Statement {
                     Some(source) => write!(f, ", source \"{}\"", source.value),
                 }
             }
-            Statement::Curve { over, from, to } => {
-                write!(f, "curve over {} from {from} to {to}", over.value)
+            Statement::Curve { over, from, to, points } => {
+                write!(f, "curve over {} from {from} to {to}", over.value)?;
+                match points {
+                    None => Ok(()),
+                    Some(points) => write!(f, ", {} points", points.value),
+                }
             }
             Statement::Case { title } => write!(f, "case \"{}\"", title.value),
             Statement::Without(without) => write!(f, "without {}", without.value),

@@ -130,6 +130,8 @@ pub enum Statement {
         over: Spanned<Over>,
         from: Quantity,
         to: Quantity,
+        /// `, 200 points`, both ends among them.
+        points: Option<Spanned<u32>>,
     },
     Case {
         title: Name,

@@ -350,10 +350,8 @@ pub fn statement() -> BoxedStrategy<Statement> {
                 source
             }
         ),
-        (over, q(), q()).prop_map(|(over, from, to)| Statement::Curve {
-            over: spanned(over),
-            from,
-            to
+        (over, q(), q(), prop::option::of(1u32..20_000)).prop_map(|(over, from, to, points)| {
+            Statement::Curve { over: spanned(over), from, to, points: points.map(spanned) }
         }),
         string().prop_map(|title| Statement::Case { title }),
         without.prop_map(|without| Statement::Without(spanned(without))),

@@ -7,7 +7,7 @@ syntax match lyateComment /#.*$/ contains=@Spell
 syntax region lyateString start=/"/ end=/"/ oneline
 syntax match lyateKeyword /^\s*\zs\<\(problem\|use\|temperature\|activity\|group\|component\|reaction\|total\|add\|hold\|precipitate\|balance\|expect\|curve\|case\|without\)\>/
 syntax match lyateKeyword /^\s*\zs\(ionic strength\|saturate with\)\>/
-syntax match lyateWord /\<\(pKa\|pKsp\|pK\|pH\|pOH\|pe\|log K\|log beta\|enthalpy\|heat capacity\|source\|valid\|at\|as\|by\|giving\|added\|total\|over\|from\|to\|between\|and\)\>/
+syntax match lyateWord /\<\(pKa\|pKsp\|pK\|pH\|pOH\|pe\|log K\|log beta\|enthalpy\|heat capacity\|source\|valid\|at\|as\|by\|giving\|added\|total\|over\|points\|from\|to\|between\|and\)\>/
 syntax match lyateNumber /[A-Za-z0-9^(\]}]\@1<!\<\d\+\(\.\d\+\)\?\([eE][-+]\?\d\+\)\?\>/
 syntax match lyateOperator /<=>\|⇌\|<=\|>=\|±/
 

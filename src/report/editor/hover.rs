@@ -5,9 +5,11 @@ use num_traits::ToPrimitive;
 use crate::chemistry::formula::{Phase, canonical};
 use crate::equilibrium::quantities::Solved;
 use crate::problem::blend::Portion;
+use crate::problem::curve::Curve;
 use crate::problem::model::{Problem, Sought};
 use crate::problem::reaction::{Origin, Reaction};
 use crate::problem::scope::PROTON;
+use crate::report::curve::ends;
 use crate::report::figures::{
     celsius, charge, concentration, decimals, equivalents, log10_of_exp, percent, significant,
 };
@@ -60,6 +62,15 @@ pub fn hover(checked: &Checked, offset: usize) -> Option<Hover> {
             let markdown = reaction_words(outcome, r, reaction);
             return Some(Hover { range: range(tree.equation), markdown });
         }
+    }
+    let part = if section == 0 { Part::Base } else { Part::Case };
+    let here = |curve: &&Curve| curve.at.section == part && curve.at.statement as usize == index;
+    if let Some(curve) = outcome.problem.curves.iter().find(here)
+        && outcome.solved().is_some()
+    {
+        // Solved only now: a check does not follow curves.
+        let markdown = ends(&outcome.problem, curve);
+        return Some(Hover { range: range(curve.at.span), markdown });
     }
     None
 }

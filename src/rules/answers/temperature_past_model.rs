@@ -26,6 +26,7 @@
 //! ```
 
 use crate::chemistry::water;
+use crate::problem::curve::Sweep;
 use crate::rules::catalogue::rule;
 use crate::rules::context::Context;
 use crate::rules::figures::celsius;
@@ -35,21 +36,30 @@ use crate::text::span::Place;
 rule!("temperature-past-model", Warning, "temperature_past_model.rs", find);
 
 fn find(context: &Context, found: &mut Vec<Finding<Place>>) {
-    let kelvin = context.problem.kelvin;
-    let Some(at) = context.problem.temperature_at else { return };
+    let problem = context.problem;
+    if let Some(at) = problem.temperature_at {
+        found.extend(past(problem.kelvin).map(|message| RULE.at(at, message)));
+    }
+    let curves = problem.curves.iter().filter(|curve| curve.over == Sweep::Temperature);
+    for curve in curves {
+        let message = past(curve.from).or_else(|| past(curve.to));
+        found.extend(message.map(|message| RULE.at(curve.at, message)));
+    }
+}
+
+fn past(kelvin: f64) -> Option<String> {
     if water::in_range(kelvin) {
-        return;
+        return None;
     }
     let nearer = if kelvin < *water::RANGE.start() {
         *water::RANGE.start()
     } else {
         *water::RANGE.end()
     };
-    let message = format!(
+    Some(format!(
         "{} lies outside the 0 to 100 °C for which water's own properties are published here; \
          those at {} are used",
         celsius(kelvin),
         celsius(nearer),
-    );
-    found.push(RULE.at(at, message));
+    ))
 }

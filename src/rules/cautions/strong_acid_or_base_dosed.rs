@@ -32,7 +32,7 @@ use crate::rules::catalogue::rule;
 use crate::rules::context::Context;
 use crate::rules::finding::Finding;
 use crate::text::span::{Part, Place};
-use crate::text::tree::{By, Statement};
+use crate::text::tree::{By, Over, Statement};
 
 rule!("strong-acid-or-base-dosed", Caution, "strong_acid_or_base_dosed.rs", find);
 
@@ -69,12 +69,22 @@ fn find(context: &Context, found: &mut Vec<Finding<Place>>) {
                 By::Reagent(reagent, _) => (reagent, true),
                 By::Total(_) => continue,
             },
+            Statement::Curve { over, .. } => match &over.value {
+                Over::Reagent(reagent) => (reagent, false),
+                _ => continue,
+            },
             _ => continue,
         };
         let name = canonical(&reagent.value);
         let put_in = || {
             let is_it = |reagent: &&crate::problem::model::Reagent| reagent.formula.name == name;
-            context.problem.reagents.iter().find(is_it).map_or(0.0, |reagent| reagent.amount)
+            let stated = context.problem.reagents.iter().find(is_it);
+            let curve = context.problem.curves.iter().find(|curve| curve.words == name);
+            // Of a curve, the most that it comes to.
+            match (written.statement(), curve) {
+                (Statement::Curve { .. }, Some(curve)) => curve.from.max(curve.to),
+                _ => stated.map_or(0.0, |reagent| reagent.amount),
+            }
         };
         let known = |list: &'static [(&str, &str)]| {
             list.iter().find(|(formula, _)| *formula == name).map(|(_, words)| *words)

@@ -40,7 +40,7 @@ fn find(context: &Context, found: &mut Vec<Finding<Place>>) {
         let value = concentration(*value, context.problem.scale);
         let written = context.statement(defect.at).map(|written| written.statement());
         found.push(match written {
-            Some(Statement::Total { .. }) => {
+            Some(Statement::Total { .. } | Statement::Curve { .. }) => {
                 RULE.at(defect.at, format!("the total of `{name}` is {value}, below zero"))
             }
             _ => RULE

@@ -27,14 +27,15 @@ use crate::rules::context::Context;
 use crate::rules::finding::Finding;
 use crate::rules::figures::celsius;
 use crate::rules::words::list;
+use super::own::where_to;
 use crate::text::span::Place;
 
 rule!("constant-for-other-temperature", Warning, "constant_for_other_temperature.rs", find);
 
 fn find(context: &Context, found: &mut Vec<Finding<Place>>) {
-    // Those of used files and sets have no place here: all are told at the temperature.
-    let mut used: Vec<(&str, f64)> = Vec::new();
-    let mut told_at: Option<(Place, f64)> = None;
+    // Those of used files and sets have no place here: all are told at the temperature, or
+    // at the curve that goes there.
+    let mut used: Vec<(Place, f64, Vec<(&str, f64)>)> = Vec::new();
     for defect in context.defects() {
         let DefectKind::ConstantAtOtherTemperature { reaction, given, wanted, own } = &defect.kind
         else {
@@ -46,29 +47,36 @@ fn find(context: &Context, found: &mut Vec<Finding<Place>>) {
                 celsius(*wanted),
                 celsius(*wanted),
             );
-            found.push(RULE.at(defect.at, message("the constant", *given, *wanted)).with_help(help));
+            let goes = where_to(context, defect.at, *wanted);
+            found.push(RULE.at(defect.at, message("the constant", *given, &goes)).with_help(help));
         } else {
-            told_at.get_or_insert((defect.at, *wanted));
-            used.push((reaction, *given));
+            let place = used.iter_mut().find(|(at, to, _)| *at == defect.at && to == wanted);
+            match place {
+                Some((_, _, constants)) => constants.push((reaction, *given)),
+                None => used.push((defect.at, *wanted, vec![(reaction, *given)])),
+            }
         }
     }
-    let Some((at, wanted)) = told_at else { return };
-    let message = match used[..] {
-        [(reaction, given)] => message(&format!("the constant of `{reaction}`"), given, wanted),
-        _ => {
-            let words = |&(reaction, given): &(&str, f64)| {
-                format!("`{reaction}` for {}", celsius(given))
-            };
-            let all: Vec<String> = used.iter().map(words).collect();
-            let all = list(&all, "and");
-            format!("at {} these constants are taken as they stand: {all}", celsius(wanted))
-        }
-    };
-    let help = "write it in this file with `enthalpy = … kJ/mol`, or with `at`";
-    found.push(RULE.at(at, message).with_help(help));
+    for (at, wanted, used) in used {
+        let message = match used[..] {
+            [(reaction, given)] => {
+                let constant = format!("the constant of `{reaction}`");
+                message(&constant, given, &where_to(context, at, wanted))
+            }
+            _ => {
+                let words = |&(reaction, given): &(&str, f64)| {
+                    format!("`{reaction}` for {}", celsius(given))
+                };
+                let all: Vec<String> = used.iter().map(words).collect();
+                let all = list(&all, "and");
+                format!("at {} these constants are taken as they stand: {all}", celsius(wanted))
+            }
+        };
+        let help = "write it in this file with `enthalpy = … kJ/mol`, or with `at`";
+        found.push(RULE.at(at, message).with_help(help));
+    }
 }
 
-fn message(constant: &str, given: f64, wanted: f64) -> String {
-    let (given, wanted) = (celsius(given), celsius(wanted));
-    format!("{constant} is for {given} and the problem is at {wanted}; it is taken as it stands")
+fn message(constant: &str, given: f64, goes: &str) -> String {
+    format!("{constant} is for {} and {goes}; it is taken as it stands", celsius(given))
 }

@@ -28,14 +28,15 @@ use crate::rules::context::Context;
 use crate::rules::finding::Finding;
 use crate::rules::figures::celsius;
 use crate::rules::words::list;
+use super::own::where_to;
 use crate::text::span::Place;
 
 rule!("outside-valid-range", Warning, "outside_valid_range.rs", find);
 
 fn find(context: &Context, found: &mut Vec<Finding<Place>>) {
-    // Those of used files and sets have no place here: all are told at the temperature.
-    let mut used: Vec<(&str, String)> = Vec::new();
-    let mut told_at: Option<(Place, f64)> = None;
+    // Those of used files and sets have no place here: all are told at the temperature, or
+    // at the curve that goes there.
+    let mut used: Vec<(Place, f64, Vec<(&str, String)>)> = Vec::new();
     for defect in context.defects() {
         let DefectKind::OutsideValidRange { reaction, low, high, wanted, own } = &defect.kind
         else {
@@ -43,25 +44,33 @@ fn find(context: &Context, found: &mut Vec<Finding<Place>>) {
         };
         let range = format!("{} to {}", celsius(*low).trim_end_matches(" °C"), celsius(*high));
         if *own {
-            found.push(RULE.at(defect.at, message("the constant", &range, *wanted)));
+            let goes = where_to(context, defect.at, *wanted);
+            found.push(RULE.at(defect.at, message("the constant", &range, &goes)));
         } else {
-            told_at.get_or_insert((defect.at, *wanted));
-            used.push((reaction, range));
+            let place = used.iter_mut().find(|(at, to, _)| *at == defect.at && to == wanted);
+            match place {
+                Some((_, _, constants)) => constants.push((reaction, range)),
+                None => used.push((defect.at, *wanted, vec![(reaction, range)])),
+            }
         }
     }
-    let Some((at, wanted)) = told_at else { return };
-    let message = match &used[..] {
-        [(reaction, range)] => message(&format!("the constant of `{reaction}`"), range, wanted),
-        _ => {
-            let words = |(reaction, range): &(&str, String)| format!("`{reaction}` ({range})");
-            let all: Vec<String> = used.iter().map(words).collect();
-            let all = list(&all, "and");
-            format!("{} is outside the range of these constants: {all}", celsius(wanted))
-        }
-    };
-    found.push(RULE.at(at, message));
+    for (at, wanted, used) in used {
+        let message = match &used[..] {
+            [(reaction, range)] => {
+                let constant = format!("the constant of `{reaction}`");
+                message(&constant, range, &where_to(context, at, wanted))
+            }
+            _ => {
+                let words = |(reaction, range): &(&str, String)| format!("`{reaction}` ({range})");
+                let all: Vec<String> = used.iter().map(words).collect();
+                let all = list(&all, "and");
+                format!("{} is outside the range of these constants: {all}", celsius(wanted))
+            }
+        };
+        found.push(RULE.at(at, message));
+    }
 }
 
-fn message(constant: &str, range: &str, wanted: f64) -> String {
-    format!("{constant} is valid from {range} and the problem is at {}", celsius(wanted))
+fn message(constant: &str, range: &str, goes: &str) -> String {
+    format!("{constant} is valid from {range} and {goes}")
 }

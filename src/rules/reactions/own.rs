@@ -1,9 +1,10 @@
-//! From a place back to the reaction that is written there.
+//! From a place back to the reaction, or the temperature, that is written there.
 
 use std::sync::Arc;
 
 use crate::problem::reaction::Reaction;
 use crate::rules::context::Context;
+use crate::rules::figures::celsius;
 use crate::text::span::Place;
 use crate::text::tree::{self, Statement};
 
@@ -26,4 +27,14 @@ pub fn tree<'a>(context: &Context<'a>, at: Place) -> Option<&'a tree::Reaction> 
         Statement::Reaction(tree) => Some(tree),
         _ => None,
     }
+}
+
+/// What goes to a temperature that a constant is not for, at the place where it is told.
+pub fn where_to(context: &Context, at: Place, wanted: f64) -> String {
+    let curve = context.statement(at).map(|written| written.statement());
+    let what = match curve {
+        Some(Statement::Curve { .. }) => "the curve goes to",
+        _ => "the problem is at",
+    };
+    format!("{what} {}", celsius(wanted))
 }

@@ -1,7 +1,6 @@
 //! A statement is part of the language, and this edition cannot solve it yet.
 //!
-//! `precipitate`, `saturate with`, `hold … by` and `curve` are read and checked for
-//! their writing; solving them comes with a later edition. An amount that such a
+//! `precipitate`, `saturate with` and `hold … by` are read and checked for their writing; solving them comes with a later edition. An amount that such a
 //! statement would decide makes the answer another one, so the problem is not solved
 //! while it stands there.
 //!
@@ -47,7 +46,6 @@ fn instead(what: &str) -> &'static str {
             "hold the ion that the solid sets, as in `hold {Ca^2+} = 1e-4`, \
              and look at the saturation index"
         }
-        "curve" => "write a case for each value that matters",
         _ => "try doses with `add`, one in each case, and state the target with `expect`",
     }
 }

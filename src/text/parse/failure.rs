@@ -75,6 +75,7 @@ expectations! {
     From "`from`",
     To "`to`",
     And "`and`",
+    Points "`points`",
     Giving "`giving`",
     Source "`source`",
     Comma "a comma",

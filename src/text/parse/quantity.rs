@@ -73,8 +73,8 @@ fn whole_number<'s>() -> impl Rule<'s, Spanned<i64>> + Copy {
     })
 }
 
-/// The edition of a set.
-pub(super) fn edition<'s>() -> impl Rule<'s, Spanned<u32>> + Copy {
+/// The edition of a set, or how many points a curve has.
+pub(super) fn count<'s>() -> impl Rule<'s, Spanned<u32>> + Copy {
     one(Expect::WholeNumber, move |lexeme| {
         let value = (lexeme.token == Token::Number).then(|| lexeme.text.parse().ok())??;
         Some(Spanned::new(value, lexeme.span()))

@@ -4,7 +4,7 @@ use chumsky::prelude::*;
 
 use super::basic::{Lexeme, Rule, any_word, clause_end, name, sign, string, to_comma, word};
 use super::failure::Expect;
-use super::quantity::{edition, quantity};
+use super::quantity::{count, quantity};
 use super::reaction::reaction;
 use super::stock::{blend, of_stock};
 use super::subject::{expect, hold, without};
@@ -103,7 +103,7 @@ impl<'s> Run<'s, '_> {
 
 fn used<'s>() -> impl Rule<'s, Use> {
     let set = any_word(Expect::Set)
-        .then(edition().or_not())
+        .then(count().or_not())
         .map(|(name, edition)| Use::Set { name, edition });
     let file = string().map(|path| Use::File { path });
     set.or(file.labelled(Expect::Set))
@@ -204,11 +204,15 @@ fn curve<'s>() -> impl Rule<'s, Statement> {
         }),
         reagent,
     ));
+    let points = sign(Token::Comma, Expect::Comma)
+        .ignore_then(count())
+        .then_ignore(word("points", Expect::Points));
     word("over", Expect::OverWord)
         .ignore_then(over)
         .then_ignore(word("from", Expect::From))
         .then(quantity())
         .then_ignore(word("to", Expect::To))
         .then(quantity())
-        .map(|((over, from), to)| Statement::Curve { over, from, to })
+        .then(points.or_not())
+        .map(|(((over, from), to), points)| Statement::Curve { over, from, to, points })
 }
