@@ -145,6 +145,12 @@ impl Curve {
                 without.get_or_insert(NoConstant { reaction });
             }
         }
+        // A held potential is a pe by Nernst's equation, which goes with the temperature.
+        for (held, given) in moved.held.iter_mut().zip(&base.held) {
+            if let (HeldWhat::Pe(pe), "potential") = (given.what, given.words.as_str()) {
+                held.what = HeldWhat::Pe(pe * base.kelvin / kelvin);
+            }
+        }
         // A held pOH is a pH by the ion product of water, which moves.
         let hydroxide = |problem: &Problem| {
             let made = problem.scope.belonging.made[problem.scope.find("OH-")?].as_ref()?;

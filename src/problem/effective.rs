@@ -209,7 +209,8 @@ pub fn in_force<'a>(base: &'a Section, case: Option<&'a Section>) -> InForce<'a>
     let is_source =
         |key: &Key| matches!(key, Key::Total(_) | Key::Add(_) | Key::Hold(_) | Key::Blend);
     found.other_sources = from_nothing
-        || replaced.iter().any(|(key, met)| is_source(key) && !met)
+        // Another blend may bring other components.
+        || replaced.iter().any(|(key, met)| is_source(key) && (!met || *key == Key::Blend))
         || varied.kept.iter().any(|(_, written)| {
             matches!(written.statement(), Statement::Without(_)) || is_nothing(written.statement())
         });

@@ -18,8 +18,9 @@ const USUAL: [(&str, f64); 2] = [("Na+", 1.0), ("Cl-", -1.0)];
 
 /// In a few words, the end of a sentence; none where nothing simple explains it.
 pub fn likely_slip(context: &Context, solved: &Solved, balance: &IonBalance) -> Option<String> {
-    other_reading(context, solved, balance)
-        .or_else(|| entered_as_none(context, balance))
+    // A zero stands there for all to see; another reading may close a balance by chance.
+    entered_as_none(context, balance)
+        .or_else(|| other_reading(context, solved, balance))
         .or_else(|| one_ion(context, balance))
 }
 
