@@ -51,18 +51,21 @@ pub type WaterResult = Result<Arc<BlendedWater>, DefectKind>;
 /// The waters of a blend's parts, each with the part's place.
 pub type Waters = Vec<(Place, WaterResult)>;
 
-/// Waters kept between edits, by file and case: each with what it rested on.
+/// A file, and its case where it is not its base.
+pub type WaterOf = (PathBuf, Option<String>);
+
+/// Waters kept between edits: each with what it rested on.
 #[derive(Debug, Default)]
-pub struct Kept(Mutex<HashMap<(PathBuf, Option<String>), (u64, WaterResult)>>);
+pub struct Kept(Mutex<HashMap<WaterOf, (u64, WaterResult)>>);
 
 impl Kept {
     /// What was found for this state of a file.
-    pub fn get(&self, path: &(PathBuf, Option<String>), state: u64) -> Option<WaterResult> {
+    pub fn get(&self, path: &WaterOf, state: u64) -> Option<WaterResult> {
         let kept = self.0.lock().unwrap_or_else(|e| e.into_inner());
         kept.get(path).filter(|(of, _)| *of == state).map(|(_, water)| water.clone())
     }
 
-    pub fn keep(&self, path: (PathBuf, Option<String>), state: u64, water: WaterResult) {
+    pub fn keep(&self, path: WaterOf, state: u64, water: WaterResult) {
         let mut kept = self.0.lock().unwrap_or_else(|e| e.into_inner());
         kept.insert(path, (state, water));
     }

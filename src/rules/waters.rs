@@ -11,7 +11,7 @@ use super::finding::Severity;
 use super::outcome::{Outcome, State};
 use super::plan::Plan;
 use crate::equilibrium::quantities::Solved;
-use crate::problem::blend::{BlendedWater, Matter, WaterResult, Waters};
+use crate::problem::blend::{BlendedWater, Matter, WaterOf, WaterResult, Waters};
 use crate::problem::defect::DefectKind;
 use crate::problem::effective::Written;
 use crate::problem::files::root_of;
@@ -31,7 +31,7 @@ pub struct Walk<'a> {
 /// What the whole walk has found: a water that several files blend is looked at once.
 #[derive(Default)]
 pub struct Shared {
-    done: Mutex<HashMap<(PathBuf, Option<String>), WaterResult>>,
+    done: Mutex<HashMap<WaterOf, WaterResult>>,
 }
 
 /// Blends nest no deeper than this, so that no stack depends on the files.
@@ -103,7 +103,7 @@ fn water(part: &BlendPart, around: &Surroundings, walk: &Walk) -> Option<WaterRe
 /// The water of a file that has been found. None when cancelled.
 fn of_file(
     shown: PathBuf,
-    key: &(PathBuf, Option<String>),
+    key: &WaterOf,
     around: &Surroundings,
     walk: &Walk,
 ) -> Option<WaterResult> {
