@@ -35,7 +35,7 @@ rule!("constant-for-other-temperature", Warning, "constant_for_other_temperature
 fn find(context: &Context, found: &mut Vec<Finding<Place>>) {
     // Those of used files and sets have no place here: all are told at the temperature, or
     // at the curve that goes there.
-    let mut used: Vec<(Place, f64, Vec<(&str, f64)>)> = Vec::new();
+    let mut used: Vec<ToldAt> = Vec::new();
     for defect in context.defects() {
         let DefectKind::ConstantAtOtherTemperature { reaction, given, wanted, own } = &defect.kind
         else {
@@ -76,6 +76,9 @@ fn find(context: &Context, found: &mut Vec<Finding<Place>>) {
         found.push(RULE.at(at, message).with_help(help));
     }
 }
+
+/// A place, the temperature it goes to, and the reactions that are told of there.
+type ToldAt<'a> = (Place, f64, Vec<(&'a str, f64)>);
 
 fn message(constant: &str, given: f64, goes: &str) -> String {
     format!("{constant} is for {} and {goes}; it is taken as it stands", celsius(given))

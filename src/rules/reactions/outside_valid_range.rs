@@ -36,7 +36,7 @@ rule!("outside-valid-range", Warning, "outside_valid_range.rs", find);
 fn find(context: &Context, found: &mut Vec<Finding<Place>>) {
     // Those of used files and sets have no place here: all are told at the temperature, or
     // at the curve that goes there.
-    let mut used: Vec<(Place, f64, Vec<(&str, String)>)> = Vec::new();
+    let mut used: Vec<ToldAt> = Vec::new();
     for defect in context.defects() {
         let DefectKind::OutsideValidRange { reaction, low, high, wanted, own } = &defect.kind
         else {
@@ -70,6 +70,9 @@ fn find(context: &Context, found: &mut Vec<Finding<Place>>) {
         found.push(RULE.at(at, message));
     }
 }
+
+/// A place, the temperature it goes to, and the reactions that are told of there.
+type ToldAt<'a> = (Place, f64, Vec<(&'a str, String)>);
 
 fn message(constant: &str, range: &str, goes: &str) -> String {
     format!("{constant} is valid from {range} and {goes}")
