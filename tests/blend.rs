@@ -223,10 +223,8 @@ fn a_water_with_electrons_is_taken_species_by_species() {
     let iron = "component Fe^2+, e-, Cl-\nreaction Fe^3+ + e- <=> Fe^2+, log K = 13.0, source \
                 \"table\"\nadd FeCl2 1 mmol/L\nadd FeCl3 3 mmol/L\nadd HCl 10 mmol/L\n";
     folder.write("iron.lyate", iron);
-    let same = format!(
-        "component e-, Fe^3+, Cl-\nreaction Fe^3+ + e- <=> Fe^2+, log K = 13.0, source \
-         \"table\"\nblend 100 % of \"iron.lyate\"\n"
-    );
+    let same = "component e-, Fe^3+, Cl-\nreaction Fe^3+ + e- <=> Fe^2+, log K = 13.0, source \
+         \"table\"\nblend 100 % of \"iron.lyate\"\n";
     let apart = "component Fe^2+, Fe^3+, Cl-\nblend 100 % of \"iron.lyate\"\n";
     let first = folder.check("first.lyate", iron, None);
     let pe = |checked: &Checked| {
@@ -234,7 +232,7 @@ fn a_water_with_electrons_is_taken_species_by_species() {
         let solved = outcome.solved().expect("it is solved");
         solved.value(&outcome.problem, Sought::Pe).expect("a pe")
     };
-    let second = folder.check("second.lyate", &same, None);
+    let second = folder.check("second.lyate", same, None);
     assert!((pe(&first) - pe(&second)).abs() < 1e-9);
     let third = figures(&folder.check("third.lyate", apart, None), 0);
     near(figure(&third, "Fe^2+"), 1e-3, "Fe^2+");
