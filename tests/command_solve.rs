@@ -161,6 +161,58 @@ case \"the wrong drum\"
     );
 }
 
+/// Two waters, one of them as a laboratory reports it, mixed and dosed; invented figures.
+#[test]
+fn an_analysis_and_a_blend() {
+    let well = "\
+use aqueous
+component CO3^2-, Ca^2+, Mg^2+, Na+, Cl-
+temperature 12 °C
+total CO3^2- = 4.6 mmol/L
+total Ca^2+ = 82 mg/L
+total Mg^2+ = 2 °dH
+total Na+ = 0 mg/L
+total Cl- = 40 mg/L
+hold pH = 7.3
+";
+    let main = "\
+problem \"Main\"
+use aqueous
+component CO3^2-, Ca^2+, Mg^2+, Na+, Cl-
+blend 70 % of \"river.lyate\" case \"summer\", 30 % of \"well.lyate\"
+add NaOH 0.1 mmol/L
+curve over blend \"well.lyate\" from 0 to 100 %, 3 points
+expect hardness < 12 °dH
+";
+    let river = "\
+use aqueous
+component CO3^2-, Ca^2+, Na+, Cl-
+add NaHCO3 0.4 mmol/L
+add CaCl2  0.5 mmol/L
+hold CO2(g) = 600 µatm
+temperature 6 °C
+case \"summer\"
+    temperature 22 °C
+";
+    let files = [("main.lyate", main), ("river.lyate", river), ("well.lyate", well)];
+    insta::assert_snapshot!(session(&files, &["check", "well.lyate"]));
+    insta::assert_snapshot!(session(&files[2..], &["solve", "well.lyate"]));
+    insta::assert_snapshot!(session(&files, &["solve", "main.lyate"]));
+    let output = run(folder(&files).path(), &["solve", "main.lyate", "--output", "json"]);
+    let answer: Value = serde_json::from_str(&stdout(&output)).unwrap();
+    let part = &answer["solutions"][0]["blend"][0];
+    assert_eq!((&part["file"], &part["case"]), (&"river.lyate".into(), &"summer".into()));
+    assert_eq!(part["share"].as_f64(), Some(0.7));
+    let output = run(folder(&files).path(), &["solve", "well.lyate", "--output", "json"]);
+    let answer: Value = serde_json::from_str(&stdout(&output)).unwrap();
+    let balance = &answer["solutions"][0]["ion_balance"];
+    assert_eq!(balance["criterion"]["percent"].as_f64(), Some(2.0));
+    assert_eq!(balance["accepted"].as_bool(), Some(false));
+    let sums = ["cations_meq_per_litre", "anions_meq_per_litre", "difference_meq_per_litre"]
+        .map(|name| balance[name].as_f64().unwrap());
+    assert!((sums[0] - sums[1] - sums[2]).abs() < 1e-9);
+}
+
 #[test]
 fn what_cannot_be_solved_says_why() {
     insta::assert_snapshot!(session(

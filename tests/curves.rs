@@ -362,3 +362,22 @@ fn a_titration_ends_at_the_published_equivalence_points() {
         assert!((ph - published).abs() <= 0.005, "{acid}: {ph}");
     }
 }
+
+/// A potential held in volts is another pe at another temperature: E F / (ln 10 R T).
+#[test]
+fn a_held_potential_stays_what_it_is_while_the_temperature_moves() {
+    let text = "component Fe^2+, e-, Cl-\nreaction Fe^3+ + e- <=> Fe^2+, log K = 13.0, enthalpy = \
+                -42 kJ/mol, source \"table\"\ntotal Fe^2+ = 1 mmol/L\ntotal Cl- = 20 mmol/L\n\
+                hold pH = 2\nhold potential = 0.7 V\n";
+    let base = problem(&format!("{text}curve over temperature from 5 to 45 °C, 3 points\n"));
+    let curve = base.curves.first().expect("a curve");
+    let points = along(&base, curve, &GO_ON).expect("nothing cancels it");
+    for (point, celsius) in points.iter().zip([5.0, 25.0, 45.0]) {
+        let answer = point.state.as_ref().expect("it is solved");
+        let electron = base.scope.component("e-").expect("it is listed");
+        let pe = -answer.ln_components[electron] / std::f64::consts::LN_10;
+        let volts =
+            pe * std::f64::consts::LN_10 * 8.314_462_618 * (273.15 + celsius) / 96_485.332_12;
+        assert!((volts - 0.7).abs() < 1e-9, "{volts} V at {celsius} °C");
+    }
+}

@@ -56,6 +56,7 @@ impl Quantity {
             supply: row,
             row: Vec::new(),
             ln_value,
+            water: 0.0,
             concentration_of: None,
         };
         let held = match self {
@@ -67,8 +68,7 @@ impl Quantity {
             Quantity::Concentration(i) => {
                 let species = &system.species[i];
                 let held = held(species.row.clone(), wanted.ln() - species.ln_k);
-                let concentration_of = Some((species.charge, species.ion_size));
-                Some(Fixed { concentration_of, ..held })
+                Some(Fixed { concentration_of: Some(i), ..held })
             }
             _ => None,
         };
@@ -397,6 +397,7 @@ fn what_does_not_move_is_told_apart() {
         species: vec![species(&[(0, 1)], 0.0), species(&[(0, -1)], -14.0), species(&[(1, 1)], 0.0)],
         totals: vec![0.0, 1e-3],
         fixed: Vec::new(),
+        candidates: Vec::new(),
         activity: equilibrium_support::IDEAL,
         ionic_strength: IonicStrength::Computed,
     };

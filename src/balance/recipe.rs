@@ -97,7 +97,7 @@ impl Recipe {
             amount: known(reagent).map(|amount| amount / dilution),
         });
         let totals = problem.amounts.iter().map(|amount| match amount.source {
-            AmountSource::Total | AmountSource::Found(_) => {
+            AmountSource::Total | AmountSource::Found(_) | AmountSource::Blend => {
                 amount.total.map(|total| total / dilution)
             }
             AmountSource::Nothing | AmountSource::Reagents | AmountSource::Held(_) => None,

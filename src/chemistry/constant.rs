@@ -3,6 +3,20 @@
 /// The molar gas constant, J/(mol·K): exact in the SI of 2019 to the digits given.
 pub const GAS_CONSTANT: f64 = 8.314_462_618;
 
+/// The Faraday constant, C/mol: exact in the SI of 2019 to the digits given.
+pub const FARADAY_CONSTANT: f64 = 96_485.332_12;
+
+/// Volts against the standard hydrogen electrode for one unit of pe, by Nernst's equation:
+/// ln 10 · R T / F.
+pub fn volts_per_pe(kelvin: f64) -> f64 {
+    std::f64::consts::LN_10 * GAS_CONSTANT * kelvin / FARADAY_CONSTANT
+}
+
+/// The pe of an electrode potential in volts against the standard hydrogen electrode.
+pub fn pe_of_potential(volts: f64, kelvin: f64) -> f64 {
+    volts / volts_per_pe(kelvin)
+}
+
 /// What is known of a reaction's heat at the temperature its constant is for.
 #[derive(Clone, Copy, Debug, Default, PartialEq)]
 pub struct ReactionHeat {

@@ -159,7 +159,7 @@ fn moles_per_base_unit(
             None => 1.0,
             Some(basis) => basis_per_mole(basis, formula)?,
         },
-        Dimension::EquivalentsPerLitre => {
+        Dimension::EquivalentsPerLitre | Dimension::Hardness => {
             if basis.is_some() {
                 return Err(ConversionProblem::BasisWithUnit { unit: unit.name });
             }
@@ -276,6 +276,11 @@ pub fn to_kelvin(value: f64, unit: Unit) -> Result<f64, ConversionProblem> {
 /// A pressure in standard atmospheres (101 325 Pa).
 pub fn to_atmospheres(value: f64, unit: Unit) -> Result<f64, ConversionProblem> {
     of_dimension(value, unit, Dimension::Pressure)
+}
+
+/// A potential in volts.
+pub fn to_volts(value: f64, unit: Unit) -> Result<f64, ConversionProblem> {
+    of_dimension(value, unit, Dimension::Potential)
 }
 
 /// An enthalpy in J/mol.

@@ -12,6 +12,8 @@ pub enum Dimension {
     /// Per kilogram of water.
     AmountPerKilogram,
     EquivalentsPerLitre,
+    /// Degrees, each so many equivalents per litre.
+    Hardness,
     MassPerLitre,
     /// Per kilogram of water.
     MassPerKilogram,
@@ -20,6 +22,7 @@ pub enum Dimension {
     VolumePerVolume,
     Temperature,
     Pressure,
+    Potential,
     MolarEnergy,
     /// Of entropy and heat capacity.
     MolarEntropy,
@@ -35,12 +38,14 @@ impl Dimension {
             Dimension::AmountPerLitre => "amount per litre",
             Dimension::AmountPerKilogram => "amount per kilogram of water",
             Dimension::EquivalentsPerLitre => "equivalents per litre",
+            Dimension::Hardness => "degrees of hardness",
             Dimension::MassPerLitre => "mass per litre",
             Dimension::MassPerKilogram => "mass per kilogram of water",
             Dimension::MassFraction => "mass fraction",
             Dimension::VolumePerVolume => "volume per volume",
             Dimension::Temperature => "temperature",
             Dimension::Pressure => "pressure",
+            Dimension::Potential => "potential",
             Dimension::MolarEnergy => "energy per mole",
             Dimension::MolarEntropy => "energy per mole and kelvin",
             Dimension::Percent => "percentage",
@@ -55,6 +60,7 @@ impl Dimension {
             Dimension::AmountPerLitre
                 | Dimension::AmountPerKilogram
                 | Dimension::EquivalentsPerLitre
+                | Dimension::Hardness
                 | Dimension::MassPerLitre
                 | Dimension::MassPerKilogram
                 | Dimension::MassFraction
@@ -75,7 +81,7 @@ pub struct Unit {
     pub name: &'static str,
     pub dimension: Dimension,
     /// How many base units it is: mol/L, mol/kg, eq/L, g/L, g/kg, mass per mass, volume
-    /// per volume, K, atm, J/mol, J/(mol·K), a fraction of one.
+    /// per volume, K, atm, V, J/mol, J/(mol·K), a fraction of one.
     pub factor: f64,
     /// Base value at the unit's zero; other than zero for °C alone.
     pub offset: f64,
@@ -134,7 +140,13 @@ const fn unit(name: &'static str, dimension: Dimension, factor: f64) -> Unit {
 /// Standard atmosphere, Pa: exact (10th CGPM, 1954). The bar is 10⁵ Pa exactly.
 const ATMOSPHERE: f64 = 101_325.0;
 
-const UNITS: [Unit; 40] = [
+/// Equivalents per litre in a German degree of hardness and in a French one. A German degree is 10 mg/L of CaO, two equivalents per mole of 56.077 g; a French degree is
+/// 10 mg/L of CaCO3, of 100.086 g (CIAAW 2021 weights; the definitions by Standard Methods for
+/// the Examination of Water and Wastewater, 2340, and DIN 38409-6, both recalled).
+pub const GERMAN_DEGREE: f64 = 2.0 * 10e-3 / 56.077;
+const FRENCH_DEGREE: f64 = 2.0 * 10e-3 / 100.086;
+
+const UNITS: [Unit; 44] = [
     unit("mol/L", D::AmountPerLitre, 1.0),
     unit("mmol/L", D::AmountPerLitre, 1e-3),
     unit("µmol/L", D::AmountPerLitre, 1e-6),
@@ -146,6 +158,8 @@ const UNITS: [Unit; 40] = [
     unit("mmol/kg", D::AmountPerKilogram, 1e-3),
     unit("eq/L", D::EquivalentsPerLitre, 1.0),
     unit("meq/L", D::EquivalentsPerLitre, 1e-3),
+    unit("°dH", D::Hardness, GERMAN_DEGREE),
+    unit("°fH", D::Hardness, FRENCH_DEGREE),
     unit("mg/L", D::MassPerLitre, 1e-3),
     unit("g/L", D::MassPerLitre, 1.0),
     unit("µg/L", D::MassPerLitre, 1e-6),
@@ -170,6 +184,8 @@ const UNITS: [Unit; 40] = [
     unit("mbar", D::Pressure, 1e2 / ATMOSPHERE),
     unit("kPa", D::Pressure, 1e3 / ATMOSPHERE),
     unit("Pa", D::Pressure, 1.0 / ATMOSPHERE),
+    unit("V", D::Potential, 1.0),
+    unit("mV", D::Potential, 1e-3),
     unit("kJ/mol", D::MolarEnergy, 1e3),
     unit("J/mol", D::MolarEnergy, 1.0),
     unit("J/(mol·K)", D::MolarEntropy, 1.0),

@@ -99,7 +99,7 @@ pub fn renew(system: &mut System, problem: &Problem, moved: Sweep) {
         return;
     }
     totals(problem, &mut system.totals);
-    if moved == Sweep::Temperature {
+    if matches!(moved, Sweep::Temperature | Sweep::Blend(_)) {
         for (species, &s) in system.species.iter_mut().zip(&problem.scope.dissolved) {
             species.ln_k = ln_formation(problem, s);
         }
@@ -128,6 +128,8 @@ fn totals(problem: &Problem, totals: &mut [f64]) {
     totals[PROTON] = -(1..totals.len())
         .map(|j| f64::from(problem.scope.components[j].formula.charge) * totals[j])
         .sum::<f64>();
+    // An analysis whose pH was held brings the charge that it leaves open.
+    totals[PROTON] += problem.blend.as_ref().map_or(0.0, |blend| blend.charge());
 }
 
 /// The value of `Σ row · x` that a held value sets, its activity coefficient left out.

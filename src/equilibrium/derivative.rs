@@ -12,6 +12,7 @@ use super::quantities::Solved;
 use super::sensitivity::{Response, Sensitivity, buffer_capacity};
 use super::solve::needs_activity;
 use super::system::{Activity, Answer, IonicStrength, System};
+use crate::chemistry::constant::volts_per_pe;
 use crate::problem::input::Input;
 use crate::problem::model::{Presence, Problem, Sought};
 use crate::problem::scope::WATER;
@@ -177,7 +178,22 @@ impl Movement {
                 let by_ln = self.response.ln_concentrations[scope.row_of(species)?];
                 fraction * (by_ln - of_total / total)
             }
+            Sought::Potential => {
+                let volts = solved.value(problem, Sought::Potential)?;
+                let by_pe = self.of(problem, solved, Sought::Pe)? * volts_per_pe(problem.kelvin);
+                by_pe + volts * self.push.kelvin / problem.kelvin
+            }
             Sought::Alkalinity => solved.alkalinity_of(problem, moved),
+            Sought::Acidity => solved.acidity_of(problem, moved),
+            Sought::Hardness => solved.hardness_of(problem, moved),
+            Sought::CarbonateHardness => {
+                let (hardness, half) = (solved.hardness(problem), solved.alkalinity(problem) / 2.0);
+                match half {
+                    half if half <= 0.0 => 0.0,
+                    half if half < hardness => solved.alkalinity_of(problem, moved) / 2.0,
+                    _ => solved.hardness_of(problem, moved),
+                }
+            }
             Sought::IonicStrength => match solved.system.ionic_strength {
                 // With ideal activities a given one goes nowhere, and the answer's own is told.
                 IonicStrength::Given(_) if needs_activity(&solved.system) => {

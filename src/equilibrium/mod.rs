@@ -3,6 +3,7 @@
 
 mod basis;
 pub mod build;
+pub mod capacities;
 pub mod charge;
 mod composition;
 pub mod confidence;

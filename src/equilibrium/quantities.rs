@@ -7,11 +7,11 @@ use num_traits::ToPrimitive;
 use super::build::{ln_formation, water_taken};
 use super::sensitivity;
 use super::system::{Answer, System};
+use crate::chemistry::constant::volts_per_pe;
 use crate::problem::model::{
     Presence, Problem, Sought, Target, WrittenBalance, WrittenTerm, WrittenWhat,
 };
-use crate::problem::reaction::STANDARD;
-use crate::problem::scope::{PROTON, WATER};
+use crate::problem::scope::WATER;
 
 /// A problem with its numbers and its answer.
 #[derive(Clone, Debug)]
@@ -229,27 +229,6 @@ impl Solved {
         if sum > 0.0 { 100.0 * (cations - anions) / sum } else { 0.0 }
     }
 
-    /// Alkalinity by Dickson (1981), eq per litre or kilogram: proton acceptors formed from
-    /// acids of pKa 4.5 and above (25 °C, zero ionic strength), over proton donors. The
-    /// zero level of each component is the form that dominates at pH 4.5.
-    pub fn alkalinity(&self, problem: &Problem) -> f64 {
-        self.alkalinity_of(problem, |row| self.answer.concentrations[row])
-    }
-
-    /// The same sum over something else than concentrations, given by row.
-    pub(super) fn alkalinity_of(&self, problem: &Problem, of: impl Fn(usize) -> f64) -> f64 {
-        let levels = zero_levels(problem);
-        let rows = self.system.species.iter().enumerate();
-        rows.map(|(row, species)| {
-            let protons = |&(j, n): &(usize, num_rational::Rational64)| {
-                let n = n.to_f64().unwrap_or(0.0);
-                if j == PROTON { -n } else { n * levels[j] }
-            };
-            species.row.iter().map(protons).sum::<f64>() * of(row)
-        })
-        .sum()
-    }
-
     /// mol per litre or kilogram of strong base for one unit of pH.
     pub fn buffer_capacity(&self) -> Option<f64> {
         sensitivity::buffer_capacity(&self.system, &self.answer)
@@ -263,7 +242,11 @@ impl Solved {
                 let hydroxide = problem.scope.find("OH-")?;
                 -self.ln_activity(problem, hydroxide)? / LN_10
             }
-            Sought::Pe => -self.answer.ln_components[problem.scope.component("e-")?] / LN_10,
+            Sought::Pe => {
+                let pe = -self.answer.ln_components[problem.scope.component("e-")?] / LN_10;
+                // Where nothing is there in two states, electrons have no activity.
+                pe.is_finite().then_some(pe)?
+            }
             Sought::Concentration(species) => {
                 self.answer.concentrations[problem.scope.row_of(species)?]
             }
@@ -278,7 +261,11 @@ impl Solved {
                 let (_, share) = self.shares(component).find(|&(i, _)| i == row)?;
                 share / self.dissolved(component)
             }
+            Sought::Potential => self.value(problem, Sought::Pe)? * volts_per_pe(problem.kelvin),
             Sought::Alkalinity => self.alkalinity(problem),
+            Sought::Acidity => self.acidity(problem),
+            Sought::Hardness => self.hardness(problem),
+            Sought::CarbonateHardness => self.carbonate_hardness(problem),
             Sought::IonicStrength => self.answer.ionic_strength,
             Sought::BufferCapacity => self.buffer_capacity()?,
             Sought::ChargeImbalance { equivalents: false } => self.imbalance_percent(),
@@ -291,31 +278,4 @@ impl Solved {
         // Minus infinity is the saturation index of a solid whose ions are absent.
         (!value.is_nan()).then_some(value)
     }
-}
-
-/// Protons that the zero-level form of each component holds, per one of the component.
-fn zero_levels(problem: &Problem) -> Vec<f64> {
-    let scope = &problem.scope;
-    let mut best = vec![(f64::NEG_INFINITY, 0.0); scope.components.len()];
-    let ln_h = -4.5 * LN_10;
-    for (row, &s) in scope.stoichiometry.species.iter().zip(&scope.dissolved) {
-        let mut others = row.row.iter().filter(|&&(j, _)| j != PROTON);
-        let (Some(&(j, n)), None) = (others.next(), others.next()) else { continue };
-        if n != num_rational::Rational64::from_integer(1) {
-            continue;
-        }
-        let protons = row
-            .row
-            .iter()
-            .find(|&&(j, _)| j == PROTON)
-            .map_or(0.0, |p| p.1.to_f64().unwrap_or(0.0));
-        let log_k = |r: usize| scope.reactions[r].log_k(STANDARD).map_or(0.0, |(k, _)| k);
-        let made = scope.belonging.made[s].as_ref();
-        let ln_k = made.map_or(0.0, |made| LN_10 * made.log_beta(log_k));
-        let height = ln_k + protons * ln_h;
-        if height > best[j].0 {
-            best[j] = (height, protons);
-        }
-    }
-    best.into_iter().map(|(_, protons)| protons).collect()
 }

@@ -25,6 +25,14 @@ use crate::text::tree::{Member, Name, Quantity, Statement, Strength};
 /// Reads `total` and `add`.
 pub fn read(case: &mut CaseResolver, problem: &mut Problem) {
     problem.amounts = vec![Amount::default(); case.scope.components.len()];
+    if let Some(blend) = &problem.blend {
+        for (j, amount) in problem.amounts.iter_mut().enumerate().skip(1) {
+            if let Some(total) = blend.total(j) {
+                let (at, source) = (Some(blend.at), AmountSource::Blend);
+                *amount = Amount { total: Some(total), at, source };
+            }
+        }
+    }
     for written in case.statements {
         match written.statement() {
             Statement::Total { component, value } => {
@@ -55,7 +63,9 @@ pub fn read(case: &mut CaseResolver, problem: &mut Problem) {
                     }
                 }
                 _ => {
-                    amount.source = AmountSource::Reagents;
+                    if amount.source != AmountSource::Blend {
+                        amount.source = AmountSource::Reagents;
+                    }
                     amount.total = Some(amount.total.unwrap_or(0.0) + brought);
                     amount.at.get_or_insert(reagent.at);
                 }
@@ -90,6 +100,14 @@ fn total(
     if read.value < 0.0 && !formula.is_electron() {
         let kind = DefectKind::NegativeTotal { name: formula.name.clone(), value: read.value };
         case.resolver.report(written.place(value.span), kind);
+        return None;
+    }
+    let given = &problem.amounts[j];
+    if let (AmountSource::Blend, Some(blend), true) =
+        (given.source, given.at, given.total != Some(0.0))
+    {
+        let kind = DefectKind::TotalAndBlend { name: formula.name.clone(), blend };
+        case.resolver.report(at, kind);
         return None;
     }
     problem.amounts[j] =

@@ -7,6 +7,7 @@ use num_traits::ToPrimitive;
 
 use super::amounts;
 use super::belong::combined;
+use super::blend::{self, Waters};
 use super::charge_reading;
 use super::curve;
 use super::defect::{Defect, DefectKind, Expected};
@@ -41,7 +42,13 @@ pub struct CaseResolver<'a> {
 }
 
 /// Resolves the statements in force. `merging` are the defects found while merging.
-pub fn resolve(statements: &[Written], merging: Vec<Defect>, scope: Arc<Scope>) -> Problem {
+/// `waters` are those of the parts of the blend in force.
+pub fn resolve(
+    statements: &[Written],
+    merging: Vec<Defect>,
+    scope: Arc<Scope>,
+    waters: &Waters,
+) -> Problem {
     let mut case = CaseResolver {
         resolver: Resolver::within(scope.clone()),
         scope: &scope,
@@ -63,6 +70,7 @@ pub fn resolve(statements: &[Written], merging: Vec<Defect>, scope: Arc<Scope>) 
         ionic_strength: None,
         scale: Scale::PerLitre,
         amounts: Vec::new(),
+        blend: None,
         reagents: Vec::new(),
         held: Vec::new(),
         solids: Vec::new(),
@@ -78,7 +86,15 @@ pub fn resolve(statements: &[Written], merging: Vec<Defect>, scope: Arc<Scope>) 
         states_problem: statements.iter().any(|w| states_a_problem(w.statement())),
         blocked: false,
     };
+    let blend = blend::read(&mut case, waters);
+    if let Some(blend) = &blend {
+        // Unless the file says another.
+        case.kelvin = blend.kelvin();
+        problem.kelvin = case.kelvin;
+        problem.temperature_at = Some(blend.at);
+    }
     conditions(&mut case, &mut problem);
+    problem.blend = blend.and_then(|blend| blend::over_components(&mut case, blend));
     constants(&mut case, &mut problem);
     amounts::read(&mut case, &mut problem);
     held::read(&mut case, &mut problem);
@@ -94,14 +110,6 @@ pub fn resolve(statements: &[Written], merging: Vec<Defect>, scope: Arc<Scope>) 
         if !charge_reading::defines(written.statement()) {
             charge_reading::look(&mut case.resolver, written, &scope.balanced);
         }
-    }
-    for written in statements {
-        let unsupported = match written.statement() {
-            Statement::Blend { .. } => "blend",
-            _ => continue,
-        };
-        let at = written.whole();
-        case.resolver.report(at, DefectKind::NotYetSupported { what: unsupported });
     }
     if let Some((scale, _)) = case.scale {
         problem.scale = scale;

@@ -3,6 +3,7 @@
 use num_traits::ToPrimitive;
 
 use super::amounts;
+use super::blend::Blend;
 use super::case::CaseResolver;
 use super::defect::{DefectKind, Expected};
 use super::effective::{Written, over_words};
@@ -27,7 +28,7 @@ pub struct Curve {
     pub over: Sweep,
     /// In canonical words: `pH`, `NaOH`, `total NH3`, `temperature`.
     pub words: String,
-    /// In base units: plain, mol per litre or kilogram, kelvin.
+    /// In base units: plain, mol per litre or kilogram, kelvin, a share of one.
     pub from: f64,
     pub to: f64,
     /// Both ends among them, the same distance apart.
@@ -45,6 +46,8 @@ pub enum Sweep {
     /// A component of the scope.
     Total(usize),
     Temperature,
+    /// The share of the file of this part of the blend; the others keep their proportions.
+    Blend(usize),
 }
 
 /// The constant of this reaction of the scope has no value at a point's temperature.
@@ -98,15 +101,41 @@ impl Curve {
                 for index in 0..moved.reagents[reagent].row.len() {
                     let (component, _) = moved.reagents[reagent].row[index];
                     let amount = &mut moved.amounts[component];
-                    if amount.source == AmountSource::Reagents {
-                        amount.total = Some(brought(&moved.reagents, component));
-                    }
+                    let blended = match amount.source {
+                        AmountSource::Reagents => 0.0,
+                        AmountSource::Blend => of_blend(&moved.blend, component),
+                        _ => continue,
+                    };
+                    amount.total = Some(blended + brought(&moved.reagents, component));
                 }
             }
             Sweep::Total(component) => moved.amounts[component].total = Some(x),
             Sweep::Temperature => return self.warm(base, moved, x),
+            Sweep::Blend(portion) => return self.blend(base, moved, portion, x),
         }
         Ok(())
+    }
+
+    fn blend(
+        &self,
+        base: &Problem,
+        moved: &mut Problem,
+        portion: usize,
+        share: f64,
+    ) -> Result<(), NoConstant> {
+        let Some(blend) = &base.blend else { return Ok(()) };
+        let file = &blend.portions[portion].file;
+        let Some(mixed) = blend.with_share(file, share) else { return Ok(()) };
+        // Unless the file states another temperature, it is that of the mixture.
+        let kelvin = (base.temperature_at == Some(blend.at)).then(|| mixed.kelvin());
+        moved.blend = Some(mixed);
+        for (component, amount) in moved.amounts.iter_mut().enumerate() {
+            if amount.source == AmountSource::Blend {
+                let blended = of_blend(&moved.blend, component);
+                amount.total = Some(blended + brought(&moved.reagents, component));
+            }
+        }
+        kelvin.map_or(Ok(()), |kelvin| self.warm(base, moved, kelvin))
     }
 
     fn warm(&self, base: &Problem, moved: &mut Problem, kelvin: f64) -> Result<(), NoConstant> {
@@ -117,6 +146,12 @@ impl Curve {
             moved.log_k[reaction] = log_k;
             if issue == Some(TemperatureIssue::NoValue) {
                 without.get_or_insert(NoConstant { reaction });
+            }
+        }
+        // A held potential is a pe by Nernst's equation, which goes with the temperature.
+        for (held, given) in moved.held.iter_mut().zip(&base.held) {
+            if let (HeldWhat::Pe(pe), "potential") = (given.what, given.words.as_str()) {
+                held.what = HeldWhat::Pe(pe * base.kelvin / kelvin);
             }
         }
         // A held pOH is a pH by the ion product of water, which moves.
@@ -143,6 +178,11 @@ pub fn at(base: &Problem, curve: &Curve, x: f64) -> Result<Problem, NoConstant> 
     let mut moved = base.clone();
     curve.place(base, &mut moved, x)?;
     Ok(moved)
+}
+
+/// mol per litre or kilogram of a component that the blend brings.
+fn of_blend(blend: &Option<Blend>, component: usize) -> f64 {
+    blend.as_ref().and_then(|blend| blend.total(component)).unwrap_or(0.0)
 }
 
 /// mol per litre or kilogram of a component that the reagents bring.
@@ -240,9 +280,23 @@ fn swept(
     Some(match over {
         Over::Ph => Sweep::Ph,
         Over::Temperature => Sweep::Temperature,
-        Over::Blend(_) => {
-            let kind = DefectKind::NotYetSupported { what: "curve over blend" };
-            case.resolver.report(written.whole(), kind);
+        Over::Blend(file) => {
+            let blend = problem.blend.as_ref();
+            let portions = blend.map_or(&[][..], |blend| &blend.portions);
+            let portion = portions.iter().position(|portion| portion.file == file.value);
+            let moves = |blend: &Blend| blend.with_share(&file.value, 0.5).is_some();
+            if let Some(portion) = portion.filter(|_| blend.is_some_and(moves)) {
+                return Some(Sweep::Blend(portion));
+            }
+            // A blend that could not be read has its own defect.
+            let stated = |w: &Written| matches!(w.statement(), Statement::Blend { .. });
+            if blend.is_some() || !case.statements.iter().any(stated) {
+                let mut parts: Vec<String> =
+                    portions.iter().map(|portion| portion.file.clone()).collect();
+                parts.dedup();
+                let kind = DefectKind::CurveOverNoPart { file: file.value.clone(), parts };
+                case.resolver.report(written.place(span), kind);
+            }
             return None;
         }
         // One that is not among them has its defect already.
@@ -263,7 +317,7 @@ fn swept(
                 _ if component == PROTON => None,
                 AmountSource::Total => return Some(Sweep::Total(component)),
                 AmountSource::Nothing => None,
-                AmountSource::Reagents => amount.at,
+                AmountSource::Reagents | AmountSource::Blend => amount.at,
                 AmountSource::Held(held) => problem.held.get(held).map(|held| held.at),
                 AmountSource::Found(target) => problem.targets.get(target).map(|found| found.by),
             };
@@ -285,6 +339,16 @@ fn end(
     match sweep {
         Sweep::Ph => case.number(written, value, Expected::Plain),
         Sweep::Temperature => case.resolver.kelvin_read(written, value),
+        Sweep::Blend(_) => {
+            let read = case.number(written, value, Expected::Share)?;
+            if !(0.0..=1.0).contains(&read.value) {
+                let why = "a share lies between 0 and 100 %";
+                let at = written.place(value.span);
+                case.resolver.report(at, DefectKind::ImpossibleValue { why });
+                return None;
+            }
+            Some(read)
+        }
         Sweep::Reagent(reagent) => {
             let formula = problem.reagents[reagent].formula.clone();
             let expected = Expected::Concentration;

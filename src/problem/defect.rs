@@ -293,8 +293,41 @@ pub enum DefectKind {
         word: String,
         nearest: Option<&'static str>,
     },
-    NotYetSupported {
-        what: &'static str,
+
+    // Blends.
+    /// A curve over the share of a file that is no part of the blend, or its only one.
+    CurveOverNoPart {
+        file: String,
+        parts: Vec<String>,
+    },
+    /// Shares in percent that do not come to 100.
+    BlendSharesSum {
+        percent: f64,
+    },
+    /// Some shares in percent, others in parts.
+    BlendSharesMixed,
+    /// All shares are zero.
+    BlendOfNothing,
+    /// The file, or this case of it, has no answer; `why` is its first error.
+    BlendedWaterNotSolved {
+        path: PathBuf,
+        case: Option<String>,
+        why: Option<String>,
+    },
+    BlendedCaseMissing {
+        path: PathBuf,
+        case: String,
+        cases: Vec<String>,
+    },
+    /// What a blended water holds and no component here does.
+    BlendedComponentMissing {
+        file: String,
+        names: Vec<String>,
+    },
+    /// A `total` of a component that the blend gives.
+    TotalAndBlend {
+        name: String,
+        blend: Place,
     },
 
     // Files.
@@ -349,8 +382,12 @@ pub enum Expected {
     Density,
     /// Charge equivalents count too, as for alkalinity.
     Equivalents,
+    /// Degrees of hardness count too.
+    Hardness,
     Temperature,
     Pressure,
+    /// Of an electrode.
+    Potential,
     MolarEnergy,
     MolarEntropy,
     /// A plain number.
@@ -402,7 +439,6 @@ impl DefectKind {
             | Self::NothingToRemove => false,
             Self::Follows { by } => by.abs() > 0.02,
             Self::NotIndependent { from, .. } => !from.is_empty(),
-            Self::NotYetSupported { what } => *what != "dose",
             _ => true,
         }
     }

@@ -96,12 +96,16 @@ pub fn subject_key(subject: &Subject) -> String {
         Subject::Ph => "pH".into(),
         Subject::Poh => "pOH".into(),
         Subject::Pe => "pe".into(),
+        Subject::Potential => "potential".into(),
         Subject::Concentration(name) => format!("[{}]", canonical(name)),
         Subject::Activity(name) => format!("{{{}}}", canonical(name)),
         Subject::Pressure(name) => canonical(name),
         Subject::Total(name) => format!("total {}", canonical(name)),
         Subject::Fraction(name) => format!("fraction {}", canonical(name)),
         Subject::Alkalinity => "alkalinity".into(),
+        Subject::Acidity => "acidity".into(),
+        Subject::Hardness => "hardness".into(),
+        Subject::CarbonateHardness => "carbonate hardness".into(),
         Subject::IonicStrength => "ionic strength".into(),
         Subject::BufferCapacity => "buffer capacity".into(),
         Subject::SaturationIndex(name) => format!("saturation index {}", canonical(name)),
@@ -208,7 +212,8 @@ pub fn in_force<'a>(base: &'a Section, case: Option<&'a Section>) -> InForce<'a>
     // Whether a solid forms or is in excess is another source in either direction.
     found.other_sources = from_nothing
         || replaced.keys().any(|key| matches!(key, Key::Solid(_)))
-        || replaced.iter().any(|(key, met)| is_source(key) && !met)
+        // Another blend may bring other components.
+        || replaced.iter().any(|(key, met)| is_source(key) && (!met || *key == Key::Blend))
         || varied.kept.iter().any(|(_, written)| {
             matches!(written.statement(), Statement::Without(_)) || is_nothing(written.statement())
         });

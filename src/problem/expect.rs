@@ -129,6 +129,7 @@ fn takes(sought: Sought) -> Expected {
         | Sought::Pe
         | Sought::Activity(_)
         | Sought::SaturationIndex(_) => Expected::Plain,
+        Sought::Potential => Expected::Potential,
         Sought::Concentration(_)
         | Sought::Precipitated(_)
         | Sought::Total(_)
@@ -137,7 +138,8 @@ fn takes(sought: Sought) -> Expected {
         | Sought::Dose(_) => Expected::Concentration,
         Sought::Pressure(_) => Expected::Pressure,
         Sought::Fraction { .. } => Expected::Share,
-        Sought::Alkalinity => Expected::Equivalents,
+        Sought::Alkalinity | Sought::Acidity => Expected::Equivalents,
+        Sought::Hardness | Sought::CarbonateHardness => Expected::Hardness,
         Sought::ChargeImbalance { .. } => Expected::Imbalance,
     }
 }
@@ -153,6 +155,8 @@ fn read_as(
         Expected::Pressure => case.pressure(written, quantity),
         Expected::Plain | Expected::Share => case.number(written, quantity, expected),
         Expected::Imbalance => case.imbalance(written, quantity),
+        Expected::Potential => case.potential(written, quantity),
+        Expected::Hardness => case.hardness(written, quantity),
         _ => case.concentration(written, quantity, formula, expected),
     }
 }
@@ -178,7 +182,7 @@ pub(super) fn sought(
     Some(match &subject.value {
         Subject::Ph => Sought::Ph,
         Subject::Poh => Sought::Poh,
-        Subject::Pe => {
+        Subject::Pe | Subject::Potential => {
             if case.scope.component("e-").is_none() {
                 let kind = DefectKind::DoesNotBelong {
                     name: "e-".into(),
@@ -188,7 +192,7 @@ pub(super) fn sought(
                 case.resolver.report(written.place(subject.span), kind);
                 return None;
             }
-            Sought::Pe
+            if subject.value == Subject::Pe { Sought::Pe } else { Sought::Potential }
         }
         Subject::Concentration(name) => Sought::Concentration(dissolved(case, name)?),
         Subject::Activity(name) => {
@@ -218,8 +222,9 @@ pub(super) fn sought(
         Subject::Fraction(name) => {
             let species = dissolved(case, name)?;
             let made = case.scope.belonging.made[species].as_ref()?;
-            let others: Vec<_> =
-                made.row.iter().map(|&(j, _)| j).filter(|&j| j != super::scope::PROTON).collect();
+            let electron = case.scope.component("e-");
+            let counts = |&j: &usize| j != super::scope::PROTON && Some(j) != electron;
+            let others: Vec<_> = made.row.iter().map(|&(j, _)| j).filter(counts).collect();
             match others[..] {
                 [component, ..] => Sought::Fraction { species, component },
                 [] => {
@@ -231,6 +236,9 @@ pub(super) fn sought(
             }
         }
         Subject::Alkalinity => Sought::Alkalinity,
+        Subject::Acidity => Sought::Acidity,
+        Subject::Hardness => Sought::Hardness,
+        Subject::CarbonateHardness => Sought::CarbonateHardness,
         Subject::IonicStrength => Sought::IonicStrength,
         Subject::BufferCapacity => Sought::BufferCapacity,
         Subject::ChargeImbalance => Sought::ChargeImbalance { equivalents: false },

@@ -11,6 +11,7 @@ use super::quantity::Read;
 use super::scope::PROTON;
 use super::sparse::coefficient;
 use super::uncertain::Carries;
+use crate::chemistry::constant::pe_of_potential;
 use crate::chemistry::formula::Phase;
 use crate::text::tree::{Name, Quantity, Statement, Subject};
 
@@ -113,7 +114,12 @@ fn released(
 ) -> Result<usize, Option<crate::text::span::Place>> {
     let row = case.scope.belonging.made[species].as_ref().map(|made| made.row.clone());
     let row = row.unwrap_or_default();
-    let others = || row.iter().filter(|&&(j, _)| j != PROTON);
+    // Electrons last: what is not said of them is that none were given or taken.
+    let electron = case.scope.component("e-");
+    let others = || {
+        let of_matter = row.iter().filter(move |&&(j, _)| j != PROTON && Some(j) != electron);
+        of_matter.chain(row.iter().filter(move |&&(j, _)| Some(j) == electron))
+    };
     others()
         .find(|&&(j, _)| problem.amounts[j].source == AmountSource::Nothing)
         .map(|&(j, _)| j)
@@ -145,8 +151,21 @@ fn what(
             let moves_ph = !coefficient(&made.row, PROTON).is_zero();
             moves_ph.then_some((HeldWhat::Ph(-log_k - poh.value), Carries::Logarithm, poh))
         }
-        Subject::Pe => {
-            let pe = case.plain(written, value)?;
+        Subject::Pe | Subject::Potential => {
+            let pe = match subject {
+                Subject::Pe => case.plain(written, value)?,
+                _ => {
+                    let volts = case.potential(written, value)?;
+                    let pe = |volts| pe_of_potential(volts, case.kelvin);
+                    let uncertainty = volts.uncertainty.map(pe);
+                    Read { value: pe(volts.value), uncertainty, ..volts }
+                }
+            };
+            let carries = match subject {
+                Subject::Pe => Carries::Logarithm,
+                // Of volts a percentage says something.
+                _ => Carries::Signed,
+            };
             if case.scope.component("e-").is_none() {
                 let kind = DefectKind::DoesNotBelong {
                     name: "e-".into(),
@@ -156,7 +175,7 @@ fn what(
                 case.resolver.report(written.place(span), kind);
                 return None;
             }
-            Some((HeldWhat::Pe(pe.value), Carries::Logarithm, pe))
+            Some((HeldWhat::Pe(pe.value), carries, pe))
         }
         Subject::Pressure(name) => {
             let species = phase(case, written, name, true)?;
@@ -184,6 +203,9 @@ fn what(
         Subject::Total(_)
         | Subject::Fraction(_)
         | Subject::Alkalinity
+        | Subject::Acidity
+        | Subject::Hardness
+        | Subject::CarbonateHardness
         | Subject::IonicStrength
         | Subject::BufferCapacity
         | Subject::SaturationIndex(_)

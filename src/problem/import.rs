@@ -7,6 +7,7 @@ use std::path::{Path, PathBuf};
 use std::sync::atomic::{AtomicU64, Ordering};
 use std::sync::{Arc, Mutex};
 
+use super::blend::Kept;
 use super::builtin;
 use super::defect::{Conserved, Defect, DefectKind};
 use super::effective::{InForce, in_force};
@@ -35,6 +36,14 @@ pub struct Definitions {
 #[derive(Default)]
 pub struct Imports {
     kept: Mutex<HashMap<(PathBuf, u64), Arc<Definitions>>>,
+    waters: Kept,
+}
+
+impl Imports {
+    /// The waters that blends have had solved.
+    pub fn waters(&self) -> &Kept {
+        &self.waters
+    }
 }
 
 /// One walk through the files that a file uses.
@@ -87,17 +96,8 @@ impl Reader<'_> {
         written: &str,
         walk: &mut Walk,
     ) -> Result<Arc<Definitions>, DefectKind> {
-        let joined = from.parent().unwrap_or(Path::new("")).join(written);
         let shown = PathBuf::from(written);
-        // Outside is refused before it is looked at, so that nothing tells what is there.
-        let root = walk.root.clone();
-        if !lexically_normal(&joined).starts_with(&root) {
-            return Err(DefectKind::ImportOutsideRoot { path: shown, root });
-        }
-        let path = joined.canonicalize().unwrap_or_else(|_| lexically_normal(&joined));
-        if !path.starts_with(&root) {
-            return Err(DefectKind::ImportOutsideRoot { path: shown, root });
-        }
+        let path = locate(from, written, &walk.root)?;
         if let Some(at) = walk.chain.iter().position(|open| *open == path) {
             let mut chain = walk.chain[at..].to_vec();
             chain.push(path);
@@ -122,12 +122,7 @@ impl Reader<'_> {
         shown: PathBuf,
         walk: &mut Walk,
     ) -> Result<Arc<Definitions>, DefectKind> {
-        let text = self.files.read(path).map_err(|problem| match problem {
-            ReadProblem::Missing(why) => DefectKind::FileMissing { path: shown.clone(), why },
-            ReadProblem::NotText { at_byte } => {
-                DefectKind::FileNotText { path: shown.clone(), at_byte }
-            }
-        })?;
+        let text = read_text(self.files, path, &shown)?;
         let document = Document::parse(text.clone());
         let mut hasher = DefaultHasher::new();
         text.hash(&mut hasher);
@@ -294,6 +289,38 @@ fn use_key(what: &Use) -> (String, Option<u32>) {
         Use::Set { name, edition } => (name.value.clone(), edition.as_ref().map(|e| e.value)),
         Use::File { path } => (format!("\"{}", path.value), None),
     }
+}
+
+/// The file of a path written in another, which lies below the root.
+///
+/// # Errors
+/// That it lies outside, before it is looked at: nothing tells what is there.
+pub fn locate(from: &Path, written: &str, root: &Path) -> Result<PathBuf, DefectKind> {
+    let joined = from.parent().unwrap_or(Path::new("")).join(written);
+    let outside = || {
+        let (path, root) = (PathBuf::from(written), root.to_path_buf());
+        Err(DefectKind::ImportOutsideRoot { path, root })
+    };
+    if !lexically_normal(&joined).starts_with(root) {
+        return outside();
+    }
+    let path = joined.canonicalize().unwrap_or_else(|_| lexically_normal(&joined));
+    if !path.starts_with(root) {
+        return outside();
+    }
+    Ok(path)
+}
+
+/// The text of a file that is used; `shown` is its path as written.
+///
+/// # Errors
+/// That it cannot be read, or is no text.
+pub fn read_text(files: &dyn Files, path: &Path, shown: &Path) -> Result<Arc<str>, DefectKind> {
+    let shown = || shown.to_path_buf();
+    files.read(path).map_err(|problem| match problem {
+        ReadProblem::Missing(why) => DefectKind::FileMissing { path: shown(), why },
+        ReadProblem::NotText { at_byte } => DefectKind::FileNotText { path: shown(), at_byte },
+    })
 }
 
 /// The path without `.` and `..`, without asking the disk.

@@ -3,6 +3,7 @@
 
 mod amounts;
 pub mod belong;
+pub mod blend;
 pub mod builtin;
 pub mod case;
 mod charge_reading;

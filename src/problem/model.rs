@@ -5,6 +5,7 @@ use std::sync::Arc;
 use num_rational::Rational64;
 use num_traits::ToPrimitive;
 
+use super::blend::Blend;
 use super::curve::Curve;
 use super::defect::Defect;
 use super::input::Input;
@@ -31,6 +32,8 @@ pub struct Problem {
     pub scale: Scale,
     /// Of each component of the scope.
     pub amounts: Vec<Amount>,
+    /// The waters that are put in.
+    pub blend: Option<Blend>,
     pub reagents: Vec<Reagent>,
     pub held: Vec<Held>,
     pub solids: Vec<Solid>,
@@ -73,6 +76,8 @@ pub enum AmountSource {
     /// A `total` statement.
     Total,
     Reagents,
+    /// Blended waters, and the reagents put in on top.
+    Blend,
     /// A held value makes it unknown: the index of that value.
     Held(usize),
     /// A target makes it unknown, by `by total`: the index of that target.
@@ -267,6 +272,8 @@ pub enum Sought {
     Ph,
     Poh,
     Pe,
+    /// V against the standard hydrogen electrode.
+    Potential,
     /// A species of the scope.
     Concentration(usize),
     Activity(usize),
@@ -282,6 +289,10 @@ pub enum Sought {
         component: usize,
     },
     Alkalinity,
+    Acidity,
+    /// mol of alkaline earths, two equivalents each.
+    Hardness,
+    CarbonateHardness,
     IonicStrength,
     BufferCapacity,
     /// In percent, or in equivalents.
@@ -336,7 +347,7 @@ impl Problem {
                     reagent.brings = amount * carried(reagent.stock.as_deref(), self.scale);
                     for &(j, n) in &reagent.row {
                         let brought = &mut self.amounts[j];
-                        if brought.source == AmountSource::Reagents {
+                        if matches!(brought.source, AmountSource::Reagents | AmountSource::Blend) {
                             let more = more * n.to_f64().unwrap_or(0.0);
                             brought.total = Some(brought.total.unwrap_or(0.0) + more);
                         }

@@ -4,10 +4,10 @@ use super::case::CaseResolver;
 use super::defect::{DefectKind, Expected};
 use super::effective::Written;
 use super::resolve::Resolver;
-use crate::chemistry::formula::Formula;
+use crate::chemistry::formula::{Formula, Groups};
 use crate::chemistry::quantity::{
     Basis, CALCIUM_CARBONATE, ConversionProblem, Scale, to_amount, to_atmospheres,
-    to_joules_per_mole, to_joules_per_mole_kelvin, to_kelvin,
+    to_joules_per_mole, to_joules_per_mole_kelvin, to_kelvin, to_volts,
 };
 use crate::chemistry::unit::{Dimension, Unit};
 use crate::chemistry::water;
@@ -24,7 +24,7 @@ pub struct Read {
     pub per_unit: f64,
     /// The unit and basis as written.
     pub words: Option<String>,
-    /// Whether the unit counts charge.
+    /// Whether it is an amount of charge, where it may be a percentage too.
     pub equivalents: bool,
     /// The derivative by the logarithm of the density of water, where that converted it.
     pub by_ln_density: f64,
@@ -195,6 +195,25 @@ impl CaseResolver<'_> {
         self.resolver.converted(written, quantity, Expected::Pressure, to_atmospheres)
     }
 
+    /// V.
+    pub fn potential(&mut self, written: &Written, quantity: &Quantity) -> Option<Read> {
+        self.resolver.converted(written, quantity, Expected::Potential, to_volts)
+    }
+
+    /// mol of alkaline earths per litre or kilogram. A mass says hardness only by what it
+    /// is counted as.
+    pub fn hardness(&mut self, written: &Written, quantity: &Quantity) -> Option<Read> {
+        let unit = self.resolver.unit(written, quantity, Expected::Hardness)?;
+        let is_mass =
+            matches!(unit.dimension, Dimension::MassPerLitre | Dimension::MassPerKilogram);
+        if is_mass && quantity.basis.is_none() {
+            self.resolver.wrong_dimension(written, quantity, unit.dimension, Expected::Hardness);
+            return None;
+        }
+        let calcium = Formula::parse("Ca^2+", &Groups::default()).ok()?;
+        self.concentration(written, quantity, Some(&calcium), Expected::Hardness)
+    }
+
     /// Percent as a plain number of percent, or equivalents per volume.
     pub fn imbalance(&mut self, written: &Written, quantity: &Quantity) -> Option<Read> {
         let unit = self.resolver.unit(written, quantity, Expected::Imbalance)?;
@@ -208,7 +227,8 @@ impl CaseResolver<'_> {
                 by_ln_density: 0.0,
             });
         }
-        self.concentration(written, quantity, None, Expected::Imbalance)
+        let read = self.concentration(written, quantity, None, Expected::Imbalance)?;
+        Some(Read { equivalents: true, ..read })
     }
 
     /// Whether a quantity is zero or more; a defect where it is not.
@@ -282,8 +302,8 @@ impl CaseResolver<'_> {
             uncertainty: uncertainty(quantity, |u| u * per_unit),
             per_unit,
             words: Some(words),
-            equivalents: unit.dimension == Dimension::EquivalentsPerLitre,
             by_ln_density: power * value,
+            equivalents: false,
         })
     }
 
@@ -351,7 +371,8 @@ fn without_formula(unit: Unit, basis: Option<&Basis>) -> Result<(f64, Scale), Co
         (
             Dimension::AmountPerLitre
             | Dimension::AmountPerKilogram
-            | Dimension::EquivalentsPerLitre,
+            | Dimension::EquivalentsPerLitre
+            | Dimension::Hardness,
             None,
         ) => Ok((unit.factor, scale)),
         (Dimension::MassPerLitre | Dimension::MassPerKilogram, Some(Basis::CalciumCarbonate)) => {

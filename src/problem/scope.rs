@@ -251,13 +251,15 @@ impl Builder {
 
     fn report_links(&mut self, belonging: &Belonging, reactions: &[Arc<Reaction>]) {
         for (r, link) in &belonging.links {
-            // The component declared last is the one too many.
-            let Some(&(last, _)) = link.last() else { continue };
+            // The component declared last is the one too many; electrons are listed for what
+            // they make.
+            let is_electron = |j: usize| self.components[j].formula.is_electron();
+            let matter = link.iter().rev().find(|&&(j, _)| j != PROTON && !is_electron(j));
+            let Some(&(last, _)) = matter.or(link.last()) else { continue };
             let component = &self.components[last];
-            let mut from: Vec<String> = link[..link.len() - 1]
-                .iter()
-                .map(|&(j, _)| self.components[j].formula.name.clone())
-                .collect();
+            let others = link.iter().filter(|&&(j, _)| j != last);
+            let mut from: Vec<String> =
+                others.map(|&(j, _)| self.components[j].formula.name.clone()).collect();
             if from.is_empty() {
                 from.push(self.species[WATER].name.clone());
             }

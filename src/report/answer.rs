@@ -16,7 +16,9 @@ use super::style::{Paint, Style};
 use super::summary::counted;
 use super::table::{Cell, Side, Table};
 use super::uncertainty;
+use super::waters::{blend, hardness_words, ion_balance};
 use crate::chemistry::activity::ActivityKind;
+use crate::chemistry::constant::volts_per_pe;
 use crate::chemistry::formula::Phase;
 use crate::chemistry::quantity::Scale;
 use crate::equilibrium::quantities::Solved;
@@ -42,9 +44,11 @@ pub fn answer(
         ("Doses", dose::table(problem, style)),
         ("Dissolved", species(problem, solved, style)),
         ("Components", components(problem, solved, style)),
+        ("Blended from", blend(problem, solved, style)),
         ("Put in and held", put_in(problem, solved, style)),
         ("Gases", gases(problem, solved, style)),
         ("Solids", solids::table(problem, solved, style)),
+        ("Ion balance", ion_balance(problem, solved, style)),
         ("Charge balance", sheet(&ledger.charge(), problem.scale, style)),
         ("Proton condition", protons(&ledger, problem, style)),
         ("Expectations", expectations(source, checked, stated, style)),
@@ -90,6 +94,12 @@ fn main_figures(outcome: &Outcome, solved: &Solved, style: Style) -> String {
     }
     if let Some(pe) = solved.value(problem, Sought::Pe) {
         row("pe", decimals(pe, 3), held(holds(|what| matches!(what, HeldWhat::Pe(_)))));
+    } else if problem.scope.component("e-").is_some() {
+        row("pe", "none".into(), "nothing here is both oxidised and reduced");
+    }
+    if let Some(volts) = solved.value(problem, Sought::Potential) {
+        let against = "against the standard hydrogen electrode";
+        row("potential", format!("{} V", decimals(volts, 3)), against);
     }
     let given = if problem.ionic_strength.is_some() { "given" } else { "" };
     row("ionic strength", concentration(solved.answer.ionic_strength, problem.scale), given);
@@ -104,10 +114,17 @@ fn main_figures(outcome: &Outcome, solved: &Solved, style: Style) -> String {
     // What is left of sums that cancel is nothing.
     let alkalinity = solved.alkalinity(problem);
     row("alkalinity", milli(if alkalinity.abs() < 1e-12 { 0.0 } else { alkalinity }), "");
+    let hardness = solved.hardness(problem);
+    if hardness > 0.0 {
+        let size = concentration(hardness, problem.scale);
+        row("hardness", size, &hardness_words(problem, hardness));
+    }
     if let Some(capacity) = solved.value(problem, Sought::BufferCapacity) {
         row("buffer capacity", format!("{} per pH", concentration(capacity, problem.scale)), "");
     }
-    if ph_held {
+    // A pH that was held in a blended water leaves its charge open here too.
+    let open = ph_held || problem.blend.as_ref().is_some_and(|blend| blend.charge() != 0.0);
+    if open {
         let (cations, anions) = solved.charges();
         let size = format!("{} %", decimals(solved.imbalance_percent(), 2));
         let remark = format!("cations less anions: {}", milli(cations - anions));
@@ -128,7 +145,11 @@ fn species(problem: &Problem, solved: &Solved, style: Style) -> String {
     ]);
     let scope = &problem.scope;
     let rows = &scope.stoichiometry.species;
-    let component = |row: usize| rows[row].row.iter().map(|&(j, _)| j).find(|&j| j != PROTON);
+    let electron = scope.component("e-");
+    let component = |row: usize| {
+        let mut held = rows[row].row.iter().map(|&(j, _)| j);
+        held.find(|&j| j != PROTON && Some(j) != electron)
+    };
     let share = |row: usize, j: usize| {
         let total = solved.dissolved(j);
         let held = solved.shares(j).find(|&(i, _)| i == row).map(|(_, share)| share);
@@ -204,6 +225,9 @@ fn put_in(problem: &Problem, solved: &Solved, style: Style) -> String {
     }
     for (held, &brought) in problem.held.iter().zip(&solved.answer.amounts) {
         let value = match held.what {
+            HeldWhat::Pe(pe) if held.words == "potential" => {
+                format!("{} V", decimals(pe * volts_per_pe(problem.kelvin), 3))
+            }
             HeldWhat::Ph(value) | HeldWhat::Pe(value) => decimals(value, 3),
             HeldWhat::Pressure { atm, .. } => format!("{} atm", significant(atm, 3)),
             HeldWhat::Activity { value, .. } => significant(value, 4),
@@ -267,8 +291,9 @@ fn sheet(sheet: &Sheet, scale: Scale, style: Style) -> String {
 }
 
 fn protons(ledger: &Ledger, problem: &Problem, style: Style) -> String {
-    // Where the pH is held, protons come or go by themselves.
-    if problem.held.iter().any(|held| matches!(held.what, HeldWhat::Ph(_))) {
+    // Where the pH is held, here or in a water blended, protons come or go by themselves.
+    let open = problem.blend.as_ref().is_some_and(|blend| blend.charge() != 0.0);
+    if open || problem.held.iter().any(|held| matches!(held.what, HeldWhat::Ph(_))) {
         return String::new();
     }
     ledger.protons().map_or(String::new(), |(protons, _)| sheet(&protons, problem.scale, style))

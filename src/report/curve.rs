@@ -146,7 +146,7 @@ impl Traced {
     fn value(&self, x: f64) -> String {
         let places = match self.curve.over {
             Sweep::Ph | Sweep::Temperature => return trimmed(&decimals(self.curve.shown(x), 3)),
-            Sweep::Reagent(_) | Sweep::Total(_) => 4,
+            Sweep::Reagent(_) | Sweep::Total(_) | Sweep::Blend(_) => 4,
         };
         trimmed(&significant(self.curve.shown(x), places))
     }

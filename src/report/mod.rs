@@ -26,6 +26,7 @@ pub mod summary;
 pub mod table;
 pub mod terminal;
 pub mod uncertainty;
+mod waters;
 pub mod wrap;
 
 pub use crate::rules::{expectation, figures};

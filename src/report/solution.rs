@@ -13,14 +13,14 @@ use super::sheet::{Ledger, Sheet};
 use super::sheet_json::SheetJson;
 use super::source::{FileReport, Source, Stated};
 use super::uncertainty::{self, UncertaintyJson};
+use super::waters::{IonBalanceJson, PortionJson, blend_json, ion_balance_json};
 use crate::chemistry::formula::Phase;
-use crate::chemistry::quantity::Scale;
-use crate::chemistry::water;
 use crate::equilibrium::quantities::Solved;
 use crate::equilibrium::system::Failure;
 use crate::problem::model::{Problem, Sought};
 use crate::problem::scope::PROTON;
 use crate::rules::check::{Checked, locate_place};
+use crate::rules::ion_balance::per_litre;
 use crate::rules::outcome::State;
 
 #[derive(Serialize)]
@@ -50,12 +50,25 @@ struct Answer<'a> {
     #[serde(skip_serializing_if = "Option::is_none")]
     ph_uncertainty: Option<f64>,
     #[serde(skip_serializing_if = "Option::is_none")]
+    pe: Option<f64>,
+    /// V against the standard hydrogen electrode.
+    #[serde(skip_serializing_if = "Option::is_none")]
+    potential: Option<f64>,
+    #[serde(skip_serializing_if = "Option::is_none")]
     ionic_strength: Option<f64>,
     #[serde(skip_serializing_if = "Option::is_none")]
     alkalinity: Option<f64>,
     #[serde(skip_serializing_if = "Option::is_none")]
+    acidity: Option<f64>,
+    #[serde(skip_serializing_if = "Option::is_none")]
+    hardness: Option<f64>,
+    #[serde(skip_serializing_if = "Option::is_none")]
     buffer_capacity: Option<f64>,
     charge_imbalance: ChargeImbalance,
+    #[serde(skip_serializing_if = "Option::is_none")]
+    ion_balance: Option<IonBalanceJson>,
+    #[serde(skip_serializing_if = "Vec::is_empty")]
+    blend: Vec<PortionJson<'a>>,
     species: Vec<Species<'a>>,
     components: Vec<Component<'a>>,
     solids: Vec<Solid<'a>>,
@@ -182,10 +195,16 @@ fn answer<'a>(
         scale: super::figures::scale_unit(problem.scale),
         ph: value(Sought::Ph),
         ph_uncertainty: outcome.ph_uncertainty(),
+        pe: value(Sought::Pe),
+        potential: value(Sought::Potential),
         ionic_strength: value(Sought::IonicStrength),
         alkalinity: value(Sought::Alkalinity),
+        acidity: value(Sought::Acidity),
+        hardness: value(Sought::Hardness),
         buffer_capacity: value(Sought::BufferCapacity),
         charge_imbalance: charge_imbalance(problem, solved),
+        ion_balance: ion_balance_json(problem, solved),
+        blend: blend_json(problem),
         species: species(problem, solved),
         components: components(problem, solved),
         solids: in_phase(problem, |phase| matches!(phase, Phase::Solid(_)))
@@ -235,12 +254,8 @@ pub fn in_phase(problem: &Problem, fits: impl Fn(&Phase) -> bool) -> impl Iterat
 /// Per litre on either scale: per kilogram converts with the density of water.
 fn charge_imbalance(problem: &Problem, solved: &Solved) -> ChargeImbalance {
     let (cations, anions) = solved.charges();
-    let per_litre = match problem.scale {
-        Scale::PerLitre => 1.0,
-        Scale::PerKilogram => water::density(problem.kelvin) / 1000.0,
-    };
     ChargeImbalance {
-        meq_per_litre: 1000.0 * per_litre * (cations - anions),
+        meq_per_litre: 1000.0 * per_litre(problem) * (cations - anions),
         percent: solved.imbalance_percent(),
     }
 }

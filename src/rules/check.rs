@@ -2,7 +2,6 @@
 //! edit did not touch kept from the time before.
 
 use std::collections::{HashMap, HashSet};
-use std::hash::{DefaultHasher, Hash, Hasher};
 use std::path::{Path, PathBuf};
 use std::sync::Arc;
 use std::sync::Mutex;
@@ -10,17 +9,18 @@ use std::sync::atomic::{AtomicBool, Ordering};
 
 use super::finding::{Finding, LocatedFinding, Severity};
 use super::outcome::Outcome;
+use super::plan::Plan;
 use super::statements::case_repeated;
+use super::waters::{self, Walk};
 use crate::equilibrium::quantities::Solved;
-use crate::problem::defect::DefectKind;
-use crate::problem::effective::{Written, in_force};
 use crate::problem::files::Files;
-use crate::problem::import::{Definitions, Imports, Reader};
+use crate::problem::import::Imports;
 use crate::problem::scope::Scope;
 use crate::text::span::{Part, Place};
-use crate::text::tree::{Document, Section, Statement, Use};
+use crate::text::tree::{Document, Statement};
 
 /// What a check is given beside the text.
+#[derive(Clone, Copy)]
 pub struct Surroundings<'a> {
     /// The file's own path; none for a text without a file.
     pub path: Option<&'a Path>,
@@ -53,41 +53,12 @@ pub fn check(
     around: &Surroundings,
     previous: Option<&Checked>,
 ) -> Option<Checked> {
-    let base = &document.sections[0];
-    let base_in_force = in_force(base, None);
-    let statements = &base_in_force.statements;
-    let reader = Reader {
-        imports: around.imports,
-        files: around.files,
-        path: around.path,
-        roots: around.roots,
-    };
-    let uses = read_uses(statements, &reader);
-    let scope_key = scope_key(statements, &uses);
-    let scope = match previous.map(|previous| &previous.scope) {
-        Some((key, scope)) if *key == scope_key => scope.clone(),
-        _ => Arc::new(Scope::new(statements, uses)),
-    };
-    let base_key = {
-        let mut hasher = DefaultHasher::new();
-        scope_key.hash(&mut hasher);
-        hash_section(base, &mut hasher);
-        hasher.finish()
-    };
-    let keys: Vec<u64> = document
-        .sections
-        .iter()
-        .enumerate()
-        .map(|(index, section)| {
-            if index == 0 {
-                return base_key;
-            }
-            let mut hasher = DefaultHasher::new();
-            base_key.hash(&mut hasher);
-            hash_section(section, &mut hasher);
-            hasher.finish()
-        })
-        .collect();
+    let shared = waters::Shared::default();
+    let plan = Plan::new(&document, around, &Walk::from(&shared))?;
+    if let Some(previous) = previous {
+        plan.keep_scope(&previous.scope);
+    }
+    let keys = plan.keys.clone();
     let kept: HashMap<u64, &Arc<Outcome>> = previous.map_or_else(HashMap::new, |previous| {
         previous.keys.iter().copied().zip(&previous.outcomes).collect()
     });
@@ -103,25 +74,7 @@ pub fn check(
         if around.cancel.load(Ordering::Relaxed) {
             return None;
         }
-        if index == 0 {
-            let scope = scope.clone();
-            return Outcome::new(&base_in_force, scope, false, near(0), around.cancel);
-        }
-        let section = &document.sections[index];
-        let in_force = in_force(base, Some(section));
-        let statements = &in_force.statements;
-        let own_scope = statements.iter().any(|w| w.part == Part::Case && defines(w))
-            || section
-                .statements
-                .iter()
-                .any(|p| matches!(p.parsed.statement, Statement::Without(_)));
-        let scope = if own_scope {
-            let uses = read_uses(statements, &reader);
-            Arc::new(Scope::new(statements, uses))
-        } else {
-            scope.clone()
-        };
-        Outcome::new(&in_force, scope, !own_scope, near(index), around.cancel)
+        plan.outcome(index, near(index))
     };
     for (index, outcome) in run(&todo, &work) {
         outcomes[index] = Some(Arc::new(outcome?));
@@ -133,57 +86,12 @@ pub fn check(
             files.extend(outcome.problem.scope.files.iter().cloned());
         }
     }
+    files.extend(plan.blended_files().cloned());
     files.sort();
     files.dedup();
+    let scope = (plan.scope_key, plan.scope().clone());
     let findings = gather(&document, &outcomes);
-    Some(Checked { document, outcomes, keys, scope: (scope_key, scope), findings, files })
-}
-
-type UseResults = Vec<(Place, Result<Arc<Definitions>, DefectKind>)>;
-
-fn read_uses(statements: &[Written], reader: &Reader) -> UseResults {
-    statements
-        .iter()
-        .filter_map(|written| match written.statement() {
-            Statement::Use(what) => {
-                let (Use::Set { name, .. } | Use::File { path: name }) = what;
-                Some((written.place(name.span), reader.read(what)))
-            }
-            _ => None,
-        })
-        .collect()
-}
-
-/// Whether a statement brings reactions, groups or components.
-fn defines(written: &Written) -> bool {
-    matches!(
-        written.statement(),
-        Statement::Use(_)
-            | Statement::Group { .. }
-            | Statement::Component { .. }
-            | Statement::Reaction(_)
-    )
-}
-
-fn scope_key(statements: &[Written], uses: &UseResults) -> u64 {
-    let mut hasher = DefaultHasher::new();
-    for written in statements.iter().filter(|written| defines(written)) {
-        (written.index, written.parsed.hash).hash(&mut hasher);
-    }
-    for (_, result) in uses {
-        match result {
-            Ok(definitions) => definitions.number.hash(&mut hasher),
-            Err(kind) => format!("{kind:?}").hash(&mut hasher),
-        }
-    }
-    hasher.finish()
-}
-
-fn hash_section(section: &Section, hasher: &mut DefaultHasher) {
-    for placed in &section.statements {
-        // A stray indent is a problem of the same text in another place.
-        (placed.parsed.hash, placed.parsed.problems.len()).hash(hasher);
-    }
+    Some(Checked { document, outcomes, keys, scope, findings, files })
 }
 
 /// Works on each index, on all cores where there is enough to do.

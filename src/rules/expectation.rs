@@ -108,6 +108,7 @@ pub fn quantity_words(
     match sought {
         Sought::Ph | Sought::Poh | Sought::Pe => decimals(value, 3),
         Sought::SaturationIndex(_) => decimals(value, 2),
+        Sought::Potential => format!("{} V", decimals(value, 3)),
         Sought::Fraction { .. } => percent(value),
         Sought::ChargeImbalance { equivalents: false } => format!("{} %", decimals(value, 2)),
         Sought::Activity(_) => significant(value, 4),

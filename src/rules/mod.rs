@@ -7,11 +7,15 @@ pub mod context;
 pub mod expectation;
 pub mod figures;
 pub mod finding;
+pub mod ion_balance;
 pub mod outcome;
+pub mod plan;
+pub mod waters;
 pub mod words;
 
 mod answers;
 mod balances;
+mod blends;
 mod cautions;
 mod closure;
 mod components;
@@ -33,6 +37,7 @@ pub static FAMILIES: &[catalogue::Family] = &[
     reactions::FAMILY,
     components::FAMILY,
     reagents::FAMILY,
+    blends::FAMILY,
     closure::FAMILY,
     targets::FAMILY,
     balances::FAMILY,

@@ -17,6 +17,7 @@ use crate::equilibrium::system::{Failure, System};
 use crate::equilibrium::target::Missed;
 use crate::equilibrium::uncertainty::{Budget, Uncertainties};
 use crate::equilibrium::weighed::{Balances, Weighed};
+use crate::problem::blend::Waters;
 use crate::problem::case::resolve;
 use crate::problem::effective::InForce;
 use crate::problem::model::{Problem, Sought};
@@ -74,16 +75,18 @@ impl Outcome {
         (size > 0.0).then_some(size)
     }
 
-    /// Takes the statements in force through all rooms. `near` is an answer to start from;
+    /// Takes the statements in force through all rooms. `waters` are those of the blend's
+    /// parts. `near` is an answer to start from;
     /// `inherited` says that the scope was looked over with the base. None when cancelled.
     pub fn new(
         in_force: &InForce,
         scope: Arc<Scope>,
+        waters: &Waters,
         inherited: bool,
         near: Option<&Solved>,
         cancel: &AtomicBool,
     ) -> Option<Outcome> {
-        let mut problem = resolve(&in_force.statements, in_force.defects.clone(), scope);
+        let mut problem = resolve(&in_force.statements, in_force.defects.clone(), scope, waters);
         let state = if !problem.states_problem {
             State::NothingStated
         } else if problem.blocked {

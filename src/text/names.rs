@@ -79,7 +79,11 @@ fn subject<'a>(subject: &'a Subject, call: &mut dyn FnMut(&'a Name)) {
         Subject::Ph
         | Subject::Poh
         | Subject::Pe
+        | Subject::Potential
         | Subject::Alkalinity
+        | Subject::Acidity
+        | Subject::Hardness
+        | Subject::CarbonateHardness
         | Subject::IonicStrength
         | Subject::BufferCapacity
         | Subject::ChargeImbalance => {}

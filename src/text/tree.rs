@@ -320,6 +320,8 @@ pub enum Subject {
     Ph,
     Poh,
     Pe,
+    /// Of an electrode, against the standard hydrogen electrode.
+    Potential,
     Concentration(Name),
     Activity(Name),
     /// `CO2(g)`
@@ -327,6 +329,9 @@ pub enum Subject {
     Total(Name),
     Fraction(Name),
     Alkalinity,
+    Acidity,
+    Hardness,
+    CarbonateHardness,
     IonicStrength,
     BufferCapacity,
     SaturationIndex(Name),

@@ -66,6 +66,12 @@ def closes(text, problem):
     return abs(sides[0] - sides[1]) < mp.mpf("1e-25") * max(sides)
 
 
+def is_read_here(texts):
+    """Blends are checked by blend.py; electrons and hardness by the sources in the files."""
+    words = r"blend|component .*\be-|(expect|hold) (potential|pe|hardness|carbonate hardness|acidity)"
+    return not any(re.match(words, text) for text in texts)
+
+
 def main():
     arguments = argparse.ArgumentParser()
     arguments.add_argument("folder", nargs="?", default=os.path.join(HERE, "..", "problems"))
@@ -80,6 +86,9 @@ def main():
                 continue  # definitions for others to use
             if any(re.match(r"hold .* by |add \S+ \S+ of ", t) for t in base):
                 continue  # doses.py
+            if not is_read_here([*base, *(t for _, extra in cases for t in extra)]):
+                print(f"{os.path.relpath(path, arguments.folder)}: not read here")
+                continue
             files += 1
             stored = answers[os.path.relpath(path, arguments.folder)] = []
             for case, extra in [(None, []), *cases]:

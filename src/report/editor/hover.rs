@@ -5,19 +5,21 @@ use num_traits::ToPrimitive;
 use crate::chemistry::activity::ActivityKind;
 use crate::chemistry::formula::{Phase, canonical};
 use crate::equilibrium::quantities::Solved;
+use crate::problem::blend::Portion;
 use crate::problem::curve::Curve;
-use crate::problem::model::{Problem, Reagent};
+use crate::problem::model::{Problem, Reagent, Sought};
 use crate::problem::reaction::{Origin, Reaction};
 use crate::problem::scope::PROTON;
 use crate::report::curve::ends;
 use crate::report::dose;
 use crate::report::expectation::quantity_words;
 use crate::report::figures::{
-    celsius, charge, concentration, decimals, log10_of_exp, percent, significant,
+    celsius, charge, concentration, decimals, equivalents, log10_of_exp, percent, significant,
 };
 use crate::report::inline::Hover;
 use crate::report::solids::fate_words;
 use crate::report::uncertainty;
+use crate::report::waters::{share_words, source_words};
 use crate::rules::check::Checked;
 use crate::rules::outcome::Outcome;
 use crate::text::span::{Part, Place, Span};
@@ -46,6 +48,15 @@ pub fn hover(checked: &Checked, offset: usize) -> Option<Hover> {
         && let Some(kind) = ActivityKind::from_name(&model.value)
     {
         return Some(Hover { range: range(model.span), markdown: activity(kind) });
+    }
+    if let Statement::Blend { parts } = &placed.parsed.statement
+        && let Some(blend) = &outcome.problem.blend
+        && let Some(index) =
+            parts.iter().position(|part| part.span.start <= inside && inside <= part.span.end)
+        && let Some(portion) = blend.portions.get(index)
+    {
+        let markdown = portion_words(portion);
+        return Some(Hover { range: range(parts[index].span), markdown });
     }
     if let Statement::Reaction(tree) = &placed.parsed.statement
         && tree.equation.start <= inside
@@ -79,6 +90,17 @@ pub fn hover(checked: &Checked, offset: usize) -> Option<Hover> {
         return Some(Hover { range: range(expectation.at.span), markdown });
     }
     None
+}
+
+/// The water of a blend's part, as its own file solves it.
+fn portion_words(portion: &Portion) -> String {
+    let water = &portion.water;
+    let lines = [
+        format!("**{}** of {}", share_words(portion.share), source_words(portion)),
+        format!("{}, pH {}", celsius(water.kelvin), decimals(water.ph, 3)),
+        format!("alkalinity {}", equivalents(water.alkalinity, water.scale)),
+    ];
+    lines.join("\n\n")
 }
 
 fn statement_at(checked: &Checked, offset: usize) -> Option<(usize, usize, &Placed)> {
@@ -148,6 +170,9 @@ fn species(outcome: &Outcome, name: &str) -> Option<String> {
     if let Some(reagent) = reagent {
         lines.extend(put_in(problem, reagent));
     }
+    if let Some(solved) = outcome.solved().filter(|_| formula.is_electron()) {
+        lines.extend(electrons(problem, solved));
+    }
     match (scope.find(name), outcome.solved()) {
         (Some(s), Some(solved)) if scope.belongs(s) => {
             lines.extend(state(problem, solved, s));
@@ -202,6 +227,17 @@ fn put_in(problem: &Problem, reagent: &Reagent) -> Vec<String> {
     std::iter::once(amount).chain(found).collect()
 }
 
+/// pe, and the potential that an electrode would have.
+fn electrons(problem: &Problem, solved: &Solved) -> Option<String> {
+    let pe = solved.value(problem, Sought::Pe)?;
+    let volts = solved.value(problem, Sought::Potential)?;
+    Some(format!(
+        "pe {}: {} V against the standard hydrogen electrode",
+        decimals(pe, 3),
+        decimals(volts, 3)
+    ))
+}
+
 /// Concentration, activity and share of a dissolved species; pressure of a gas; saturation
 /// of a solid.
 fn state(problem: &Problem, solved: &Solved, s: usize) -> Vec<String> {
@@ -228,7 +264,8 @@ fn state(problem: &Problem, solved: &Solved, s: usize) -> Vec<String> {
             );
             let mut lines = vec![words];
             let shares = scope.stoichiometry.species[row].row.iter().map(|&(j, _)| j);
-            for j in shares.filter(|&j| j != PROTON) {
+            let electron = scope.component("e-");
+            for j in shares.filter(|&j| j != PROTON && Some(j) != electron) {
                 let total = solved.dissolved(j);
                 if let Some((_, share)) = solved.shares(j).find(|&(i, _)| i == row)
                     && total > 0.0

@@ -12,7 +12,7 @@ use crate::equilibrium::curve::{CurvePoint, along, at_point};
 use crate::equilibrium::quantities::Solved;
 use crate::problem::curve::{Curve, Sweep};
 use crate::problem::model::{Problem, ShownUnit};
-use crate::report::figures::{celsius, concentration};
+use crate::report::figures::{celsius, concentration, percent};
 use crate::text::span::{Part, Place as Written, Span};
 
 /// At least so many points make a line.
@@ -94,6 +94,10 @@ impl Run {
             Sweep::Total(component) => {
                 let value = problem.amounts[component].total?;
                 (value, amount(value))
+            }
+            Sweep::Blend(portion) => {
+                let share = problem.blend.as_ref()?.portions.get(portion)?.share;
+                (share, percent(share))
             }
         };
         let label = match self.curve.over {

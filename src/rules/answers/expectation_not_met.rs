@@ -28,7 +28,7 @@
 //! expect [NH3] < 1 mmol/L
 //! ```
 
-use crate::problem::model::{Expectation, Limit};
+use crate::problem::model::{Expectation, Limit, Sought};
 use crate::rules::catalogue::rule;
 use crate::rules::context::Context;
 use crate::rules::expectation::{value_words, written};
@@ -45,7 +45,11 @@ fn find(context: &Context, found: &mut Vec<Finding<Place>>) {
         let Some((at, limit)) = written(context, expectation) else { continue };
         let Some(value) = solved.value(context.problem, expectation.sought) else {
             let message = format!("{words} has no value in this solution");
-            found.push(RULE.at(at, message).with_help("what it is a part of is absent here"));
+            let help = match expectation.sought {
+                Sought::Pe | Sought::Potential => "nothing here is both oxidised and reduced",
+                _ => "what it is a part of is absent here",
+            };
+            found.push(RULE.at(at, message).with_help(help));
             continue;
         };
         if expectation.limit.is_met_by(value) {

@@ -2,6 +2,7 @@
 
 use super::catalogue::family;
 
+mod likely_slip;
 mod remaining;
 
 family! {

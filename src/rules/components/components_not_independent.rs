@@ -74,8 +74,9 @@ fn tied(
 ) -> Finding<Place> {
     let scope = &context.problem.scope;
     let equation = scope.belonging.links.iter().find_map(|(r, link)| {
-        let last = link.last().map(|&(j, _)| scope.components[j].formula.name.as_str());
-        (last == Some(name)).then(|| scope.reactions[*r].equation.as_str())
+        let mut tied = link.iter().map(|&(j, _)| scope.components[j].formula.name.as_str());
+        let all = |tied: &str| tied == name || from.iter().any(|other| other == tied);
+        tied.all(all).then(|| scope.reactions[*r].equation.as_str())
     });
     let by = equation.map_or_else(String::new, |equation| format!(" by `{equation}`"));
     let others = names(from, "and");

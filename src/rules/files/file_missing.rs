@@ -1,8 +1,8 @@
 //! A used file is not there, or cannot be read.
 //!
-//! A path in `use` is taken from the folder of the file that it stands in. Without the
-//! file, its reactions are missing, and the problem is not the one that was meant; so
-//! nothing is solved.
+//! A path in `use` or `blend` is taken from the folder of the file that it stands in. Without
+//! the file, its reactions or its water are missing, and the problem is not the one that was
+//! meant; so nothing is solved.
 //!
 //! Before:
 //!

@@ -1,7 +1,8 @@
 //! Files use one another in a circle.
 //!
 //! If a file uses another that leads back to it, there is no order to read them in.
-//! What both need belongs in a third file that both use.
+//! What both need belongs in a third file that both use. In the same way no water can be
+//! blended into itself, by whatever way.
 //!
 //! Before:
 //!
@@ -30,6 +31,7 @@ use crate::rules::catalogue::rule;
 use crate::rules::context::Context;
 use crate::rules::finding::Finding;
 use crate::text::span::Place;
+use crate::text::tree::Statement;
 
 rule!("import-cycle", Error, "import_cycle.rs", find);
 
@@ -40,10 +42,14 @@ fn find(context: &Context, found: &mut Vec<Finding<Place>>) {
                 [_, _] => "the file uses itself".to_owned(),
                 _ => format!("files use one another in a circle: {}", drawn(chain)),
             };
-            found.push(
-                RULE.at(defect.at, message)
-                    .with_help("put what both need into a file of its own, and use that"),
-            );
+            let blends = context
+                .statement(defect.at)
+                .is_some_and(|written| matches!(written.statement(), Statement::Blend { .. }));
+            found.push(RULE.at(defect.at, message).with_help(if blends {
+                "a water cannot be a part of itself: blend the waters that it is made of"
+            } else {
+                "put what both need into a file of its own, and use that"
+            }));
         }
     }
 }

@@ -39,7 +39,8 @@ fn find(context: &Context, found: &mut Vec<Finding<Place>>) {
             format!("`{unit}` is {}, and {needed} is needed here", measured(*dimension));
         let mut finding = RULE.at(defect.at, message);
         let units = units(*expected);
-        if (*expected, *dimension) == (Expected::Equivalents, Dimension::MassPerLitre) {
+        let as_carbonate = matches!(expected, Expected::Equivalents | Expected::Hardness);
+        if as_carbonate && *dimension == Dimension::MassPerLitre {
             let new = format!("{unit} as CaCO3");
             let title = format!("write `{new}`");
             finding = finding.with_fix(title, false, defect.at, new);

@@ -8,5 +8,4 @@ family! {
     nothing_to_remove,
     case_repeated,
     unknown_activity_model,
-    not_yet_supported,
 }

@@ -67,6 +67,7 @@ expectations! {
     Beta "`K`, `K(T)` or `beta`",
     Strength "`strength`",
     Capacity "`capacity`",
+    Hardness "`hardness`",
     Index "`index`",
     Imbalance "`imbalance`",
     With "`with`",
@@ -183,17 +184,7 @@ impl Failure {
         let words: &[&str] = if self.expects(Expect::Clause) {
             &CLAUSES
         } else if self.expects(Expect::Subject) {
-            &[
-                "alkalinity",
-                "ionic",
-                "buffer",
-                "saturation",
-                "precipitated",
-                "fraction",
-                "charge",
-                "total",
-                "dose",
-            ]
+            &SUBJECTS
         } else if self.expects(Expect::Kind) {
             &["charge", "protons"]
         } else {
@@ -202,6 +193,23 @@ impl Failure {
         nearest(lexeme.text, words)
     }
 }
+
+/// The words that a quantity of the answer begins with, those of three letters and less left
+/// out: nearly everything is near to them.
+const SUBJECTS: [&str; 12] = [
+    "alkalinity",
+    "acidity",
+    "hardness",
+    "carbonate",
+    "potential",
+    "ionic",
+    "buffer",
+    "saturation",
+    "fraction",
+    "charge",
+    "total",
+    "dose",
+];
 
 /// The word of a list that a misspelt word is nearest to, where one is near.
 pub(super) fn nearest(word: &str, words: &[&'static str]) -> Option<&'static str> {

@@ -152,9 +152,13 @@ pub(super) fn unsigned_quantity<'s>() -> impl Rule<'s, Quantity> {
 /// a formula.
 pub(super) fn strength<'s>() -> impl Rule<'s, Quantity> {
     let unit = unit(Expect::Unit).map(|(unit, at)| Part::Unit(unit, at));
+    // The percent sign of `30 ± 1 % NaOH` is the unit of both.
+    let bare = sign(Token::PlusMinus, Expect::Nothing)
+        .then(number())
+        .map(|(at, number)| Part::Uncertainty(Uncertainty { number, percent: false }, at));
     number()
         .map(Reading::of)
-        .foldl(uncertainty().or_not(), Reading::with)
+        .foldl(bare.or_not(), Reading::with)
         .then(unit)
         .map(|(reading, unit)| reading.with(unit))
         .foldl(uncertainty().or_not(), Reading::with)

@@ -25,7 +25,10 @@ fn subject<'s>() -> impl Rule<'s, Spanned<Subject>> {
             "pH" => Some(Subject::Ph),
             "pOH" => Some(Subject::Poh),
             "pe" => Some(Subject::Pe),
+            "potential" => Some(Subject::Potential),
             "alkalinity" => Some(Subject::Alkalinity),
+            "acidity" => Some(Subject::Acidity),
+            "hardness" => Some(Subject::Hardness),
             _ => None,
         }
     });
@@ -59,6 +62,7 @@ fn subject<'s>() -> impl Rule<'s, Spanned<Subject>> {
         of("fraction", Subject::Fraction),
         of("dose", Subject::Dose),
         of("precipitated", Subject::Precipitated),
+        two("carbonate", "hardness", Expect::Hardness, Subject::CarbonateHardness),
         two("ionic", "strength", Expect::Strength, Subject::IonicStrength),
         two("buffer", "capacity", Expect::Capacity, Subject::BufferCapacity),
         two("charge", "imbalance", Expect::Imbalance, Subject::ChargeImbalance),
