@@ -326,15 +326,19 @@ impl<'a> Assembling<'a> {
             return Err(Failure::NotConverged { residual: 1.0, iterations: self.iterations });
         };
         let stated = self.asked.fixed.len();
+        let amount = |place: usize| answer.amounts.get(stated + place).copied().unwrap_or(0.0);
+        // In their own order, whichever was found first; and what rounding leaves below nothing
+        // is nothing.
+        let mut there: Vec<(usize, f64)> =
+            self.there.iter().enumerate().map(|(place, &c)| (c, amount(place).min(0.0))).collect();
+        there.sort_unstable_by_key(|&(c, _)| c);
         let mut formed = vec![None; self.asked.candidates.len()];
-        for (place, &c) in self.there.iter().enumerate() {
+        answer.amounts.truncate(stated);
+        for (place, &(c, amount)) in there.iter().enumerate() {
             formed[c] = Some(stated + place);
-            // What rounding leaves below nothing is nothing.
-            if let Some(amount) = answer.amounts.get_mut(stated + place) {
-                *amount = amount.min(0.0);
-            }
+            answer.amounts.push(amount);
         }
-        Ok(Assemblage { system: self.system, answer, formed })
+        Ok(Assemblage { system: assembled(self.asked.clone(), &formed), answer, formed })
     }
 }
 

@@ -11,7 +11,7 @@ pub fn ticks(axis: &Axis, most: usize) -> Vec<(f64, String)> {
         return Vec::new();
     }
     let scale = if axis.percent { 100.0 } else { 1.0 };
-    let step = step(scale * span, most);
+    let step = step_between(scale * axis.from, scale * axis.to, most);
     let places = (-(step * 1.0001).log10().floor()).clamp(0.0, 12.0) as usize;
     let (first, last) = (scale * axis.from / step, scale * axis.to / step);
     let (first, last) = ((first - 1e-9).ceil(), (last + 1e-9).floor());
@@ -20,6 +20,19 @@ pub fn ticks(axis: &Axis, most: usize) -> Vec<(f64, String)> {
         .map(|n| (first + n as f64) * step)
         .map(|value| (value / scale, decimals(value, places)))
         .collect()
+}
+
+/// The least of 1, 2 and 5 times a power of ten of which so many multiples at most lie between
+/// two values.
+fn step_between(from: f64, to: f64, most: usize) -> f64 {
+    let few = |step: &f64| {
+        let (first, last) = ((from / step - 1e-9).ceil(), (to / step + 1e-9).floor());
+        last - first + 1.0 <= most.max(2) as f64
+    };
+    let widest = step(to - from, most);
+    let unit = 10f64.powf(widest.log10().floor() - 1.0);
+    let steps = [1.0, 2.0, 5.0, 10.0, 20.0, 50.0].map(|digit| digit * unit);
+    steps.into_iter().find(few).unwrap_or(widest)
 }
 
 /// The least of 1, 2 and 5 times a power of ten that cuts a span into fewer than `most` parts.

@@ -11,8 +11,8 @@
 //!
 //! ```lyate
 //! use aqueous
-//! component NH3, ClO-, Na+, Cl-
-//! reaction HClO <=> ClO- + H+, pKa = 7.54, source "plant constants, sheet 3"
+//! component NH3, OCl-, Na+, Cl-
+//! reaction HOCl <=> OCl- + H+, pKa = 7.54, source "plant constants, sheet 3"
 //! add NaClO 0.05 mmol/L
 //! add NH4Cl 0.05 mmol/L
 //! ```
@@ -21,8 +21,8 @@
 //!
 //! ```lyate
 //! use aqueous
-//! component ClO-, Na+, Cl-
-//! reaction HClO <=> ClO- + H+, pKa = 7.54, source "plant constants, sheet 3"
+//! component OCl-, Na+, Cl-
+//! reaction HOCl <=> OCl- + H+, pKa = 7.54, source "plant constants, sheet 3"
 //! add NaClO 0.05 mmol/L
 //! ```
 
