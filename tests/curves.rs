@@ -381,3 +381,29 @@ fn a_held_potential_stays_what_it_is_while_the_temperature_moves() {
         assert!((volts - 0.7).abs() < 1e-9, "{volts} V at {celsius} °C");
     }
 }
+
+/// A curve over the reagent that a target finds goes through the target at that dose.
+#[test]
+fn a_curve_over_a_dose_meets_its_target_there() {
+    let text = "\
+use aqueous
+component NH3, Na+, Cl-
+add NH4Cl 10 mmol/L
+hold pH = 9.5 by dose of 30 % NaOH
+curve over NaOH from 0 to 20 mmol/L, 201 points
+";
+    let problem = problem(text);
+    let dose = problem.reagents.iter().find(|r| r.target.is_some()).expect("the reagent").amount;
+    let points = along(&problem, &problem.curves[0], &GO_ON).expect("nothing cancels it");
+    let ph = |x: f64| {
+        let (_, solved) = solved_at(&problem, &problem.curves[0], x, &GO_ON).expect("an answer");
+        solved.ph()
+    };
+    assert!((ph(dose) - 9.5).abs() < 1e-9, "{}", ph(dose));
+    let crossing = points.windows(2).find(|pair| {
+        let of = |n: usize| pair[n].state.as_ref().map_or(f64::NAN, Answer::ph);
+        of(0) <= 9.5 && 9.5 <= of(1)
+    });
+    let pair = crossing.expect("the curve passes the target");
+    assert!(pair[0].x <= dose && dose <= pair[1].x, "{} {dose} {}", pair[0].x, pair[1].x);
+}

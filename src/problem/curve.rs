@@ -300,16 +300,7 @@ fn swept(
             return None;
         }
         // One that is not among them has its defect already.
-        Over::Reagent(name) => {
-            let index = reagent(case, problem, name)?;
-            if let Some(target) = problem.reagents[index].target {
-                let by = problem.targets.get(target).map(|target| target.by);
-                let name = problem.reagents[index].formula.name.clone();
-                case.resolver.report(written.place(span), DefectKind::CurveNotFree { name, by });
-                return None;
-            }
-            Sweep::Reagent(index)
-        }
+        Over::Reagent(name) => Sweep::Reagent(reagent(case, problem, name)?),
         Over::Total(name) => {
             let component = case.component(written, name)?;
             let amount = &problem.amounts[component];

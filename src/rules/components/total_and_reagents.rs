@@ -54,7 +54,10 @@ fn find(context: &Context, found: &mut Vec<Finding<Place>>) {
         for reagent in reagents {
             finding = finding.with_related(reagent, format!("brings `{name}`"));
         }
-        let help = format!("give `{name}` by reagents alone, or by a total that counts all of it");
+        let help = format!(
+            "give `{name}` by reagents alone, or by a total that counts all of it; a water that \
+             was analysed and is dosed here can have a file of its own: `blend 100 % of` it"
+        );
         found.push(finding.with_help(help));
     }
 }
