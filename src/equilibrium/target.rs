@@ -149,12 +149,16 @@ fn passed<T>(result: Result<T, Failure>) -> Result<Option<T>, Failure> {
     }
 }
 
-/// Amounts looked at: from next to nothing to more than dissolves, two in each decade.
-fn amounts(unknown: &Unknown) -> impl Iterator<Item = f64> + Clone {
+/// Amounts looked at: from next to nothing to more than dissolves, so many in each decade.
+fn amounts(unknown: &Unknown, in_decade: f64) -> impl Iterator<Item = f64> + Clone {
     let most = most(unknown);
-    let steps = (0..).map(|n| LEAST * 10f64.powf(0.5 * f64::from(n)));
+    let steps = (0..).map(move |n| LEAST * 10f64.powf(f64::from(n) / in_decade));
     std::iter::once(0.0).chain(steps.take_while(move |&dose| dose < most)).chain([most])
 }
+
+/// Amounts in a decade that are looked at first, and where that finds none.
+const COARSE: f64 = 2.0;
+const FINE: f64 = 24.0;
 
 /// mol per litre or kilogram.
 const LEAST: f64 = 1e-9;

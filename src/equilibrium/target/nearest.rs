@@ -1,7 +1,7 @@
 //! How near a target comes that no amount meets.
 
 use super::one::Line;
-use super::{Bench, amounts};
+use super::{Bench, COARSE, amounts};
 use crate::equilibrium::system::Failure;
 
 /// A target that is not met.
@@ -37,7 +37,7 @@ pub(super) fn nearest<B: Bench>(
     without: Option<f64>,
 ) -> Result<Missed, Failure> {
     let mut marks: Vec<(f64, f64)> = Vec::new();
-    for dose in amounts(&line.dosing.unknowns[0]) {
+    for dose in amounts(&line.dosing.unknowns[0], COARSE) {
         if let Some(value) = line.value(dose)?.filter(|value| value.is_finite()) {
             marks.push((dose, value));
         }

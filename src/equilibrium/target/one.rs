@@ -2,7 +2,7 @@
 
 use super::nearest::nearest;
 use super::root::{Mark, close_in};
-use super::{Bench, Dosing, Goal, MET, Met, Search, amounts, most, passed};
+use super::{Bench, COARSE, Dosing, FINE, Goal, MET, Met, Search, amounts, most, passed};
 use crate::equilibrium::system::Failure;
 
 pub(super) fn find<B: Bench>(
@@ -25,15 +25,12 @@ pub(super) fn find<B: Bench>(
         Err(failure @ Failure::NotConverged { .. }) => (None, Some(failure)),
         Err(failure) => return Err(failure),
     };
-    let mut doses = if goal.single { line.single(start)? } else { line.all()? };
-    doses.sort_by(f64::total_cmp);
-    let mut found: Vec<(f64, B::State)> = Vec::new();
-    for dose in doses {
-        let Some(state) = passed(line.state(dose))? else { continue };
-        let off = bench.value(0, &state).map(|value| goal.off(value).abs());
-        if off.is_some_and(|off| off <= MET) {
-            found.push((dose, state));
-        }
+    let doses = if goal.single { line.single(start)? } else { line.all(COARSE)? };
+    let mut found = line.good(doses)?;
+    if found.is_empty() {
+        // Two amounts close together hide between two looks.
+        let doses = line.all(FINE)?;
+        found = line.good(doses)?;
     }
     let mut found = found.into_iter();
     if let Some((dose, state)) = found.next() {
@@ -59,6 +56,20 @@ pub(super) struct Line<'a, B: Bench> {
 }
 
 impl<B: Bench> Line<'_, B> {
+    /// Those of the doses that meet the goal, with their states, by rising dose.
+    fn good(&mut self, mut doses: Vec<f64>) -> Result<Vec<(f64, B::State)>, Failure> {
+        doses.sort_by(f64::total_cmp);
+        let mut found: Vec<(f64, B::State)> = Vec::new();
+        for dose in doses {
+            let Some(state) = passed(self.state(dose))? else { continue };
+            let off = self.bench.value(0, &state).map(|value| self.goal.off(value).abs());
+            if off.is_some_and(|off| off <= MET) {
+                found.push((dose, state));
+            }
+        }
+        Ok(found)
+    }
+
     /// The state with a dose, nothing held.
     fn state(&mut self, dose: f64) -> Result<B::State, Failure> {
         self.trials += 1;
@@ -100,7 +111,7 @@ impl<B: Bench> Line<'_, B> {
 
     /// The one amount there can be, from near it: along secants until the sign changes.
     fn single(&mut self, start: Option<f64>) -> Result<Vec<f64>, Failure> {
-        let Some(first) = self.open(0.0)? else { return self.all() };
+        let Some(first) = self.open(0.0)? else { return self.all(COARSE) };
         let most = most(&self.dosing.unknowns[0]);
         let held = self.goal.held.as_ref().filter(|_| self.held);
         // What the dose brings of what is held.
@@ -114,7 +125,7 @@ impl<B: Bench> Line<'_, B> {
         let mut low: Mark = (0.0, first);
         let mut dose = guess.clamp(f64::MIN_POSITIVE, most);
         for _ in 0..60 {
-            let Some(open) = self.open(dose)? else { return self.all() };
+            let Some(open) = self.open(dose)? else { return self.all(COARSE) };
             let high = (dose, open);
             if open == 0.0 {
                 return Ok(vec![dose]);
@@ -135,9 +146,9 @@ impl<B: Bench> Line<'_, B> {
     }
 
     /// Every change of sign over all amounts, and two where a dip just touches zero.
-    fn all(&mut self) -> Result<Vec<f64>, Failure> {
+    fn all(&mut self, in_decade: f64) -> Result<Vec<f64>, Failure> {
         let mut marks: Vec<Mark> = Vec::new();
-        for dose in amounts(&self.dosing.unknowns[0]) {
+        for dose in amounts(&self.dosing.unknowns[0], in_decade) {
             if let Some(open) = self.open(dose)? {
                 marks.push((dose, open));
             }

@@ -5,8 +5,8 @@ use nalgebra::{DMatrix, DVector};
 
 use super::nearest::Missed;
 use super::root::{Mark, close_in};
-use super::{Bench, Dosing, Goal, MET, Met, Search, Unknown, amounts, one, passed};
-use crate::equilibrium::system::Failure;
+use super::{Bench, COARSE, Dosing, Goal, MET, Met, Search, Unknown, amounts, one, passed};
+use crate::equilibrium::system::{Failure, System};
 
 /// Amounts that are set out from, mol per litre or kilogram.
 const PLACES: [f64; 3] = [1e-3, 1e-1, 1e-5];
@@ -14,6 +14,8 @@ const PLACES: [f64; 3] = [1e-3, 1e-1, 1e-5];
 const MIXED: usize = 3;
 /// So many of the places where one goal is met are tried for both.
 const NEAREST: usize = 12;
+/// Where steps of no more than this share of an amount no longer help, it is found.
+const NEAR: f64 = 1e-7;
 /// Steps of Newton's method from one place.
 const STEPS: u32 = 40;
 
@@ -40,12 +42,10 @@ pub(super) fn find<B: Bench>(
             below_zero.get_or_insert(doses);
         }
     }
-    // Without slopes the equations are all but straight lines, and what led below zero would
-    // lead there again.
-    let straight = goals.iter().all(|goal| !goal.slope);
-    if count == 2 && !(straight && below_zero.is_some()) {
-        for inner in [0, 1] {
-            for place in space.nested(inner)? {
+    // Even where Newton came below zero there can be another answer above it.
+    if count == 2 {
+        for (first, inner) in [(0, 0), (0, 1), (1, 0), (1, 1)] {
+            for place in space.nested(first, inner)? {
                 if let Some(doses) = space.newton(&place)?
                     && doses.iter().all(|dose| *dose >= 0.0)
                     && let Some(found) = space.met(doses)?
@@ -71,6 +71,28 @@ fn places(count: usize) -> Vec<Vec<f64>> {
         }
     }
     places
+}
+
+/// One of the goals, as the only one.
+struct Of<'a, B> {
+    bench: &'a B,
+    goal: usize,
+}
+
+impl<B: Bench> Bench for Of<'_, B> {
+    type State = B::State;
+
+    fn solve(&self, system: System, near: Option<&Self::State>) -> Result<Self::State, Failure> {
+        self.bench.solve(system, near)
+    }
+
+    fn brought(&self, state: &Self::State, phase: usize) -> f64 {
+        self.bench.brought(state, phase)
+    }
+
+    fn value(&self, _: usize, state: &Self::State) -> Option<f64> {
+        self.bench.value(self.goal, state)
+    }
 }
 
 struct Space<'a, B: Bench> {
@@ -166,7 +188,9 @@ impl<B: Bench> Space<'_, B> {
                     break None;
                 }
             };
-            let Some((next, left)) = taken else { return Ok(None) };
+            // A small amount beside a large one is known no better than the sums allow; whether
+            // it meets the goals is looked at afterwards.
+            let Some((next, left)) = taken else { return Ok((before < NEAR).then_some(doses)) };
             (doses, open) = (next, left);
             if part == 1.0 && before < 1e-11 {
                 return Ok(Some(doses));
@@ -188,17 +212,17 @@ impl<B: Bench> Space<'_, B> {
     }
 
     /// Places to set out from, the likeliest first: for each of many amounts of one unknown,
-    /// those of the other that meet the first goal; and of these, where the second goal is met
+    /// those of the other that meet the first goal; and of these, where the other goal is met
     /// on the way from one to the next, or is least off.
-    fn nested(&mut self, inner: usize) -> Result<Vec<Vec<f64>>, Failure> {
+    fn nested(&mut self, first: usize, inner: usize) -> Result<Vec<Vec<f64>>, Failure> {
         let outer = self.dosing.unknowns[1 - inner].clone();
         let mut branches: Vec<Vec<Mark>> = Vec::new();
         let mut near: Vec<(f64, Vec<f64>)> = Vec::new();
         let place = |own: f64, other: f64| {
             if inner == 0 { vec![own, other] } else { vec![other, own] }
         };
-        for other in amounts(&outer) {
-            for (branch, (own, open)) in self.inner(inner, other)?.into_iter().enumerate() {
+        for other in amounts(&outer, COARSE) {
+            for (branch, (own, open)) in self.inner(first, inner, other)?.into_iter().enumerate() {
                 if branches.len() <= branch {
                     branches.push(Vec::new());
                 }
@@ -210,7 +234,7 @@ impl<B: Bench> Space<'_, B> {
         for (branch, marks) in branches.iter().enumerate() {
             for pair in marks.windows(2).filter(|pair| pair[0].1 * pair[1].1 <= 0.0) {
                 let at = |other: f64, space: &mut Self| {
-                    Ok(space.inner(inner, other)?.get(branch).copied())
+                    Ok(space.inner(first, inner, other)?.get(branch).copied())
                 };
                 let open = |other: f64| Ok(at(other, self)?.map(|(_, open)| open));
                 if let Some(other) = close_in(open, pair[0], pair[1])?
@@ -226,8 +250,8 @@ impl<B: Bench> Space<'_, B> {
     }
 
     /// With an amount of the other unknown: each amount of this one that meets the first goal,
-    /// and how far the second is off with it.
-    fn inner(&mut self, inner: usize, other: f64) -> Result<Vec<Mark>, Failure> {
+    /// and how far the other goal is off with it.
+    fn inner(&mut self, first: usize, inner: usize, other: f64) -> Result<Vec<Mark>, Failure> {
         let Unknown { row, brings } = &self.dosing.unknowns[1 - inner];
         let mut dosing = self.dosing.clone();
         for (j, n) in row {
@@ -235,7 +259,12 @@ impl<B: Bench> Space<'_, B> {
         }
         dosing.dilution += brings * other;
         dosing.unknowns = vec![self.dosing.unknowns[inner].clone()];
-        let found = passed(one::find(self.bench, &dosing, &self.goals[0], None))?;
+        let found = passed(one::find(
+            &Of { bench: self.bench, goal: first },
+            &dosing,
+            &self.goals[first],
+            None,
+        ))?;
         let Some(Search::Met(met)) = found else { return Ok(Vec::new()) };
         self.trials += met.trials;
         let mut marks = Vec::new();
@@ -243,8 +272,9 @@ impl<B: Bench> Space<'_, B> {
             self.trials += 1;
             let solved = self.bench.solve(dosing.system(doses), Some(&met.state));
             let Some(state) = passed(solved)? else { continue };
-            let value = self.bench.value(1, &state).filter(|value| value.is_finite());
-            marks.extend(doses.first().copied().zip(value.map(|v| self.goals[1].off(v))));
+            let second = 1 - first;
+            let value = self.bench.value(second, &state).filter(|value| value.is_finite());
+            marks.extend(doses.first().copied().zip(value.map(|v| self.goals[second].off(v))));
         }
         Ok(marks)
     }
