@@ -177,6 +177,20 @@ impl Sweep {
         self.states.iter().filter_map(|(ph, state)| Some((*ph, state.as_ref()?)))
     }
 
+    /// mol per litre or kilogram of a solid that may form which is there in a state.
+    pub fn formed(&self, state: &Answer, candidate: usize) -> f64 {
+        let brought = state.amounts.get(self.system.fixed.len() + candidate);
+        brought.map_or(0.0, |brought| 0.0 - brought)
+    }
+
+    /// Whether some of a component is in a solid.
+    fn is_precipitated(&self, state: &Answer, component: usize) -> bool {
+        let mut candidates = self.system.candidates.iter().enumerate();
+        candidates.any(|(k, candidate)| {
+            candidate.row.iter().any(|&(j, _)| j == component) && self.formed(state, k) > 0.0
+        })
+    }
+
     /// The state nearest to a pH.
     fn near(&self, ph: f64) -> Option<&Answer> {
         let nearest = self.found().min_by(|a, b| (a.0 - ph).abs().total_cmp(&(b.0 - ph).abs()))?;
@@ -184,8 +198,9 @@ impl Sweep {
     }
 }
 
-/// The system points of every component whose total is given and which is, there, mostly in
-/// the two forms that meet. What holds two of the component, or another one, has no part.
+/// The system points of every component whose total is given and which is, there, all
+/// dissolved and mostly in the two forms that meet. What holds two of the component, or
+/// another one, has no part.
 pub fn system_points(sweep: &Sweep) -> Vec<SystemPoint> {
     let Some((_, state)) = sweep.found().next() else { return Vec::new() };
     let mut points = Vec::new();
@@ -197,9 +212,10 @@ pub fn system_points(sweep: &Sweep) -> Vec<SystemPoint> {
         }
         for [acid, base] in succession(&forms(sweep, state, j)) {
             let ph = (acid.height - base.height) / ((acid.protons - base.protons) * LN_10);
-            let both = sweep.near(ph).map_or(0.0, |state| {
-                state.concentrations[acid.row] + state.concentrations[base.row]
-            });
+            let Some(near) = sweep.near(ph).filter(|near| !sweep.is_precipitated(near, j)) else {
+                continue;
+            };
+            let both = near.concentrations[acid.row] + near.concentrations[base.row];
             if both >= 0.5 * total {
                 let (acid, base) = (acid.row, base.row);
                 points.push(SystemPoint { component: j, acid, base, ph, log_total: total.log10() });

@@ -1,7 +1,7 @@
 //! A chart on a page: every stroke, mark and text with its place in pixels.
 
 use super::chart::{Axis, Chart, MarkKind, Place, Role};
-use super::foot::Foot;
+use super::foot::{Foot, Keyed};
 use super::geometry::{Frame, Point};
 use super::labels::{Ground, Tie, Want, place};
 use super::theme::{Look, looks};
@@ -100,22 +100,23 @@ impl Layout {
     pub fn new(chart: &Chart, width: u32, height: u32) -> Layout {
         let width = f64::from(width.clamp(LEAST.0, MOST));
         let height = f64::from(height.clamp(LEAST.1, MOST));
-        let mut keyed: Vec<usize> = Vec::new();
+        let mut keyed = Keyed::default();
         loop {
             let (layout, unplaced) = set(chart, width, height, &keyed);
-            if unplaced.is_empty() {
+            if unplaced.lines.is_empty() && unplaced.marks.is_empty() {
                 return layout;
             }
-            // Lines that find no place for their label are told in a key below. That takes
-            // room from the plot, which may cost another its label.
-            keyed.extend(unplaced);
-            keyed.sort_unstable();
+            // What finds no place for its label is told in a key below. That takes room from
+            // the plot, which may cost another its label.
+            keyed.lines.extend(unplaced.lines);
+            keyed.lines.sort_unstable();
+            keyed.marks.extend(unplaced.marks);
         }
     }
 }
 
-/// The layout where these lines are told below, and the others that find no label.
-fn set(chart: &Chart, width: f64, height: f64, keyed: &[usize]) -> (Layout, Vec<usize>) {
+/// The layout where these labels are told below, and the others that find no place.
+fn set(chart: &Chart, width: f64, height: f64, keyed: &Keyed) -> (Layout, Keyed) {
     let mut layout = Layout {
         width,
         height,
@@ -263,8 +264,8 @@ impl Layout {
         }
     }
 
-    /// Places the labels; the lines that find none.
-    fn labels(&mut self, chart: &Chart, keyed: &[usize]) -> Vec<usize> {
+    /// Places the labels, but for those told below; the ones that find no place.
+    fn labels(&mut self, chart: &Chart, keyed: &Keyed) -> Keyed {
         let mut lines: Vec<Vec<Vec<Point>>> =
             self.strokes.iter().map(|stroke| stroke.pieces.clone()).collect();
         // A label does not lie on a rule either.
@@ -274,41 +275,39 @@ impl Layout {
             .iter()
             .map(|(at, radius, _)| Frame::round(*at, 2.0 * radius, 2.0 * radius))
             .collect();
-        let mut wanted: Vec<(&Words, Tie, Option<usize>)> = Vec::new();
+        let mut wanted: Vec<(&Words, Tie, Kind, usize)> = Vec::new();
         for (index, line) in chart.lines.iter().enumerate() {
             // The axis says what a line that is alone shows.
-            if !keyed.contains(&index) && chart.lines.len() > 1 {
-                wanted.push((&line.label, Tie::Line(index), Some(index)));
+            if !keyed.lines.contains(&index) && chart.lines.len() > 1 {
+                wanted.push((&line.label, Tie::Line(index), Kind::Label, index));
             }
         }
-        for mark in &chart.marks {
-            if let Some(label) = &mark.label
-                && chart.x.holds(mark.at.0)
-                && chart.y.holds(mark.at.1)
+        for (index, mark) in chart.marks.iter().enumerate() {
+            let inside = chart.x.holds(mark.at.0) && chart.y.holds(mark.at.1);
+            if let Some(label) = mark.label.as_ref().filter(|_| inside)
+                && !keyed.marks.contains(&index)
             {
-                wanted.push((label, Tie::Mark(self.at(chart, mark.at), RADIUS), None));
+                let tie = Tie::Mark(self.at(chart, mark.at), RADIUS);
+                wanted.push((label, tie, Kind::MarkLabel, index));
             }
         }
         let wants: Vec<Want> = wanted
             .iter()
-            .map(|(label, tie, line)| {
-                let kind = if line.is_some() { Kind::Label } else { Kind::MarkLabel };
+            .map(|(label, tie, kind, _)| {
                 Want { width: kind.width(label) + 2.0, height: 1.15 * kind.size(), tie: *tie }
             })
             .collect();
         let spots = place(&Ground { plot: self.plot, lines: &lines, taken: &taken }, &wants);
-        let mut unplaced = Vec::new();
-        for ((label, _, line), spot) in wanted.into_iter().zip(spots) {
-            match (spot, line) {
-                (Some(spot), line) => {
+        let mut unplaced = Keyed::default();
+        for ((label, tie, kind, index), spot) in wanted.into_iter().zip(spots) {
+            match (spot, tie) {
+                (Some(spot), _) => {
                     self.leaders.extend(spot.leader);
-                    let kind = if line.is_some() { Kind::Label } else { Kind::MarkLabel };
                     let (words, frame) = (label.clone(), spot.frame);
                     self.texts.push(Text { words, kind, frame, turned: false });
                 }
-                (None, Some(line)) => unplaced.push(line),
-                // A mark may go without.
-                (None, None) => {}
+                (None, Tie::Line(_)) => unplaced.lines.push(index),
+                (None, Tie::Mark(..)) => unplaced.marks.push(index),
             }
         }
         unplaced

@@ -22,7 +22,10 @@ pub fn chart(subject: &Subject, cancel: &AtomicBool) -> Option<Chart> {
     let sweep = subject.sweep(cancel)?;
     let ledger = Ledger::new(subject.stated.outcome);
     let condition = (!subject.ph_is_held()).then(|| ledger.protons()).flatten();
-    let recipe = Recipe::of(problem, Some(&solved.answer.amounts));
+    // As in the sweep, each solid that may form has its place behind the held values.
+    let brought = solved.brought();
+    let recipe = Recipe::of(problem, Some(&brought));
+    let answer = Answer { amounts: brought, ..solved.answer.clone() };
     let stoichiometry = &problem.scope.stoichiometry;
     let balance = condition.as_ref().map(|(_, condition)| &condition.balance);
 
@@ -39,7 +42,7 @@ pub fn chart(subject: &Subject, cancel: &AtomicBool) -> Option<Chart> {
             let value = |state: &_| at(state, n);
             lines.push(traced(&sweep, Words::plain(label), Role::Main(n), value));
         }
-        let level = at(&solved.answer, 0).log10();
+        let level = at(&answer, 0).log10();
         level.is_finite().then_some((solved.ph(), level))
     });
     if let (Some((sheet, _)), Some(_)) = (&condition, crossing) {

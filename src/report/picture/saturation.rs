@@ -61,7 +61,8 @@ pub fn chart(
         .filter_map(|&s| run.answer(subject, index(problem, subject.solved, s)))
         .collect();
     let values = lines.iter().flat_map(|line| line.pieces.iter().flatten()).map(|place| place.1);
-    let (low, high) = round_ends(values.map(|value| value.max(LEAST)).chain([0.0]));
+    // With room on either side of saturation, where the lines of what forms run.
+    let (low, high) = round_ends(values.map(|value| value.max(LEAST)).chain([-0.5, 0.5]));
     let y = Axis::new(Words::plain("saturation index"), low, high);
     let mut chart = plain(subject, &run, y, lines, marks);
     chart.levels.push(0.0);
