@@ -22,7 +22,8 @@ use crate::problem::scope::PROTON;
 const STEP: f64 = 0.25;
 /// How often a step may be halved.
 const HALVINGS: u32 = 5;
-/// log10 that a line may stray from the states between which it is drawn.
+/// log10 of a concentration, or share of a component in a solid, that a line may stray from
+/// the states between which it is drawn.
 const STRAIGHT: f64 = 0.002;
 /// Below this log10 concentration nobody looks.
 const FAINT: f64 = -24.0;
@@ -51,7 +52,8 @@ pub struct SystemPoint {
 }
 
 /// Solves a system at pH values between two, close enough together that straight lines
-/// between them are true to 0.002 in log10 of every concentration. A held pH gives way.
+/// between them are true to 0.002 in log10 of every concentration, and in every solid's share.
+/// A held pH gives way.
 ///
 /// # Errors
 /// Only [`Failure::Cancelled`]: where a state is missing, the sweep has a gap.
@@ -147,7 +149,7 @@ impl Walk<'_> {
         let ph = 0.5 * (from.0 + to.0);
         let middle = self.state(ph)?;
         if let (Some(one), Some(state), Some(other)) = (&from.1, &middle, &to.1)
-            && strays(one, state, other) <= STRAIGHT
+            && strays(&self.system, one, state, other) <= STRAIGHT
         {
             states.extend([from, (ph, middle), to]);
             return Ok(());
@@ -160,15 +162,29 @@ impl Walk<'_> {
     }
 }
 
-/// How far a state lies from the straight lines between its neighbours, in log10.
-fn strays(one: &Answer, middle: &Answer, other: &Answer) -> f64 {
+/// How far a state lies from the straight lines between its neighbours, in log10 of
+/// concentrations and in shares of what is in solids.
+fn strays(system: &System, one: &Answer, middle: &Answer, other: &Answer) -> f64 {
     let logs = |answer: &Answer, i: usize| answer.concentrations[i].log10();
-    (0..middle.concentrations.len())
+    let dissolved = (0..middle.concentrations.len())
         .map(|i| (logs(one, i), logs(middle, i), logs(other, i)))
         .filter(|(a, b, c)| a.max(*b).max(*c) > FAINT)
-        .map(|(a, b, c)| (b - 0.5 * (a + c)).abs())
-        .filter(|stray| stray.is_finite())
-        .fold(0.0, f64::max)
+        .map(|(a, b, c)| (b - 0.5 * (a + c)).abs());
+    let solids = system.candidates.iter().enumerate().map(|(k, candidate)| {
+        let amount = |answer: &Answer| formed(system, answer, k);
+        let stray = (amount(middle) - 0.5 * (amount(one) + amount(other))).abs();
+        // Of the protons and electrons, a solid may hold more than there are.
+        let total = |&(j, n): &(usize, Rational64)| system.totals[j] / n.to_f64().unwrap_or(1.0);
+        let totals = candidate.row.iter().map(total).filter(|total| *total > 0.0);
+        stray / totals.fold(f64::INFINITY, f64::min)
+    });
+    dissolved.chain(solids).filter(|stray| stray.is_finite()).fold(0.0, f64::max)
+}
+
+/// mol per litre or kilogram of a solid that may form which is there in a state of a sweep.
+fn formed(system: &System, state: &Answer, candidate: usize) -> f64 {
+    let brought = state.amounts.get(system.fixed.len() + candidate);
+    brought.map_or(0.0, |brought| 0.0 - brought)
 }
 
 impl Sweep {
@@ -179,8 +195,7 @@ impl Sweep {
 
     /// mol per litre or kilogram of a solid that may form which is there in a state.
     pub fn formed(&self, state: &Answer, candidate: usize) -> f64 {
-        let brought = state.amounts.get(self.system.fixed.len() + candidate);
-        brought.map_or(0.0, |brought| 0.0 - brought)
+        formed(&self.system, state, candidate)
     }
 
     /// Whether some of a component is in a solid.

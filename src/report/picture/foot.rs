@@ -70,6 +70,6 @@ fn marks(chart: &Chart, keyed: &[usize]) -> Option<Words> {
     let mut marks: Vec<_> = keyed.iter().filter_map(|&mark| chart.marks.get(mark)).collect();
     marks.sort_by(|a, b| a.at.0.total_cmp(&b.at.0));
     let mut labels = marks.iter().filter_map(|mark| mark.label.clone());
-    let first = Words::plain("Without a label, from the left: ").then("", labels.next()?);
+    let first = Words::plain("Rings without a label, from the left: ").then("", labels.next()?);
     Some(labels.fold(first, |words, label| words.then(", ", label)).then(".", Words::default()))
 }

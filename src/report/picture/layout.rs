@@ -67,8 +67,8 @@ pub struct Layout {
     pub leaders: Vec<(Point, Point)>,
     pub marks: Vec<(Point, f64, MarkKind)>,
     pub texts: Vec<Text>,
-    /// Of each plain stroke, those that come near it.
-    pub near: Vec<Vec<usize>>,
+    /// Of each plain stroke, those that come near it, and at how many places.
+    pub near: Vec<Vec<(usize, u32)>>,
 }
 
 impl Kind {
@@ -293,8 +293,10 @@ impl Layout {
         }
         let wants: Vec<Want> = wanted
             .iter()
-            .map(|(label, tie, kind, _)| {
-                Want { width: kind.width(label) + 2.0, height: 1.15 * kind.size(), tie: *tie }
+            .map(|(label, tie, kind, _)| Want {
+                width: kind.width(label) + 2.0,
+                height: 1.15 * kind.size(),
+                tie: *tie,
             })
             .collect();
         let spots = place(&Ground { plot: self.plot, lines: &lines, taken: &taken }, &wants);
@@ -314,9 +316,10 @@ impl Layout {
     }
 }
 
-/// For each line, the others that come next above or below it within [`NEAR`] somewhere.
-fn neighbours(plot: &Frame, lines: &[&[Vec<Point>]]) -> Vec<Vec<usize>> {
-    let mut near: Vec<Vec<usize>> = vec![Vec::new(); lines.len()];
+/// For each line, the others that come next above or below it within [`NEAR`] somewhere, and
+/// how often.
+fn neighbours(plot: &Frame, lines: &[&[Vec<Point>]]) -> Vec<Vec<(usize, u32)>> {
+    let mut near: Vec<Vec<(usize, u32)>> = vec![Vec::new(); lines.len()];
     let mut x = plot.left + 1.0;
     while x < plot.right {
         let mut heights: Vec<(f64, usize)> = lines
@@ -329,8 +332,9 @@ fn neighbours(plot: &Frame, lines: &[&[Vec<Point>]]) -> Vec<Vec<usize>> {
             let [(above, one), (below, other)] = [pair[0], pair[1]];
             if below - above <= NEAR && one != other {
                 for (one, other) in [(one, other), (other, one)] {
-                    if !near[one].contains(&other) {
-                        near[one].push(other);
+                    match near[one].iter_mut().find(|(index, _)| *index == other) {
+                        Some((_, length)) => *length += 1,
+                        None => near[one].push((other, 1)),
                     }
                 }
             }

@@ -48,8 +48,7 @@ pub fn chart(
     let places = value(chosen).map(|place| place.map(|(x, y)| (x, y / factor)));
     let line = Line::through(Words::told(&chosen.words), Role::Main(0), places);
     let alike = |expectation: &Expectation| expectation.words == chosen.words;
-    let levels: Vec<f64> =
-        limits(problem, alike).into_iter().map(|level| level / factor).collect();
+    let levels: Vec<f64> = limits(problem, alike).into_iter().map(|level| level / factor).collect();
     let here = subject.solved.value(problem, chosen.sought).map(|value| value / factor);
     let answer = run.answer(subject, here);
     // What is an amount is seen best from zero.
