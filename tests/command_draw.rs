@@ -114,12 +114,14 @@ fn what_cannot_be_drawn_says_why() {
 #[test]
 fn pictures_of_the_readme_are_of_today() {
     let root = std::path::Path::new(env!("CARGO_MANIFEST_DIR"));
-    let file = "tests/problems/plant/pickling_rinse.lyate";
-    let titration = ["--picture", "titration", "--of", "NaOH"];
-    for (name, more) in [("rinse.svg", &[][..]), ("rinse_dosed.svg", &titration[..])] {
+    for (name, file, more) in [
+        ("buffer.svg", "wash_buffer.lyate", &[][..]),
+        ("rinse.svg", "pickling_rinse.lyate", &["--picture", "titration", "--of", "NaOH"][..]),
+    ] {
+        let file = format!("tests/problems/plant/{file}");
         let size = ["--width", "640", "--height", "480", "-o", "-"];
         let arguments: Vec<&str> =
-            ["draw", file].iter().chain(more).chain(&size).copied().collect();
+            ["draw", &file].iter().chain(more).chain(&size).copied().collect();
         let output = run(root, &arguments);
         assert_eq!(code(&output), 0, "{}", stderr(&output));
         let kept = std::fs::read_to_string(root.join("tests/pictures").join(name)).unwrap();

@@ -53,8 +53,10 @@ const UNCLEAR: f64 = 14.0;
 const LEADER: f64 = 26.0;
 const MERGED: f64 = 10.0;
 const MEETS: f64 = 1e5;
-/// A label that would cost more is told elsewhere.
+/// A label that would cost more is told elsewhere: a line's where it hides another line, a
+/// mark's, which lies among lines anyway, where it hides two.
 const TOO_MUCH: f64 = 120.0;
+const TOO_MUCH_OF_MARK: f64 = 190.0;
 /// Places without a leader that leave enough choice.
 const ENOUGH: usize = 12;
 const KEPT: usize = 160;
@@ -87,7 +89,11 @@ pub fn place(ground: &Ground, wants: &[Want]) -> Vec<Option<Spot>> {
     // The ones that chose last give way, and leave their room to the others.
     for &label in order.iter().rev() {
         chosen[label] = None;
-        let found = best(label, &chosen).filter(|(cost, _)| *cost < TOO_MUCH);
+        let most = match wants[label].tie {
+            Tie::Line(_) => TOO_MUCH,
+            Tie::Mark(..) => TOO_MUCH_OF_MARK,
+        };
+        let found = best(label, &chosen).filter(|(cost, _)| *cost < most);
         chosen[label] = found.map(|(_, spot)| spot);
     }
     chosen

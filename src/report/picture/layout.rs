@@ -20,6 +20,10 @@ const TICK: f64 = 6.0;
 pub(super) const NEAR: f64 = 90.0;
 const RADIUS: f64 = 3.6;
 const LEAST_PLOT: f64 = 120.0;
+/// Of the height that is asked for, at least so much is the plot's, whatever is told below.
+const PLOT_SHARE: f64 = 0.6;
+/// Numbers along an axis, at most, however long it is.
+const NUMBERS: (usize, usize) = (15, 11);
 /// Of a text's line, over its size.
 const LEADING: f64 = 1.3;
 
@@ -133,9 +137,10 @@ fn set(chart: &Chart, width: f64, height: f64, keyed: &Keyed) -> (Layout, Keyed)
     let top = layout.head(chart);
     let foot = Foot::new(chart, keyed, width - 2.0 * PAD);
     let below = TICK + Kind::Tick.height() + 4.0 + Kind::AxisTitle.height();
-    let bottom = (height - PAD - foot.height - below).max(top + LEAST_PLOT);
+    let least = top + LEAST_PLOT.max(PLOT_SHARE * height);
+    let bottom = (height - PAD - foot.height - below).max(least);
     layout.height = bottom + below + foot.height + PAD;
-    let numbers = ticks(&chart.y, ((bottom - top) / 32.0) as usize);
+    let numbers = ticks(&chart.y, (((bottom - top) / 32.0) as usize).min(NUMBERS.1));
     let widest = numbers.iter().map(|(_, words)| Kind::Tick.width(&Words::plain(words)));
     let left = PAD + Kind::AxisTitle.height() + 6.0 + widest.fold(0.0, f64::max) + TICK;
     layout.plot = Frame { left, top, right: width - PAD - 8.0, bottom };
@@ -185,7 +190,7 @@ impl Layout {
             let left = plot.left - TICK - Kind::Tick.width(&words);
             self.write(words, Kind::Tick, left, y - 0.5 * Kind::Tick.height());
         }
-        for (value, words) in ticks(&chart.x, (plot.width() / 40.0) as usize) {
+        for (value, words) in ticks(&chart.x, ((plot.width() / 40.0) as usize).min(NUMBERS.0)) {
             let x = self.at(chart, (value, chart.y.from)).x;
             self.grid.push((Point { x, y: plot.top }, Point { x, y: plot.bottom }));
             let words = Words::plain(&words);
