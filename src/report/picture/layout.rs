@@ -220,7 +220,9 @@ impl Layout {
             }
             self.rules.push((Point { x, y: plot.top }, Point { x, y: plot.bottom }));
             let wide = Kind::Tick.width(&rule.label);
-            let left = (x - 0.5 * wide).min(self.width - PAD - wide).max(last + 8.0);
+            // Clear of the numbers beside the plot.
+            let left = (x - 0.5 * wide).max(plot.left);
+            let left = left.min(self.width - PAD - wide).max(last + 8.0);
             last = left + wide;
             if last <= self.width - 2.0 {
                 // Clear of a mark on the edge.

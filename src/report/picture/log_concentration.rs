@@ -6,7 +6,9 @@ use std::sync::atomic::AtomicBool;
 use super::chart::{Axis, Chart, Line, Mark, MarkKind, Place, Role, Rule};
 use super::subject::Subject;
 use super::words::{Level, Words};
+use crate::balance::Part;
 use crate::balance::recipe::Recipe;
+use crate::balance::written::TermOf;
 use crate::chemistry::activity::ActivityKind;
 use crate::equilibrium::diagram::{Sweep, sides, system_points};
 use crate::equilibrium::system::Answer;
@@ -48,8 +50,8 @@ pub fn chart(subject: &Subject, cancel: &AtomicBool) -> Option<Chart> {
     if let (Some((sheet, _)), Some(_)) = (&condition, crossing) {
         notes.push(Words::told(&format!(
             "Proton condition: {} (left side) = {} (right side).",
-            present(&sheet.left),
-            present(&sheet.right),
+            present(&sheet.left, &sweep),
+            present(&sheet.right, &sweep),
         )));
     }
     let points = system_points(&sweep);
@@ -95,10 +97,16 @@ fn traced(sweep: &Sweep, label: Words, role: Role, value: impl Fn(&Answer) -> f6
     Line::through(label, role, sweep.states.iter().map(place))
 }
 
-/// The sum of a side's terms, without those of what is absent.
-fn present(entries: &[Entry]) -> String {
-    let kept: Vec<Entry> =
-        entries.iter().filter(|entry| entry.value != Some(0.0)).cloned().collect();
+/// The sum of a side's terms, without those of what is absent. A solid may form at another
+/// pH than that of the answer.
+fn present(entries: &[Entry], sweep: &Sweep) -> String {
+    let is_there = |entry: &&Entry| match entry.what {
+        TermOf::Constant(Part::Precipitated(k)) => {
+            sweep.found().any(|(_, state)| sweep.formed(state, k) > 0.0)
+        }
+        _ => entry.value != Some(0.0),
+    };
+    let kept: Vec<Entry> = entries.iter().filter(is_there).cloned().collect();
     side(&kept)
 }
 
