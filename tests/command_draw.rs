@@ -108,3 +108,24 @@ fn what_cannot_be_drawn_says_why() {
         assert_eq!(code(&output), wanted, "{arguments:?}");
     }
 }
+
+/// The pictures of the README are what the program draws today; DEVELOPERS.md says how they
+/// are made.
+#[test]
+fn pictures_of_the_readme_are_of_today() {
+    let root = std::path::Path::new(env!("CARGO_MANIFEST_DIR"));
+    for (name, file, more) in [
+        ("buffer.svg", "wash_buffer.lyate", &[][..]),
+        ("rinse.svg", "pickling_rinse.lyate", &["--picture", "titration", "--of", "NaOH"][..]),
+    ] {
+        let file = format!("tests/problems/plant/{file}");
+        let size = ["--width", "640", "--height", "480", "-o", "-"];
+        let arguments: Vec<&str> =
+            ["draw", &file].iter().chain(more).chain(&size).copied().collect();
+        let output = run(root, &arguments);
+        assert_eq!(code(&output), 0, "{}", stderr(&output));
+        let kept = std::fs::read_to_string(root.join("tests/pictures").join(name)).unwrap();
+        let today = stdout(&output);
+        assert!(kept == today, "{name}: make it anew, as DEVELOPERS.md says");
+    }
+}

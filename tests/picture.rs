@@ -86,7 +86,9 @@ fn look_over(chart: &Chart, width: u32, height: u32, name: &str) {
         assert!(told.contains(&line.label.text()), "{name}: {} has no label", line.label.text());
     }
     for (index, near) in layout.near.iter().enumerate() {
-        for &other in near.iter().filter(|other| near.len() < 8 && layout.near[**other].len() < 8) {
+        for &(other, _) in
+            near.iter().filter(|(other, _)| near.len() < 8 && layout.near[*other].len() < 8)
+        {
             let (one, two) = (&layout.strokes[index], &layout.strokes[other]);
             assert_ne!(one.look.dash, two.look.dash, "{name}: {} and {}", one.name, two.name);
         }
@@ -179,6 +181,134 @@ fn shares_add_up(chart: &Chart, name: &str) {
         assert!((0.96..1.01).contains(&sum), "{name}: {sum} at pH {x}");
     }
 }
+
+/// A softener: calcium as 2.9 mmol/L and carbonate as 3.4 mmol/L, of which at high pH nearly
+/// all of the calcium is in calcite. Invented figures; the products are recalled.
+const SOFTENER: &str = "\
+use aqueous
+component Ca^2+, CO3^2-, Mg^2+, Na+, Cl-
+reaction CaCO3(s) <=> Ca^2+ + CO3^2-, pKsp = 8.48, source \"recalled\"
+reaction Mg(OH)2(s) <=> Mg^2+ + 2 OH-, pKsp = 11.15, source \"recalled\"
+add CaCl2   1.7 mmol/L
+add Ca(OH)2 1.2 mmol/L
+add MgCl2   0.8 mmol/L
+add NaHCO3  3.0 mmol/L
+add CO2     0.4 mmol/L
+precipitate CaCO3(s)
+precipitate Mg(OH)2(s)
+";
+
+#[test]
+fn the_solids_are_among_the_shares() {
+    let checked = checked(SOFTENER, None);
+    let stated = problems(&checked)[0];
+    let shares = |of| {
+        let wish = Wish { kind: Some(Kind::Distribution), of: Some(of) };
+        chart("file", stated, wish, &AtomicBool::new(false)).unwrap().unwrap()
+    };
+    let at = |chart: &Chart, name: &str, x: f64| {
+        chart.lines.iter().find(|line| line.label.text() == name).and_then(|line| line.at(x))
+    };
+    for of in ["Ca^2+", "CO3^2-", "Mg^2+"] {
+        shares_add_up(&shares(of), of);
+    }
+    // Carbonate that goes with all of the calcium is 2.9 of 3.4.
+    let carbonate = shares("CO3^2-");
+    assert!((at(&carbonate, "CaCO₃(s)", 12.0).unwrap() - 2.9 / 3.4).abs() < 0.005);
+    assert_eq!(at(&carbonate, "CaCO₃(s)", 5.0), Some(0.0));
+    let calcium = shares("Ca^2+");
+    assert!(at(&calcium, "CaCO₃(s)", 12.0).unwrap() > 0.99);
+    assert!(at(&calcium, "Ca²⁺", 5.0).unwrap() > 0.99);
+    // Magnesium has its own solid, and none of the other.
+    let magnesium = shares("Mg^2+");
+    assert!(at(&magnesium, "Mg(OH)₂(s)", 12.0).unwrap() > 0.99);
+    assert_eq!(at(&magnesium, "CaCO₃(s)", 12.0), None);
+    // The mark of each form is on its line.
+    for chart in [&carbonate, &calcium, &magnesium] {
+        for mark in &chart.marks {
+            let near = |line: &&lyate::report::picture::chart::Line| {
+                line.at(mark.at.0).is_some_and(|y| (y - mark.at.1).abs() < 0.01)
+            };
+            assert!(chart.lines.iter().any(|line| near(&line)), "{:?}", mark.at);
+        }
+    }
+}
+
+/// A ring stands at the total; where a part of it is in a solid, the lines do not meet there.
+#[test]
+fn no_system_point_is_claimed_of_what_precipitates() {
+    let rings = |text: &str| -> Vec<f64> {
+        let chart = only(text, Kind::LogConcentration);
+        let points = chart.marks.iter().filter(|mark| mark.kind == MarkKind::Point);
+        points.map(|mark| mark.at.0).collect()
+    };
+    let dissolved = SOFTENER.replace("precipitate CaCO3(s)\nprecipitate Mg(OH)2(s)\n", "");
+    let (all, some) = (rings(&dissolved), rings(SOFTENER));
+    assert!(all.len() == 2 && (all[0] - 6.3).abs() < 0.1 && (all[1] - 10.2).abs() < 0.1, "{all:?}");
+    assert!(some.len() == 1 && (some[0] - 6.3).abs() < 0.1, "{some:?}");
+}
+
+/// The sides of the proton condition cross at the answer where one of two solids forms.
+#[test]
+fn sides_cross_where_one_of_two_solids_forms() {
+    let checked = checked(SOFTENER, None);
+    let stated = problems(&checked)[0];
+    let solved = stated.outcome.solved().unwrap();
+    assert_eq!(solved.formed.iter().flatten().count(), 1);
+    let chart = picture(stated, Kind::LogConcentration).unwrap();
+    assert!((crossing(&chart).unwrap() - solved.ph()).abs() < 0.004);
+    let mark = chart.marks.iter().find(|mark| mark.kind == MarkKind::Answer).unwrap();
+    for line in chart.lines.iter().filter(|line| line.role != Role::Plain) {
+        assert!((line.at(mark.at.0).unwrap() - mark.at.1).abs() < 0.01);
+    }
+    // The other one forms at a higher pH, and the line holds it there.
+    assert!(chart.notes[0].text().contains("2 precipitated Mg(OH)₂(s)"));
+}
+
+#[test]
+fn cautions_are_told_below() {
+    let notes = |text: &str, kind| -> Vec<String> {
+        only(text, kind).notes.iter().map(|note| note.text()).collect()
+    };
+    let dosed = "use aqueous\ncomponent Na+, Cl-\nadd HCl 20 mmol/L\nhold pH = 7 by NaOH\n\
+                 curve over HCl from 0 to 40 mmol/L\n";
+    let wanted = "Caution: verify doses by a bench test; safety data sheets, local codes and \
+                  licensed practice go first.";
+    for kind in [Kind::LogConcentration, Kind::Titration] {
+        assert_eq!(notes(dosed, kind).last().map(String::as_str), Some(wanted));
+    }
+    let calm = "use aqueous\ncomponent NH3, Cl-\nadd NH4Cl 1 mmol/L\n";
+    assert!(!notes(calm, Kind::LogConcentration).iter().any(|note| note.contains("Caution")));
+}
+
+/// What a crowded picture has no clear place for is told below it.
+#[test]
+fn labels_without_a_place_are_told_below() {
+    let chart = only(CROWDED, Kind::LogConcentration);
+    look_over(&chart, 600, 450, "crowded");
+    let layout = Layout::new(&chart, 600, 450);
+    let told: Vec<String> = layout.texts.iter().map(|text| text.words.text()).collect();
+    let told = told.join(" ");
+    for label in chart.marks.iter().filter_map(|mark| mark.label.as_ref()) {
+        assert!(told.contains(&label.text()), "{} is not told", label.text());
+    }
+    assert!(!layout.samples.is_empty());
+    // However much is told below, most of the height is the plot's.
+    assert!(layout.plot.height() >= 0.59 * 450.0, "{:?}", layout.plot);
+}
+
+/// A cleaning bath. Invented figures.
+const CROWDED: &str = "\
+use aqueous
+use chelates
+use hydrolysis
+component EDTA^4-, Ca^2+, Mg^2+, Cu^2+, Na+, Cl-, CO3^2-
+add Na2H2EDTA 5 mmol/L
+add CaCl2 2 mmol/L
+add MgCl2 1 mmol/L
+add CuCl2 1 mmol/L
+add NaHCO3 3 mmol/L
+";
 
 /// With ideal activities a system point lies at the pKa that is stated.
 #[test]

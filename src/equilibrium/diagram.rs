@@ -22,7 +22,8 @@ use crate::problem::scope::PROTON;
 const STEP: f64 = 0.25;
 /// How often a step may be halved.
 const HALVINGS: u32 = 5;
-/// log10 that a line may stray from the states between which it is drawn.
+/// log10 of a concentration, or share of a component in a solid, that a line may stray from
+/// the states between which it is drawn.
 const STRAIGHT: f64 = 0.002;
 /// Below this log10 concentration nobody looks.
 const FAINT: f64 = -24.0;
@@ -51,7 +52,8 @@ pub struct SystemPoint {
 }
 
 /// Solves a system at pH values between two, close enough together that straight lines
-/// between them are true to 0.002 in log10 of every concentration. A held pH gives way.
+/// between them are true to 0.002 in log10 of every concentration, and in every solid's share.
+/// A held pH gives way.
 ///
 /// # Errors
 /// Only [`Failure::Cancelled`]: where a state is missing, the sweep has a gap.
@@ -147,7 +149,7 @@ impl Walk<'_> {
         let ph = 0.5 * (from.0 + to.0);
         let middle = self.state(ph)?;
         if let (Some(one), Some(state), Some(other)) = (&from.1, &middle, &to.1)
-            && strays(one, state, other) <= STRAIGHT
+            && strays(&self.system, one, state, other) <= STRAIGHT
         {
             states.extend([from, (ph, middle), to]);
             return Ok(());
@@ -160,21 +162,48 @@ impl Walk<'_> {
     }
 }
 
-/// How far a state lies from the straight lines between its neighbours, in log10.
-fn strays(one: &Answer, middle: &Answer, other: &Answer) -> f64 {
+/// How far a state lies from the straight lines between its neighbours, in log10 of
+/// concentrations and in shares of what is in solids.
+fn strays(system: &System, one: &Answer, middle: &Answer, other: &Answer) -> f64 {
     let logs = |answer: &Answer, i: usize| answer.concentrations[i].log10();
-    (0..middle.concentrations.len())
+    let dissolved = (0..middle.concentrations.len())
         .map(|i| (logs(one, i), logs(middle, i), logs(other, i)))
         .filter(|(a, b, c)| a.max(*b).max(*c) > FAINT)
-        .map(|(a, b, c)| (b - 0.5 * (a + c)).abs())
-        .filter(|stray| stray.is_finite())
-        .fold(0.0, f64::max)
+        .map(|(a, b, c)| (b - 0.5 * (a + c)).abs());
+    let solids = system.candidates.iter().enumerate().map(|(k, candidate)| {
+        let amount = |answer: &Answer| formed(system, answer, k);
+        let stray = (amount(middle) - 0.5 * (amount(one) + amount(other))).abs();
+        // Of the protons and electrons, a solid may hold more than there are.
+        let total = |&(j, n): &(usize, Rational64)| system.totals[j] / n.to_f64().unwrap_or(1.0);
+        let totals = candidate.row.iter().map(total).filter(|total| *total > 0.0);
+        stray / totals.fold(f64::INFINITY, f64::min)
+    });
+    dissolved.chain(solids).filter(|stray| stray.is_finite()).fold(0.0, f64::max)
+}
+
+/// mol per litre or kilogram of a solid that may form which is there in a state of a sweep.
+fn formed(system: &System, state: &Answer, candidate: usize) -> f64 {
+    let brought = state.amounts.get(system.fixed.len() + candidate);
+    brought.map_or(0.0, |brought| 0.0 - brought)
 }
 
 impl Sweep {
     /// The states that were found.
     pub fn found(&self) -> impl Iterator<Item = (f64, &Answer)> {
         self.states.iter().filter_map(|(ph, state)| Some((*ph, state.as_ref()?)))
+    }
+
+    /// mol per litre or kilogram of a solid that may form which is there in a state.
+    pub fn formed(&self, state: &Answer, candidate: usize) -> f64 {
+        formed(&self.system, state, candidate)
+    }
+
+    /// Whether some of a component is in a solid.
+    fn is_precipitated(&self, state: &Answer, component: usize) -> bool {
+        let mut candidates = self.system.candidates.iter().enumerate();
+        candidates.any(|(k, candidate)| {
+            candidate.row.iter().any(|&(j, _)| j == component) && self.formed(state, k) > 0.0
+        })
     }
 
     /// The state nearest to a pH.
@@ -184,8 +213,9 @@ impl Sweep {
     }
 }
 
-/// The system points of every component whose total is given and which is, there, mostly in
-/// the two forms that meet. What holds two of the component, or another one, has no part.
+/// The system points of every component whose total is given and which is, there, all
+/// dissolved and mostly in the two forms that meet. What holds two of the component, or
+/// another one, has no part.
 pub fn system_points(sweep: &Sweep) -> Vec<SystemPoint> {
     let Some((_, state)) = sweep.found().next() else { return Vec::new() };
     let mut points = Vec::new();
@@ -197,9 +227,10 @@ pub fn system_points(sweep: &Sweep) -> Vec<SystemPoint> {
         }
         for [acid, base] in succession(&forms(sweep, state, j)) {
             let ph = (acid.height - base.height) / ((acid.protons - base.protons) * LN_10);
-            let both = sweep.near(ph).map_or(0.0, |state| {
-                state.concentrations[acid.row] + state.concentrations[base.row]
-            });
+            let Some(near) = sweep.near(ph).filter(|near| !sweep.is_precipitated(near, j)) else {
+                continue;
+            };
+            let both = near.concentrations[acid.row] + near.concentrations[base.row];
             if both >= 0.5 * total {
                 let (acid, base) = (acid.row, base.row);
                 points.push(SystemPoint { component: j, acid, base, ph, log_total: total.log10() });

@@ -147,12 +147,15 @@ impl Field {
         for (value, words) in ticks(&chart.x, (self.width / 6).max(3)) {
             let Some(column) = self.column(chart, value) else { continue };
             edge[column] = '┬';
-            let start = column.saturating_sub(words.chars().count() / 2);
-            if start >= free && start + words.chars().count() <= self.width {
+            let wide = words.chars().count();
+            // The last may stand one column further out than the edge.
+            let most = (self.width + 1).saturating_sub(wide);
+            let start = column.saturating_sub(wide / 2).min(most);
+            if start >= free {
                 for (offset, character) in words.chars().enumerate() {
                     numbers[start + offset] = character;
                 }
-                free = start + words.chars().count() + 1;
+                free = start + wide + 1;
             }
         }
         let edge: String = edge.into_iter().collect();

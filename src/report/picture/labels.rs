@@ -3,7 +3,8 @@
 //! Every label has many places to choose from, along its line and, with a leader, further
 //! off. A place costs what it hides and how easily it is taken for another line's. Labels
 //! choose in turn, the ones with the least choice first, and then again a few times, each
-//! given what the others have. A label for which no place is left gets none.
+//! given what the others have. A label for which no place is left, or none that is clear
+//! enough to be read at once, gets none.
 
 use super::geometry::{Frame, Point, along};
 
@@ -52,13 +53,17 @@ const UNCLEAR: f64 = 14.0;
 const LEADER: f64 = 26.0;
 const MERGED: f64 = 10.0;
 const MEETS: f64 = 1e5;
+/// A label that would cost more is told elsewhere: a line's where it hides another line, a
+/// mark's, which lies among lines anyway, where it hides two.
+const TOO_MUCH: f64 = 120.0;
+const TOO_MUCH_OF_MARK: f64 = 190.0;
 /// Places without a leader that leave enough choice.
 const ENOUGH: usize = 12;
 const KEPT: usize = 160;
 const TURNS: u32 = 16;
 const ROUNDS: usize = 8;
 
-/// A place for each label; none where it would meet another.
+/// A place for each label; none where it would meet another or hide too much.
 pub fn place(ground: &Ground, wants: &[Want]) -> Vec<Option<Spot>> {
     let raster = Raster::new(ground);
     let choices: Vec<Vec<(f64, Spot)>> =
@@ -67,29 +72,29 @@ pub fn place(ground: &Ground, wants: &[Want]) -> Vec<Option<Spot>> {
     let easy = |label: &usize| choices[*label].iter().filter(|(cost, _)| *cost < 12.0).count();
     order.sort_by_key(easy);
     let mut chosen: Vec<Option<Spot>> = vec![None; wants.len()];
+    let best = |label: usize, chosen: &[Option<Spot>]| {
+        let all = choices[label].iter();
+        all.map(|(cost, spot)| (cost + among(spot, label, chosen), *spot))
+            .min_by(|a, b| a.0.total_cmp(&b.0))
+    };
     for _ in 0..ROUNDS {
         let before = chosen.clone();
         for &label in &order {
-            let best = choices[label]
-                .iter()
-                .map(|(cost, spot)| (cost + among(spot, label, &chosen), spot))
-                .min_by(|a, b| a.0.total_cmp(&b.0));
-            chosen[label] = best.map(|(_, spot)| *spot);
+            chosen[label] = best(label, &chosen).map(|(_, spot)| spot);
         }
         if chosen == before {
             break;
         }
     }
-    // The ones that chose last give way.
-    for at in 0..order.len() {
-        let label = order[at];
-        let met = |other: &usize| match (chosen[label], chosen[*other]) {
-            (Some(one), Some(two)) => one.frame.meets(&two.frame),
-            _ => false,
+    // The ones that chose last give way, and leave their room to the others.
+    for &label in order.iter().rev() {
+        chosen[label] = None;
+        let most = match wants[label].tie {
+            Tie::Line(_) => TOO_MUCH,
+            Tie::Mark(..) => TOO_MUCH_OF_MARK,
         };
-        if order[..at].iter().any(met) {
-            chosen[label] = None;
-        }
+        let found = best(label, &chosen).filter(|(cost, _)| *cost < most);
+        chosen[label] = found.map(|(_, spot)| spot);
     }
     chosen
 }

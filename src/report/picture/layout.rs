@@ -1,7 +1,7 @@
 //! A chart on a page: every stroke, mark and text with its place in pixels.
 
 use super::chart::{Axis, Chart, MarkKind, Place, Role};
-use super::foot::Foot;
+use super::foot::{Foot, Keyed};
 use super::geometry::{Frame, Point};
 use super::labels::{Ground, Tie, Want, place};
 use super::theme::{Look, looks};
@@ -20,6 +20,10 @@ const TICK: f64 = 6.0;
 pub(super) const NEAR: f64 = 90.0;
 const RADIUS: f64 = 3.6;
 const LEAST_PLOT: f64 = 120.0;
+/// Of the height that is asked for, at least so much is the plot's, whatever is told below.
+const PLOT_SHARE: f64 = 0.6;
+/// Numbers along an axis, at most, however long it is.
+const NUMBERS: (usize, usize) = (15, 11);
 /// Of a text's line, over its size.
 const LEADING: f64 = 1.3;
 
@@ -67,8 +71,8 @@ pub struct Layout {
     pub leaders: Vec<(Point, Point)>,
     pub marks: Vec<(Point, f64, MarkKind)>,
     pub texts: Vec<Text>,
-    /// Of each plain stroke, those that come near it.
-    pub near: Vec<Vec<usize>>,
+    /// Of each plain stroke, those that come near it, and at how many places.
+    pub near: Vec<Vec<(usize, u32)>>,
 }
 
 impl Kind {
@@ -100,22 +104,23 @@ impl Layout {
     pub fn new(chart: &Chart, width: u32, height: u32) -> Layout {
         let width = f64::from(width.clamp(LEAST.0, MOST));
         let height = f64::from(height.clamp(LEAST.1, MOST));
-        let mut keyed: Vec<usize> = Vec::new();
+        let mut keyed = Keyed::default();
         loop {
             let (layout, unplaced) = set(chart, width, height, &keyed);
-            if unplaced.is_empty() {
+            if unplaced.lines.is_empty() && unplaced.marks.is_empty() {
                 return layout;
             }
-            // Lines that find no place for their label are told in a key below. That takes
-            // room from the plot, which may cost another its label.
-            keyed.extend(unplaced);
-            keyed.sort_unstable();
+            // What finds no place for its label is told in a key below. That takes room from
+            // the plot, which may cost another its label.
+            keyed.lines.extend(unplaced.lines);
+            keyed.lines.sort_unstable();
+            keyed.marks.extend(unplaced.marks);
         }
     }
 }
 
-/// The layout where these lines are told below, and the others that find no label.
-fn set(chart: &Chart, width: f64, height: f64, keyed: &[usize]) -> (Layout, Vec<usize>) {
+/// The layout where these labels are told below, and the others that find no place.
+fn set(chart: &Chart, width: f64, height: f64, keyed: &Keyed) -> (Layout, Keyed) {
     let mut layout = Layout {
         width,
         height,
@@ -132,9 +137,10 @@ fn set(chart: &Chart, width: f64, height: f64, keyed: &[usize]) -> (Layout, Vec<
     let top = layout.head(chart);
     let foot = Foot::new(chart, keyed, width - 2.0 * PAD);
     let below = TICK + Kind::Tick.height() + 4.0 + Kind::AxisTitle.height();
-    let bottom = (height - PAD - foot.height - below).max(top + LEAST_PLOT);
+    let least = top + LEAST_PLOT.max(PLOT_SHARE * height);
+    let bottom = (height - PAD - foot.height - below).max(least);
     layout.height = bottom + below + foot.height + PAD;
-    let numbers = ticks(&chart.y, ((bottom - top) / 32.0) as usize);
+    let numbers = ticks(&chart.y, (((bottom - top) / 32.0) as usize).min(NUMBERS.1));
     let widest = numbers.iter().map(|(_, words)| Kind::Tick.width(&Words::plain(words)));
     let left = PAD + Kind::AxisTitle.height() + 6.0 + widest.fold(0.0, f64::max) + TICK;
     layout.plot = Frame { left, top, right: width - PAD - 8.0, bottom };
@@ -184,7 +190,7 @@ impl Layout {
             let left = plot.left - TICK - Kind::Tick.width(&words);
             self.write(words, Kind::Tick, left, y - 0.5 * Kind::Tick.height());
         }
-        for (value, words) in ticks(&chart.x, (plot.width() / 40.0) as usize) {
+        for (value, words) in ticks(&chart.x, ((plot.width() / 40.0) as usize).min(NUMBERS.0)) {
             let x = self.at(chart, (value, chart.y.from)).x;
             self.grid.push((Point { x, y: plot.top }, Point { x, y: plot.bottom }));
             let words = Words::plain(&words);
@@ -214,7 +220,9 @@ impl Layout {
             }
             self.rules.push((Point { x, y: plot.top }, Point { x, y: plot.bottom }));
             let wide = Kind::Tick.width(&rule.label);
-            let left = (x - 0.5 * wide).min(self.width - PAD - wide).max(last + 8.0);
+            // Clear of the numbers beside the plot.
+            let left = (x - 0.5 * wide).max(plot.left);
+            let left = left.min(self.width - PAD - wide).max(last + 8.0);
             last = left + wide;
             if last <= self.width - 2.0 {
                 // Clear of a mark on the edge.
@@ -263,8 +271,8 @@ impl Layout {
         }
     }
 
-    /// Places the labels; the lines that find none.
-    fn labels(&mut self, chart: &Chart, keyed: &[usize]) -> Vec<usize> {
+    /// Places the labels, but for those told below; the ones that find no place.
+    fn labels(&mut self, chart: &Chart, keyed: &Keyed) -> Keyed {
         let mut lines: Vec<Vec<Vec<Point>>> =
             self.strokes.iter().map(|stroke| stroke.pieces.clone()).collect();
         // A label does not lie on a rule either.
@@ -274,50 +282,51 @@ impl Layout {
             .iter()
             .map(|(at, radius, _)| Frame::round(*at, 2.0 * radius, 2.0 * radius))
             .collect();
-        let mut wanted: Vec<(&Words, Tie, Option<usize>)> = Vec::new();
+        let mut wanted: Vec<(&Words, Tie, Kind, usize)> = Vec::new();
         for (index, line) in chart.lines.iter().enumerate() {
             // The axis says what a line that is alone shows.
-            if !keyed.contains(&index) && chart.lines.len() > 1 {
-                wanted.push((&line.label, Tie::Line(index), Some(index)));
+            if !keyed.lines.contains(&index) && chart.lines.len() > 1 {
+                wanted.push((&line.label, Tie::Line(index), Kind::Label, index));
             }
         }
-        for mark in &chart.marks {
-            if let Some(label) = &mark.label
-                && chart.x.holds(mark.at.0)
-                && chart.y.holds(mark.at.1)
+        for (index, mark) in chart.marks.iter().enumerate() {
+            let inside = chart.x.holds(mark.at.0) && chart.y.holds(mark.at.1);
+            if let Some(label) = mark.label.as_ref().filter(|_| inside)
+                && !keyed.marks.contains(&index)
             {
-                wanted.push((label, Tie::Mark(self.at(chart, mark.at), RADIUS), None));
+                let tie = Tie::Mark(self.at(chart, mark.at), RADIUS);
+                wanted.push((label, tie, Kind::MarkLabel, index));
             }
         }
         let wants: Vec<Want> = wanted
             .iter()
-            .map(|(label, tie, line)| {
-                let kind = if line.is_some() { Kind::Label } else { Kind::MarkLabel };
-                Want { width: kind.width(label) + 2.0, height: 1.15 * kind.size(), tie: *tie }
+            .map(|(label, tie, kind, _)| Want {
+                width: kind.width(label) + 2.0,
+                height: 1.15 * kind.size(),
+                tie: *tie,
             })
             .collect();
         let spots = place(&Ground { plot: self.plot, lines: &lines, taken: &taken }, &wants);
-        let mut unplaced = Vec::new();
-        for ((label, _, line), spot) in wanted.into_iter().zip(spots) {
-            match (spot, line) {
-                (Some(spot), line) => {
+        let mut unplaced = Keyed::default();
+        for ((label, tie, kind, index), spot) in wanted.into_iter().zip(spots) {
+            match (spot, tie) {
+                (Some(spot), _) => {
                     self.leaders.extend(spot.leader);
-                    let kind = if line.is_some() { Kind::Label } else { Kind::MarkLabel };
                     let (words, frame) = (label.clone(), spot.frame);
                     self.texts.push(Text { words, kind, frame, turned: false });
                 }
-                (None, Some(line)) => unplaced.push(line),
-                // A mark may go without.
-                (None, None) => {}
+                (None, Tie::Line(_)) => unplaced.lines.push(index),
+                (None, Tie::Mark(..)) => unplaced.marks.push(index),
             }
         }
         unplaced
     }
 }
 
-/// For each line, the others that come next above or below it within [`NEAR`] somewhere.
-fn neighbours(plot: &Frame, lines: &[&[Vec<Point>]]) -> Vec<Vec<usize>> {
-    let mut near: Vec<Vec<usize>> = vec![Vec::new(); lines.len()];
+/// For each line, the others that come next above or below it within [`NEAR`] somewhere, and
+/// how often.
+fn neighbours(plot: &Frame, lines: &[&[Vec<Point>]]) -> Vec<Vec<(usize, u32)>> {
+    let mut near: Vec<Vec<(usize, u32)>> = vec![Vec::new(); lines.len()];
     let mut x = plot.left + 1.0;
     while x < plot.right {
         let mut heights: Vec<(f64, usize)> = lines
@@ -330,8 +339,9 @@ fn neighbours(plot: &Frame, lines: &[&[Vec<Point>]]) -> Vec<Vec<usize>> {
             let [(above, one), (below, other)] = [pair[0], pair[1]];
             if below - above <= NEAR && one != other {
                 for (one, other) in [(one, other), (other, one)] {
-                    if !near[one].contains(&other) {
-                        near[one].push(other);
+                    match near[one].iter_mut().find(|(index, _)| *index == other) {
+                        Some((_, length)) => *length += 1,
+                        None => near[one].push((other, 1)),
                     }
                 }
             }

@@ -6,7 +6,9 @@ use std::sync::atomic::AtomicBool;
 use super::chart::{Axis, Chart, Line, Mark, MarkKind, Place, Role, Rule};
 use super::subject::Subject;
 use super::words::{Level, Words};
+use crate::balance::Part;
 use crate::balance::recipe::Recipe;
+use crate::balance::written::TermOf;
 use crate::chemistry::activity::ActivityKind;
 use crate::equilibrium::diagram::{Sweep, sides, system_points};
 use crate::equilibrium::system::Answer;
@@ -22,7 +24,10 @@ pub fn chart(subject: &Subject, cancel: &AtomicBool) -> Option<Chart> {
     let sweep = subject.sweep(cancel)?;
     let ledger = Ledger::new(subject.stated.outcome);
     let condition = (!subject.ph_is_held()).then(|| ledger.protons()).flatten();
-    let recipe = Recipe::of(problem, Some(&solved.answer.amounts));
+    // As in the sweep, each solid that may form has its place behind the held values.
+    let brought = solved.brought();
+    let recipe = Recipe::of(problem, Some(&brought));
+    let answer = Answer { amounts: brought, ..solved.answer.clone() };
     let stoichiometry = &problem.scope.stoichiometry;
     let balance = condition.as_ref().map(|(_, condition)| &condition.balance);
 
@@ -39,14 +44,14 @@ pub fn chart(subject: &Subject, cancel: &AtomicBool) -> Option<Chart> {
             let value = |state: &_| at(state, n);
             lines.push(traced(&sweep, Words::plain(label), Role::Main(n), value));
         }
-        let level = at(&solved.answer, 0).log10();
+        let level = at(&answer, 0).log10();
         level.is_finite().then_some((solved.ph(), level))
     });
     if let (Some((sheet, _)), Some(_)) = (&condition, crossing) {
         notes.push(Words::told(&format!(
             "Proton condition: {} (left side) = {} (right side).",
-            present(&sheet.left),
-            present(&sheet.right),
+            present(&sheet.left, &sweep),
+            present(&sheet.right, &sweep),
         )));
     }
     let points = system_points(&sweep);
@@ -92,10 +97,16 @@ fn traced(sweep: &Sweep, label: Words, role: Role, value: impl Fn(&Answer) -> f6
     Line::through(label, role, sweep.states.iter().map(place))
 }
 
-/// The sum of a side's terms, without those of what is absent.
-fn present(entries: &[Entry]) -> String {
-    let kept: Vec<Entry> =
-        entries.iter().filter(|entry| entry.value != Some(0.0)).cloned().collect();
+/// The sum of a side's terms, without those of what is absent. A solid may form at another
+/// pH than that of the answer.
+fn present(entries: &[Entry], sweep: &Sweep) -> String {
+    let is_there = |entry: &&Entry| match entry.what {
+        TermOf::Constant(Part::Precipitated(k)) => {
+            sweep.found().any(|(_, state)| sweep.formed(state, k) > 0.0)
+        }
+        _ => entry.value != Some(0.0),
+    };
+    let kept: Vec<Entry> = entries.iter().filter(is_there).cloned().collect();
     side(&kept)
 }
 

@@ -23,11 +23,16 @@ use std::sync::atomic::AtomicBool;
 
 use super::source::Stated;
 use crate::problem::curve::Sweep;
+use crate::rules::finding::Severity;
 pub use character::character;
 use chart::Chart;
 use layout::Layout;
 use subject::Subject;
 use theme::Theme;
+use words::Words;
+
+/// The rule that speaks of a dose of strong acid or base.
+const STRONG_DOSED: &str = "strong-acid-or-base-dosed";
 
 /// What a picture shows.
 #[derive(Clone, Copy, Debug, PartialEq, Eq, serde::Deserialize, serde::Serialize)]
@@ -66,14 +71,32 @@ pub fn chart(
         };
         return Some(Err(format!("{what} not solved, so there is nothing to draw")));
     };
-    match wish.kind.unwrap_or_else(|| usual(&subject)) {
+    let chart = match wish.kind.unwrap_or_else(|| usual(&subject)) {
         Kind::LogConcentration => log_concentration::chart(&subject, cancel).map(Ok),
         Kind::Distribution => distribution::chart(&subject, wish.of, cancel),
         Kind::Titration => titration::chart(&subject, wish.of, cancel),
         Kind::BufferCapacity => titration::buffer_capacity(&subject, cancel),
         Kind::Saturation => saturation::chart(&subject, wish.of, cancel),
         Kind::Quantity => quantity::chart(&subject, wish.of, cancel),
-    }
+    };
+    chart.map(|chart| {
+        chart.map(|mut chart| {
+            chart.notes.extend(caution(&subject));
+            chart
+        })
+    })
+}
+
+/// What a picture says of the cautions of its outcome. What each is about, `lyate check`
+/// tells; a picture goes where that is not seen.
+fn caution(subject: &Subject) -> Option<Words> {
+    let findings = &subject.stated.outcome.findings;
+    let mut cautions = findings.iter().filter(|finding| finding.severity == Severity::Caution);
+    let some = cautions.clone().next().is_some();
+    let dosed = cautions.any(|finding| finding.rule == STRONG_DOSED);
+    let check = if dosed { "verify doses by a bench test" } else { "verify by measured samples" };
+    let first = "safety data sheets, local codes and licensed practice go first";
+    some.then(|| Words::plain(&format!("Caution: {check}; {first}.")))
 }
 
 /// What is drawn where nothing is asked for: the pH along a curve of the file that is over

@@ -8,7 +8,7 @@ use super::subject::Subject;
 use super::ticks::round_ends;
 use super::titration::plain;
 use super::words::Words;
-use crate::problem::model::{Expectation, Limit, Sought};
+use crate::problem::model::{Expectation, Limit, Problem, Sought};
 
 /// None where the work was cancelled.
 ///
@@ -47,13 +47,8 @@ pub fn chart(
     };
     let places = value(chosen).map(|place| place.map(|(x, y)| (x, y / factor)));
     let line = Line::through(Words::told(&chosen.words), Role::Main(0), places);
-    let levels: Vec<f64> = problem
-        .expectations
-        .iter()
-        .filter(|expectation| expectation.words == chosen.words)
-        .flat_map(|expectation| ends(expectation.limit))
-        .map(|level| level / factor)
-        .collect();
+    let alike = |expectation: &Expectation| expectation.words == chosen.words;
+    let levels: Vec<f64> = limits(problem, alike).into_iter().map(|level| level / factor).collect();
     let here = subject.solved.value(problem, chosen.sought).map(|value| value / factor);
     let answer = run.answer(subject, here);
     // What is an amount is seen best from zero.
@@ -65,9 +60,23 @@ pub fn chart(
     let title = Words::told(&chosen.words).then(&format!("{comma}{words}"), Words::default());
     let y = Axis::new(title, low, high);
     let mut chart = plain(subject, &run, y, vec![line], answer.into_iter().collect());
-    chart.levels = levels;
-    chart.notes.push(Words::plain("Level lines: what the file expects."));
+    draw_limits(&mut chart, levels);
     Some(Ok(chart))
+}
+
+/// The ends of what is expected, in the units of the problem.
+pub fn limits(problem: &Problem, of: impl Fn(&Expectation) -> bool) -> Vec<f64> {
+    let expected = problem.expectations.iter().filter(|expectation| of(expectation));
+    expected.flat_map(|expectation| ends(expectation.limit)).collect()
+}
+
+/// Limits as level lines, those that the picture reaches.
+pub fn draw_limits(chart: &mut Chart, mut levels: Vec<f64>) {
+    levels.retain(|level| chart.y.holds(*level));
+    if !levels.is_empty() {
+        chart.levels = levels;
+        chart.notes.push(Words::plain("Level lines: what the file expects."));
+    }
 }
 
 fn chosen<'a>(all: &'a [Expectation], of: Option<&str>) -> Result<&'a Expectation, String> {

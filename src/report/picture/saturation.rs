@@ -61,8 +61,15 @@ pub fn chart(
         .filter_map(|&s| run.answer(subject, index(problem, subject.solved, s)))
         .collect();
     let values = lines.iter().flat_map(|line| line.pieces.iter().flatten()).map(|place| place.1);
-    let (low, high) = round_ends(values.map(|value| value.max(LEAST)).chain([0.0]));
-    let y = Axis::new(Words::plain("saturation index"), low, high);
+    // With room on either side of saturation, where the lines of what forms run.
+    let (low, high) = round_ends(values.map(|value| value.max(LEAST)).chain([-0.5, 0.5]));
+    let title = Words::plain("saturation index");
+    // A line that is alone has no label.
+    let title = match chosen.as_slice() {
+        [s] => title.then(" of ", Words::formula(name(s))),
+        _ => title,
+    };
+    let y = Axis::new(title, low, high);
     let mut chart = plain(subject, &run, y, lines, marks);
     chart.levels.push(0.0);
     chart.notes.push(Words::plain("Above zero a solid can form; at zero water and solid agree."));

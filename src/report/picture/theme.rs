@@ -75,19 +75,22 @@ pub struct Look {
     pub heavy: bool,
 }
 
-/// Looks for lines, given which of them come near each other: neighbours differ in dash
-/// where the dashes go round, and in hue where the hues do.
-pub fn looks(heavy: &[Option<usize>], near: &[Vec<usize>]) -> Vec<Look> {
+/// Looks for lines, given which of them come near each other and how long: neighbours differ
+/// in dash where the dashes go round, and in hue where the hues do, the closest ones first.
+pub fn looks(heavy: &[Option<usize>], near: &[Vec<(usize, u32)>]) -> Vec<Look> {
     let mut chosen: Vec<Option<(usize, usize)>> = vec![None; heavy.len()];
     for line in 0..heavy.len() {
         if heavy[line].is_some() {
             continue;
         }
-        let round: Vec<(usize, usize)> =
-            near[line].iter().filter_map(|&other| chosen[other]).collect();
-        let same = |dash: usize, hue: usize| {
-            let dashes = round.iter().filter(|near| near.0 == dash).count();
-            (dashes, round.iter().filter(|near| near.1 == hue).count())
+        let round: Vec<((usize, usize), u32)> = near[line]
+            .iter()
+            .filter_map(|&(other, length)| Some((chosen[other]?, length)))
+            .collect();
+        let same = |dash: usize, hue: usize| -> (usize, u32) {
+            let dashes = round.iter().filter(|(near, _)| near.0 == dash).count();
+            let hues = round.iter().filter(|(near, _)| near.1 == hue);
+            (dashes, hues.map(|(_, length)| length).sum())
         };
         let uses = |dash: usize, hue: usize| {
             let all = chosen.iter().flatten();

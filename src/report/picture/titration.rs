@@ -4,10 +4,12 @@
 use std::sync::atomic::AtomicBool;
 
 use super::chart::{Axis, Chart, Line, Role};
+use super::quantity::{draw_limits, limits};
 use super::run::{Run, any, dosed, unit};
 use super::subject::Subject;
 use super::ticks::round_ends;
 use super::words::Words;
+use crate::problem::model::{Expectation, Limit, Sought};
 
 /// None where the work was cancelled.
 ///
@@ -29,7 +31,13 @@ pub fn chart(
     let values = line.pieces.iter().flatten().map(|place| place.1);
     let (low, high) = round_ends(values.map(|ph| ph.clamp(-2.0, 16.0)));
     let y = Axis::new(Words::plain("pH"), low, high);
-    Some(Ok(plain(subject, &run, y, vec![line], answer.into_iter().collect())))
+    let mut chart = plain(subject, &run, y, vec![line], answer.into_iter().collect());
+    // A single value that is expected is that of the answer, not a limit.
+    let of_ph = |expectation: &Expectation| {
+        expectation.sought == Sought::Ph && !matches!(expectation.limit, Limit::Within { .. })
+    };
+    draw_limits(&mut chart, limits(subject.problem(), of_ph));
+    Some(Ok(chart))
 }
 
 /// The same for the buffer capacity.
