@@ -50,7 +50,7 @@ pub fn verdict(outcome: &Outcome, expectation: &Expectation) -> Verdict {
 
 /// Of the value, or of one unit of what is a logarithm: a smaller uncertainty is what rounding
 /// leaves of none, and no reader's concern.
-const NEGLIGIBLE: f64 = 1e-6;
+const NEGLIGIBLE: f64 = 1e-5;
 
 /// Whether a quantity is uncertain by enough to be told.
 pub fn is_told(sought: Sought, budget: &Budget) -> bool {
