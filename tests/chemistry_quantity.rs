@@ -231,9 +231,14 @@ fn temperatures_pressures_and_energies() {
 /// such as 125 g/L as Cl2 for trade hypochlorite of 12.5 %, 1.763 mol/L.
 #[test]
 fn available_chlorine_counts_one_molecule_for_each_active_atom() {
-    for (species, count) in [("OCl-", 1.0), ("NaOCl", 1.0), ("Ca(OCl)2", 2.0), ("NH2Cl", 1.0),
-        ("NHCl2", 2.0), ("Cl2", 1.0)]
-    {
+    for (species, count) in [
+        ("OCl-", 1.0),
+        ("NaOCl", 1.0),
+        ("Ca(OCl)2", 2.0),
+        ("NH2Cl", 1.0),
+        ("NHCl2", 2.0),
+        ("Cl2", 1.0),
+    ] {
         let found = amount(70.906, "g/L", Some("Cl2"), species).unwrap().value;
         assert!((found * count - 1.0).abs() < 1e-4, "{species}: {found}");
     }

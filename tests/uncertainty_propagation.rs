@@ -362,9 +362,12 @@ fn the_strength_of_a_stock_counts_by_what_it_brings() {
         let by = 1e-3 * value;
         let at = |value: f64| moles(&format!("{before}{value}{after}"));
         let wanted = (at(value + by) - at(value - by)).abs() / 2.0;
-        let text = format!("component Na+, Cl-\nadd {before}{value} ± {by}{after}\nexpect pH > 7\n");
+        let text =
+            format!("component Na+, Cl-\nadd {before}{value} ± {by}{after}\nexpect pH > 7\n");
         let case = Case::new(&text);
-        let [uncertain] = &case.problem.uncertain[..] else { panic!("{:?}", case.problem.uncertain) };
+        let [uncertain] = &case.problem.uncertain[..] else {
+            panic!("{:?}", case.problem.uncertain)
+        };
         let found = uncertain.standard_uncertainty;
         assert!((found - wanted).abs() < 1e-4 * wanted, "{text}{found} for {wanted}");
     }

@@ -83,9 +83,8 @@ impl StockRead<'_> {
         let moles = |times: f64, density: Option<f64>| {
             self.moles(formula, counted, scaled(self.strength, times), density)
         };
-        let slope = |density: Option<f64>| {
-            Some(moles(1.0 + STEP, density)? - moles(1.0 - STEP, density)?)
-        };
+        let slope =
+            |density: Option<f64>| Some(moles(1.0 + STEP, density)? - moles(1.0 - STEP, density)?);
         // At an end of the table the density stays as it is.
         Some(slope(own).or_else(|| slope(self.stock.density))? / (2.0 * STEP))
     }
