@@ -226,3 +226,28 @@ fn temperatures_pressures_and_energies() {
         })
     );
 }
+
+/// Available chlorine is what oxidises as much, 70.906 g to the hypochlorite: common practice,
+/// such as 125 g/L as Cl2 for trade hypochlorite of 12.5 %, 1.763 mol/L.
+#[test]
+fn available_chlorine_counts_one_molecule_for_each_active_atom() {
+    for (species, count) in [
+        ("OCl-", 1.0),
+        ("NaOCl", 1.0),
+        ("Ca(OCl)2", 2.0),
+        ("NH2Cl", 1.0),
+        ("NHCl2", 2.0),
+        ("Cl2", 1.0),
+    ] {
+        let found = amount(70.906, "g/L", Some("Cl2"), species).unwrap().value;
+        assert!((found * count - 1.0).abs() < 1e-4, "{species}: {found}");
+    }
+    let trade = amount(125.0, "g/L", Some("Cl2"), "NaOCl").unwrap().value;
+    assert!((trade - 1.763).abs() < 5e-4, "{trade}");
+    // Atoms are counted in all else.
+    for species in ["NH4Cl", "Cl-", "ClO2-", "Cl2CHCOO-"] {
+        let found = amount(35.453, "g/L", Some("Cl2"), species).unwrap().value;
+        let atoms = if species == "Cl2CHCOO-" { 2.0 } else { 1.0 };
+        assert!((found * atoms - 1.0).abs() < 1e-4, "{species}: {found}");
+    }
+}

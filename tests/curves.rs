@@ -21,7 +21,7 @@ use lyate::report::editor::hover;
 use lyate::rules::check::{Checked, Surroundings, check};
 use lyate::text::tree::Document;
 
-const GO_ON: AtomicBool = AtomicBool::new(false);
+static GO_ON: AtomicBool = AtomicBool::new(false);
 
 /// Whether two answers are one state: each unknown to a billionth, each amount to a billionth
 /// of the largest or of itself.
@@ -155,7 +155,10 @@ fn a_walk_through_random_waters_is_what_cold_starts_find() {
         for step in 0..30 {
             let mut next: System = system.clone();
             match seed % 3 {
-                0 => next.fixed[0].ln_value = -(2.0 + 0.35 * f64::from(step)) * 2.302585,
+                0 => {
+                    next.fixed[0].ln_value =
+                        -(2.0 + 0.35 * f64::from(step)) * std::f64::consts::LN_10
+                }
                 1 => next.totals[moved] = size * f64::from(step) / 15.0,
                 _ => next.totals[0] += 0.1 * size * (f64::from(step) - 15.0),
             }

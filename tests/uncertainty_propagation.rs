@@ -342,3 +342,33 @@ fn uncertainties_are_those_of_an_independent_program() {
     }
     assert_eq!(compared, 7);
 }
+
+/// A stock's `±` against the same file with another strength or density written in it: the
+/// density of the table goes along with the strength.
+#[test]
+fn the_strength_of_a_stock_counts_by_what_it_brings() {
+    let moles = |line: &str| {
+        let text = format!("component Na+, Cl-\nadd {line}\nexpect pH > 7\n");
+        Case::new(&text).problem.reagents[0].amount
+    };
+    for (before, value, after) in [
+        ("1 mL/L of ", 30.0, " % NaOH"),
+        ("80 mg/L of ", 95.0, " % NaOH"),
+        ("2 mL/L of ", 10.0, " mol/L NaOH"),
+        ("80 mg/L of ", 10.0, " mol/L NaOH, density = 1.3 kg/L"),
+        ("1 mL/L of 30 % NaOH, density = ", 1.32, " kg/L"),
+        ("90 mg/L of 10 mol/L NaOH, density = ", 1.32, " kg/L"),
+    ] {
+        let by = 1e-3 * value;
+        let at = |value: f64| moles(&format!("{before}{value}{after}"));
+        let wanted = (at(value + by) - at(value - by)).abs() / 2.0;
+        let text =
+            format!("component Na+, Cl-\nadd {before}{value} ± {by}{after}\nexpect pH > 7\n");
+        let case = Case::new(&text);
+        let [uncertain] = &case.problem.uncertain[..] else {
+            panic!("{:?}", case.problem.uncertain)
+        };
+        let found = uncertain.standard_uncertainty;
+        assert!((found - wanted).abs() < 1e-4 * wanted, "{text}{found} for {wanted}");
+    }
+}

@@ -219,8 +219,33 @@ fn equivalents(formula: &Formula) -> Result<f64, ConversionProblem> {
 fn basis_per_mole(basis: &Basis, formula: &Formula) -> Result<f64, ConversionProblem> {
     match basis {
         Basis::CalciumCarbonate => Ok(equivalents(formula)? / 2.0),
-        Basis::Counted(counted) => count_of(counted, formula),
+        Basis::Counted(counted) => match available_chlorine(counted, formula) {
+            Some(count) => Ok(count),
+            None => count_of(counted, formula),
+        },
     }
+}
+
+/// Moles of chlorine that oxidise as much as one of a hypochlorite or a chloramine does, where it
+/// is counted `as Cl2`: one for each of its chlorine atoms, as the trade reports available
+/// chlorine (common practice), and not the half that the atoms alone would make.
+fn available_chlorine(counted: &Formula, species: &Formula) -> Option<f64> {
+    if counted.name != "Cl2" || species.elements().is_none() {
+        return None;
+    }
+    let count = |symbol: &str| {
+        let element = Element::from_symbol(symbol)?;
+        species.element_count(element).unwrap_or_default().to_f64()
+    };
+    let chlorine = count("Cl").filter(|&n| n > 0.0)?;
+    let (oxygen, nitrogen, hydrogen) = (count("O")?, count("N")?, count("H")?);
+    if count("C")? > 0.0 {
+        return None;
+    }
+    let hypochlorite = nitrogen == 0.0 && oxygen == chlorine;
+    // Ammonium chloride has one hydrogen too many.
+    let chloramine = nitrogen == 1.0 && oxygen == 0.0 && hydrogen + chlorine <= 4.0;
+    (hypochlorite || chloramine).then_some(chlorine)
 }
 
 /// How many of a counted formula are in one of a species. Hydrogen and oxygen count

@@ -15,6 +15,7 @@ use super::resolve::differences;
 use super::scope::PROTON;
 use super::sparse::{Row, add_scaled};
 use super::split::{Split, split};
+use super::strength::StockRead;
 use super::target;
 use super::uncertain::Carries;
 use crate::chemistry::formula::Formula;
@@ -128,10 +129,11 @@ fn add(
     (name, amount, strength, giving): Put,
 ) -> Option<()> {
     let formula = neutral(case, written, name, giving.is_some())?;
-    let stock = match strength {
+    let read = match strength {
         Some(strength) => Some(case.stock(written, strength, &formula)?),
         None => None,
     };
+    let (stock, stated) = read.unzip();
     let read = case.dose(written, amount, &formula, stock.as_deref())?;
     if !case.not_negative(written, amount) {
         return None;
@@ -143,6 +145,11 @@ fn add(
     let words = format!("add {}", formula.name);
     let carries = (Input::Reagent(index), Carries::Positive);
     case.keep_uncertainty(problem, (written, amount), carries, &read, words);
+    if let (Some(strength), Some(stated), Some(stock)) = (strength, stated, &stock) {
+        let stock = StockRead { written: strength, strength: stated, stock };
+        let put = (written, amount, formula.as_ref());
+        case.keep_stock_uncertainty(problem, put, &stock, (index, read.value));
+    }
     if let Some(known) = known.and_then(|known| problem.reagents.get_mut(known)) {
         known.amount += read.value;
         known.brings += brings;

@@ -180,6 +180,7 @@ fn shares(case: &mut CaseResolver, written: &Written, parts: &[BlendPart]) -> Op
     let mut shares = Vec::with_capacity(parts.len());
     for part in parts {
         case.number(written, &part.share, Expected::Share)?;
+        case.resolver.carries_nothing(written, &part.share);
         // As written: 70 % over 100 % is 0.7 to the last digit.
         let share = part.share.number.value;
         if share < 0.0 {

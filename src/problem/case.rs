@@ -96,9 +96,10 @@ pub fn resolve(
     conditions(&mut case, &mut problem);
     problem.blend = blend.and_then(|blend| blend::over_components(&mut case, blend));
     constants(&mut case, &mut problem);
+    // Targets, read among the amounts, may ask for what forms of a solid.
+    solids::read(&mut case, &mut problem);
     amounts::read(&mut case, &mut problem);
     held::read(&mut case, &mut problem);
-    solids::read(&mut case, &mut problem);
     amounts::close(&mut case, &mut problem);
     problem.uncertain.extend(of_constants(&problem));
     problem.balances = written::read(&mut case, &problem);

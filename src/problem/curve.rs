@@ -327,6 +327,7 @@ fn end(
     problem: &Problem,
     value: &Quantity,
 ) -> Option<Read> {
+    case.resolver.carries_nothing(written, value);
     match sweep {
         Sweep::Ph => case.number(written, value, Expected::Plain),
         Sweep::Temperature => case.resolver.kelvin_read(written, value),

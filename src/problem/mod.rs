@@ -33,6 +33,7 @@ pub mod sparse;
 mod split;
 mod stock;
 pub mod stoichiometry;
+mod strength;
 mod target;
 pub mod uncertain;
 mod written;

@@ -15,13 +15,13 @@ use crate::text::span::Span;
 use crate::text::tree::{self, Quantity};
 
 impl CaseResolver<'_> {
-    /// The stock of a reagent; a defect where there can be none such.
+    /// The stock of a reagent, and its strength; a defect where there can be none such.
     pub fn stock(
         &mut self,
         written: &Written,
         strength: &tree::Strength,
         formula: &Formula,
-    ) -> Option<Arc<Stock>> {
+    ) -> Option<(Arc<Stock>, Strength)> {
         let quantity = &strength.value;
         let read = self.strength(written, quantity, formula)?;
         let density = match &strength.density {
@@ -32,7 +32,7 @@ impl CaseResolver<'_> {
         let mass = formula.molar_mass();
         let substance = formula.name.trim_end_matches("(s)");
         let why = match Stock::new(substance, mass, read, &words, density) {
-            Ok(stock) => return Some(Arc::new(stock)),
+            Ok(stock) => return Some((Arc::new(stock), read)),
             Err(StockProblem::NoStrength) => "a stock is stronger than nothing",
             Err(StockProblem::TooStrong) => "a stock holds at most itself, 100 %",
             Err(StockProblem::Density) => {

@@ -121,7 +121,15 @@ fn reagent(
 ) -> Option<usize> {
     let formula = amounts::neutral(case, written, name, false)?;
     let stock = match strength {
-        Some(strength) => Some(case.stock(written, strength, &formula)?),
+        Some(strength) => {
+            let (stock, _) = case.stock(written, strength, &formula)?;
+            // The moles that bring a water to its target are the same however strong they come.
+            case.resolver.carries_nothing(written, &strength.value);
+            if let Some(density) = &strength.density {
+                case.resolver.carries_nothing(written, density);
+            }
+            Some(stock)
+        }
         None => None,
     };
     let known = problem.reagents.iter().position(|r| r.formula.name == formula.name);

@@ -5,6 +5,8 @@ use std::sync::atomic::AtomicBool;
 
 use serde::Serialize;
 
+use super::dose::found;
+use super::expectation::value_words;
 use super::figures::{concentration, decimals, scale_unit, significant};
 use super::solution::in_phase;
 use super::style::{Paint, Style};
@@ -15,7 +17,7 @@ use crate::equilibrium::curve::{CurvePoint, Unsolved, along, at_point};
 use crate::equilibrium::quantities::Solved;
 use crate::equilibrium::system::Failure;
 use crate::problem::curve::{Curve, Sweep};
-use crate::problem::model::{Problem, Sought};
+use crate::problem::model::{Expectation, Problem, Sought};
 use crate::rules::outcome::Outcome;
 
 /// So many points are shown to people, both ends among them.
@@ -64,6 +66,8 @@ impl Traced {
         }
         heads.push(("ionic strength".into(), Side::Right));
         heads.push(("buffer capacity per pH".into(), Side::Right));
+        let expected = expected(problem);
+        heads.extend(expected.iter().map(|one| (one.words.clone(), Side::Right)));
         for &s in &solids {
             heads.push((format!("SI {}", problem.scope.species[s].name), Side::Right));
         }
@@ -81,6 +85,10 @@ impl Traced {
                     cells.push(concentration(solved.answer.ionic_strength, moved.scale).into());
                     let words = capacity.map(|value| concentration(value, moved.scale));
                     cells.push(words.unwrap_or_default().into());
+                    cells.extend(expected.iter().map(|one| {
+                        let value = solved.value(&moved, one.sought);
+                        Cell::from(value.map_or(String::new(), |v| value_words(&moved, one, v)))
+                    }));
                     cells.extend(solids.iter().map(|&s| {
                         let index = saturation_index(&moved, &solved, s);
                         Cell::from(index.map_or(String::new(), |index| decimals(index, 2)))
@@ -102,7 +110,7 @@ impl Traced {
                 text += &format!("  {}\n", style.paint(Paint::Bad, &line));
             }
         }
-        text + &self.past_model(problem, style)
+        text + &doses_kept(problem) + &self.past_model(problem, style)
     }
 
     /// A line that tells of points past the activity model; nothing where there are none.
@@ -191,6 +199,41 @@ impl Traced {
         };
         PointJson { x, status: "solved", answer: Some(answer) }
     }
+}
+
+/// What the file expects of its answer and no other column has, each quantity once: the doses
+/// do not move along a curve.
+fn expected(problem: &Problem) -> Vec<&Expectation> {
+    let mut found: Vec<&Expectation> = Vec::new();
+    for one in &problem.expectations {
+        let elsewhere = matches!(
+            one.sought,
+            Sought::Ph
+                | Sought::IonicStrength
+                | Sought::BufferCapacity
+                | Sought::SaturationIndex(_)
+                | Sought::Dose(_)
+        );
+        if !elsewhere && !found.iter().any(|other| other.sought == one.sought) {
+            found.push(one);
+        }
+    }
+    found
+}
+
+/// What was found for targets is the answer's, and stays so along a curve: the targets are met
+/// at the answer alone.
+fn doses_kept(problem: &Problem) -> String {
+    let kept: Vec<String> = found(problem)
+        .map(|(target, amount)| {
+            let name = problem.unknown_name(target.unknown);
+            format!("{name} {}", concentration(amount, problem.scale))
+        })
+        .collect();
+    if kept.is_empty() {
+        return String::new();
+    }
+    format!("  at every point as found for the answer: {}\n", kept.join(", "))
 }
 
 fn solids(problem: &Problem) -> impl Iterator<Item = usize> + '_ {

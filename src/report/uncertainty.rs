@@ -3,7 +3,7 @@
 
 use serde::Serialize;
 
-use super::expectation::{probability_words, uncertain_quantity_words, verdict};
+use super::expectation::{is_told, probability_words, uncertain_quantity_words, verdict};
 use super::figures::decimals;
 use super::source::{Source, Stated};
 use super::style::Style;
@@ -34,7 +34,7 @@ fn told(outcome: &Outcome) -> Vec<Told<'_>> {
             continue;
         }
         let budget = outcome.budget(sought);
-        if let Some(budget) = budget.filter(|budget| budget.standard_uncertainty > 0.0) {
+        if let Some(budget) = budget.filter(|budget| is_told(sought, budget)) {
             told.push(Told { words, sought, unit, budget });
         }
     }
@@ -109,7 +109,7 @@ pub fn hover(outcome: &Outcome, expectation: &Expectation) -> Option<String> {
     let problem = &outcome.problem;
     let budget = outcome.budget(expectation.sought)?;
     let size = budget.standard_uncertainty;
-    if size <= 0.0 {
+    if !is_told(expectation.sought, &budget) {
         return None;
     }
     let unit = expectation.unit.as_ref();

@@ -3,6 +3,7 @@
 
 use super::figures::{decimals, percent, scale_unit, significant, with_uncertainty};
 use crate::equilibrium::confidence;
+use crate::equilibrium::uncertainty::Budget;
 use crate::problem::model::{Expectation, Problem, ShownUnit, Sought};
 use crate::rules::check::Checked;
 use crate::rules::context::Context;
@@ -33,7 +34,8 @@ pub enum Standing {
 pub fn verdict(outcome: &Outcome, expectation: &Expectation) -> Verdict {
     let value = outcome.solved().and_then(|s| s.value(&outcome.problem, expectation.sought));
     let budget = outcome.budget(expectation.sought);
-    let size = budget.map(|budget| budget.standard_uncertainty).filter(|&size| size > 0.0);
+    let told = budget.filter(|budget| is_told(expectation.sought, budget));
+    let size = told.map(|budget| budget.standard_uncertainty);
     let limit = expectation.limit;
     let probability =
         value.zip(size).map(|(value, size)| confidence::probability(limit, value, size));
@@ -44,6 +46,19 @@ pub fn verdict(outcome: &Outcome, expectation: &Expectation) -> Verdict {
         _ => Standing::Met,
     };
     Verdict { value, standard_uncertainty: size, probability, standing }
+}
+
+/// Of the value, or of one unit of what is a logarithm: a smaller uncertainty is what rounding
+/// leaves of none, and no reader's concern.
+const NEGLIGIBLE: f64 = 1e-5;
+
+/// Whether a quantity is uncertain by enough to be told.
+pub fn is_told(sought: Sought, budget: &Budget) -> bool {
+    let scale = match sought {
+        Sought::Ph | Sought::Poh | Sought::Pe | Sought::SaturationIndex(_) => 1.0,
+        _ => budget.value.abs(),
+    };
+    budget.standard_uncertainty > NEGLIGIBLE * scale
 }
 
 /// Whether an expectation is met, with the confidence asked for. No uncertainty is looked

@@ -230,6 +230,31 @@ local function session()
   end
   say('ok: the outline names the case')
 
+  -- The picture of the text as it stands here, unwritten changes and all: of the case that the
+  -- cursor is in, in letters, then as an SVG in what shows such files.
+  local files = #vim.fn.readdir('.')
+  vim.bo.modified = true
+  vim.api.nvim_win_set_cursor(0, { row('case "winter"') + 2, 4 })
+  vim.cmd('LyateDraw')
+  await('the picture is drawn in letters in a window of its own', function()
+    local shown = table.concat(vim.api.nvim_buf_get_lines(0, 0, -1, true), '\n')
+    return vim.bo.buftype == 'nofile' and shown:find('4 °C', 1, true) and shown:find('pH 9.79', 1, true)
+      and #vim.fn.readdir('.') == files, shown
+  end)
+  keys('q')
+  local opened = {}
+  vim.ui.open = function(path)
+    opened[#opened + 1] = path
+    return { wait = function() return { code = 0 } end }
+  end
+  vim.api.nvim_win_set_cursor(0, { 1, 0 })
+  vim.cmd('LyateDraw! distribution')
+  await('the SVG is given to what shows such files, once', function()
+    local path = opened[1] and opened[1]:gsub('^file://', '')
+    local svg = path and table.concat(vim.fn.readfile(vim.uri_decode(path)), '\n') or ''
+    return #opened == 1 and svg:find('<svg', 1, true), opened
+  end)
+
   local client = vim.lsp.get_clients({ name = 'lyate' })[1]
   client:stop()
   await('the server stops when asked', function()

@@ -189,7 +189,14 @@ fn strength() -> BoxedStrategy<Strength> {
 
 fn blend_part() -> BoxedStrategy<BlendPart> {
     (quantity(true), string(), prop::option::of(string()))
-        .prop_map(|(share, file, case)| BlendPart { share, file, case, span: Span::default() })
+        .prop_map(|(mut share, file, case)| {
+            // The percent sign after a bare number and its `±` is the share's own.
+            if let Some(uncertainty) = share.uncertainty.as_mut().filter(|_| share.unit.is_none()) {
+                uncertainty.percent = false;
+            }
+            share.basis = None;
+            BlendPart { share, file, case, span: Span::default() }
+        })
         .boxed()
 }
 

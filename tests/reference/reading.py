@@ -158,7 +158,8 @@ SUBJECT = re.compile(
 
 def variant(base, extra):
     """The base with a case laid over it: what has the same subject is replaced."""
-    definitions = ("problem", "use", "group", "component")
+    # A curve moves nothing of the answer.
+    definitions = ("problem", "use", "group", "component", "curve")
     kept = [t for t in base if t.split()[0] not in definitions]
     gone = {t[8:].strip() for t in extra if t.startswith("without ")}
     extra = [t for t in extra if not t.startswith("without ")]

@@ -67,6 +67,10 @@ fn finding(
         finding = finding.with_fix(format!("write `{nearest}`"), false, defect.at, nearest);
     }
     if missing.is_empty() {
+        let forms = other_forms(context, name);
+        if nearest.is_none() && !forms.is_empty() {
+            finding = finding.with_help(format!("its forms here: {}", names(&forms, "and")));
+        }
         return finding;
     }
     let wanted = missing.join(", ");
@@ -74,6 +78,14 @@ fn finding(
         Some(edit) => finding.with_edits(format!("list `{wanted}` as a component"), false, vec![edit]),
         None => finding.with_help(format!("write `component {wanted}`")),
     }
+}
+
+/// The solids of the problem that differ from this one in the name of their form alone.
+fn other_forms(context: &Context, name: &str) -> Vec<String> {
+    let Some((formula, _)) = name.split_once("(s") else { return Vec::new() };
+    let species = context.problem.scope.species.iter();
+    let forms = species.filter(|s| s.name.split_once("(s").is_some_and(|(f, _)| f == formula));
+    forms.map(|s| s.name.clone()).collect()
 }
 
 /// Whether a statement that might have brought the species is broken and has its own finding.

@@ -152,18 +152,33 @@ pub(super) fn unsigned_quantity<'s>() -> impl Rule<'s, Quantity> {
 /// a formula.
 pub(super) fn strength<'s>() -> impl Rule<'s, Quantity> {
     let unit = unit(Expect::Unit).map(|(unit, at)| Part::Unit(unit, at));
-    // The percent sign of `30 ± 1 % NaOH` is the unit of both.
-    let bare = sign(Token::PlusMinus, Expect::Nothing)
-        .then(number())
-        .map(|(at, number)| Part::Uncertainty(Uncertainty { number, percent: false }, at));
     number()
         .map(Reading::of)
-        .foldl(bare.or_not(), Reading::with)
+        .foldl(bare_uncertainty().or_not(), Reading::with)
         .then(unit)
         .map(|(reading, unit)| reading.with(unit))
         .foldl(uncertainty().or_not(), Reading::with)
         .map_with(|reading, extra| (reading, span_of(extra.slice())))
         .try_map(|(reading, span), _| reading.finish(span))
+}
+
+/// A share of a blend: a number of parts, or one in percent.
+pub(super) fn share<'s>() -> impl Rule<'s, Quantity> {
+    let unit = unit(Expect::Unit).map(|(unit, at)| Part::Unit(unit, at));
+    signed_number()
+        .map(Reading::of)
+        .foldl(bare_uncertainty().or_not(), Reading::with)
+        .foldl(unit.or_not(), Reading::with)
+        .foldl(uncertainty().or_not(), Reading::with)
+        .map_with(|reading, extra| (reading, span_of(extra.slice())))
+        .try_map(|(reading, span), _| reading.finish(span))
+}
+
+/// The percent sign of `30 ± 1 % NaOH` is the unit of both.
+fn bare_uncertainty<'s>() -> impl Rule<'s, Part<'s>> {
+    sign(Token::PlusMinus, Expect::Nothing)
+        .then(number())
+        .map(|(at, number)| Part::Uncertainty(Uncertainty { number, percent: false }, at))
 }
 
 /// `± 0.02`, `± 5 %`

@@ -4,7 +4,7 @@ use chumsky::prelude::*;
 
 use super::basic::{Rule, name, sign, span_of, string, word};
 use super::failure::Expect;
-use super::quantity::{quantity, strength};
+use super::quantity::{quantity, share, strength};
 use crate::text::token::Token;
 use crate::text::tree::{BlendPart, Name, Statement, Strength};
 
@@ -23,7 +23,7 @@ pub(super) fn of_stock<'s>() -> impl Rule<'s, (Name, Strength)> {
 
 /// `blend 70 % of "river.lyate", 30 % of "well.lyate" case "winter"`
 pub(super) fn blend<'s>() -> impl Rule<'s, Statement> {
-    let part = quantity()
+    let part = share()
         .labelled(Expect::Share)
         .then_ignore(word("of", Expect::Of))
         .then(string())
