@@ -1,6 +1,6 @@
 //! One goal, one unknown amount.
 
-use super::nearest::nearest;
+use super::nearest::{Missed, nearest};
 use super::root::{Mark, close_in};
 use super::{Bench, COARSE, Dosing, FINE, Goal, MET, Met, Search, amounts, most, passed};
 use crate::equilibrium::system::Failure;
@@ -37,8 +37,22 @@ pub(super) fn find<B: Bench>(
         let others = found.map(|(dose, _)| vec![dose]).collect();
         return Ok(met(vec![dose], state, others, line.trials));
     }
-    failure.map_or_else(|| Ok(Search::Missed(nearest(&mut line, without)?)), Err)
+    if let Some(failure) = failure {
+        return Err(failure);
+    }
+    let missed = nearest(&mut line, without)?;
+    if let Missed::Short(nearest) = &missed
+        && goal.off(nearest.value).abs() <= LEVEL
+    {
+        let state = line.state(nearest.dose)?;
+        return Ok(met(vec![nearest.dose], state, Vec::new(), line.trials));
+    }
+    Ok(Search::Missed(missed))
 }
+
+/// A value that the quantity only comes up to, however much is put in, is met where it is off
+/// by no more than this.
+const LEVEL: f64 = 1e-10;
 
 fn met<S>(doses: Vec<f64>, state: S, others: Vec<Vec<f64>>, trials: u32) -> Search<S> {
     Search::Met(Box::new(Met { doses, state, others, trials }))
