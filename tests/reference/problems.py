@@ -67,8 +67,9 @@ def closes(text, problem):
 
 
 def is_read_here(texts):
-    """Blends are checked by blend.py; electrons and hardness by the sources in the files."""
-    words = r"blend|component .*\be-|(expect|hold) (potential|pe|hardness|carbonate hardness|acidity)"
+    """Blends are checked by blend.py, pitzer by interaction.py; electrons and hardness by the
+    sources in the files."""
+    words = r"blend|activity pitzer|component .*\be-|(expect|hold) (potential|pe|hardness|carbonate hardness|acidity)"
     return not any(re.match(words, text) for text in texts)
 
 
@@ -84,9 +85,10 @@ def main():
             base, cases = reading.gather(path)
             if not any(t.startswith("expect ") for t in base):
                 continue  # definitions for others to use
-            if any(re.match(r"hold .* by |add \S+ \S+ of ", t) for t in base):
+            texts = [*base, *(t for _, extra in cases for t in extra)]
+            if any(re.match(r"hold .* by |add .* of \d", t) for t in texts):
                 continue  # doses.py
-            if not is_read_here([*base, *(t for _, extra in cases for t in extra)]):
+            if not is_read_here(texts):
                 print(f"{os.path.relpath(path, arguments.folder)}: not read here")
                 continue
             files += 1

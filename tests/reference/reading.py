@@ -118,6 +118,8 @@ def statements(path):
     with open(path, encoding="utf-8") as file:
         for raw in file:
             line = re.sub(r'^((?:[^"#]|"[^"]*")*)#.*$', r"\1", raw.rstrip("\n"))
+            # The name of a solid form holds no white space and no comma before one.
+            line = re.sub(r"\(s, ([^)]*)\)", lambda form: "(s," + form[1].replace(" ", "_") + ")", line)
             if not line.strip():
                 continue
             indent = len(line) - len(line.lstrip())
