@@ -32,6 +32,13 @@ pub(super) fn find<B: Bench>(
         let doses = line.all(FINE)?;
         found = line.good(doses)?;
     }
+    if found.is_empty() && line.held {
+        // With ions of high charge the state that is held can be another one than the water's
+        // own, at any dose: then the quantity itself is followed.
+        line.held = false;
+        let doses = line.all(COARSE)?;
+        found = line.good(doses)?;
+    }
     let mut found = found.into_iter();
     if let Some((dose, state)) = found.next() {
         let others = found.map(|(dose, _)| vec![dose]).collect();
