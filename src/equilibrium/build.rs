@@ -41,10 +41,9 @@ pub fn system(problem: &Problem) -> System {
     let mut given = vec![0.0; problem.amounts.len()];
     totals(problem, &mut given);
     let held = problem.held.iter().filter_map(|held| fixed(problem, held));
-    let excess = problem.solids_that_are(Presence::Excess).filter_map(|solid| {
-        let Candidate { row, ln_value, water } = candidate(problem, solid)?;
-        Some(Fixed { supply: row.clone(), row, ln_value, water, concentration_of: None })
-    });
+    let excess = problem
+        .solids_that_are(Presence::Excess)
+        .filter_map(|solid| Some(candidate(problem, solid)?.held()));
     System {
         species,
         totals: given,

@@ -98,8 +98,7 @@ pub fn solved_at(
 ) -> Result<(Problem, Solved), Unsolved> {
     let moved = at(problem, curve, x).map_err(Unsolved::NoConstant)?;
     let found = equilibrate(system(&moved), None, cancel).map_err(Unsolved::Failed)?;
-    let Assemblage { system, answer, formed } = found;
-    Ok((moved, Solved { system, answer, formed, others: Vec::new(), dosed: None }))
+    Ok((moved, found.into()))
 }
 
 /// A point of [`along`] as a problem with its answer, to be asked for any quantity. None
@@ -109,5 +108,5 @@ pub fn at_point(problem: &Problem, curve: &Curve, point: &CurvePoint) -> Option<
     let moved = at(problem, curve, point.x).ok()?;
     let system = assembled(system(&moved), &point.formed);
     let formed = point.formed.clone();
-    Some((moved, Solved { system, answer, formed, others: Vec::new(), dosed: None }))
+    Some((moved, Assemblage { system, answer, formed }.into()))
 }

@@ -95,7 +95,7 @@ pub fn assembled(mut system: System, formed: &[Option<usize>]) -> System {
     let mut there: Vec<(usize, usize)> =
         formed.iter().enumerate().filter_map(|(c, place)| Some(((*place)?, c))).collect();
     there.sort_unstable();
-    let held = there.iter().filter_map(|&(_, c)| Some(held(system.candidates.get(c)?)));
+    let held = there.iter().filter_map(|&(_, c)| Some(system.candidates.get(c)?.held()));
     let held: Vec<Fixed> = held.collect();
     system.fixed.extend(held);
     system
@@ -188,7 +188,7 @@ impl<'a> Assembling<'a> {
     /// The answer with the present solids held, from the last one where that leads there.
     fn solve(&mut self, cancel: &AtomicBool) -> Result<Answer, Failure> {
         self.system.fixed.truncate(self.asked.fixed.len());
-        let held = self.there.iter().map(|&c| held(&self.asked.candidates[c]));
+        let held = self.there.iter().map(|&c| self.asked.candidates[c].held());
         self.system.fixed.extend(held);
         // With activity coefficients a set can have more than one state; the one that a circle
         // came by is not the one to go on from.
@@ -339,16 +339,5 @@ impl<'a> Assembling<'a> {
             answer.amounts.push(amount);
         }
         Ok(Assemblage { system: assembled(self.asked.clone(), &formed), answer, formed })
-    }
-}
-
-/// A candidate that is there, as a held phase.
-fn held(candidate: &Candidate) -> Fixed {
-    Fixed {
-        row: candidate.row.clone(),
-        ln_value: candidate.ln_value,
-        water: candidate.water,
-        concentration_of: None,
-        supply: candidate.row.clone(),
     }
 }

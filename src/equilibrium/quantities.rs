@@ -5,6 +5,7 @@ use std::f64::consts::LN_10;
 use num_traits::ToPrimitive;
 
 use super::build::{ln_formation, water_taken};
+use super::phases::Assemblage;
 use super::sensitivity;
 use super::system::{Answer, System};
 use crate::chemistry::constant::volts_per_pe;
@@ -38,6 +39,12 @@ pub struct Dosed {
     pub amounts: Vec<f64>,
     /// Others that meet them too.
     pub others: Vec<Vec<f64>>,
+}
+
+impl From<Assemblage> for Solved {
+    fn from(Assemblage { system, answer, formed }: Assemblage) -> Self {
+        Solved { system, answer, formed, others: Vec::new(), dosed: None }
+    }
 }
 
 impl Solved {

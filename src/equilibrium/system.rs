@@ -104,6 +104,15 @@ pub struct Candidate {
     pub water: f64,
 }
 
+impl Candidate {
+    /// The solid where it is there: a held phase of unknown amount.
+    pub fn held(&self) -> Fixed {
+        let Candidate { row, ln_value, water } = self;
+        let (row, supply) = (row.clone(), row.clone());
+        Fixed { row, ln_value: *ln_value, water: *water, concentration_of: None, supply }
+    }
+}
+
 #[derive(Clone, Copy, Debug, PartialEq)]
 pub enum IonicStrength {
     Computed,

@@ -7,7 +7,7 @@ use super::blend::Blend;
 use super::case::CaseResolver;
 use super::defect::{DefectKind, Expected};
 use super::effective::{Written, over_words};
-use super::model::{AmountSource, Held, HeldWhat, Problem, Reagent, ShownUnit, carried};
+use super::model::{AmountSource, Held, HeldWhat, Problem, Reagent, ShownUnit};
 use super::quantity::{Read, with_unit_of};
 use super::reaction::TemperatureIssue;
 use super::scope::PROTON;
@@ -94,10 +94,7 @@ impl Curve {
                 }
             }
             Sweep::Reagent(reagent) => {
-                let scale = moved.scale;
-                let swept = &mut moved.reagents[reagent];
-                swept.amount = x;
-                swept.brings = x * carried(swept.stock.as_deref(), scale);
+                moved.reagents[reagent].set_amount(x, moved.scale);
                 for index in 0..moved.reagents[reagent].row.len() {
                     let (component, _) = moved.reagents[reagent].row[index];
                     let amount = &mut moved.amounts[component];

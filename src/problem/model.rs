@@ -130,6 +130,14 @@ pub enum Unknown {
     Total(usize),
 }
 
+impl Reagent {
+    /// Puts so much in, mol per litre or kilogram, with what its stock brings along.
+    pub fn set_amount(&mut self, amount: f64, scale: Scale) {
+        self.amount = amount;
+        self.brings = amount * carried(self.stock.as_deref(), scale);
+    }
+}
+
 #[derive(Clone, Debug, PartialEq)]
 pub struct Held {
     pub at: Place,
@@ -343,8 +351,7 @@ impl Problem {
                 Unknown::Reagent(index) => {
                     let reagent = &mut self.reagents[index];
                     let more = amount - reagent.amount;
-                    reagent.amount = amount;
-                    reagent.brings = amount * carried(reagent.stock.as_deref(), self.scale);
+                    reagent.set_amount(amount, self.scale);
                     for &(j, n) in &reagent.row {
                         let brought = &mut self.amounts[j];
                         if matches!(brought.source, AmountSource::Reagents | AmountSource::Blend) {

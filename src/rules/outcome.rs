@@ -10,7 +10,7 @@ use super::finding::Finding;
 use crate::balance::BalanceKind;
 use crate::equilibrium::build::system;
 use crate::equilibrium::dose::meet;
-use crate::equilibrium::phases::{Assemblage, Near, equilibrate, is_settled};
+use crate::equilibrium::phases::{Near, equilibrate, is_settled};
 use crate::equilibrium::quantities::Solved;
 use crate::equilibrium::several::other_states;
 use crate::equilibrium::system::{Failure, System};
@@ -142,8 +142,7 @@ fn state(system: System, near: Option<&Solved>, cancel: &AtomicBool) -> Result<S
         |system: &System| (system.totals.len(), system.species.len(), system.candidates.len());
     let start = near.filter(|near| rows(&near.system) == rows(&system));
     let start = start.map(|near| Near { answer: &near.answer, formed: &near.formed });
-    let Assemblage { system, answer, formed } = equilibrate(system, start, cancel)?;
-    Ok(Solved { system, answer, formed, others: Vec::new(), dosed: None })
+    Ok(equilibrate(system, start, cancel)?.into())
 }
 
 /// With what is known of other states.
